@@ -56,8 +56,9 @@ pub struct Finding {
     pub sentence: Range<usize>,
     /// The quantity whose range follows from the rest, as printed: symbol and e.g. `= .036`.
     pub reported: Vec<(&'static str, String)>,
-    /// The range (or ranges, rising) that follows for it from the rest.
-    pub expected: Vec<(&'static str, Vec<f64>)>,
+    /// Lowest and highest value that follow for it from the rest; where only single values are possible,
+    /// the nearest one below and above what is printed.
+    pub expected: Vec<(&'static str, [f64; 2])>,
     pub assumes: Vec<String>,
     /// One plain sentence.
     pub says: String,

@@ -64,6 +64,8 @@ pub struct Mention {
     pub meaning: &'static str,
     /// The word as printed.
     pub words: String,
+    /// Numbers that belong to it: `7-point` has 7, `from 1 to 5` has 1 and 5, `12 items` has 12.
+    pub numbers: Vec<f64>,
     pub reach: Reach,
     /// Paragraph number where it stands.
     pub paragraph: u32,
