@@ -2,6 +2,20 @@
 //! `t(28) = 2.20, p = .036`. This room turns the text of blocks into statements by the grammars;
 //! it knows neither file formats nor what makes numbers agree.
 
+mod bait;
+mod find;
+mod forms;
+mod grammar;
+mod items;
+mod join;
+mod pairs;
+mod sentences;
+mod tokens;
+mod values;
+
+pub use find::find;
+pub use grammar::Grammar;
+
 use crate::numbers::{Comparator, Decimal, Interval};
 use std::ops::Range;
 
@@ -35,4 +49,17 @@ pub struct Statement {
     /// Byte range of the sentence around it.
     pub sentence: Range<usize>,
     pub quantities: Vec<Quantity>,
+}
+
+/// One block on its way from text to statements: its tokens and what the manuscript's numbers
+/// look like.
+pub(crate) struct Scan<'a> {
+    /// The whole text as read; tokens give offsets in it.
+    text: &'a str,
+    tokens: &'a [tokens::Token],
+    grammar: &'a Grammar,
+    /// The manuscript writes decimal commas.
+    commas: bool,
+    /// The level of significance, which `n.s.` refers to.
+    alpha: f64,
 }
