@@ -1,7 +1,8 @@
 //! *Items* are the assignments that stand in a text: a symbol with its arguments, a comparator and
 //! a number (`t(28) = 2.20`), an interval (`95% CI [0.1, 1.5]`), or a form without a comparator.
 
-use super::grammar::{Class, Found};
+use super::grammar::Class;
+use super::spellings::Found;
 use super::tokens::{Kind, on_the_line};
 use super::values::{Company, Value};
 use super::{Quantity, Scan};

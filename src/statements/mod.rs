@@ -10,6 +10,7 @@ mod items;
 mod join;
 mod pairs;
 mod sentences;
+mod spellings;
 mod tokens;
 mod values;
 

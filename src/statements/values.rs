@@ -173,7 +173,7 @@ impl Scan<'_> {
                 "ns" | "to" | "and" | "ms" | "mm" | "cm" | "kg" | "mg" | "years" | "yrs" | "CI"
             )
             || self.grammar.units.contains(word)
-            || word.chars().all(|c| c.is_lowercase()) && word.len() <= 3
+            || word.chars().all(|c| c.is_lowercase()) && word.len() <= 3 && word != "x"
     }
 
     /// `× 10⁻⁵`, `x 10^-6`, `× 10-6`, `·10^{-6}` at token `at`: the power and the token behind.
