@@ -14,6 +14,7 @@ pub mod package;
 pub mod pdf;
 pub mod plain;
 pub mod tex_math;
+mod tex_symbols;
 
 use crate::manuscript::{Format, Manuscript};
 use std::fmt;
