@@ -6,7 +6,7 @@ use super::accents::accent;
 use super::arguments::{self, Braces, bracket_end, name_at, skip_space};
 use super::expand::{Flat, UNKNOWN};
 use super::tables::Tabular;
-use crate::manuscript::{BlockKind, Builder, Format, Manuscript, Part};
+use crate::manuscript::{BlockKind, Builder, Format, Part};
 use crate::readers::headings::Parts;
 use crate::readers::tex_math::{flat as flat_math, push_math, push_number};
 use crate::readers::tex_symbols::symbol;
@@ -17,14 +17,17 @@ const DEEPEST: usize = 16;
 /// A formula ends within this many bytes.
 const LONGEST_FORMULA: usize = 20_000;
 
-/// Reads flat source.
-pub(super) fn walk(flat: &Flat) -> Manuscript {
+/// Reads flat source into the builder, in the part that it is in.
+pub(super) fn walk_into(b: &mut Builder, flat: &Flat) {
+    let mut parts = Parts::new();
+    parts.enter(b.current_part());
     let mut walker = Walker {
         text: &flat.text,
         lines: &flat.lines,
         braces: Braces::of(&flat.text),
-        b: Builder::new(Format::Latex),
-        parts: Parts::new(),
+        // Lent for the walk and given back at its end.
+        b: std::mem::replace(b, Builder::new(Format::Latex)),
+        parts,
         footnotes: VecDeque::new(),
         kinds: Vec::new(),
         floats: Vec::new(),
@@ -43,7 +46,7 @@ pub(super) fn walk(flat: &Flat) -> Manuscript {
     for remark in &flat.remarks {
         walker.b.remark(remark.clone());
     }
-    walker.b.finish()
+    *b = walker.b;
 }
 
 /// A float or what else holds tables with their captions and notes.
