@@ -67,6 +67,8 @@ pub struct Math {
     runs: Vec<(usize, Shift)>,
     shift: Shift,
     frames: Vec<Frame>,
+    /// Where the text ended after a word of several letters.
+    word_end: Option<usize>,
     /// Number of open elements that are left out or lie too deep.
     ignored: usize,
 }
@@ -84,6 +86,7 @@ impl Math {
             runs: Vec::new(),
             shift: Shift::Line,
             frames: Vec::new(),
+            word_end: None,
             ignored: 0,
         }
     }
@@ -180,20 +183,10 @@ impl Math {
                 }
             }
             Kind::Number => self.text.push_str(raw.trim()),
-            Kind::Identifier => {
-                let name = raw.trim();
-                self.part_words(name);
-                self.text.push_str(name);
-            }
-            _ => {
-                let blank = raw.trim().is_empty();
-                if kind == Kind::Words || !blank {
-                    if !blank {
-                        self.part_words(raw);
-                    }
-                    self.text.push_str(raw);
-                }
-            }
+            Kind::Identifier => self.word(raw.trim()),
+            Kind::Words => self.word(raw),
+            _ if raw.trim().is_empty() => {}
+            _ => self.word(raw),
         }
     }
 
@@ -337,30 +330,25 @@ impl Math {
         self.shift(shift);
     }
 
-    /// Keeps words apart that the markup keeps apart: `log x`, `, p`.
-    fn part_words(&mut self, next: &str) {
-        let Some(last) = self.text.chars().next_back() else { return };
-        let apart = match last {
-            ',' | ';' => true,
-            c if c.is_alphabetic() => {
-                let next_is_word = next.chars().filter(|c| c.is_alphabetic()).nth(1).is_some();
-                let last_is_word = self.text.chars().rev().nth(1).is_some_and(|c| c.is_ascii_lowercase())
-                    && c.is_ascii_lowercase()
-                    && is_function(&self.text);
-                next.starts_with(char::is_alphabetic) && (next_is_word || last_is_word)
+    /// Writes a name or words, kept apart from a word or comma before it: `log x`, `, p`.
+    fn word(&mut self, next: &str) {
+        let letters = next.chars().filter(|c| c.is_alphabetic()).take(2).count();
+        let new_run = self.runs.last().is_some_and(|r| r.0 == self.text.len());
+        let apart = match self.text.chars().next_back() {
+            Some(',' | ';') => true,
+            Some(c) if c.is_alphabetic() && next.starts_with(char::is_alphabetic) => {
+                letters > 1 || self.word_end == Some(self.text.len())
             }
             _ => false,
         };
-        if apart && self.runs.last().is_none_or(|r| r.0 < self.text.len()) {
+        if apart && !new_run {
             self.text.push(' ');
         }
+        self.text.push_str(next);
+        if letters > 1 {
+            self.word_end = Some(self.text.len());
+        }
     }
-}
-
-fn is_function(text: &str) -> bool {
-    ["log", "ln", "exp", "sin", "cos", "tan", "max", "min", "lim", "var", "logit", "det"]
-        .iter()
-        .any(|f| text.ends_with(f))
 }
 
 fn kind_of(name: &str) -> Kind {
@@ -436,5 +424,145 @@ fn write(b: &mut Builder, run: &str, shift: Shift) {
                 b.subscript(bare);
             }
         }
+    }
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::manuscript::Format;
+    use quick_xml::events::Event;
+
+    fn line(source: &str) -> String {
+        let mut b = Builder::new(Format::Html);
+        let mut math = Math::new();
+        let mut reader = quick_xml::Reader::from_str(source);
+        let attribute = |e: &quick_xml::events::BytesStart, name: &str| {
+            let found = e.try_get_attribute(name).expect("the test writes good XML")?;
+            Some(found.value.to_string())
+        };
+        loop {
+            match reader.read_event().expect("the test writes good XML") {
+                Event::Start(e) => math.start(e.local_name().as_ref(), |n| attribute(&e, n)),
+                Event::Empty(e) => {
+                    math.start(e.local_name().as_ref(), |n| attribute(&e, n));
+                    math.end();
+                }
+                Event::End(_) => math.end(),
+                Event::Text(t) => math.text(&t),
+                Event::Eof => break,
+                _ => {}
+            }
+        }
+        math.finish(&mut b);
+        b.finish().text.trim_end().to_string()
+    }
+
+    #[test]
+    fn statistics_come_out_as_people_type_them() {
+        assert_eq!(
+            line(
+                "<mrow><msup><mi>χ</mi><mn>2</mn></msup><mo>(</mo><mn>1</mn><mo>)</mo><mo>=</mo><mn>4.10</mn>\
+                 <mo>,</mo><mi>p</mi><mo>=</mo><mo>−</mo><mn>.03</mn></mrow>"
+            ),
+            "χ²(1) = 4.10, p = -.03"
+        );
+        assert_eq!(
+            line("<msub><mi>F</mi><mrow><mn>1</mn><mo>,</mo><mn>63</mn></mrow></msub><mo>=</mo><mn>7.25</mn>"),
+            "F₁,₆₃ = 7.25"
+        );
+        assert_eq!(
+            line("<msubsup><mi>η</mi><mi>p</mi><mn>2</mn></msubsup><mo>=</mo><mn>.07</mn>"),
+            "ηp² = .07"
+        );
+        assert_eq!(
+            line("<mi>P</mi><mo>=</mo><mn>3.4</mn><mo>×</mo><msup><mn>10</mn><mrow><mo>−</mo><mn>6</mn></mrow></msup>"),
+            "P = 3.4×10⁻⁶"
+        );
+        assert_eq!(line("<mn>0.45</mn><msup><mi/><mo>***</mo></msup>"), "0.45***");
+    }
+
+    #[test]
+    fn fractions_and_roots_get_brackets_where_they_need_them() {
+        assert_eq!(line("<mfrac><mn>12</mn><mn>34</mn></mfrac>"), "12/34");
+        assert_eq!(
+            line("<mfrac><mrow><mi>a</mi><mo>+</mo><mi>b</mi></mrow><msqrt><mi>n</mi></msqrt></mfrac>"),
+            "(a+b)/(√n)"
+        );
+        assert_eq!(line("<msqrt><mi>n</mi><mo>−</mo><mn>1</mn></msqrt>"), "√(n-1)");
+        assert_eq!(line("<mroot><mi>x</mi><mn>3</mn></mroot>"), "x^(1/3)");
+        assert_eq!(
+            line("<msup><mi>x</mi><mfrac><mn>1</mn><mn>2</mn></mfrac></msup>"),
+            "x^(1/2)"
+        );
+        assert_eq!(
+            line("<mfrac><mfrac><mi>a</mi><mi>b</mi></mfrac><mi>c</mi></mfrac>"),
+            "(a/b)/c"
+        );
+        assert_eq!(line("<mfrac><mi>a</mi></mfrac><mfrac/>"), "a");
+    }
+
+    #[test]
+    fn powers_and_indexes_never_run_into_numbers() {
+        assert_eq!(line("<msup><mi>e</mi><mrow><mo>−</mo><mi>x</mi></mrow></msup>"), "e^(−x)".replace('−', "-"));
+        assert_eq!(line("<msup><mi>X</mi><mi>T</mi></msup>"), "X^T");
+        assert_eq!(
+            line(
+                "<munderover><mo>∑</mo><mrow><mi>i</mi><mo>=</mo><mn>1</mn></mrow><mi>n</mi></munderover>\
+                 <msub><mi>x</mi><mi>i</mi></msub>"
+            ),
+            "∑_(i = 1)^(n)xi"
+        );
+        assert_eq!(
+            line("<msub><mi>x</mi><mrow><mi>t</mi><mo>=</mo><mn>1</mn></mrow></msub>"),
+            "x_(t = 1)"
+        );
+        assert_eq!(
+            line("<mmultiscripts><mi>X</mi><mn>1</mn><mn>2</mn><mprescripts/><none/><mn>3</mn></mmultiscripts>"),
+            "X₁²³"
+        );
+    }
+
+    #[test]
+    fn accents_join_their_letter() {
+        assert_eq!(line("<mover><mi>x</mi><mo>¯</mo></mover>"), "x\u{304}");
+        assert_eq!(line("<mover><mi>β</mi><mo>^</mo></mover><mo>=</mo><mn>.2</mn>"), "β\u{302} = .2");
+        assert_eq!(line("<mover><mrow><mi>a</mi><mi>b</mi></mrow><mo>⏞</mo></mover>"), "ab");
+        assert_eq!(line("<munder><mi>max</mi><mi>x</mi></munder><mi>f</mi>"), "max_(x)f");
+        assert_eq!(line("<mover><mi>x</mi></mover>"), "x");
+    }
+
+    #[test]
+    fn a_formula_is_read_once() {
+        assert_eq!(
+            line(
+                "<semantics><mrow><mi>p</mi><mo>=</mo><mn>.048</mn></mrow>\
+                 <annotation encoding='application/x-tex'>p = .048</annotation></semantics><mtext>&#x20;ok</mtext>"
+                    .replace("&#x20;", " ")
+                    .as_str()
+            ),
+            "p = .048 ok"
+        );
+        assert_eq!(line("<mphantom><mi>p</mi></mphantom><mi>q</mi>"), "q");
+    }
+
+    #[test]
+    fn fences_tables_and_words_are_kept_apart() {
+        assert_eq!(
+            line("<mfenced open='[' separators=';'><mn>−.5</mn><mn>.1</mn></mfenced>"),
+            "[-.5; .1]"
+        );
+        assert_eq!(
+            line("<mtable><mtr><mtd><mi>a</mi></mtd><mtd><mi>b</mi></mtd></mtr><mtr><mtd><mi>c</mi></mtd></mtr></mtable>"),
+            "a b; c"
+        );
+        assert_eq!(line("<mi>log</mi><mi>x</mi><mspace width='1em'/><mtext>if</mtext><mi>y</mi>"), "log x if y");
+    }
+
+    #[test]
+    fn any_nesting_ends() {
+        let deep = format!("{}<mi>x</mi>{}", "<msup>".repeat(2000), "</msup>".repeat(2000));
+        assert_eq!(line(&deep), "");
+        assert_eq!(line("<mrow><msup><mi>x"), "x");
     }
 }

@@ -208,12 +208,9 @@ impl<'a> Reading<'a> {
             }
         }
         if self.frames.len() > floor {
-            let open = self.frames.len() - floor;
-            return Err(not_well_formed(
-                self.source,
-                self.source.len(),
-                &format!("the file ends inside {open} open element(s)"),
-            ));
+            let at = self.source.trim_end().len();
+            let open = format!("the file ends before `</{}>`", last_open(self.source));
+            return Err(not_well_formed(self.source, at, &open));
         }
         Ok(())
     }
@@ -498,7 +495,8 @@ impl<'a> Reading<'a> {
                 self.close_block();
                 self.flush_put_off()?;
             }
-            Tag::Term | Tag::Def => self.text(" "),
+            Tag::Term => {}
+            Tag::Def => self.text(" "),
             Tag::Float => {
                 self.write_lonely_label();
                 self.close_block();
@@ -552,6 +550,22 @@ impl<'a> Reading<'a> {
             self.root_closed = true;
         }
         Ok(())
+    }
+}
+
+/// The name of the innermost element still open at the end of a file cut short.
+fn last_open(source: &str) -> String {
+    let mut reader = Reader::from_str(source);
+    let mut open = Vec::new();
+    loop {
+        match reader.read_event() {
+            Ok(Event::Start(e)) => open.push(e.name().as_ref().to_string()),
+            Ok(Event::End(_)) => {
+                open.pop();
+            }
+            Ok(Event::Eof) | Err(_) => return open.pop().unwrap_or_default(),
+            Ok(_) => {}
+        }
     }
 }
 
