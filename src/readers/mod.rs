@@ -4,12 +4,14 @@
 pub mod decode;
 pub mod detect;
 pub mod docx;
+pub mod headings;
 pub mod html;
 pub mod jats;
 pub mod latex;
 pub mod markdown;
 pub mod mathml;
 pub mod odt;
+pub mod office;
 pub mod package;
 pub mod pdf;
 pub mod plain;
