@@ -192,12 +192,10 @@ pub fn known(title: &str) -> Option<Known> {
     if MAIN.contains(&name) || is_numbered(name) {
         return part(Part::Body, 1);
     }
-    MINOR
-        .contains(&name)
-        .then_some(Known {
-            part: Part::Body,
-            level: 2,
-        })
+    MINOR.contains(&name).then_some(Known {
+        part: Part::Body,
+        level: 2,
+    })
 }
 
 /// Whether a title opens one study of several: `Study 2`, `Experiment 1b: Hoses`. The sections below
@@ -244,7 +242,12 @@ pub fn is_keyword_line(text: &str) -> bool {
         "palabras clave", "palabras-clave", "mots-clés", "mots clés", "palavras-chave", "palavras chave",
         "parole chiave", "trefwoorden", "sleutelwoorden", "słowa kluczowe",
     ];
-    let start: String = text.trim_start().chars().take(24).collect::<String>().to_lowercase();
+    let start: String = text
+        .trim_start()
+        .chars()
+        .take(24)
+        .collect::<String>()
+        .to_lowercase();
     STARTS.iter().any(|s| start.starts_with(s)) && text.len() < 600
 }
 
@@ -439,8 +442,14 @@ mod tests {
     #[test]
     fn paragraphs_with_their_title_inside() {
         let mut parts = Parts::new();
-        assert_eq!(parts.paragraph("Abstract: We asked 40 gardeners."), Part::Abstract);
-        assert_eq!(parts.paragraph("Funding. None of the plots was paid."), Part::Back);
+        assert_eq!(
+            parts.paragraph("Abstract: We asked 40 gardeners."),
+            Part::Abstract
+        );
+        assert_eq!(
+            parts.paragraph("Funding. None of the plots was paid."),
+            Part::Back
+        );
         assert_eq!(parts.paragraph("Results: t(28) = 2.20"), Part::Body);
         assert_eq!(parts.paragraph("Key words: plots"), Part::Front);
         assert_eq!(parts.paragraph("The water table was low."), Part::Body);

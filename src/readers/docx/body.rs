@@ -366,7 +366,9 @@ pub fn choice(alternatives: Element<'_>) -> Option<Element<'_>> {
 
 /// What a content control says about what it holds.
 fn control(sdt: Element<'_>, around: Around) -> Around {
-    let Some(properties) = sdt.child("sdtPr") else { return around };
+    let Some(properties) = sdt.child("sdtPr") else {
+        return around;
+    };
     let gallery = properties
         .path(&["docPartObj", "docPartGallery"])
         .and_then(|g| g.val())

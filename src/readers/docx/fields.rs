@@ -130,10 +130,19 @@ mod tests {
 
     #[test]
     fn instructions_of_citation_managers() {
-        assert_eq!(holds(r#" ADDIN ZOTERO_BIBL {"uncited":[]} CSL_BIBLIOGRAPHY "#), Holds::ReferenceList);
+        assert_eq!(
+            holds(r#" ADDIN ZOTERO_BIBL {"uncited":[]} CSL_BIBLIOGRAPHY "#),
+            Holds::ReferenceList
+        );
         assert_eq!(holds(" ADDIN EN.REFLIST "), Holds::ReferenceList);
-        assert_eq!(holds("ADDIN Mendeley Bibliography CSL_BIBLIOGRAPHY"), Holds::ReferenceList);
-        assert_eq!(holds(r#"ADDIN ZOTERO_ITEM CSL_CITATION {"x":"bibliography"}"#), Holds::Text);
+        assert_eq!(
+            holds("ADDIN Mendeley Bibliography CSL_BIBLIOGRAPHY"),
+            Holds::ReferenceList
+        );
+        assert_eq!(
+            holds(r#"ADDIN ZOTERO_ITEM CSL_CITATION {"x":"bibliography"}"#),
+            Holds::Text
+        );
         assert_eq!(holds(r#" TOC \o "1-3""#), Holds::Contents);
         assert_eq!(holds("SEQ Table"), Holds::Text);
     }

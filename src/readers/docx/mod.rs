@@ -48,7 +48,9 @@ pub fn read(bytes: &[u8]) -> Result<Manuscript, Unreadable> {
     ] {
         let name = related(&mut package, &main, relation).unwrap_or_else(|| in_folder(&folder, usual));
         let text = package.part(&name).unwrap_or_else(|_| {
-            b.remark(format!("the {relation} of the file are damaged and were not read"));
+            b.remark(format!(
+                "the {relation} of the file are damaged and were not read"
+            ));
             None
         });
         parts.push((relation, text.unwrap_or_default()));
@@ -58,7 +60,9 @@ pub fn read(bytes: &[u8]) -> Result<Manuscript, Unreadable> {
         .map(|(relation, text)| {
             let tree = (!text.is_empty()).then(|| Tree::parse(text))?;
             if tree.is_err() {
-                b.remark(format!("the {relation} of the file are damaged and were not read"));
+                b.remark(format!(
+                    "the {relation} of the file are damaged and were not read"
+                ));
             }
             tree.ok()
         })
@@ -152,7 +156,9 @@ fn in_folder(folder: &str, target: &str) -> String {
 /// The character of a symbol element.
 fn symbol_element(sym: Element<'_>) -> String {
     let font = symbols::font(&sym.attribute("font").unwrap_or_default());
-    let code = sym.attribute("char").and_then(|c| u32::from_str_radix(&c, 16).ok());
+    let code = sym
+        .attribute("char")
+        .and_then(|c| u32::from_str_radix(&c, 16).ok());
     code.and_then(|code| symbols::element(font, code))
         .map(String::from)
         .unwrap_or_default()

@@ -157,7 +157,8 @@ fn linear(e: Element<'_>) -> String {
 fn raised(e: Element<'_>, line: &mut Line) {
     let text = e.child("sup").map(linear).unwrap_or_default();
     let mark = |c: char| !c.is_alphanumeric() && !c.is_whitespace();
-    let number = text.chars().all(|c| c.is_ascii_digit() || mark(c)) && text.chars().any(|c| c.is_ascii_digit());
+    let number =
+        text.chars().all(|c| c.is_ascii_digit() || mark(c)) && text.chars().any(|c| c.is_ascii_digit());
     if number || text.chars().all(mark) {
         line.raised(&text);
     } else {
@@ -172,7 +173,11 @@ fn lowered(e: Element<'_>, line: &mut Line) {
 /// `x` as it is, `i = 1` in round brackets.
 fn bracketed(text: &str) -> String {
     let simple = text.chars().all(|c| c.is_alphanumeric() || c == '.');
-    if simple { text.to_string() } else { format!("({text})") }
+    if simple {
+        text.to_string()
+    } else {
+        format!("({text})")
+    }
 }
 
 /// A term that stays one when the formula is written on a line.
@@ -201,7 +206,11 @@ fn fraction(e: Element<'_>, line: &mut Line) {
     let bar = e.path(&["fPr", "type"]).and_then(|t| t.val());
     grouped(e.child("num"), line);
     // Without a bar it is a binomial coefficient or two lines in one.
-    line.level(if bar.as_deref() == Some("noBar") { ", " } else { "/" });
+    line.level(if bar.as_deref() == Some("noBar") {
+        ", "
+    } else {
+        "/"
+    });
     grouped(e.child("den"), line);
 }
 
@@ -247,7 +256,12 @@ mod tests {
 
     #[test]
     fn scripts() {
-        let chi = format!("<m:sSup><m:e>{}</m:e><m:sup>{}</m:sup></m:sSup>{}", r("χ"), r("2"), r("(1)=4.10"));
+        let chi = format!(
+            "<m:sSup><m:e>{}</m:e><m:sup>{}</m:sup></m:sSup>{}",
+            r("χ"),
+            r("2"),
+            r("(1)=4.10")
+        );
         assert_eq!(read(&chi), "χ²(1)=4.10");
         let eta = format!(
             "<m:sSubSup><m:e>{}</m:e><m:sub>{}</m:sub><m:sup>{}</m:sup></m:sSubSup>",
@@ -256,11 +270,23 @@ mod tests {
             r("2")
         );
         assert_eq!(read(&eta), "ηp²");
-        let f = format!("<m:sSub><m:e>{}</m:e><m:sub>{}</m:sub></m:sSub>", r("F"), r("1,63"));
+        let f = format!(
+            "<m:sSub><m:e>{}</m:e><m:sub>{}</m:sub></m:sSub>",
+            r("F"),
+            r("1,63")
+        );
         assert_eq!(read(&f), "F₁,₆₃");
-        let power = format!("<m:sSup><m:e>{}</m:e><m:sup>{}</m:sup></m:sSup>", r("10"), r("−5"));
+        let power = format!(
+            "<m:sSup><m:e>{}</m:e><m:sup>{}</m:sup></m:sSup>",
+            r("10"),
+            r("−5")
+        );
         assert_eq!(read(&power), "10⁻⁵");
-        let xn = format!("<m:sSup><m:e>{}</m:e><m:sup>{}</m:sup></m:sSup>", r("x"), r("n+1"));
+        let xn = format!(
+            "<m:sSup><m:e>{}</m:e><m:sup>{}</m:sup></m:sSup>",
+            r("x"),
+            r("n+1")
+        );
         assert_eq!(read(&xn), "x^(n+1)");
     }
 
@@ -292,11 +318,22 @@ mod tests {
             r("x")
         );
         assert_eq!(read(&sum), "∑_(i=1)^n x");
-        let log = format!("<m:func><m:fName>{}</m:fName><m:e>{}</m:e></m:func>", r("log"), r("x"));
+        let log = format!(
+            "<m:func><m:fName>{}</m:fName><m:e>{}</m:e></m:func>",
+            r("log"),
+            r("x")
+        );
         assert_eq!(read(&log), "log x");
-        let bar = format!("<m:acc><m:accPr><m:chr m:val=\"̅\"/></m:accPr><m:e>{}</m:e></m:acc>", r("x"));
+        let bar = format!(
+            "<m:acc><m:accPr><m:chr m:val=\"̅\"/></m:accPr><m:e>{}</m:e></m:acc>",
+            r("x")
+        );
         assert_eq!(read(&bar), "x");
-        let rows = format!("<m:eqArr><m:e>{}</m:e><m:e>{}</m:e></m:eqArr>", r("t&amp;=2.20"), r("p&amp;=.036"));
+        let rows = format!(
+            "<m:eqArr><m:e>{}</m:e><m:e>{}</m:e></m:eqArr>",
+            r("t&amp;=2.20"),
+            r("p&amp;=.036")
+        );
         assert_eq!(read(&rows), "t=2.20; p=.036");
     }
 

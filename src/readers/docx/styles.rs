@@ -145,12 +145,17 @@ impl Styles {
         let mut raw: HashMap<String, (Style, Option<String>)> = HashMap::new();
         let mut ordinary = None;
         for s in root.children().filter(|c| c.name() == "style") {
-            let Some(id) = s.attribute("styleId") else { continue };
+            let Some(id) = s.attribute("styleId") else {
+                continue;
+            };
             let mut style = s.child("pPr").map(Style::of).unwrap_or_default();
             if let Some(properties) = s.child("rPr") {
                 style.setting = Setting::of(properties);
             }
-            let name = s.child("name").and_then(|n| n.val()).unwrap_or_else(|| id.clone());
+            let name = s
+                .child("name")
+                .and_then(|n| n.val())
+                .unwrap_or_else(|| id.clone());
             let (role, part) = by_name(&name);
             // A name such as `heading 2` says more than the outline level, which it may contradict.
             style.role = role.or(style.role);
@@ -167,13 +172,17 @@ impl Styles {
             let mut whole = *style;
             let mut next = based.as_ref();
             for _ in 0..LONGEST_CHAIN {
-                let Some((below, based)) = next.and_then(|id| raw.get(id)) else { break };
+                let Some((below, based)) = next.and_then(|id| raw.get(id)) else {
+                    break;
+                };
                 whole = whole.over(*below);
                 next = based.as_ref();
             }
             styles.insert(id.clone(), whole);
         }
-        let ordinary = ordinary.and_then(|id| styles.get(&id).copied()).unwrap_or_default();
+        let ordinary = ordinary
+            .and_then(|id| styles.get(&id).copied())
+            .unwrap_or_default();
         Styles { styles, ordinary }
     }
 
@@ -196,7 +205,11 @@ pub fn by_name(name: &str) -> (Option<Role>, Option<Part>) {
     let name = name.to_lowercase().replace(['_', '-'], " ");
     let name = name.trim();
     if let Some(at) = name.find("heading") {
-        let level = name[at + 7..].trim_start().chars().next().and_then(|c| c.to_digit(10));
+        let level = name[at + 7..]
+            .trim_start()
+            .chars()
+            .next()
+            .and_then(|c| c.to_digit(10));
         if let Some(level @ 1..=9) = level {
             return (Some(Role::Heading(level as u8)), None);
         }
@@ -205,14 +218,22 @@ pub fn by_name(name: &str) -> (Option<Role>, Option<Part>) {
         "title" => Some(Role::Title),
         "list paragraph" | "normal" | "body text" => None,
         "quote" | "intense quote" | "block text" | "quotations" => Some(Role::Quote),
-        "toc heading" | "table of figures" | "table of authorities" | "contents heading" => Some(Role::Contents),
+        "toc heading" | "table of figures" | "table of authorities" | "contents heading" => {
+            Some(Role::Contents)
+        }
         _ if name.starts_with("toc ") || name.starts_with("contents ") => Some(Role::Contents),
-        _ if name.contains("caption") || name == "table legend" || name == "figure legend" => Some(Role::Caption),
-        "table note" | "table notes" | "tablenote" | "table footnote" | "tablefootnote" => Some(Role::TableNote),
+        _ if name.contains("caption") || name == "table legend" || name == "figure legend" => {
+            Some(Role::Caption)
+        }
+        "table note" | "table notes" | "tablenote" | "table footnote" | "tablefootnote" => {
+            Some(Role::TableNote)
+        }
         _ => None,
     };
     let part = match name {
-        "subtitle" | "author" | "authors" | "affiliation" | "affiliations" | "date" | "keywords" => Some(Part::Front),
+        "subtitle" | "author" | "authors" | "affiliation" | "affiliations" | "date" | "keywords" => {
+            Some(Part::Front)
+        }
         "title" => Some(Part::Front),
         "abstract" => Some(Part::Abstract),
         "bibliography" | "references" | "reference" | "endnote bibliography" | "bibliography 1" => {

@@ -151,7 +151,9 @@ fn merged(mut rows: Vec<Vec<Raw>>) -> Vec<Vec<Cell>> {
     let mut heights: Vec<Vec<u32>> = rows.iter().map(|r| vec![1; r.len()]).collect();
     for r in (1..rows.len()).rev() {
         let (above, below) = rows.split_at_mut(r);
-        let (Some(above), Some(below)) = (above.last_mut(), below.first_mut()) else { continue };
+        let (Some(above), Some(below)) = (above.last_mut(), below.first_mut()) else {
+            continue;
+        };
         let mut up = 0;
         for (c, cell) in below.iter_mut().enumerate() {
             if cell.merge != Merge::Continues {

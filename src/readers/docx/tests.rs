@@ -17,7 +17,10 @@ const STYLES: &str = r#"<w:styles>
 /// A Word file with this body and these further parts.
 fn file(body: &str, more: &[(&str, &str)]) -> Vec<u8> {
     let document = format!("<?xml version=\"1.0\"?><w:document><w:body>{body}</w:body></w:document>");
-    let mut parts = vec![("word/document.xml", document.as_str()), ("word/styles.xml", STYLES)];
+    let mut parts = vec![
+        ("word/document.xml", document.as_str()),
+        ("word/styles.xml", STYLES),
+    ];
     parts.extend(more);
     package(&parts)
 }
@@ -36,7 +39,10 @@ fn p(text: &str) -> String {
 }
 
 fn styled(style: &str, text: &str) -> String {
-    format!("<w:p><w:pPr><w:pStyle w:val=\"{style}\"/></w:pPr>{}</w:p>", r(text))
+    format!(
+        "<w:p><w:pPr><w:pStyle w:val=\"{style}\"/></w:pPr>{}</w:p>",
+        r(text)
+    )
 }
 
 fn r(text: &str) -> String {
@@ -52,7 +58,10 @@ const LOWERED: &str = "<w:vertAlign w:val=\"subscript\"/>";
 
 /// Kind, part and text of every block.
 fn blocks(m: &Manuscript) -> Vec<(BlockKind, Part, &str)> {
-    m.blocks.iter().map(|b| (b.kind, b.part, m.block_text(b))).collect()
+    m.blocks
+        .iter()
+        .map(|b| (b.kind, b.part, m.block_text(b)))
+        .collect()
 }
 
 #[test]
@@ -62,7 +71,12 @@ fn runs_split_anywhere_are_one_text() {
         set("<w:i/>", "t"),
         r("(2"),
         r("8) = 2.20,"),
-        r("36, post<w:noBreakHyphen/>".replace("<w:noBreakHyphen/>", "</w:t><w:noBreakHyphen/><w:softHyphen/><w:t>hoc").as_str())
+        r("36, post<w:noBreakHyphen/>"
+            .replace(
+                "<w:noBreakHyphen/>",
+                "</w:t><w:noBreakHyphen/><w:softHyphen/><w:t>hoc"
+            )
+            .as_str())
     );
     assert_eq!(text(&body), "t(28) = 2.20, p = .036, post-hoc\n");
 }
@@ -114,7 +128,10 @@ fn tracked_changes_are_read_as_accepted() {
         p("second half."),
         p("End."),
     );
-    assert_eq!(text(&body), "p = .03 (moved here)\n\nFirst half, second half.\n\nEnd.\n");
+    assert_eq!(
+        text(&body),
+        "p = .03 (moved here)\n\nFirst half, second half.\n\nEnd.\n"
+    );
 }
 
 #[test]
@@ -129,7 +146,10 @@ fn fields_keep_their_result() {
     let body = format!(
         "<w:p>{}{}{}<w:fldSimple w:instr=\"SEQ Table\">{}</w:fldSimple>{}</w:p>",
         r("As "),
-        field("ADDIN ZOTERO_ITEM CSL_CITATION {\"p\": \"= .9\"}", "(Spade, 2014)"),
+        field(
+            "ADDIN ZOTERO_ITEM CSL_CITATION {\"p\": \"= .9\"}",
+            "(Spade, 2014)"
+        ),
         r(" says in Table "),
         r("2"),
         r("."),
@@ -164,7 +184,10 @@ fn hidden_text_and_comments_are_not_read() {
         set("<w:rStyle w:val=\"Hid\"/>", " hidden"),
         set("<w:rStyle w:val=\"Hid\"/><w:vanish w:val=\"0\"/>", " again"),
     );
-    let comments = ("word/comments.xml", "<w:comments><w:comment><w:p/></w:comment></w:comments>");
+    let comments = (
+        "word/comments.xml",
+        "<w:comments><w:comment><w:p/></w:comment></w:comments>",
+    );
     assert_eq!(manuscript(&body, &[comments]).text, "shown again\n");
 }
 
@@ -183,9 +206,19 @@ fn notes_follow_the_paragraph_that_refers_to_them() {
             inner
         )
     };
-    let foot = notes("footnote", &format!("<w:p><w:r><w:footnoteRef/></w:r>{}</w:p>{}", r(" One plot, t(3) = 1.2."), p("Two.")));
+    let foot = notes(
+        "footnote",
+        &format!(
+            "<w:p><w:r><w:footnoteRef/></w:r>{}</w:p>{}",
+            r(" One plot, t(3) = 1.2."),
+            p("Two.")
+        ),
+    );
     let end = notes("endnote", &p("An endnote."));
-    let m = manuscript(&body, &[("word/footnotes.xml", &foot), ("word/endnotes.xml", &end)]);
+    let m = manuscript(
+        &body,
+        &[("word/footnotes.xml", &foot), ("word/endnotes.xml", &end)],
+    );
     use BlockKind::{Footnote, Paragraph};
     assert_eq!(
         blocks(&m),
@@ -237,7 +270,8 @@ fn headings_and_parts() {
         format!("<w:p>{}</w:p>", set("<w:b/>", "Method")),
         format!("<w:p>{}</w:p>", set("<w:b/>", "Participants")),
         p("Participants"),
-        "<w:p><w:pPr><w:numPr><w:numId w:val=\"3\"/></w:numPr></w:pPr><w:r><w:t>a plot</w:t></w:r></w:p>".to_string(),
+        "<w:p><w:pPr><w:numPr><w:numId w:val=\"3\"/></w:numPr></w:pPr><w:r><w:t>a plot</w:t></w:r></w:p>"
+            .to_string(),
         styled("H2", "Results"),
         p("t(28) = 2.20"),
         p("Acknowledgements"),
@@ -274,7 +308,10 @@ fn headings_and_parts() {
             (Paragraph, Body, "More."),
         ]
     );
-    assert_eq!(m.section_path(&m.blocks[8]), ["Study 1", "Method", "Participants"]);
+    assert_eq!(
+        m.section_path(&m.blocks[8]),
+        ["Study 1", "Method", "Participants"]
+    );
 }
 
 fn tc(properties: &str, text: &str) -> String {
@@ -292,7 +329,12 @@ fn tables_with_merged_cells_captions_and_notes() {
             tc("<w:vMerge w:val=\"restart\"/>", "Plot"),
             tc("<w:gridSpan w:val=\"2\"/>", "Litres")
         ),
-        format!("<w:tr>{}{}{}</w:tr>", tc("<w:vMerge/>", ""), tc("", "M"), tc("", "SD")),
+        format!(
+            "<w:tr>{}{}{}</w:tr>",
+            tc("<w:vMerge/>", ""),
+            tc("", "M"),
+            tc("", "SD")
+        ),
         format!(
             "<w:tr>{}<w:tc>{}{}</w:tc>{}</w:tr>",
             tc("", "Beans"),
@@ -340,7 +382,14 @@ fn tables_with_merged_cells_captions_and_notes() {
 #[test]
 fn tables_behind_the_references_are_results() {
     let table = format!("<w:tbl><w:tr>{}{}</w:tr></w:tbl>", tc("", "p"), tc("", ".03"));
-    let body = [p("References"), p("Spade (2014)."), styled("Cap", "Table 1. Litres"), table, p("Figure 1. Plots.")].concat();
+    let body = [
+        p("References"),
+        p("Spade (2014)."),
+        styled("Cap", "Table 1. Litres"),
+        table,
+        p("Figure 1. Plots."),
+    ]
+    .concat();
     let m = manuscript(&body, &[]);
     use Part::{Body, References};
     let parts: Vec<_> = m.blocks.iter().map(|b| b.part).collect();
@@ -362,7 +411,10 @@ fn caption_and_note_inside_the_table() {
     let m = manuscript(&body, &[]);
     let table = &m.tables[0];
     assert_eq!(table.label.as_deref(), Some("Table 3"));
-    assert_eq!((table.captions.as_slice(), table.notes.as_slice()), (&[0][..], &[3][..]));
+    assert_eq!(
+        (table.captions.as_slice(), table.notes.as_slice()),
+        (&[0][..], &[3][..])
+    );
 }
 
 #[test]
@@ -377,9 +429,18 @@ fn a_caption_below_belongs_to_the_table_above() {
 #[test]
 fn nested_tables_and_frames() {
     let inner = format!("<w:tbl><w:tr>{}{}</w:tr></w:tbl>", tc("", "a"), tc("", "b"));
-    let outer = format!("<w:tbl><w:tr><w:tc>{}{inner}{}</w:tc>{}</w:tr></w:tbl>", p("x"), p("y"), tc("", "z"));
+    let outer = format!(
+        "<w:tbl><w:tr><w:tc>{}{inner}{}</w:tc>{}</w:tr></w:tbl>",
+        p("x"),
+        p("y"),
+        tc("", "z")
+    );
     assert_eq!(text(&outer), "x a b y\tz\n");
-    let frame = format!("<w:tbl><w:tr><w:tc>{}{}</w:tc></w:tr></w:tbl>", p("One."), p("Two."));
+    let frame = format!(
+        "<w:tbl><w:tr><w:tc>{}{}</w:tc></w:tr></w:tbl>",
+        p("One."),
+        p("Two.")
+    );
     assert_eq!(text(&frame), "One.\n\nTwo.\n");
 }
 
@@ -408,7 +469,11 @@ fn formulas_stand_in_the_text() {
 fn pages_are_counted_where_word_recorded_them() {
     let page_of = |m: &Manuscript, words: &str| {
         let at = m.text.find(words).expect("it is in the text");
-        let block = m.blocks.iter().find(|b| b.range.contains(&at)).expect("in a block");
+        let block = m
+            .blocks
+            .iter()
+            .find(|b| b.range.contains(&at))
+            .expect("in a block");
         m.place(block, at..at + words.len()).page
     };
     let body = [
@@ -422,13 +487,19 @@ fn pages_are_counted_where_word_recorded_them() {
     let m = manuscript(&body, &[]);
     let pages = ["one", "two", "three", "four"].map(|w| page_of(&m, w));
     assert_eq!(pages, [Some(1), Some(2), Some(3), Some(4)]);
-    let m = manuscript("<w:p><w:r><w:t>a</w:t><w:br w:type=\"page\"/><w:t>b</w:t></w:r></w:p>", &[]);
+    let m = manuscript(
+        "<w:p><w:r><w:t>a</w:t><w:br w:type=\"page\"/><w:t>b</w:t></w:r></w:p>",
+        &[],
+    );
     assert_eq!(page_of(&m, "b"), None);
 }
 
 #[test]
 fn the_main_part_is_found_through_the_relations() {
-    let document = format!("<w:document><w:body>{}</w:body></w:document>", styled("Big", "Results"));
+    let document = format!(
+        "<w:document><w:body>{}</w:body></w:document>",
+        styled("Big", "Results")
+    );
     let bytes = package(&[
         (
             "_rels/.rels",
@@ -468,5 +539,8 @@ fn each_refusal_says_what_to_do() {
          as .docx"
     );
     let m = manuscript(&p("Text."), &[("word/footnotes.xml", "<w:footnotes><")]);
-    assert_eq!(m.remarks, ["the footnotes of the file are damaged and were not read"]);
+    assert_eq!(
+        m.remarks,
+        ["the footnotes of the file are damaged and were not read"]
+    );
 }

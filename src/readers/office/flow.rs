@@ -179,7 +179,14 @@ impl Writer<'_> {
         match known.level {
             1 if dressed || bare => {
                 let name = headings::plain(start);
-                let below = ["method", "methods", "results", "discussion", "results and discussion", "introduction"];
+                let below = [
+                    "method",
+                    "methods",
+                    "results",
+                    "discussion",
+                    "results and discussion",
+                    "introduction",
+                ];
                 match self.study {
                     Some(level) if below.contains(&name.as_str()) => Some(level + 1),
                     _ => Some(1),
@@ -195,7 +202,11 @@ impl Writer<'_> {
         let (kind, part) = match self.ties[at] {
             Tie::CaptionOf(_) | Tie::NoteOf(_) => {
                 let caption = matches!(self.ties[at], Tie::CaptionOf(_));
-                let kind = if caption { BlockKind::Caption } else { BlockKind::TableNote };
+                let kind = if caption {
+                    BlockKind::Caption
+                } else {
+                    BlockKind::TableNote
+                };
                 (kind, self.float())
             }
             Tie::None => match self.heading_level(at, p) {
@@ -349,7 +360,8 @@ fn tie(items: &[Item], starts: &[String]) -> Vec<Tie> {
                 Item::Paragraph(_) if starts[next].is_empty() => {}
                 Item::Note(_) => {}
                 Item::Paragraph(p) => {
-                    let below = !captioned && is_caption(p, &starts[next]) && !table_follows(items, starts, next);
+                    let below =
+                        !captioned && is_caption(p, &starts[next]) && !table_follows(items, starts, next);
                     if below {
                         ties[next] = Tie::CaptionOf(at);
                         captioned = true;
@@ -385,8 +397,12 @@ fn caption_above(items: &[Item], starts: &[String], ties: &[Tie], at: usize) -> 
         Item::Paragraph(p) if ties[i] == Tie::None => Some(p),
         _ => None,
     };
-    let Some(first) = above.next() else { return Vec::new() };
-    let Some(p) = paragraph(first) else { return Vec::new() };
+    let Some(first) = above.next() else {
+        return Vec::new();
+    };
+    let Some(p) = paragraph(first) else {
+        return Vec::new();
+    };
     // A label of its own and the title in the next paragraph.
     if labels::label(&starts[first]).is_none()
         && p.line.len() < START

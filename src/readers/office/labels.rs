@@ -67,7 +67,9 @@ pub fn is_note(text: &str) -> bool {
         return true;
     }
     // `p < .05` and `a p < .05` below a table are the legend of its stars and letters.
-    let legend = start.strip_prefix(|c: char| c.is_ascii_lowercase()).unwrap_or(&start);
+    let legend = start
+        .strip_prefix(|c: char| c.is_ascii_lowercase())
+        .unwrap_or(&start);
     let legend = legend.trim_start();
     if legend.starts_with("p <") || legend.starts_with("p<") {
         return true;
@@ -91,10 +93,16 @@ mod tests {
         assert_eq!(said("TABLE 2."), yes("TABLE 2", true, true, true));
         assert_eq!(said("Table S1. Litres"), yes("Table S1", true, true, false));
         assert_eq!(said("Tabelle 3: Liter"), yes("Tabelle 3", true, true, false));
-        assert_eq!(said("Table A.2 Mean litres"), yes("Table A.2", true, false, false));
+        assert_eq!(
+            said("Table A.2 Mean litres"),
+            yes("Table A.2", true, false, false)
+        );
         assert_eq!(said("Figure 1. Plots"), yes("Figure 1", false, true, false));
         assert_eq!(said("Fig. 1b: Plots"), yes("Fig. 1b", false, true, false));
-        assert_eq!(said("Supplementary Table 4"), yes("Supplementary Table 4", true, true, true));
+        assert_eq!(
+            said("Supplementary Table 4"),
+            yes("Supplementary Table 4", true, true, true)
+        );
         assert_eq!(said("Table IV"), yes("Table IV", true, true, true));
         for text in [
             "Table 2 shows that",
