@@ -16,6 +16,7 @@ pub mod package;
 pub mod pdf;
 pub mod plain;
 pub mod tex_math;
+mod tex_symbols;
 
 use crate::manuscript::{Format, Manuscript};
 use std::fmt;
@@ -71,7 +72,7 @@ fn cannot_open(error: &std::io::Error) -> Unreadable {
 /// which `\input` files are looked for.
 pub fn read_bytes(bytes: &[u8], path: &Path) -> Result<Manuscript, Unreadable> {
     let format = detect::format(bytes, path)?;
-    let manuscript = match format {
+    let mut manuscript = match format {
         Format::Docx => docx::read(bytes),
         Format::Odt => odt::read(bytes),
         Format::Pdf => pdf::read(bytes),
@@ -84,5 +85,6 @@ pub fn read_bytes(bytes: &[u8], path: &Path) -> Result<Manuscript, Unreadable> {
     if manuscript.text.is_empty() {
         return Err(Unreadable::new("contains no text; is it the right file?"));
     }
+    manuscript.remarks.extend(detect::misnamed(format, path));
     Ok(manuscript)
 }
