@@ -2,7 +2,16 @@
 //! stands in a file of its own, whose opening `//!` text is the documentation that
 //! `tieout explain` prints. This file holds what all of them share and the registry.
 
+mod laws;
+mod p_from_chi2;
+mod p_from_f;
+mod p_from_r;
 mod p_from_t;
+mod p_from_tau;
+mod p_from_z;
+mod p_value;
+mod reading;
+mod search;
 
 use crate::numbers::{Interval, Set};
 use crate::statements::Quantity;
@@ -17,13 +26,27 @@ pub struct Relation {
     pub ties: fn(&Case) -> Vec<Tie>,
 }
 
+/// One line of the registry: the name, and the module that has the law and its documentation.
+macro_rules! relation {
+    ($name:literal, $module:ident) => {
+        Relation {
+            name: $name,
+            source: include_str!(concat!(stringify!($module), ".rs")),
+            ties: $module::ties,
+        }
+    };
+}
+
 /// Every relation there is, in the order in which findings of one statement are listed. A relation
 /// that is not in this table does not exist.
-pub const REGISTRY: &[Relation] = &[Relation {
-    name: "p-from-t",
-    source: include_str!("p_from_t.rs"),
-    ties: p_from_t::ties,
-}];
+pub const REGISTRY: &[Relation] = &[
+    relation!("p-from-t", p_from_t),
+    relation!("p-from-f", p_from_f),
+    relation!("p-from-chi2", p_from_chi2),
+    relation!("p-from-z", p_from_z),
+    relation!("p-from-r", p_from_r),
+    relation!("p-from-tau", p_from_tau),
+];
 
 impl Relation {
     /// The documentation of the law: the `//!` text at the head of its file.
@@ -193,3 +216,6 @@ where
         self(target, values)
     }
 }
+
+#[cfg(test)]
+mod tests;

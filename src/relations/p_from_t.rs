@@ -15,9 +15,38 @@
 //!
 //! Example: t(28) = 2.20 gives p from .0359 to .0367, so p = .036 agrees and p = .063 conflicts.
 
-use super::{Case, Tie};
+use super::laws::{Side, TailLaw};
+use super::{Case, Tie, p_value};
+use crate::distributions::t_two_sided;
+use crate::numbers::Interval;
 
 /// See the module documentation.
-pub fn ties(_case: &Case) -> Vec<Tie> {
-    Vec::new()
+pub fn ties(case: &Case) -> Vec<Tie> {
+    let pairs = case
+        .tests_with_p()
+        .into_iter()
+        .filter(|(test, _)| test.symbol == "t");
+    pairs
+        .map(|(test, p)| {
+            let Some(df) = test.df.filter(|i| case.quantities[*i].interval.high > 0.0) else {
+                return Tie::open(vec![p, test.at], "the degrees of freedom of t are missing");
+            };
+            let variants = p_value::variants(case, &test, p, true, |side| Box::new(law(side)));
+            let mut tie = case.tie(vec![p, test.at, df], variants);
+            tie.remarks = p_value::remarks(case, p);
+            tie
+        })
+        .collect()
+}
+
+/// Parts: p, t, df.
+fn law(side: Side) -> TailLaw {
+    TailLaw {
+        tail: t_two_sided,
+        rises_with_df: false,
+        signed: true,
+        largest: f64::INFINITY,
+        less: Interval::point(0.0),
+        side,
+    }
 }
