@@ -5,12 +5,14 @@
 //! grammars find the statements in it, the judge tries every relation on them, reports show the
 //! findings.
 
+pub mod commands;
 pub mod distributions;
 pub mod judge;
 pub mod manuscript;
 pub mod numbers;
 pub mod readers;
 pub mod relations;
+pub mod reports;
 pub mod statements;
 
 use judge::{Document, Options};
