@@ -46,14 +46,23 @@ pub fn p_z(z: f64) -> f64 {
     2.0 * tail(z.abs(), 0.5, |x| -0.5 * x * x - 0.5 * (2.0 * PI).ln())
 }
 
-/// Upper tail of χ².
+/// Upper tail of χ². With one degree of freedom it is the square of a standard normal, whose density
+/// is finite at 0.
 pub fn p_chi2(x: f64, df: f64) -> f64 {
+    if df == 1.0 {
+        return p_z(x.sqrt());
+    }
+    let x = x.max(1e-300);
     let c = -ln_gamma(df / 2.0) - df / 2.0 * 2f64.ln();
     tail(x, 1.0 + df.sqrt(), |x| c + (df / 2.0 - 1.0) * x.ln() - x / 2.0)
 }
 
-/// Upper tail of F.
+/// Upper tail of F; with one degree of freedom above it is the square of t.
 pub fn p_f(x: f64, df1: f64, df2: f64) -> f64 {
+    if df1 == 1.0 {
+        return p_t(x.sqrt(), df2);
+    }
+    let x = x.max(1e-300);
     let c = ln_gamma((df1 + df2) / 2.0) - ln_gamma(df1 / 2.0) - ln_gamma(df2 / 2.0)
         + df1 / 2.0 * (df1 / df2).ln();
     tail(x, 1.0, |x| {
@@ -69,6 +78,6 @@ fn the_yardstick_itself_is_right() {
     assert!((p_f(3.098, 3.0, 20.0) - 0.05).abs() < 3e-5);
     assert!((p_chi2(9.488, 4.0) - 0.05).abs() < 1e-5);
     assert!((p_z(1.959964) - 0.05).abs() < 1e-7);
-    // F with one and df degrees of freedom is t².
-    assert!((p_f(2.2 * 2.2, 1.0, 28.0) - p_t(2.2, 28.0)).abs() < 1e-9);
+    // F(0.95; 1, 10) = 4.965.
+    assert!((p_f(4.965, 1.0, 10.0) - 0.05).abs() < 2e-5);
 }
