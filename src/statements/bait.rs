@@ -31,10 +31,11 @@ impl Scan<'_> {
         if draft.items.iter().all(|i| !i.alone && !i.plain) && !supported && !whole {
             return false;
         }
-        let only_p = draft
-            .items
-            .iter()
-            .all(|i| i.class == Class::P || i.class == Class::Size);
+        let only_p = draft.items.iter().all(|i| {
+            // `P < 0.10 and I² > 50%` is a threshold, too.
+            let bound = i.class == Class::Other && i.quantities[0].comparator != Comparator::Equal;
+            i.class == Class::P || i.class == Class::Size || bound
+        });
         let level = draft.items.iter().all(|i| {
             i.class != Class::P
                 || matches!(i.quantities[0].comparator, Comparator::Below | Comparator::AtMost)
@@ -48,7 +49,8 @@ impl Scan<'_> {
             }
             // Up to the end of the sentence for `if …` and the like, the part before decides.
             let before = &self.text[sentence.start..bytes.start];
-            if self.grammar.thresholds.is_match(&self.text[sentence.clone()]) && lonely
+            if self.grammar.thresholds.is_match(&self.text[sentence.clone()])
+                && draft.items.iter().all(|i| i.class != Class::Size)
                 || self.grammar.thresholds.is_match(before) && before.len() < 60
             {
                 return false;

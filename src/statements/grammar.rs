@@ -41,6 +41,7 @@ pub struct Symbol {
     pub units: bool,
     pub above: Option<(f64, &'static str)>,
     pub below: Option<(f64, &'static str)>,
+    pub several: Option<&'static str>,
 }
 
 /// One argument of a symbol, e.g. `df2` of F.
@@ -116,6 +117,7 @@ struct RawSymbol {
     units: bool,
     above: Option<(f64, String)>,
     below: Option<(f64, String)>,
+    several: Option<String>,
 }
 
 fn yes() -> bool {
@@ -262,6 +264,7 @@ impl Grammar {
                 units: raw.units,
                 above: raw.above.as_ref().map(|(v, s)| (*v, names.get(s))),
                 below: raw.below.as_ref().map(|(v, s)| (*v, names.get(s))),
+                several: raw.several.as_ref().map(|s| names.get(s)),
             });
         }
         let mut comparators = Vec::new();

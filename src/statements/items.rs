@@ -1,7 +1,7 @@
 //! *Items* are the assignments that stand in a text: a symbol with its arguments, a comparator and
 //! a number (`t(28) = 2.20`), an interval (`95% CI [0.1, 1.5]`), or a form without a comparator.
 
-use super::grammar::Class;
+use super::grammar::{Class, Symbol};
 use super::spellings::Found;
 use super::tokens::{Kind, on_the_line};
 use super::values::{Company, Value};
@@ -163,11 +163,15 @@ impl Scan<'_> {
         if !with_arguments && !words && self.misleading_before(at) {
             return None;
         }
-        let name = self.renamed(symbol, &value, words);
+        let mut name = self.renamed(symbol, &value, words);
         let mut more_values = Vec::new();
+        // `rs = .34–.51`: several results, all of them inside.
+        let upper = self.range_end(symbol, comparator, next);
+        if let Some(upper) = &upper {
+            next = upper.next;
+        }
         // `df = 2, 45` behind F.
-        let list = found.spelling.plural || symbol.name == "df";
-        if list {
+        if upper.is_none() && (found.spelling.plural || symbol.name == "df") {
             let mut behind = next;
             while let Some((further, after)) = self.next_in_list(behind) {
                 more_values.push(self.quantity(name, comparator, &further, symbol.whole));
@@ -178,12 +182,23 @@ impl Scan<'_> {
             }
             next = behind;
         }
+        if let Some(several) = symbol.several
+            && (upper.is_some() || !more_values.is_empty())
+        {
+            name = several;
+        }
         let class = if name == "level" {
             Class::Bait
         } else {
             symbol.class
         };
-        let mut quantities = vec![self.quantity(name, comparator, &value, symbol.whole)];
+        let mut first = self.quantity(name, comparator, &value, symbol.whole);
+        if let Some(upper) = &upper {
+            first.span.end = upper.span.end;
+            first.printed = on_the_line(&self.text[first.span.clone()]);
+            first.interval = first.interval.hull(upper.number.rounding());
+        }
+        let mut quantities = vec![first];
         quantities.append(&mut arguments);
         if symbol.name == "df" && more_values.len() == 1 {
             let second = Quantity {
@@ -206,6 +221,20 @@ impl Scan<'_> {
         Some((item, next))
     }
 
+    /// The upper end of a range of results at token `at`: `–.51`, `-.51`.
+    fn range_end(&self, symbol: &Symbol, comparator: Comparator, at: usize) -> Option<Value> {
+        let ranged = matches!(
+            symbol.class,
+            Class::Statistic | Class::P | Class::Effect | Class::Estimate
+        );
+        let dash = self.mark(at) == Some("–") || self.mark(at) == Some("-") && !self.tokens[at].spaced;
+        if !ranged || !dash || comparator != Comparator::Equal {
+            return None;
+        }
+        self.value(at + 1, Company::Single)
+            .filter(|v| v.number.value().is_finite())
+    }
+
     /// A number that stands by itself right behind a symbol: not the start of a range, a date, or a unit.
     fn stands_by(&self, at: usize, words: bool) -> bool {
         let signed = matches!(self.mark(at), Some("-" | "+"));
@@ -216,7 +245,7 @@ impl Scan<'_> {
     }
 
     /// The symbol that the value shows to be meant.
-    fn renamed(&self, symbol: &super::grammar::Symbol, value: &Value, words: bool) -> &'static str {
+    fn renamed(&self, symbol: &Symbol, value: &Value, words: bool) -> &'static str {
         let size = value.number.value().abs();
         match (symbol.above, symbol.below) {
             (Some((limit, other)), _) if size > limit => other,
@@ -270,12 +299,7 @@ impl Scan<'_> {
         }
     }
 
-    fn bracketed(
-        &self,
-        symbol: &super::grammar::Symbol,
-        open_at: usize,
-        open: &str,
-    ) -> Option<(Vec<Quantity>, usize)> {
+    fn bracketed(&self, symbol: &Symbol, open_at: usize, open: &str) -> Option<(Vec<Quantity>, usize)> {
         let close = match open {
             "(" => ")",
             "[" => "]",
@@ -341,7 +365,7 @@ impl Scan<'_> {
     }
 
     /// `F₁,₆₃`, `t96`, `F1,63`: lowered or run together, and then a comparator.
-    fn lowered(&self, symbol: &super::grammar::Symbol, at: usize) -> Option<(Vec<Quantity>, usize)> {
+    fn lowered(&self, symbol: &Symbol, at: usize) -> Option<(Vec<Quantity>, usize)> {
         let mut i = at;
         let mut quantities = Vec::new();
         let first = self.tokens.get(i)?;
@@ -400,7 +424,7 @@ impl Scan<'_> {
         (compared && quantities.len() >= required).then_some((quantities, i))
     }
 
-    fn argument(&self, symbol: &super::grammar::Symbol, index: usize, value: &Value) -> Quantity {
+    fn argument(&self, symbol: &Symbol, index: usize, value: &Value) -> Quantity {
         self.quantity(symbol.arguments[index].name, Comparator::Equal, value, true)
     }
 

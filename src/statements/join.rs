@@ -155,7 +155,7 @@ impl Scan<'_> {
             Interval => {
                 (draft.has_test() || draft.has_class(Descriptive) || draft.has_class(Other)) && gap.within(5)
             }
-            Effect => !again && (draft.has_test() && gap.within(4) || gap.within(0)) && !draft.only(Size),
+            Effect => !again && (draft.has_test() && gap.within(6) || gap.within(0)) && !draft.only(Size),
             Statistic if again => false,
             Statistic => {
                 let pairs = |a: &[&str], b: &[&str]| {
