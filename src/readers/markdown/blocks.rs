@@ -2,7 +2,8 @@
 //! text at all (code, comments, divisions).
 
 use super::Reader;
-use super::inline::{Source, attributes};
+use super::inline::Source;
+use super::links::attributes;
 use super::tables::{self, Found};
 use crate::manuscript::{BlockKind, CellShape, Part};
 use std::collections::HashSet;

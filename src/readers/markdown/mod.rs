@@ -4,6 +4,7 @@
 mod blocks;
 mod entities;
 mod inline;
+mod links;
 mod tables;
 mod tags;
 mod yaml;

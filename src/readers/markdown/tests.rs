@@ -126,7 +126,7 @@ fn a_whole_paper() {
         ("Mulch saved", 4),
         ("t(28)", 15),
         ("2.20", 16),
-        ("Second.", 26),
+        ("Second.", 27),
         ("F(1, 38)", 50),
     ] {
         let at = m.text.find(needle).expect("the text holds it");
