@@ -62,9 +62,16 @@ pub(super) enum Node<'a> {
     Break(usize),
 }
 
-/// Reads inline Markdown into the open block. Returns the notes written inside the text
-/// (`^[note]`), which belong behind the block.
-pub(super) fn push(b: &mut Builder, source: &Source, references: &HashSet<String>) -> Vec<Source> {
+/// A note that the text calls for.
+pub(super) enum Note {
+    /// Written in place: `^[note]`.
+    Here(Source),
+    /// Defined elsewhere under this name: `[^name]`.
+    Named(String),
+}
+
+/// Reads inline Markdown into the open block. Returns the notes, which belong behind the block.
+pub(super) fn push(b: &mut Builder, source: &Source, references: &HashSet<String>) -> Vec<Note> {
     let mut scanner = Scanner::of(&source.text, references);
     scanner.scan();
     let newlines: Vec<usize> = memchr::memchr_iter(b'\n', source.text.as_bytes()).collect();
@@ -102,10 +109,12 @@ pub(super) fn push(b: &mut Builder, source: &Source, references: &HashSet<String
         let k = newlines.partition_point(|n| *n < at);
         source.lines.get(k).copied().unwrap_or(1)
     };
-    scanner
-        .notes
-        .iter()
-        .map(|(at, text)| Source::one(&text.replace('\n', " "), line_at(*at)))
+    let notes = scanner.notes.iter();
+    notes
+        .map(|(at, text)| match text.strip_prefix('^') {
+            Some(name) => Note::Named(name.to_string()),
+            None => Note::Here(Source::one(&text.replace('\n', " "), line_at(*at))),
+        })
         .collect()
 }
 
@@ -143,7 +152,8 @@ pub(super) struct Scanner<'a> {
     /// Partners of brackets.
     pub(super) brackets: HashMap<usize, usize>,
     pub(super) references: &'a HashSet<String>,
-    notes: Vec<(usize, &'a str)>,
+    /// Notes in place, and names of others with their `^`.
+    pub(super) notes: Vec<(usize, &'a str)>,
     /// Things that do not come any more in this text.
     missing: HashSet<(u8, usize)>,
     /// The text is itself part of a raised or lowered piece, where none of these begins.
@@ -410,7 +420,9 @@ impl<'a> Scanner<'a> {
     fn raised(&mut self, at: usize) -> Option<usize> {
         if self.text[at + 1..].starts_with('[') && !self.nested {
             let close = *self.brackets.get(&(at + 1))?;
-            self.notes.push((at, &self.text[at + 2..close]));
+            // A name begins with the mark that a note in place has outside its bracket.
+            self.notes
+                .push((at, self.text[at + 2..close].trim_start_matches('^')));
             return Some(close + 1);
         }
         let end = self.script_end(at, b'^')?;

@@ -14,6 +14,7 @@ impl Scanner<'_> {
         let close = *self.brackets.get(&open)?;
         let inner = &self.text[open + 1..close];
         if inner.starts_with('^') && !inner.contains(char::is_whitespace) && inner.len() > 1 && !image {
+            self.notes.push((at, inner));
             return Some(close + 1);
         }
         if !image && inner.len() < 5000 && is_citation(inner) {

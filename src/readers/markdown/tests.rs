@@ -171,6 +171,29 @@ fn tables_with_captions_and_notes() {
 }
 
 #[test]
+fn notes_stand_where_they_are_called_for() {
+    let source = "# Results\n\nDry[^1] and wet[^b].\n\n# References\n\nSpade.\n\n[^1]: See[^b], p = .1.\n\n[^b]: Wet, p = .2.\n\n[^c]: Alone.\n";
+    let want = [
+        (Heading(1), Part::Body, "Results"),
+        (Paragraph, Part::Body, "Dry and wet."),
+        (Footnote, Part::Body, "See, p = .1."),
+        (Footnote, Part::Body, "Wet, p = .2."),
+        (Heading(1), Part::References, "References"),
+        (Paragraph, Part::References, "Spade."),
+        (Footnote, Part::References, "Alone."),
+    ];
+    assert_eq!(blocks(source), want.map(|(k, p, t)| (k, p, t.to_string())));
+    let m = manuscript(source);
+    let note = m
+        .blocks
+        .iter()
+        .find(|b| b.kind == Footnote)
+        .expect("there is one");
+    let place = m.place(note, note.range.clone());
+    assert_eq!((place.line, place.section.as_deref()), (Some(9), Some("Results")));
+}
+
+#[test]
 fn things_that_only_look_like_something() {
     for (source, want) in [
         (
