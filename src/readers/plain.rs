@@ -102,7 +102,7 @@ impl Reader {
             for line in rest {
                 if !is_rule(line.text) {
                     self.start(BlockKind::Paragraph, line);
-                    self.b.text(line.text);
+                    self.long(line.text, line);
                     self.b.close();
                 }
             }

@@ -155,6 +155,9 @@ pub(super) fn settings(name: &str) -> usize {
     match name {
         "label"
         | "index"
+        | "hspace"
+        | "fitfigure"
+        | "fitbitmap"
         | "vspace"
         | "vskip"
         | "includegraphics"

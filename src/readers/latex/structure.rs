@@ -74,8 +74,7 @@ impl Walker<'_> {
                 self.end_paragraph();
                 self.skip(after, 1)
             }
-            "par" | "newpage" | "clearpage" | "pagebreak" | "maketitle" | "bigskip" | "medskip"
-            | "smallskip" => {
+            "par" | "newpage" | "clearpage" | "maketitle" | "bigskip" | "medskip" | "smallskip" => {
                 self.end_paragraph();
                 after
             }
@@ -102,8 +101,7 @@ impl Walker<'_> {
                 self.line_end(at);
                 after
             }
-            "newline" | "linebreak" | "quad" | "qquad" | "hfill" | "enspace" | "thinspace" | "space"
-            | "linewidth" => {
+            "newline" | "quad" | "qquad" | "hfill" | "enspace" | "thinspace" | "space" | "linewidth" => {
                 self.b.text(" ");
                 after
             }
@@ -117,7 +115,12 @@ impl Walker<'_> {
                 self.skip(after, 1)
             }
             "endfirsthead" => self.repeated_head(after, to),
-            "textsuperscript" => self.shifted(at, true, after),
+            "toprule" | "midrule" | "bottomrule" | "addlinespace" | "pagebreak" | "nopagebreak"
+            | "nolinebreak" | "linebreak" => {
+                self.b.text(" ");
+                self.skip_option(after)
+            }
+            "textsuperscript" | "tnote" | "tabfnm" => self.shifted(at, true, after),
             "textsubscript" => self.shifted(at, false, after),
             "num" | "SI" | "qty" | "SIrange" | "numrange" | "qtyrange" | "ang" | "numlist" | "tablenum" => {
                 self.numbers(at, name, after)
