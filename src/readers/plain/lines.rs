@@ -349,6 +349,7 @@ mod tests {
         while let Some(line) = lines.next_line() {
             read.push((line.number, line.text));
         }
+        read.retain(|(_, text)| !text.is_empty());
         assert_eq!(read.len(), 9);
         assert_eq!((read[0], read[8]), ((2, "words here"), (18, "words here")));
     }
