@@ -162,6 +162,23 @@ impl Builder {
         self.open.is_some()
     }
 
+    /// The kind of the open block.
+    pub fn open_kind(&self) -> Option<BlockKind> {
+        self.open.as_ref().map(|o| o.0)
+    }
+
+    /// The section that the next block will belong to, for [`Builder::return_to_section`].
+    pub fn section(&self) -> Option<usize> {
+        self.section
+    }
+
+    /// The following blocks belong to this section again (or to none): where a document says that
+    /// a section has ended, text behind it must not be placed in it.
+    pub fn return_to_section(&mut self, section: Option<usize>) {
+        self.close();
+        self.section = section.filter(|s| *s < self.sections.len());
+    }
+
     /// Text as the document stores it. Runs of white space become one space; line breaks count as
     /// white space. Without an open block a paragraph is opened, unless the text is blank.
     pub fn text(&mut self, raw: &str) {

@@ -1,4 +1,6 @@
-//! Reader for jats.
+//! Reader for html.
+pub mod entities;
+
 use super::Unreadable;
 use crate::manuscript::{Builder, Format, Manuscript};
 
