@@ -5,7 +5,10 @@
 
 mod accents;
 mod arguments;
+mod code;
+mod definitions;
 mod expand;
+mod glyphs;
 mod include;
 mod structure;
 mod tables;

@@ -2,10 +2,11 @@
 //! text at all (code, comments, divisions).
 
 use super::Reader;
-use super::inline::{Source, attributes};
+use super::inline::{Note, Source};
+use super::links::attributes;
 use super::tables::{self, Found};
 use crate::manuscript::{BlockKind, CellShape, Part};
-use std::collections::HashSet;
+use std::collections::{HashMap, HashSet};
 
 /// Links defined anywhere in the file: `[name]: address`.
 pub(super) fn references(lines: &[&str]) -> HashSet<String> {
@@ -13,6 +14,17 @@ pub(super) fn references(lines: &[&str]) -> HashSet<String> {
     for line in lines {
         if let Some((name, _)) = definition(line).filter(|(name, _)| !name.starts_with('^')) {
             found.insert(name.to_lowercase());
+        }
+    }
+    found
+}
+
+/// Notes defined anywhere in the file, with the index of their first line: `[^name]: text`.
+pub(super) fn notes(lines: &[&str]) -> HashMap<String, usize> {
+    let mut found = HashMap::new();
+    for (i, line) in lines.iter().enumerate() {
+        if let Some(name) = definition(line).and_then(|(name, _)| name.strip_prefix('^')) {
+            found.entry(name.to_string()).or_insert(i);
         }
     }
     found
@@ -54,10 +66,12 @@ fn list_marker(line: &str) -> Option<usize> {
                 return None;
             }
             let close = *bytes.get(open + label)?;
-            let closed = close == b')' || (open == 0 && close == b'.');
+            if close != b')' && (open == 1 || close != b'.') {
+                return None;
+            }
             // `p. 3` and `M. Rake` are not items: letters want two spaces or a parenthesis.
             let wide = close == b')' || number || text == "#" || rest[open + label + 1..].starts_with("  ");
-            if !closed || !wide {
+            if !wide {
                 return None;
             }
             open + label + 1
@@ -158,8 +172,14 @@ impl Reader<'_> {
         }
         if let Some((name, rest)) = definition(line) {
             if name.starts_with('^') {
-                let indent = line.len() - rest.len();
-                self.note(indent);
+                // Usually it was read where the text calls for it.
+                match self.read_notes.get(&self.at) {
+                    Some(end) => self.at = *end,
+                    None => {
+                        let notes = self.note(line.len() - rest.len());
+                        self.notes(notes);
+                    }
+                }
             } else {
                 self.at += 1;
             }
@@ -419,13 +439,31 @@ impl Reader<'_> {
         }
     }
 
+    /// The note that the text calls for by name, unless it was read before.
+    pub(super) fn defined_note(&mut self, name: &str) -> Vec<Note> {
+        let Some(&start) = self.defined.get(name) else {
+            return Vec::new();
+        };
+        if self.read_notes.contains_key(&start) {
+            return Vec::new();
+        }
+        let line = self.lines[start];
+        let skip = definition(line).map_or(0, |(_, rest)| line.len() - rest.len());
+        let back = std::mem::replace(&mut self.at, start);
+        let notes = self.note(skip);
+        self.at = back;
+        notes
+    }
+
     /// A note defined by itself: `[^1]: text`, with indented text below.
-    fn note(&mut self, skip: usize) {
+    fn note(&mut self, skip: usize) -> Vec<Note> {
+        let start = self.at;
         let source = self.gather(skip, false);
-        self.block(BlockKind::Footnote, &source);
+        let mut notes = self.single_block(BlockKind::Footnote, &source);
         while self.at + 1 < self.lines.len()
             && self.lines[self.at].trim().is_empty()
             && (self.lines[self.at + 1].starts_with("    ") || self.lines[self.at + 1].starts_with('\t'))
+            && !self.lines[self.at + 1].trim().is_empty()
         {
             self.at += 1;
             if let Some((mark, run)) = fence(self.lines[self.at]) {
@@ -433,8 +471,10 @@ impl Reader<'_> {
                 continue;
             }
             let source = self.gather(0, false);
-            self.block(BlockKind::Footnote, &source);
+            notes.extend(self.single_block(BlockKind::Footnote, &source));
         }
+        self.read_notes.insert(start, self.at);
+        notes
     }
 
     /// `: caption`, `Table: caption`, before or after a table.
@@ -500,9 +540,7 @@ impl Reader<'_> {
         if let Some((caption, label)) = self.caption.take() {
             self.b.describe_table(index, label.as_deref(), &[caption], &[]);
         }
-        for note in notes {
-            self.block(BlockKind::Footnote, &note);
-        }
+        self.notes(notes);
         self.in_list = false;
         self.table = Some(index);
     }

@@ -4,6 +4,7 @@
 mod blocks;
 mod entities;
 mod inline;
+mod links;
 mod tables;
 mod tags;
 mod yaml;
@@ -11,8 +12,8 @@ mod yaml;
 use super::Unreadable;
 use super::headings::Parts;
 use crate::manuscript::{BlockKind, Builder, Format, Manuscript, Part};
-use inline::Source;
-use std::collections::HashSet;
+use inline::{Note, Source};
+use std::collections::{HashMap, HashSet};
 
 /// Reads a Markdown file.
 ///
@@ -31,6 +32,8 @@ pub fn read(source: &str) -> Result<Manuscript, Unreadable> {
         b: Builder::new(Format::Markdown),
         parts: Parts::new(),
         references: blocks::references(&lines),
+        defined: blocks::notes(&lines),
+        read_notes: HashMap::new(),
         lines,
         at: 0,
         in_list: false,
@@ -50,6 +53,10 @@ struct Reader<'a> {
     /// Index of the next line.
     at: usize,
     references: HashSet<String>,
+    /// Lines at which notes are defined, by name.
+    defined: HashMap<String, usize>,
+    /// Lines at which notes already read begin, and where they end.
+    read_notes: HashMap<usize, usize>,
     /// The last block was a list item, so that indented text belongs to it.
     in_list: bool,
     /// For each open division, the part to go back to.
@@ -88,15 +95,23 @@ impl<'a> Reader<'a> {
 
     /// One block with its text, and behind it the notes written in it.
     fn block(&mut self, kind: BlockKind, source: &Source) {
-        let mut waiting = self.single_block(kind, source);
-        waiting.reverse();
+        let notes = self.single_block(kind, source);
+        self.notes(notes);
+    }
+
+    /// The notes of a block, and those in them.
+    fn notes(&mut self, notes: Vec<Note>) {
+        let mut waiting: Vec<Note> = notes.into_iter().rev().collect();
         while let Some(note) = waiting.pop() {
-            let more = self.single_block(BlockKind::Footnote, &note);
+            let more = match note {
+                Note::Here(source) => self.single_block(BlockKind::Footnote, &source),
+                Note::Named(name) => self.defined_note(&name),
+            };
             waiting.extend(more.into_iter().rev());
         }
     }
 
-    fn single_block(&mut self, kind: BlockKind, source: &Source) -> Vec<Source> {
+    fn single_block(&mut self, kind: BlockKind, source: &Source) -> Vec<Note> {
         let bare: String = source
             .text
             .chars()
@@ -123,9 +138,7 @@ impl<'a> Reader<'a> {
         self.b.part(part);
         self.b.line(source.first_line());
         self.b.heading(level, &title);
-        for note in notes {
-            self.block(BlockKind::Footnote, &note);
-        }
+        self.notes(notes);
     }
 }
 

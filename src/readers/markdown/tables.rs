@@ -310,7 +310,7 @@ fn dash_columns(line: &str) -> Option<Vec<(usize, usize)>> {
     }
     let mut columns = Vec::new();
     let mut start = None;
-    for (i, b) in bytes.iter().chain(&[b' ']).enumerate() {
+    for (i, b) in bytes.iter().chain(b" ").enumerate() {
         match (b, start) {
             (b'-', None) => start = Some(i),
             (b' ', Some(s)) => {

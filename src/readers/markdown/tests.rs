@@ -126,7 +126,7 @@ fn a_whole_paper() {
         ("Mulch saved", 4),
         ("t(28)", 15),
         ("2.20", 16),
-        ("Second.", 26),
+        ("Second.", 27),
         ("F(1, 38)", 50),
     ] {
         let at = m.text.find(needle).expect("the text holds it");
@@ -168,6 +168,29 @@ fn tables_with_captions_and_notes() {
     let cell = &m.tables[0].cells[8];
     let block = &m.blocks[cell.block];
     assert_eq!(m.place(block, block.range.clone()).line, Some(6));
+}
+
+#[test]
+fn notes_stand_where_they_are_called_for() {
+    let source = "# Results\n\nDry[^1] and wet[^b].\n\n# References\n\nSpade.\n\n[^1]: See[^b], p = .1.\n\n[^b]: Wet, p = .2.\n\n[^c]: Alone.\n";
+    let want = [
+        (Heading(1), Part::Body, "Results"),
+        (Paragraph, Part::Body, "Dry and wet."),
+        (Footnote, Part::Body, "See, p = .1."),
+        (Footnote, Part::Body, "Wet, p = .2."),
+        (Heading(1), Part::References, "References"),
+        (Paragraph, Part::References, "Spade."),
+        (Footnote, Part::References, "Alone."),
+    ];
+    assert_eq!(blocks(source), want.map(|(k, p, t)| (k, p, t.to_string())));
+    let m = manuscript(source);
+    let note = m
+        .blocks
+        .iter()
+        .find(|b| b.kind == Footnote)
+        .expect("there is one");
+    let place = m.place(note, note.range.clone());
+    assert_eq!((place.line, place.section.as_deref()), (Some(9), Some("Results")));
 }
 
 #[test]
