@@ -124,7 +124,8 @@ impl Math {
         };
         match name {
             "mfenced" => {
-                self.text.push_str(&attribute("open").unwrap_or_else(|| "(".into()));
+                self.text
+                    .push_str(&attribute("open").unwrap_or_else(|| "(".into()));
                 frame.close = attribute("close").unwrap_or_else(|| ")".into());
                 frame.separators = attribute("separators").unwrap_or_else(|| ",".into());
                 frame.separators.retain(|c| !c.is_whitespace());
@@ -192,7 +193,9 @@ impl Math {
 
     /// Nothing readable has been found so far.
     pub fn is_blank(&self) -> bool {
-        self.text.chars().all(|c| c.is_whitespace() || c == PERHAPS_BRACKET)
+        self.text
+            .chars()
+            .all(|c| c.is_whitespace() || c == PERHAPS_BRACKET)
     }
 
     /// Writes the formula.
@@ -225,7 +228,9 @@ impl Math {
 
     /// What stands between the children of the innermost element.
     fn next_child(&mut self) {
-        let Some(frame) = self.frames.last_mut() else { return };
+        let Some(frame) = self.frames.last_mut() else {
+            return;
+        };
         let index = frame.children;
         frame.children += 1;
         let kind = frame.kind;
@@ -279,13 +284,13 @@ impl Math {
 
     /// Puts what was written since `at`, where a mark stands, in brackets if it is compound.
     fn bracket(&mut self, at: usize) {
-        let Some(inside) = self.text.get(at + 1..) else { return };
+        let Some(inside) = self.text.get(at + 1..) else {
+            return;
+        };
         let simple = inside
             .chars()
             .all(|c| c.is_alphanumeric() || matches!(c, '.' | PERHAPS_BRACKET | '\u{300}'..='\u{36f}' | '|'));
-        let wrapped = inside.starts_with('(')
-            && inside.ends_with(')')
-            && inside.matches('(').count() == 1;
+        let wrapped = inside.starts_with('(') && inside.ends_with(')') && inside.matches('(').count() == 1;
         if !simple && !wrapped && self.text[at..].starts_with(PERHAPS_BRACKET) {
             self.text.replace_range(at..at + 1, "(");
             self.text.push(')');
@@ -379,8 +384,30 @@ fn kind_of(name: &str) -> Kind {
 fn is_relation(sign: &str) -> bool {
     matches!(
         sign,
-        "=" | "<" | ">" | "≤" | "≥" | "⩽" | "⩾" | "≦" | "≧" | "≈" | "≅" | "≃" | "≠" | "∼" | "~" | "≪" | "≫" | "∈"
-            | "→" | "⇒" | "≡" | "∝" | "<=" | ">=" | "<<"
+        "=" | "<"
+            | ">"
+            | "≤"
+            | "≥"
+            | "⩽"
+            | "⩾"
+            | "≦"
+            | "≧"
+            | "≈"
+            | "≅"
+            | "≃"
+            | "≠"
+            | "∼"
+            | "~"
+            | "≪"
+            | "≫"
+            | "∈"
+            | "→"
+            | "⇒"
+            | "≡"
+            | "∝"
+            | "<="
+            | ">="
+            | "<<"
     )
 }
 
@@ -468,7 +495,9 @@ mod tests {
             "χ²(1) = 4.10, p = -.03"
         );
         assert_eq!(
-            line("<msub><mi>F</mi><mrow><mn>1</mn><mo>,</mo><mn>63</mn></mrow></msub><mo>=</mo><mn>7.25</mn>"),
+            line(
+                "<msub><mi>F</mi><mrow><mn>1</mn><mo>,</mo><mn>63</mn></mrow></msub><mo>=</mo><mn>7.25</mn>"
+            ),
             "F₁,₆₃ = 7.25"
         );
         assert_eq!(
@@ -476,7 +505,9 @@ mod tests {
             "ηp² = .07"
         );
         assert_eq!(
-            line("<mi>P</mi><mo>=</mo><mn>3.4</mn><mo>×</mo><msup><mn>10</mn><mrow><mo>−</mo><mn>6</mn></mrow></msup>"),
+            line(
+                "<mi>P</mi><mo>=</mo><mn>3.4</mn><mo>×</mo><msup><mn>10</mn><mrow><mo>−</mo><mn>6</mn></mrow></msup>"
+            ),
             "P = 3.4×10⁻⁶"
         );
         assert_eq!(line("<mn>0.45</mn><msup><mi/><mo>***</mo></msup>"), "0.45***");
@@ -504,7 +535,10 @@ mod tests {
 
     #[test]
     fn powers_and_indexes_never_run_into_numbers() {
-        assert_eq!(line("<msup><mi>e</mi><mrow><mo>−</mo><mi>x</mi></mrow></msup>"), "e^(−x)".replace('−', "-"));
+        assert_eq!(
+            line("<msup><mi>e</mi><mrow><mo>−</mo><mi>x</mi></mrow></msup>"),
+            "e^(−x)".replace('−', "-")
+        );
         assert_eq!(line("<msup><mi>X</mi><mi>T</mi></msup>"), "X^T");
         assert_eq!(
             line(
@@ -518,7 +552,9 @@ mod tests {
             "x_(t = 1)"
         );
         assert_eq!(
-            line("<mmultiscripts><mi>X</mi><mn>1</mn><mn>2</mn><mprescripts/><none/><mn>3</mn></mmultiscripts>"),
+            line(
+                "<mmultiscripts><mi>X</mi><mn>1</mn><mn>2</mn><mprescripts/><none/><mn>3</mn></mmultiscripts>"
+            ),
             "X₁²³"
         );
     }
@@ -526,9 +562,18 @@ mod tests {
     #[test]
     fn accents_join_their_letter() {
         assert_eq!(line("<mover><mi>x</mi><mo>¯</mo></mover>"), "x\u{304}");
-        assert_eq!(line("<mover><mi>β</mi><mo>^</mo></mover><mo>=</mo><mn>.2</mn>"), "β\u{302} = .2");
-        assert_eq!(line("<mover><mrow><mi>a</mi><mi>b</mi></mrow><mo>⏞</mo></mover>"), "ab");
-        assert_eq!(line("<munder><mi>max</mi><mi>x</mi></munder><mi>f</mi>"), "max_(x)f");
+        assert_eq!(
+            line("<mover><mi>β</mi><mo>^</mo></mover><mo>=</mo><mn>.2</mn>"),
+            "β\u{302} = .2"
+        );
+        assert_eq!(
+            line("<mover><mrow><mi>a</mi><mi>b</mi></mrow><mo>⏞</mo></mover>"),
+            "ab"
+        );
+        assert_eq!(
+            line("<munder><mi>max</mi><mi>x</mi></munder><mi>f</mi>"),
+            "max_(x)f"
+        );
         assert_eq!(line("<mover><mi>x</mi></mover>"), "x");
     }
 
@@ -549,14 +594,19 @@ mod tests {
     #[test]
     fn fences_tables_and_words_are_kept_apart() {
         assert_eq!(
-            line("<mfenced open='[' separators=';'><mn>−.5</mn><mn>.1</mn></mfenced>"),
+            line("<mfenced open='[' close=']' separators=';'><mn>−.5</mn><mn>.1</mn></mfenced>"),
             "[-.5; .1]"
         );
         assert_eq!(
-            line("<mtable><mtr><mtd><mi>a</mi></mtd><mtd><mi>b</mi></mtd></mtr><mtr><mtd><mi>c</mi></mtd></mtr></mtable>"),
+            line(
+                "<mtable><mtr><mtd><mi>a</mi></mtd><mtd><mi>b</mi></mtd></mtr><mtr><mtd><mi>c</mi></mtd></mtr></mtable>"
+            ),
             "a b; c"
         );
-        assert_eq!(line("<mi>log</mi><mi>x</mi><mspace width='1em'/><mtext>if</mtext><mi>y</mi>"), "log x if y");
+        assert_eq!(
+            line("<mi>log</mi><mi>x</mi><mspace width='1em'/><mtext>if</mtext><mi>y</mi>"),
+            "log x if y"
+        );
     }
 
     #[test]

@@ -8,8 +8,8 @@ mod blocks;
 mod entities;
 mod tags;
 
-use super::mathml::Math;
 use super::Unreadable;
+use super::mathml::Math;
 use crate::manuscript::{BlockKind, Builder, CellShape, Format, Manuscript, Part};
 use blocks::local_is;
 use entities::Declared;
@@ -172,10 +172,12 @@ impl<'a> Reading<'a> {
         }
         match self.formula_pictures {
             0 => {}
-            1 => self.b.remark("1 formula is stored only as a picture and was not read"),
-            n => self
+            1 => self
                 .b
-                .remark(format!("{n} formulas are stored only as pictures and were not read")),
+                .remark("1 formula is stored only as a picture and was not read"),
+            n => self.b.remark(format!(
+                "{n} formulas are stored only as pictures and were not read"
+            )),
         }
         self.declared.remark_unknown(&mut self.b);
         Ok(self.b.finish())
@@ -221,7 +223,12 @@ impl<'a> Reading<'a> {
                 // `text` is a slice of the source.
                 let offset = text.as_ptr() as usize - self.source.as_ptr() as usize;
                 let at = offset + reader.error_position() as usize;
-                not_well_formed(self.source, at, &error.to_string())
+                let reason = match error {
+                    quick_xml::Error::Syntax(e) => e.to_string(),
+                    quick_xml::Error::IllFormed(e) => e.to_string(),
+                    e => e.to_string(),
+                };
+                not_well_formed(self.source, at, &reason)
             }
             Trouble::Told(unreadable) => unreadable,
         }
@@ -452,7 +459,9 @@ impl<'a> Reading<'a> {
     }
 
     fn end(&mut self) -> Result<(), Unreadable> {
-        let Some(frame) = self.frames.pop() else { return Ok(()) };
+        let Some(frame) = self.frames.pop() else {
+            return Ok(());
+        };
         self.context = frame.outside;
         match frame.tag {
             Tag::Inline | Tag::Meta | Tag::Skip | Tag::Letter | Tag::Math | Tag::Break => {}

@@ -54,7 +54,10 @@ fn sections_keep_their_depth_and_end() {
     );
     assert_eq!(m.text, "2 Results\n\nA.\n\nPlots\n\nB.\n\nC.\n\nD.\n");
     let path = |at: usize| m.section_path(&m.blocks[at]).join("/");
-    assert_eq!([path(1), path(3), path(4), path(5)], ["2 Results", "2 Results/Plots", "2 Results", ""]);
+    assert_eq!(
+        [path(1), path(3), path(4), path(5)],
+        ["2 Results", "2 Results/Plots", "2 Results", ""]
+    );
 }
 
 #[test]
@@ -86,7 +89,10 @@ fn back_matter_is_told_apart_and_references_are_left_out() {
     assert_eq!(of("shelf"), Some((BlockKind::Paragraph, Part::Back)));
     assert_eq!(of("CI"), Some((BlockKind::ListItem, Part::Back)));
     assert_eq!(of("Litres"), Some((BlockKind::Caption, Part::Body)));
-    assert_eq!(m.remarks, ["letters about the article that stand in the same file were not read"]);
+    assert_eq!(
+        m.remarks,
+        ["letters about the article that stand in the same file were not read"]
+    );
 }
 
 #[test]
@@ -174,15 +180,21 @@ fn a_formula_in_three_forms_is_read_once() {
         );
     }
     assert_eq!(
-        body(&format!("<p>a <inline-formula><alternatives><graphic/>{tex}</alternatives></inline-formula>, b</p>")),
+        body(&format!(
+            "<p>a <inline-formula><alternatives><graphic/>{tex}</alternatives></inline-formula>, b</p>"
+        )),
         "a χ²=4.1, b\n"
     );
     assert_eq!(
-        body("<p>a <inline-formula><alternatives><graphic/><textual-form>p = .1</textual-form></alternatives></inline-formula></p>"),
+        body(
+            "<p>a <inline-formula><alternatives><graphic/><textual-form>p = .1</textual-form></alternatives></inline-formula></p>"
+        ),
         "a p = .1\n"
     );
     assert_eq!(
-        body("<p>a <inline-formula><italic>p</italic> = .03</inline-formula> <tex-math>$d = 2$</tex-math></p>"),
+        body(
+            "<p>a <inline-formula><italic>p</italic> = .03</inline-formula> <tex-math>$d = 2$</tex-math></p>"
+        ),
         "a p = .03 d = 2\n"
     );
 }
@@ -227,7 +239,12 @@ fn tables_know_their_label_caption_and_notes() {
     assert_eq!(notes, ["*** p < .001", "Note."]);
     assert_eq!((table.rows, table.columns), (4, 3));
     assert_eq!(table.cells.iter().filter(|c| c.header).count(), 4);
-    assert!(table.cells.iter().all(|c| m.blocks[c.block].kind == BlockKind::Cell));
+    assert!(
+        table
+            .cells
+            .iter()
+            .all(|c| m.blocks[c.block].kind == BlockKind::Cell)
+    );
 }
 
 #[test]
@@ -238,7 +255,10 @@ fn several_tables_may_share_a_label_but_not_a_content() {
          <table-wrap><label>Table 2</label><alternatives>{table}{table}</alternatives></table-wrap>\
          <table-wrap><label>Table 3</label><table><tr><td>a{table}b</td></tr></table></table-wrap></body>"
     ));
-    assert_eq!(m.text, "Table 1.\n\n1\n\n1\n\nTable 2.\n\n1\n\nTable 3.\n\na 1 b\n");
+    assert_eq!(
+        m.text,
+        "Table 1.\n\n1\n\n1\n\nTable 2.\n\n1\n\nTable 3.\n\na 1 b\n"
+    );
     let labels: Vec<_> = m.tables.iter().filter_map(|t| t.label.as_deref()).collect();
     assert_eq!(labels, ["Table 1", "Table 1", "Table 2", "Table 3"]);
 }
@@ -246,7 +266,9 @@ fn several_tables_may_share_a_label_but_not_a_content() {
 #[test]
 fn characters_by_number_and_by_name() {
     assert_eq!(
-        body("<p>&chi;&#178;&nbsp;&lt; &#x3b7; &minus;1 <![CDATA[p < .05 & q]]><?page 3?><!-- p = .9 -->.</p>"),
+        body(
+            "<p>&chi;&#178;&nbsp;&lt; &#x3b7; &minus;1 <![CDATA[p < .05 & q]]><?page 3?><!-- p = .9 -->.</p>"
+        ),
         "χ² < η -1 p < .05 & q.\n"
     );
     let m = read(
