@@ -167,6 +167,11 @@ impl Builder {
         self.open.as_ref().map(|o| o.0)
     }
 
+    /// The text of the open block so far; empty without one.
+    pub fn open_text(&self) -> &str {
+        self.open.as_ref().map_or("", |o| &self.text[o.1..])
+    }
+
     /// The section that the next block will belong to, for [`Builder::return_to_section`].
     pub fn section(&self) -> Option<usize> {
         self.section

@@ -594,7 +594,7 @@ mod tests {
     #[test]
     fn fences_tables_and_words_are_kept_apart() {
         assert_eq!(
-            line("<mfenced open='[' separators=';'><mn>−.5</mn><mn>.1</mn></mfenced>"),
+            line("<mfenced open='[' close=']' separators=';'><mn>−.5</mn><mn>.1</mn></mfenced>"),
             "[-.5; .1]"
         );
         assert_eq!(

@@ -223,7 +223,12 @@ impl<'a> Reading<'a> {
                 // `text` is a slice of the source.
                 let offset = text.as_ptr() as usize - self.source.as_ptr() as usize;
                 let at = offset + reader.error_position() as usize;
-                not_well_formed(self.source, at, &error.to_string())
+                let reason = match error {
+                    quick_xml::Error::Syntax(e) => e.to_string(),
+                    quick_xml::Error::IllFormed(e) => e.to_string(),
+                    e => e.to_string(),
+                };
+                not_well_formed(self.source, at, &reason)
             }
             Trouble::Told(unreadable) => unreadable,
         }
