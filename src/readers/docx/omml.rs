@@ -1,8 +1,8 @@
 //! Office Math as text on a line: `χ²(1) = 4.10`, `(a + b)/n`, `√(n)`. What a person would type
 //! if there were no formula editor.
 
-use super::symbols::{self, Font};
 use crate::readers::office::line::{Line, Look};
+use crate::readers::office::symbols::{self, Font};
 use crate::readers::office::tree::Element;
 
 /// Appends a formula.

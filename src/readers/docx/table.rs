@@ -1,11 +1,11 @@
 //! Tables of a Word file. Cells merged downwards are stored as one cell per row there, and become
 //! one cell with a height here.
 
-use super::body::{Around, Walker, choice, joined, lines};
+use super::body::{Around, Walker, choice};
 use super::styles::is_on;
 use crate::manuscript::CellShape;
-use crate::readers::office::flow::{Cell, Item};
-use crate::readers::office::line::Line;
+use crate::readers::office::flow::{Cell, Item, lines};
+use crate::readers::office::line::{Line, joined};
 use crate::readers::office::tree::Element;
 
 /// Spans beyond this are mistakes.

@@ -208,6 +208,18 @@ impl Line {
     }
 }
 
+/// Lines one after another, with a space between.
+pub fn joined(lines: impl Iterator<Item = Line>) -> Line {
+    let mut all = Line::default();
+    for line in lines {
+        if !all.is_blank() && !line.is_blank() {
+            all.gap();
+        }
+        all.append(line);
+    }
+    all
+}
+
 /// The page that is being read.
 #[derive(Clone, Copy, Debug)]
 pub struct Page {

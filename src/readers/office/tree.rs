@@ -45,6 +45,21 @@ pub struct Element<'t> {
     at: u32,
 }
 
+impl Default for Tree<'_> {
+    /// The tree of an empty part.
+    fn default() -> Self {
+        Tree {
+            nodes: vec![Node {
+                name: "",
+                content: "",
+                first_child: NONE,
+                next: NONE,
+                kind: Kind::Element,
+            }],
+        }
+    }
+}
+
 impl<'a> Tree<'a> {
     /// Reads a part.
     ///
