@@ -280,3 +280,75 @@ fn each_refusal_says_what_to_do() {
          word processor and save it again as .odt"
     );
 }
+
+#[test]
+fn damaged_parts_are_refused_or_read_never_a_panic() {
+    let body = format!(
+        "{}<text:list><text:list-item>{}</text:list-item></text:list><table:table><table:table-row><table:table-cell \
+         table:number-columns-spanned=\"2\">{}</table:table-cell><table:covered-table-cell/></table:table-row>\
+         </table:table><text:h text:outline-level=\"1\">Results</text:h>{}",
+        p(&format!("t{}", span("Up", "2"))),
+        p("x"),
+        p("y"),
+        p("z<text:note><text:note-body><text:p>n</text:p></text:note-body></text:note>")
+    );
+    let content = format!(
+        "<office:document-content>{AUTOMATIC}<office:body><office:text>{body}</office:text></office:body>\
+         </office:document-content>"
+    );
+    let whole = package(&[("content.xml", &content), ("styles.xml", COMMON)]);
+    // Every place changed in turn, in several ways.
+    for at in 0..whole.len() {
+        for change in [0x01, 0x80, 0xff] {
+            let mut bytes = whole.clone();
+            bytes[at] ^= change;
+            let _ = read(&bytes);
+        }
+    }
+    for at in 0..whole.len() {
+        let _ = read(&whole[..at]);
+    }
+    let mut read_through = 0;
+    let mut tried = 0;
+    for (at, _) in content.char_indices() {
+        for put in ["", "<", "9", "</text:p>"] {
+            let changed = format!(
+                "{}{put}{}",
+                &content[..at],
+                content[at..].chars().skip(1).collect::<String>()
+            );
+            tried += 1;
+            read_through += usize::from(read(&package(&[("content.xml", &changed)])).is_ok());
+        }
+    }
+    assert!(read_through > 0 && read_through < tried);
+}
+
+#[test]
+fn deep_nesting_is_no_danger() {
+    for name in [
+        "text:list><text:list-item",
+        "text:section",
+        "table:table><table:table-row><table:table-cell",
+    ] {
+        let depth = 990 / name.split("><").count();
+        let close: String = name.rsplit("><").map(|n| format!("</{n}>")).collect();
+        let body = format!(
+            "{}{}{}",
+            format!("<{name}>").repeat(depth),
+            p("deep"),
+            close.repeat(depth)
+        );
+        assert_eq!(text(&body), "deep\n", "{name}");
+    }
+    let spans = format!("{}deep{}", "<text:span>".repeat(980), "</text:span>".repeat(980));
+    assert_eq!(text(&p(&spans)), "deep\n");
+    for name in ["math:mrow", "math:msup", "math:mfrac", "math:mover"] {
+        let formula = format!(
+            "<draw:frame><draw:object><math:math>{}<math:mi>x</math:mi>{}</math:math></draw:object></draw:frame>",
+            format!("<{name}>").repeat(970),
+            format!("</{name}>").repeat(970)
+        );
+        assert!(text(&p(&formula)).contains('x'), "{name}");
+    }
+}

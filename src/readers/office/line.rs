@@ -112,6 +112,11 @@ impl Line {
         }
     }
 
+    /// Its last character so far.
+    pub fn last(&self) -> Option<char> {
+        self.texts().filter_map(|(_, t)| t.chars().next_back()).last()
+    }
+
     /// Whether it has no visible text.
     pub fn is_blank(&self) -> bool {
         self.texts().all(|(_, t)| t.trim().is_empty())

@@ -223,6 +223,18 @@ impl<'t> Element<'t> {
         })
     }
 
+    /// Whether elements below it are nested deeper than this.
+    pub fn is_deeper_than(&self, limit: usize) -> bool {
+        let mut ahead = vec![(*self, 0)];
+        while let Some((e, depth)) = ahead.pop() {
+            if depth > limit {
+                return true;
+            }
+            ahead.extend(e.children().map(|c| (c, depth + 1)));
+        }
+        false
+    }
+
     /// The value of the attribute with this local name.
     pub fn attribute(&self, wanted: &str) -> Option<Cow<'t, str>> {
         if self.is_text() {
