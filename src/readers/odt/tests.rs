@@ -343,12 +343,13 @@ fn deep_nesting_is_no_danger() {
     }
     let spans = format!("{}deep{}", "<text:span>".repeat(980), "</text:span>".repeat(980));
     assert_eq!(text(&p(&spans)), "deep\n");
-    for name in ["math:mrow", "math:msup", "math:mfrac", "math:mover"] {
+    for (depth, name) in [(480, "math:mrow"), (970, "math:mrow"), (970, "math:msup"), (970, "math:mfrac")] {
         let formula = format!(
             "<draw:frame><draw:object><math:math>{}<math:mi>x</math:mi>{}</math:math></draw:object></draw:frame>",
-            format!("<{name}>").repeat(970),
-            format!("</{name}>").repeat(970)
+            format!("<{name}>").repeat(depth),
+            format!("</{name}>").repeat(depth)
         );
-        assert!(text(&p(&formula)).contains('x'), "{name}");
+        // Beyond 500 the formula reader gives up what is inside.
+        assert_eq!(text(&p(&formula)).contains('x'), depth < 500, "{name}");
     }
 }
