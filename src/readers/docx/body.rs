@@ -2,11 +2,13 @@
 
 use super::fields::{Fields, Holds, holds};
 use super::omml;
-use super::styles::{Setting, Style, Styles};
-use super::{symbol_element, symbols, table};
+use super::styles::{self, Style, Styles};
+use super::{symbol_element, table};
 use crate::manuscript::{Builder, Part};
-use crate::readers::office::flow::{Item, Paragraph, Role};
+use crate::readers::office::flow::{Item, Paragraph, Role, lines};
 use crate::readers::office::line::Line;
+use crate::readers::office::setting::Setting;
+use crate::readers::office::symbols;
 use crate::readers::office::tree::Element;
 use std::collections::HashMap;
 
@@ -268,7 +270,7 @@ impl<'s, 't> Walker<'s, 't> {
             if let Some(style) = properties.child("rStyle").and_then(|s| s.val()) {
                 setting = self.styles.get(Some(&style)).setting.over(setting);
             }
-            setting = Setting::of(properties).over(setting);
+            setting = styles::setting(properties).over(setting);
         }
         self.run_content(run, setting, open);
     }
@@ -386,33 +388,4 @@ fn control(sdt: Element<'_>, around: Around) -> Around {
         part: if list { Some(Part::References) } else { around.part },
         contents: around.contents || gallery.contains("table of contents"),
     }
-}
-
-/// The text of blocks as lines: paragraphs as they are, tables row by row.
-pub fn lines(items: Vec<Item>) -> Vec<Line> {
-    let mut lines = Vec::new();
-    for item in items {
-        match item {
-            Item::Paragraph(p) => lines.push(p.line),
-            Item::Note(line) => lines.push(line),
-            Item::Table(rows) => {
-                for row in rows {
-                    lines.push(joined(row.into_iter().map(|c| c.line)));
-                }
-            }
-        }
-    }
-    lines
-}
-
-/// Lines one after another, with a space between.
-pub fn joined(lines: impl Iterator<Item = Line>) -> Line {
-    let mut all = Line::default();
-    for line in lines {
-        if !all.is_blank() && !line.is_blank() {
-            all.gap();
-        }
-        all.append(line);
-    }
-    all
 }

@@ -1,7 +1,7 @@
 //! *Fields* are instructions whose result Word keeps in the text: citations, numbers of tables,
 //! tables of contents, reference lists. The result is read, the instruction is not.
 
-use super::symbols::{self, Font};
+use crate::readers::office::symbols::{self, Font};
 
 /// Instructions beyond this many bytes hold the data of a citation manager.
 const START: usize = 300;

@@ -5,14 +5,13 @@ mod body;
 mod fields;
 mod omml;
 mod styles;
-mod symbols;
 mod table;
 #[cfg(test)]
 mod tests;
 
 use super::Unreadable;
-use super::office::flow;
 use super::office::tree::{Element, Tree};
+use super::office::{flow, symbols};
 use super::package::{Package, SAVE_AGAIN, damaged};
 use crate::manuscript::{Builder, Format, Manuscript};
 use body::{Notes, Walker};

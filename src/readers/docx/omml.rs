@@ -1,12 +1,24 @@
 //! Office Math as text on a line: `χ²(1) = 4.10`, `(a + b)/n`, `√(n)`. What a person would type
 //! if there were no formula editor.
 
-use super::symbols::{self, Font};
+use crate::manuscript::{Builder, Format};
 use crate::readers::office::line::{Line, Look};
+use crate::readers::office::symbols::{self, Font};
 use crate::readers::office::tree::Element;
+
+/// Formulas nested deeper than this were not written by people; their text is read as it stands.
+const DEEPEST: usize = 150;
 
 /// Appends a formula.
 pub fn push(math: Element<'_>, line: &mut Line) {
+    if math.is_deeper_than(DEEPEST) {
+        line.level(&math.text());
+    } else {
+        content(math, line);
+    }
+}
+
+fn content(math: Element<'_>, line: &mut Line) {
     for child in math.children() {
         element(child, line);
     }
@@ -79,8 +91,11 @@ fn element(e: Element<'_>, line: &mut Line) {
             }
         }
         "limUpp" => {
-            named(e, "e", line);
             let limit = e.child("lim").map(linear).unwrap_or_default();
+            accented(e, combining(&limit), line);
+            if combining(&limit).is_some() {
+                return;
+            }
             if !limit.is_empty() {
                 line.level(&format!("^{}", bracketed(&limit)));
             }
@@ -95,16 +110,24 @@ fn element(e: Element<'_>, line: &mut Line) {
                 first = false;
                 if row.name() == "mr" {
                     for cell in row.children() {
-                        push(cell, line);
+                        content(cell, line);
                         line.level(" ");
                     }
                 } else {
                     let mut aligned = Line::default();
-                    push(row, &mut aligned);
+                    content(row, &mut aligned);
                     aligned.remove('&');
                     line.append(aligned);
                 }
             }
+        }
+        "acc" => {
+            let chr = e.path(&["accPr", "chr"]).and_then(|c| c.val());
+            accented(e, combining(&chr.unwrap_or("\u{302}".into())), line);
+        }
+        "bar" => {
+            let position = e.path(&["barPr", "pos"]).and_then(|p| p.val());
+            accented(e, (position.as_deref() == Some("top")).then_some('\u{304}'), line);
         }
         "phant" => {
             let shown = e.path(&["phantPr", "show"]).is_none_or(super::styles::is_on);
@@ -115,8 +138,8 @@ fn element(e: Element<'_>, line: &mut Line) {
         // Tracked changes inside a formula.
         "del" | "moveFrom" => {}
         name if name.ends_with("Pr") => {}
-        // Accents, bars, boxes, groups, insertions and whatever else only surrounds its content.
-        _ => push(e, line),
+        // Boxes, groups, insertions and whatever else only surrounds its content.
+        _ => content(e, line),
     }
 }
 
@@ -132,7 +155,7 @@ fn run(e: Element<'_>, line: &mut Line) {
             "t" => {
                 let mut text = String::new();
                 symbols::push(&child.text(), Font::Ordinary, &mut text);
-                line.level(&text);
+                spaced(&text, line);
             }
             "sym" => line.push(&super::symbol_element(child), Look::default()),
             "tab" | "br" | "cr" => line.level(" "),
@@ -141,25 +164,84 @@ fn run(e: Element<'_>, line: &mut Line) {
     }
 }
 
+/// Text of a formula, where the editor makes the room around `=` and behind a comma.
+fn spaced(text: &str, line: &mut Line) {
+    let mut out = String::with_capacity(text.len() + 8);
+    let mut before = line.last();
+    let relation = |c: char| {
+        matches!(
+            c,
+            '=' | '<' | '>' | '≤' | '≥' | '≈' | '≠' | '≅' | '≡' | '∼' | '≪' | '≫'
+        )
+    };
+    let mut chars = text.chars().peekable();
+    while let Some(c) = chars.next() {
+        if relation(c) {
+            if !before.is_some_and(relation) {
+                out.push(' ');
+            }
+            out.push(c);
+            if !chars.peek().is_some_and(|n| relation(*n)) {
+                out.push(' ');
+            }
+        } else {
+            if before == Some(',') && c.is_alphabetic() {
+                out.push(' ');
+            }
+            out.push(c);
+        }
+        before = Some(c);
+    }
+    line.level(&out);
+}
+
+/// The combining form of an accent or bar above a letter.
+fn combining(mark: &str) -> Option<char> {
+    match mark.trim() {
+        "¯" | "‾" | "ˉ" | "―" | "\u{305}" | "\u{304}" => Some('\u{304}'),
+        "^" | "ˆ" | "\u{302}" => Some('\u{302}'),
+        "~" | "˜" | "\u{303}" => Some('\u{303}'),
+        "˙" | "\u{307}" => Some('\u{307}'),
+        "¨" | "\u{308}" => Some('\u{308}'),
+        _ => None,
+    }
+}
+
+/// A letter with its accent; above anything longer the accent is left out.
+fn accented(e: Element<'_>, mark: Option<char>, line: &mut Line) {
+    let mut base = Line::default();
+    named(e, "e", &mut base);
+    let start = base.start(8);
+    let mut letters = start.chars();
+    let single = letters.next().is_some_and(char::is_alphabetic) && letters.next().is_none();
+    line.append(base);
+    if let Some(mark) = mark.filter(|_| single) {
+        line.level(mark.encode_utf8(&mut [0; 4]));
+    }
+}
+
 fn named(e: Element<'_>, name: &str, line: &mut Line) {
     if let Some(child) = e.child(name) {
-        push(child, line);
+        content(child, line);
     }
 }
 
 /// A part of a formula as plain text.
 fn linear(e: Element<'_>) -> String {
     let mut line = Line::default();
-    push(e, &mut line);
-    line.start(usize::MAX)
+    content(e, &mut line);
+    // As it is read in the end, so that what is raised twice stays raised once: `e^(-x²)`.
+    let mut b = Builder::new(Format::Docx);
+    line.write(&mut b, &mut None);
+    b.finish().text.trim_end().to_string()
 }
 
 fn raised(e: Element<'_>, line: &mut Line) {
     let text = e.child("sup").map(linear).unwrap_or_default();
-    let mark = |c: char| !c.is_alphanumeric() && !c.is_whitespace();
-    let number =
-        text.chars().all(|c| c.is_ascii_digit() || mark(c)) && text.chars().any(|c| c.is_ascii_digit());
-    if number || text.chars().all(mark) {
+    let number = |c: char| c.is_ascii_digit() || matches!(c, '-' | '+' | '(' | ')' | ',');
+    // Stars, primes, daggers.
+    let mark = |c: char| !c.is_alphanumeric() && !c.is_whitespace() && c != '/';
+    if text.chars().all(number) || text.chars().all(mark) {
         line.raised(&text);
     } else {
         line.level(&format!("^{}", bracketed(&text)));
@@ -184,7 +266,7 @@ fn bracketed(text: &str) -> String {
 fn grouped(e: Option<Element<'_>>, line: &mut Line) {
     let Some(e) = e else { return };
     let mut inner = Line::default();
-    push(e, &mut inner);
+    content(e, &mut inner);
     let text = inner.start(usize::MAX);
     let joined = text.contains(['+', '-', '−', '–', '/', '±', '×', '·', '=', ' ']);
     let already = text.starts_with('(') && text.ends_with(')') && text.matches('(').count() == 1;
@@ -228,7 +310,7 @@ fn delimited(e: Element<'_>, line: &mut Line) {
             line.level(&separator);
         }
         first = false;
-        push(inner, line);
+        content(inner, line);
     }
     line.level(&chr("endChr", ")"));
 }
@@ -236,7 +318,6 @@ fn delimited(e: Element<'_>, line: &mut Line) {
 #[cfg(test)]
 mod tests {
     use super::*;
-    use crate::manuscript::{Builder, Format};
     use crate::readers::office::tree::Tree;
 
     fn read(inner: &str) -> String {
@@ -262,7 +343,7 @@ mod tests {
             r("2"),
             r("(1)=4.10")
         );
-        assert_eq!(read(&chi), "χ²(1)=4.10");
+        assert_eq!(read(&chi), "χ²(1) = 4.10");
         let eta = format!(
             "<m:sSubSup><m:e>{}</m:e><m:sub>{}</m:sub><m:sup>{}</m:sup></m:sSubSup>",
             r("η"),
@@ -317,7 +398,7 @@ mod tests {
             r("n"),
             r("x")
         );
-        assert_eq!(read(&sum), "∑_(i=1)^n x");
+        assert_eq!(read(&sum), "∑_(i = 1)^n x");
         let log = format!(
             "<m:func><m:fName>{}</m:fName><m:e>{}</m:e></m:func>",
             r("log"),
@@ -328,18 +409,37 @@ mod tests {
             "<m:acc><m:accPr><m:chr m:val=\"̅\"/></m:accPr><m:e>{}</m:e></m:acc>",
             r("x")
         );
-        assert_eq!(read(&bar), "x");
+        assert_eq!(read(&bar), "x\u{304}");
         let rows = format!(
             "<m:eqArr><m:e>{}</m:e><m:e>{}</m:e></m:eqArr>",
             r("t&amp;=2.20"),
             r("p&amp;=.036")
         );
-        assert_eq!(read(&rows), "t=2.20; p=.036");
+        assert_eq!(read(&rows), "t = 2.20; p = .036");
+    }
+
+    #[test]
+    fn runs_are_spaced_as_the_editor_shows_them() {
+        let inner = [
+            r("t"),
+            r("(28)"),
+            r("="),
+            r("2.20"),
+            r(","),
+            r("p"),
+            r("&lt;="),
+            r(".05"),
+        ]
+        .concat();
+        assert_eq!(read(&inner), "t(28) = 2.20, p <= .05");
+        let sup = |base: &str, sup: &str| format!("<m:sSup><m:e>{base}</m:e><m:sup>{sup}</m:sup></m:sSup>");
+        assert_eq!(read(&sup(&r("e"), &(r("-") + &sup(&r("x"), &r("2"))))), "e^(-x²)");
+        assert_eq!(read(&sup(&r("x"), &r("1/2"))), "x^(1/2)");
     }
 
     #[test]
     fn deleted_parts_are_left_out() {
         let inner = format!("{}<w:del>{}</w:del><w:ins>{}</w:ins>", r("p="), r(".5"), r(".05"));
-        assert_eq!(read(&inner), "p=.05");
+        assert_eq!(read(&inner), "p = .05");
     }
 }

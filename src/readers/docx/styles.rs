@@ -1,79 +1,38 @@
 //! The styles of a Word file, as far as they say what a paragraph is and how its text is set.
 
-use super::symbols::{self, Font};
 use crate::manuscript::Part;
 use crate::readers::office::flow::Role;
-use crate::readers::office::line::{Look, Shift};
+use crate::readers::office::line::Shift;
+use crate::readers::office::setting::{Setting, by_name};
+use crate::readers::office::symbols;
 use crate::readers::office::tree::Element;
 use std::collections::HashMap;
 
-/// How text is set, where that is said; unsaid properties come from the style below.
-#[derive(Clone, Copy, Debug, Default)]
-pub struct Setting {
-    shift: Option<Shift>,
-    bold: Option<bool>,
-    italic: Option<bool>,
-    underlined: Option<bool>,
-    capitals: Option<bool>,
-    hidden: Option<bool>,
-    font: Option<Font>,
-}
-
-impl Setting {
-    /// The direct properties in a run-properties element.
-    pub fn of(properties: Element<'_>) -> Setting {
-        let mut s = Setting::default();
-        for p in properties.children() {
-            match p.name() {
-                "vertAlign" => {
-                    s.shift = Some(match p.val().as_deref() {
-                        Some("superscript") => Shift::Raised,
-                        Some("subscript") => Shift::Lowered,
-                        _ => Shift::Level,
-                    });
-                }
-                "b" => s.bold = Some(is_on(p)),
-                "i" => s.italic = Some(is_on(p)),
-                "u" => s.underlined = Some(p.val().as_deref() != Some("none")),
-                "caps" | "smallCaps" => s.capitals = Some(is_on(p)),
-                "vanish" => s.hidden = Some(is_on(p)),
-                "rFonts" => {
-                    let named = p.attribute("ascii").or_else(|| p.attribute("hAnsi"));
-                    s.font = named.map(|name| symbols::font(&name)).or(s.font);
-                }
-                _ => {}
+/// The direct properties in a run-properties element.
+pub fn setting(properties: Element<'_>) -> Setting {
+    let mut s = Setting::default();
+    for p in properties.children() {
+        match p.name() {
+            "vertAlign" => {
+                s.shift = Some(match p.val().as_deref() {
+                    Some("superscript") => Shift::Raised,
+                    Some("subscript") => Shift::Lowered,
+                    _ => Shift::Level,
+                });
             }
-        }
-        s
-    }
-
-    /// This setting on top of another.
-    pub fn over(self, below: Setting) -> Setting {
-        Setting {
-            shift: self.shift.or(below.shift),
-            bold: self.bold.or(below.bold),
-            italic: self.italic.or(below.italic),
-            underlined: self.underlined.or(below.underlined),
-            capitals: self.capitals.or(below.capitals),
-            hidden: self.hidden.or(below.hidden),
-            font: self.font.or(below.font),
+            "b" => s.bold = Some(is_on(p)),
+            "i" => s.italic = Some(is_on(p)),
+            "u" => s.underlined = Some(p.val().as_deref() != Some("none")),
+            "caps" | "smallCaps" => s.capitals = Some(is_on(p)),
+            "vanish" => s.hidden = Some(is_on(p)),
+            "rFonts" => {
+                let named = p.attribute("ascii").or_else(|| p.attribute("hAnsi"));
+                s.font = named.map(|name| symbols::font(&name)).or(s.font);
+            }
+            _ => {}
         }
     }
-
-    /// What the line needs to know.
-    pub fn look(self) -> Look {
-        let strong = [self.bold, self.italic, self.underlined, self.capitals].contains(&Some(true));
-        Look {
-            shift: self.shift.unwrap_or_default(),
-            strong,
-            hidden: self.hidden == Some(true),
-        }
-    }
-
-    /// The font of the text.
-    pub fn font(self) -> Font {
-        self.font.unwrap_or_default()
-    }
+    s
 }
 
 /// A switch is on unless its value says otherwise.
@@ -150,7 +109,7 @@ impl Styles {
             };
             let mut style = s.child("pPr").map(Style::of).unwrap_or_default();
             if let Some(properties) = s.child("rPr") {
-                style.setting = Setting::of(properties);
+                style.setting = setting(properties);
             }
             let name = s
                 .child("name")
@@ -198,51 +157,6 @@ impl Styles {
             }
         })
     }
-}
-
-/// What the name of a style says. Word keeps the English names of its own styles in every language.
-pub fn by_name(name: &str) -> (Option<Role>, Option<Part>) {
-    let name = name.to_lowercase().replace(['_', '-'], " ");
-    let name = name.trim();
-    if let Some(at) = name.find("heading") {
-        let level = name[at + 7..]
-            .trim_start()
-            .chars()
-            .next()
-            .and_then(|c| c.to_digit(10));
-        if let Some(level @ 1..=9) = level {
-            return (Some(Role::Heading(level as u8)), None);
-        }
-    }
-    let role = match name {
-        "title" => Some(Role::Title),
-        "list paragraph" | "normal" | "body text" => None,
-        "quote" | "intense quote" | "block text" | "quotations" => Some(Role::Quote),
-        "toc heading" | "table of figures" | "table of authorities" | "contents heading" => {
-            Some(Role::Contents)
-        }
-        _ if name.starts_with("toc ") || name.starts_with("contents ") => Some(Role::Contents),
-        _ if name.contains("caption") || name == "table legend" || name == "figure legend" => {
-            Some(Role::Caption)
-        }
-        "table note" | "table notes" | "tablenote" | "table footnote" | "tablefootnote" => {
-            Some(Role::TableNote)
-        }
-        _ => None,
-    };
-    let part = match name {
-        "subtitle" | "author" | "authors" | "affiliation" | "affiliations" | "date" | "keywords" => {
-            Some(Part::Front)
-        }
-        "title" => Some(Part::Front),
-        "abstract" => Some(Part::Abstract),
-        "bibliography" | "references" | "reference" | "endnote bibliography" | "bibliography 1" => {
-            Some(Part::References)
-        }
-        "acknowledgements" | "acknowledgments" | "acknowledgement" => Some(Part::Back),
-        _ => None,
-    };
-    (role, part)
 }
 
 #[cfg(test)]

@@ -1,15 +1,18 @@
 //! Tables of a Word file. Cells merged downwards are stored as one cell per row there, and become
 //! one cell with a height here.
 
-use super::body::{Around, Walker, choice, joined, lines};
+use super::body::{Around, Walker, choice};
 use super::styles::is_on;
 use crate::manuscript::CellShape;
-use crate::readers::office::flow::{Cell, Item};
-use crate::readers::office::line::Line;
+use crate::readers::office::flow::{Cell, Item, lines};
+use crate::readers::office::line::{Line, joined};
 use crate::readers::office::tree::Element;
 
 /// Spans beyond this are mistakes.
 const LARGEST_SPAN: i64 = 1000;
+
+/// Headers of more rows than this are columns of their own.
+const DEEPEST_HEADER: usize = 4;
 
 #[derive(Clone, Copy, PartialEq)]
 enum Merge {
@@ -113,9 +116,30 @@ pub fn push<'t>(walker: &mut Walker<'_, 't>, tbl: Element<'t>, out: &mut Vec<Ite
     match alone {
         // A frame around text, not a table.
         Some(items) => out.extend(items),
-        _ => out.push(Item::Table(merged(rows))),
+        _ => {
+            let mut rows = merged(rows);
+            deepen_header(&mut rows);
+            out.push(Item::Table(rows));
+        }
     }
     out.extend(notes);
+}
+
+/// A header cell that reaches down makes headers of the rows it reaches: `M` and `SD` below `Litres`
+/// and beside `Plot`, which spans both rows.
+fn deepen_header(rows: &mut [Vec<Cell>]) {
+    let reach = |row: &Vec<Cell>| {
+        row.iter()
+            .filter(|c| c.shape.header)
+            .map(|c| c.shape.rowspan)
+            .max()
+    };
+    let depth = rows.first().and_then(reach).unwrap_or(0) as usize;
+    if depth <= DEEPEST_HEADER && depth < rows.len() {
+        for cell in rows[..depth].iter_mut().flatten() {
+            cell.shape.header = true;
+        }
+    }
 }
 
 /// The number in a span element.

@@ -4,7 +4,7 @@
 //! table. Both Word and OpenDocument files go through it, so both are read alike.
 
 use super::labels::{self, Label};
-use super::line::{Line, Page};
+use super::line::{Line, Page, joined};
 use crate::manuscript::{BlockKind, Builder, CellShape, Part};
 use crate::readers::headings::{self, Parts};
 
@@ -49,6 +49,23 @@ pub enum Item {
     Note(Line),
     /// Rows of cells.
     Table(Vec<Vec<Cell>>),
+}
+
+/// The text of blocks as lines: paragraphs as they are, tables row by row.
+pub fn lines(items: Vec<Item>) -> Vec<Line> {
+    let mut lines = Vec::new();
+    for item in items {
+        match item {
+            Item::Paragraph(p) => lines.push(p.line),
+            Item::Note(line) => lines.push(line),
+            Item::Table(rows) => {
+                for row in rows {
+                    lines.push(joined(row.into_iter().map(|c| c.line)));
+                }
+            }
+        }
+    }
+    lines
 }
 
 /// Running text is not searched for titles and labels beyond this many bytes.

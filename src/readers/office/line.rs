@@ -112,6 +112,11 @@ impl Line {
         }
     }
 
+    /// Its last character so far.
+    pub fn last(&self) -> Option<char> {
+        self.texts().filter_map(|(_, t)| t.chars().next_back()).last()
+    }
+
     /// Whether it has no visible text.
     pub fn is_blank(&self) -> bool {
         self.texts().all(|(_, t)| t.trim().is_empty())
@@ -206,6 +211,18 @@ impl Line {
             }
         }
     }
+}
+
+/// Lines one after another, with a space between.
+pub fn joined(lines: impl Iterator<Item = Line>) -> Line {
+    let mut all = Line::default();
+    for line in lines {
+        if !all.is_blank() && !line.is_blank() {
+            all.gap();
+        }
+        all.append(line);
+    }
+    all
 }
 
 /// The page that is being read.

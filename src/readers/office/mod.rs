@@ -4,4 +4,6 @@
 pub mod flow;
 pub mod labels;
 pub mod line;
+pub mod setting;
+pub mod symbols;
 pub mod tree;

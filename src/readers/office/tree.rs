@@ -45,6 +45,21 @@ pub struct Element<'t> {
     at: u32,
 }
 
+impl Default for Tree<'_> {
+    /// The tree of an empty part.
+    fn default() -> Self {
+        Tree {
+            nodes: vec![Node {
+                name: "",
+                content: "",
+                first_child: NONE,
+                next: NONE,
+                kind: Kind::Element,
+            }],
+        }
+    }
+}
+
 impl<'a> Tree<'a> {
     /// Reads a part.
     ///
@@ -206,6 +221,18 @@ impl<'t> Element<'t> {
             ahead[from..].reverse();
             Some(found)
         })
+    }
+
+    /// Whether elements below it are nested deeper than this.
+    pub fn is_deeper_than(&self, limit: usize) -> bool {
+        let mut ahead = vec![(*self, 0)];
+        while let Some((e, depth)) = ahead.pop() {
+            if depth > limit {
+                return true;
+            }
+            ahead.extend(e.children().map(|c| (c, depth + 1)));
+        }
+        false
     }
 
     /// The value of the attribute with this local name.
