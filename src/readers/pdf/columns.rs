@@ -186,6 +186,7 @@ fn bands(mut pieces: Vec<Piece>, gutter: Gutter, left: f32, right: f32) -> Vec<B
         }
     }
     rejoin_rows(&mut strips);
+    keep_last_lines(&mut strips);
     let judged: Vec<(Verdict, Vec<Piece>)> = strips
         .into_iter()
         .map(|(across, pieces)| {
@@ -240,6 +241,30 @@ fn rejoin_rows(strips: &mut Vec<(bool, Vec<Piece>)>) {
             .partition(|p| p.area[3] < top || (p.baseline - baseline).abs() > 0.5 * p.size);
         strips[i - 1].1 = stay;
         strips[i].1.extend(go);
+    }
+    strips.retain(|s| !s.1.is_empty());
+}
+
+/// The short last line of a paragraph as wide as the page lies in the left column only by chance.
+fn keep_last_lines(strips: &mut Vec<(bool, Vec<Piece>)>) {
+    for i in 1..strips.len() {
+        if strips[i].0 || !strips[i - 1].0 {
+            continue;
+        }
+        let Some(above) = strips[i - 1].1.iter().max_by(|a, b| a.baseline.total_cmp(&b.baseline)) else {
+            continue;
+        };
+        let first = strips[i].1[0].baseline;
+        let alone = strips[i].1.iter().filter(|p| (p.baseline - first).abs() < 0.5 * p.size).count() == 1;
+        let line = &strips[i].1[0];
+        let size = line.size;
+        let aligned = (line.area[0] - above.area[0]).abs() < size
+            || (line.area[0] + line.area[2] - above.area[0] - above.area[2]).abs() < 4.0;
+        let next = (line.baseline - above.baseline) / size;
+        if alone && aligned && (0.8..1.35).contains(&next) && (above.size - size).abs() < 0.05 * size {
+            let line = strips[i].1.remove(0);
+            strips[i - 1].1.push(line);
+        }
     }
     strips.retain(|s| !s.1.is_empty());
 }

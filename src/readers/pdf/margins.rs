@@ -7,6 +7,9 @@ use std::collections::HashMap;
 
 /// Headers and footers stand in this share of the page's height at its upper and lower end.
 const ZONE: f32 = 0.14;
+/// The very first and last line of a page are looked at even this far from its ends, as some
+/// papers have wide margins.
+const WIDE_ZONE: f32 = 0.3;
 /// Pieces looked at from each end of a page.
 const DEPTH: usize = 8;
 /// Sides of a text may wander by this many points from page to page.
@@ -26,28 +29,25 @@ pub fn drop_running_lines(pages: &[&PageGlyphs], pieces: &mut [Vec<Piece>]) {
     for (p, (page, pieces)) in pages.iter().zip(pieces.iter()).enumerate() {
         let mut order: Vec<usize> = (0..pieces.len()).collect();
         order.sort_by(|a, b| pieces[*a].baseline.total_cmp(&pieces[*b].baseline));
-        let (top, bottom) = (page.height * ZONE, page.height * (1.0 - ZONE));
-        let upper = order
-            .iter()
-            .take(DEPTH)
-            .filter(|i| pieces[**i].baseline < top)
-            .map(|i| (*i, order.first()));
-        let lower = order
-            .iter()
-            .rev()
-            .take(DEPTH)
-            .filter(|i| pieces[**i].baseline > bottom)
-            .map(|i| (*i, order.last()));
-        for (i, edge) in upper.chain(lower) {
+        let first = order.first().map_or(0.0, |i| pieces[*i].baseline);
+        let last = order.last().map_or(0.0, |i| pieces[*i].baseline);
+        let at_edge = |y: f32, share: f32| y < page.height * share || y > page.height * (1.0 - share);
+        let upper = order.iter().take(DEPTH);
+        let lower = order.iter().rev().take(DEPTH);
+        for &i in upper.chain(lower) {
             let piece = &pieces[i];
+            let y = piece.baseline;
+            let outermost = (y - first).abs() < 3.0 || (y - last).abs() < 3.0;
+            if !(at_edge(y, ZONE) || outermost && at_edge(y, WIDE_ZONE)) {
+                continue;
+            }
             let text = piece.plain_text(page);
-            let outermost = edge.is_some_and(|e| (pieces[*e].baseline - piece.baseline).abs() < 3.0);
             candidates.push(Candidate {
                 page: p,
                 piece: i,
                 number: page_number(&text),
                 text: masked(&text),
-                y: piece.baseline,
+                y,
                 outermost,
             });
         }

@@ -31,7 +31,7 @@ use crate::manuscript::{BlockKind, Builder, Format, Manuscript};
 use compose::Sheet;
 use engine_hayro::{Limits, Refusal};
 use glyphs::{Glyphs, PageGlyphs, Turn};
-use paragraphs::{Body, Column};
+use paragraphs::{Body, Column, Standing};
 use std::time::Duration;
 
 /// Reads the document.
@@ -129,11 +129,13 @@ fn manuscript(glyphs: Glyphs, bytes: &[u8]) -> Result<Manuscript, Unreadable> {
     let body = Body::of(&columns);
     let blocks = paragraphs::blocks(&columns, body);
     let blocks = paragraphs::join(blocks, body, |block| {
-        roles::heading(block, body).is_some()
-            || matches!(
-                roles::kind(block, body, 0.0),
-                BlockKind::Caption | BlockKind::TableNote | BlockKind::Footnote
-            )
+        if roles::heading(block, body).is_some() {
+            return Standing::Heading;
+        }
+        match roles::kind(block, body, 0.0) {
+            BlockKind::Caption | BlockKind::TableNote | BlockKind::Footnote => Standing::Float,
+            _ => Standing::Text,
+        }
     });
     let sheets: Vec<Sheet> = glyphs
         .pages

@@ -205,6 +205,7 @@ struct Measure {
     right: f32,
     /// Usual distance of baselines, in points.
     leading: f32,
+    body: Body,
 }
 
 impl Measure {
@@ -235,7 +236,12 @@ impl Measure {
         } else {
             body.leading * lines.first().map_or(body.size, |l| l.size)
         };
-        Measure { left, right, leading }
+        Measure {
+            left,
+            right,
+            leading,
+            body,
+        }
     }
 
     fn seam(&self, block: &Block, line: &Line, next: Option<&Line>) -> Seam {
@@ -258,7 +264,9 @@ impl Measure {
         {
             return Seam::Apart;
         }
-        if step > (1.25 * self.leading).max(self.leading + 0.22 * size) || step < 0.0 {
+        // Titles are larger than what is usual in the column, and so are their line distances.
+        let usual = if size > 1.07 * self.body.size { self.leading.max(self.body.leading.max(1.3) * size) } else { self.leading };
+        if step > (1.25 * usual).max(usual + 0.22 * size) || step < 0.0 {
             return Seam::Apart;
         }
         let is_indented = |l: &Line| (0.7 * size..5.0 * size).contains(&(l.area[0] - self.left));
@@ -324,11 +332,22 @@ fn is_raised(c: char) -> bool {
     matches!(c, '¹' | '²' | '³' | '⁰' | '⁴'..='⁹')
 }
 
+/// How a block stands to the running text around it.
+#[derive(Clone, Copy, PartialEq, Eq, Debug)]
+pub enum Standing {
+    Text,
+    /// Interrupts it without ending it: caption, note.
+    Float,
+    Heading,
+}
+
 /// Joins paragraphs that were cut by the end of a column or page: the last running text of one
 /// column and the first of a later one, if the former stops in the middle of a sentence. What
 /// stands between them (footnotes, figures, tables) then comes after.
-pub fn join(blocks: Vec<Block>, body: Body, is_apart: impl Fn(&Block) -> bool) -> Vec<Block> {
-    let running = |b: &Block| !b.row && !b.aside && !is_apart(b) && !b.bold() && body.is_size(b.size());
+pub fn join(blocks: Vec<Block>, body: Body, standing: impl Fn(&Block) -> Standing) -> Vec<Block> {
+    let running =
+        |b: &Block| !b.row && !b.aside && !b.bold() && body.is_size(b.size()) && standing(b) == Standing::Text;
+    let is_heading = |b: &Block| standing(b) == Standing::Heading;
     let mut slots: Vec<Option<Block>> = blocks.into_iter().map(Some).collect();
     let mut at = 0;
     while at < slots.len() {
@@ -336,7 +355,7 @@ pub fn join(blocks: Vec<Block>, body: Body, is_apart: impl Fn(&Block) -> bool) -
             at += 1;
             continue;
         };
-        match continuation(&slots, at, from, &running, &is_apart) {
+        match continuation(&slots, at, from, &running, &is_heading) {
             Some(to) => {
                 if let (Some(next), Some(from)) = (slots[to].take(), slots[at].as_mut()) {
                     from.column = next.column;
@@ -357,7 +376,7 @@ fn continuation(
     at: usize,
     from: &Block,
     running: &impl Fn(&Block) -> bool,
-    is_apart: &impl Fn(&Block) -> bool,
+    is_heading: &impl Fn(&Block) -> bool,
 ) -> Option<usize> {
     let last = from.last();
     let end = last.text();
@@ -372,7 +391,7 @@ fn continuation(
         }
         if !running(next) {
             // Headings end the search; floats are passed over.
-            if is_apart(next) && !next.row && is_heading_like(next) {
+            if is_heading(next) {
                 return None;
             }
             continue;
@@ -397,10 +416,6 @@ fn continuation(
         return (goes_on && (!indented || starts_low(next) || ends_open(&end))).then_some(to);
     }
     None
-}
-
-fn is_heading_like(block: &Block) -> bool {
-    block.lines.len() <= 3 && block.first().page == block.last().page && block.text().len() < 120
 }
 
 /// Begins as no sentence begins: lower case, a number, an operator or bracket.

@@ -149,8 +149,8 @@ fn follows(last: &Glyph, base: &Glyph, g: &Glyph) -> bool {
         return (-0.9 * size..CELL_GAP * size).contains(&gap);
     }
     if small && shift < 0.75 * size {
-        // A subscript may go back below its superscript.
-        return (-2.0 * size..0.5 * size).contains(&gap);
+        // A subscript may go back below its superscript; a footnote mark may follow a stretched space.
+        return (-2.0 * size..CELL_GAP * size).contains(&gap);
     }
     let level =
         (g.baseline - last.baseline).abs() < 0.12 * g.size && (g.size - last.size).abs() < 0.1 * g.size;
@@ -242,7 +242,8 @@ fn touches(a: &Piece, b: &Piece) -> bool {
     let (left, right) = if a.area[0] <= b.area[0] { (a, b) } else { (b, a) };
     let gap = right.area[0] - left.area[2];
     if shift < 0.15 * size {
-        return (-0.5 * size..0.75 * size).contains(&gap);
+        // Measured by the smaller of the two, as a heading may stand beside the other column's text.
+        return (-0.5 * size..0.75 * a.size.min(b.size)).contains(&gap);
     }
     let (big, small) = if a.size >= b.size { (a, b) } else { (b, a) };
     // A few raised or lowered glyphs right behind (or, for marks, before) a word.
