@@ -16,7 +16,7 @@ pub(super) fn probability(low: f64, high: f64) -> Interval {
         } else {
             low * (1.0 - ACCURACY)
         },
-        high: (high * (1.0 + ACCURACY)).max(SMALLEST).min(1.0),
+        high: (high * (1.0 + ACCURACY)).clamp(SMALLEST, 1.0),
     }
 }
 

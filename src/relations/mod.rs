@@ -245,3 +245,6 @@ mod tests;
 
 #[cfg(test)]
 mod more_tests;
+
+#[cfg(test)]
+mod promises;

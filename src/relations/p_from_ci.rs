@@ -14,7 +14,7 @@
 //!
 //! Example: HR = 0.72, 95% CI [0.56, 0.93] gives p = .011, so p = .01 agrees and p = .30 conflicts.
 
-use super::laws::{Adjusted, ByRange, Loosened, Sizes, probability};
+use super::laws::{Adjusted, Anything, ByRange, Loosened, UNIT, probability};
 use super::reading::Bounds;
 use super::scale::Scale;
 use super::{Case, Law, Reach, Tie, Variant, p_value};
@@ -150,11 +150,7 @@ fn variants(case: &Case, bounds: &Bounds, scale: Scale) -> Option<Vec<Variant>> 
                 .max(t_two_sided((c * tq * less - units).max(0.0), FEWEST_DF)?),
         )
     };
-    let methods = OneSide {
-        law: law(scale, lowest, highest),
-        scale,
-        outside,
-    };
+    let methods = one_side(scale, outside, lowest, highest);
     let reason = "p and interval fit only if they come from different methods (Wald, likelihood ratio, score, exact, t)";
     variants.push(Variant::new(&[], methods).left_open(reason));
     if let Some(mention) = case.mention("adjusted", Reach::Document) {
@@ -171,7 +167,7 @@ fn variants(case: &Case, bounds: &Bounds, scale: Scale) -> Option<Vec<Variant>> 
                 "p or interval may come from another method ({})",
                 p_value::quoted(mention)
             );
-            variants.push(Variant::new(&[], super::laws::Anything).left_open(reason));
+            variants.push(Variant::new(&[], Anything).left_open(reason));
         }
     }
     Some(variants)
@@ -184,7 +180,8 @@ fn distance(scale: Scale, values: &[Interval]) -> Option<Interval> {
         scale.interval(values[2]),
         scale.interval(values[3]),
     );
-    let size = e.minus(Interval::point(scale.null())).abs();
+    // The null is 0 on every scale.
+    let size = e.abs();
     let half = Interval {
         low: 0.5 * (h.low - l.high),
         high: 0.5 * (h.high - l.low),
@@ -202,69 +199,57 @@ fn distance(scale: Scale, values: &[Interval]) -> Option<Interval> {
     })
 }
 
-/// Lowest and highest p for an estimate so many half widths away from the null. Parts: p, estimate, lower end, upper end.
-fn law(
-    scale: Scale,
-    lowest: impl Fn(f64) -> Option<f64> + Send + Sync + 'static,
-    highest: impl Fn(f64) -> Option<f64> + Send + Sync + 'static,
-) -> Sizes {
-    let range = move |values: &[Interval]| {
-        let c = distance(scale, values)?;
-        Some(probability(lowest(c.high)?, highest(c.low)?))
-    };
+/// Lowest or highest p for an estimate that is so many half widths away from the null.
+trait End: Fn(f64) -> Option<f64> + Send + Sync + 'static {}
+
+impl<F: Fn(f64) -> Option<f64> + Send + Sync + 'static> End for F {}
+
+/// Where estimate and ends are searched.
+fn domains(scale: Scale) -> Vec<Interval> {
     let ends = match scale {
         Scale::Log => Interval { low: 1e-9, high: 1e9 },
         _ => Interval { low: -1e9, high: 1e9 },
     };
-    let domains = vec![super::laws::UNIT, ends, ends, ends];
-    Sizes {
-        law: Box::new(ByRange { range, domains }),
-        signed: vec![false; 4],
+    vec![UNIT, ends, ends, ends]
+}
+
+/// Parts: p, estimate, lower end, upper end.
+fn law(scale: Scale, lowest: impl End, highest: impl End) -> impl Law {
+    let range = move |values: &[Interval]| {
+        let c = distance(scale, values)?;
+        Some(probability(lowest(c.high)?, highest(c.low)?))
+    };
+    ByRange {
+        range,
+        domains: domains(scale),
     }
 }
 
-/// A law about p that in addition asks p to be on the side of 1 − level that the interval says.
-struct OneSide {
-    law: Sizes,
-    scale: Scale,
-    outside: f64,
-}
-
-impl OneSide {
-    fn side(&self, values: &[Interval]) -> Interval {
-        let (low, high) = (self.scale.interval(values[2]), self.scale.interval(values[3]));
-        if low.low > 0.0 || high.high < 0.0 {
-            Interval {
-                low: 0.0,
-                high: self.outside * EDGE,
-            }
-        } else if low.high < 0.0 && high.low > 0.0 {
-            Interval {
-                low: self.outside / EDGE,
-                high: 1.0,
-            }
-        } else {
-            super::laws::UNIT
-        }
+/// The same, and p has to be on the side of `outside` = 1 − level that the interval says.
+fn one_side(scale: Scale, outside: f64, lowest: impl End, highest: impl End) -> impl Law {
+    let range = move |values: &[Interval]| {
+        let c = distance(scale, values)?;
+        probability(lowest(c.high)?, highest(c.low)?).meet(side(scale, outside, values))
+    };
+    ByRange {
+        range,
+        domains: domains(scale),
     }
 }
 
-impl Law for OneSide {
-    fn solve(&self, target: usize, values: &[Interval]) -> crate::numbers::Set {
-        let side = self.side(values);
-        if target == 0 {
-            return self
-                .law
-                .solve(0, values)
-                .into_iter()
-                .filter_map(|p| p.meet(side))
-                .collect();
+fn side(scale: Scale, outside: f64, values: &[Interval]) -> Interval {
+    let (low, high) = (scale.interval(values[2]), scale.interval(values[3]));
+    if low.low > 0.0 || high.high < 0.0 {
+        Interval {
+            low: 0.0,
+            high: outside * EDGE,
         }
-        let Some(p) = values[0].meet(side) else {
-            return Vec::new();
-        };
-        let mut values = values.to_vec();
-        values[0] = p;
-        self.law.solve(target, &values)
+    } else if low.high < 0.0 && high.low > 0.0 {
+        Interval {
+            low: outside / EDGE,
+            high: 1.0,
+        }
+    } else {
+        UNIT
     }
 }

@@ -53,11 +53,6 @@ impl Scale {
             high: self.back(y.high),
         })
     }
-
-    /// The value of no effect, on this scale.
-    pub fn null(self) -> f64 {
-        0.0
-    }
 }
 
 fn pad(x: Interval) -> Interval {

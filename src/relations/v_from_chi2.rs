@@ -45,7 +45,7 @@ fn variants(df: u32, phi: bool) -> Vec<Variant> {
     };
     let shorter: Vec<u32> = (1..=df)
         .take_while(|m| m * m <= df)
-        .filter(|m| df % m == 0)
+        .filter(|m| df.is_multiple_of(*m))
         .collect();
     let mut variants = Vec::new();
     for m in if phi { vec![1] } else { shorter } {
