@@ -9,7 +9,7 @@ const MOST_DF: f64 = 1e16;
 
 /// From here on t is turned into a z that has the same tail (Hill 1970, CACM 13:617); its error
 /// falls with the third power of the degrees of freedom.
-const LARGE_DF: f64 = 1e5;
+const LARGE_DF: f64 = 1e7;
 
 fn legal_df(df: f64) -> Option<f64> {
     (df > 0.0).then(|| df.min(MOST_DF))
@@ -41,6 +41,9 @@ pub fn t_two_sided(t: f64, df: f64) -> Option<f64> {
         let b = 48.0 * a * a;
         let square = a * (t / df * t).ln_1p();
         let z = square.sqrt();
+        if z > 50.0 {
+            return Some(0.0);
+        }
         let z = z + ((square + 3.0) * z) / b
             - z * (4.0 * square.powi(3) + 33.0 * square * square + 240.0 * square + 855.0)
                 / (10.0 * b * (b + 0.8 * square * square + 100.0));

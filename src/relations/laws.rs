@@ -16,7 +16,7 @@ pub(super) fn probability(low: f64, high: f64) -> Interval {
         } else {
             low * (1.0 - ACCURACY)
         },
-        high: (high * (1.0 + ACCURACY)).max(SMALLEST).min(1.0),
+        high: (high * (1.0 + ACCURACY)).clamp(SMALLEST, 1.0),
     }
 }
 
@@ -220,6 +220,30 @@ impl Law for Anything {
     }
 }
 
+/// A law about the sizes of some of its parts, whose signs are printed now this way, now that.
+pub(super) struct Sizes {
+    pub law: Box<dyn Law>,
+    /// For each part, whether only its size counts.
+    pub signed: Vec<bool>,
+}
+
+impl Law for Sizes {
+    fn solve(&self, target: usize, values: &[Interval]) -> Set {
+        let sizes: Vec<Interval> = values
+            .iter()
+            .zip(&self.signed)
+            .map(|(v, signed)| if *signed { v.abs() } else { *v })
+            .collect();
+        let found = self.law.solve(target, &sizes);
+        if !self.signed[target] {
+            return found;
+        }
+        let mut mirrored: Set = found.into_iter().flat_map(Interval::both_signs).collect();
+        mirrored.sort_by(|a, b| a.low.total_cmp(&b.low));
+        mirrored
+    }
+}
+
 /// A law that gives the range of its first part from all others; the others are found by search in
 /// their natural domains.
 pub(super) struct ByRange<R> {
@@ -266,3 +290,48 @@ pub(super) fn corners(values: &[Interval], f: impl Fn(&[f64]) -> f64) -> Option<
     }
     range.map(|r| r.widen(1e-12))
 }
+
+/// The law that the first part is a function of the others which is monotone in each of them.
+pub(super) fn formula(
+    domains: Vec<Interval>,
+    f: impl Fn(&[f64]) -> f64 + Send + Sync + 'static,
+) -> ByRange<impl Fn(&[Interval]) -> Option<Interval> + Send + Sync> {
+    let natural = domains.clone();
+    let range = move |values: &[Interval]| {
+        let inside: Option<Vec<Interval>> = values
+            .iter()
+            .zip(&natural)
+            .skip(1)
+            .map(|(v, d)| v.meet(*d))
+            .collect();
+        corners(&inside?, &f)
+    };
+    ByRange { range, domains }
+}
+
+/// The law that the first part lies between two functions of the others, each monotone in each.
+pub(super) fn between(
+    domains: Vec<Interval>,
+    low: impl Fn(&[f64]) -> f64 + Send + Sync + 'static,
+    high: impl Fn(&[f64]) -> f64 + Send + Sync + 'static,
+) -> ByRange<impl Fn(&[Interval]) -> Option<Interval> + Send + Sync> {
+    let natural = domains.clone();
+    let range = move |values: &[Interval]| {
+        let inside: Option<Vec<Interval>> = values
+            .iter()
+            .zip(&natural)
+            .skip(1)
+            .map(|(v, d)| v.meet(*d))
+            .collect();
+        let inside = inside?;
+        let (low, high) = (corners(&inside, &low)?.low, corners(&inside, &high)?.high);
+        (low <= high).then_some(Interval { low, high })
+    };
+    ByRange { range, domains }
+}
+
+/// Values of a statistic that has no sign, or of which only the size counts.
+pub(super) const POSITIVE: Interval = Interval { low: 0.0, high: 1e9 };
+
+/// Degrees of freedom and sample sizes.
+pub(super) const COUNTS: Interval = Interval { low: 1.0, high: MOST };

@@ -2,16 +2,28 @@
 //! stands in a file of its own, whose opening `//!` text is the documentation that
 //! `tieout explain` prints. This file holds what all of them share and the registry.
 
+mod ci_centre;
+mod ci_order;
+mod d_from_t;
+mod eta2_from_f;
 mod laws;
+mod mean_granularity;
 mod p_from_chi2;
+mod p_from_ci;
 mod p_from_f;
 mod p_from_r;
 mod p_from_t;
 mod p_from_tau;
 mod p_from_z;
 mod p_value;
+mod percent_of_count;
+mod r_from_t;
+mod range;
 mod reading;
+mod scale;
 mod search;
+mod u_range;
+mod v_from_chi2;
 
 use crate::numbers::{Interval, Set};
 use crate::statements::Quantity;
@@ -46,6 +58,17 @@ pub const REGISTRY: &[Relation] = &[
     relation!("p-from-z", p_from_z),
     relation!("p-from-r", p_from_r),
     relation!("p-from-tau", p_from_tau),
+    relation!("p-from-ci", p_from_ci),
+    relation!("u-range", u_range),
+    relation!("range", range),
+    relation!("ci-order", ci_order),
+    relation!("ci-centre", ci_centre),
+    relation!("eta2-from-f", eta2_from_f),
+    relation!("d-from-t", d_from_t),
+    relation!("r-from-t", r_from_t),
+    relation!("v-from-chi2", v_from_chi2),
+    relation!("mean-granularity", mean_granularity),
+    relation!("percent-of-count", percent_of_count),
 ];
 
 impl Relation {
@@ -219,3 +242,9 @@ where
 
 #[cfg(test)]
 mod tests;
+
+#[cfg(test)]
+mod more_tests;
+
+#[cfg(test)]
+mod promises;

@@ -13,7 +13,7 @@
 //! Source: Snedecor (1934); Greenhouse & Geisser (1959), Psychometrika 24:95–112; NIST/SEMATECH
 //! e-Handbook 1.3.6.7.3.
 //!
-//! Example: F(1, 52) = 8.31 gives p from .0056 to .0058, so p = .006 agrees and p = .06 conflicts.
+//! Example: F(1, 52) = 8.31 gives p of .0057, so p = .006 agrees and p = .06 conflicts.
 
 use super::laws::{ByRange, UNIT, probability};
 use super::search::MOST;

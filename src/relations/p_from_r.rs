@@ -15,7 +15,7 @@
 //! Source: Fisher (1915), Biometrika 10:507–521; Best & Roberts (1975), Applied Statistics 24:377–379
 //! on how far ρ is from the formula.
 //!
-//! Example: r(46) = .29 gives p from .0424 to .0495, so p = .046 agrees and p = .46 conflicts.
+//! Example: r(46) = .29 gives p from .0418 to .0496, so p = .046 agrees and p = .46 conflicts.
 
 use super::laws::{Loosened, Side, TailLaw};
 use super::{Case, Reach, Tie, p_value};

@@ -13,7 +13,7 @@
 //!
 //! Source: Student (1908), Biometrika 6:1–25; NIST/SEMATECH e-Handbook 1.3.6.7.2.
 //!
-//! Example: t(28) = 2.20 gives p from .0359 to .0367, so p = .036 agrees and p = .063 conflicts.
+//! Example: t(28) = 2.20 gives p from .0358 to .0367, so p = .036 agrees and p = .063 conflicts.
 
 use super::laws::{Side, TailLaw};
 use super::{Case, Tie, p_value};

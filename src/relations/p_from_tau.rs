@@ -10,7 +10,7 @@
 //!
 //! Source: Kendall (1938), Biometrika 30:81–93.
 //!
-//! Example: τ = .21, n = 50 gives z from 2.11 to 2.21, so p = .031 agrees.
+//! Example: τ = .21, n = 50 gives z from 2.10 to 2.20, so p = .031 agrees.
 
 use super::laws::{Anything, Side, TailLaw};
 use super::{Case, Tie, Variant, p_value};

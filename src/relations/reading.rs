@@ -9,6 +9,23 @@ const TESTS: [&str; 12] = ["t", "F", "chi2", "H", "Q", "G2", "z", "r", "rho", "t
 /// Symbols that are arguments when they follow a statistic.
 const ARGUMENTS: [&str; 5] = ["df", "df1", "df2", "N", "n"];
 
+/// Estimates that an interval can be about.
+const ESTIMATES: [&str; 24] = [
+    "M", "Mdn", "Mdiff", "b", "B", "beta", "d", "g", "r", "rho", "tau", "OR", "RR", "HR", "IRR", "eta2",
+    "eta2p", "eta2G", "omega2", "R2", "V", "kappa", "alpha", "S",
+];
+
+/// A confidence or credible interval; all numbers are indexes into the quantities.
+#[derive(Clone, Debug)]
+pub(super) struct Bounds {
+    pub level: Option<usize>,
+    pub low: usize,
+    pub high: usize,
+    pub credible: bool,
+    /// What it can be about, the nearest first.
+    pub estimates: Vec<usize>,
+}
+
 /// A test statistic with its arguments; all numbers are indexes into the quantities.
 #[derive(Clone, Debug)]
 pub(super) struct Test {
@@ -34,14 +51,14 @@ impl Test {
     }
 
     /// Statistics that often stand beside a test as its effect size, or are turned into a z.
-    fn secondary(&self) -> bool {
+    pub(super) fn secondary(&self) -> bool {
         matches!(self.symbol, "r" | "rho" | "tau" | "U" | "W") && !self.complete()
     }
 }
 
 impl Case<'_> {
     /// Whether the quantity stands in the statement itself.
-    fn own(&self, at: usize) -> bool {
+    pub(super) fn own(&self, at: usize) -> bool {
         self.quantities[at].borrowed.is_none()
     }
 
@@ -131,10 +148,16 @@ impl Case<'_> {
         tests
     }
 
-    /// Each p with the test that it belongs to: tests and p in the same order where there are as
-    /// many of one as of the other, else the nearest test before the first p; where the statement
-    /// begins with a p and ends with a test, the test after it.
+    /// Each p with the test that it belongs to; see [`Case::tests_with`].
     pub(super) fn tests_with_p(&self) -> Vec<(Test, usize)> {
+        self.tests_with(&["p"])
+    }
+
+    /// Each quantity that has one of these symbols with the test that it belongs to: tests and
+    /// quantities in the same order where there are as many of one as of the other, else the nearest
+    /// test before the first of them; where the statement begins with the quantity and ends with a
+    /// test, the test after it. A correlation without df or n beside another test is no test here.
+    pub(super) fn tests_with(&self, symbols: &[&str]) -> Vec<(Test, usize)> {
         let mut tests = self.tests();
         if tests.iter().any(|t| !t.secondary()) {
             tests.retain(|t| !t.secondary());
@@ -143,10 +166,10 @@ impl Case<'_> {
         let mut runs: Vec<(bool, Vec<usize>)> = Vec::new();
         for i in (0..self.quantities.len()).filter(|i| self.own(*i)) {
             let is_test = tests.iter().position(|t| t.at == i);
-            let item = match (is_test, self.quantities[i].symbol) {
-                (Some(test), _) => (true, test),
-                (None, "p") => (false, i),
-                _ => continue,
+            let item = match is_test {
+                Some(test) => (true, test),
+                None if symbols.contains(&self.quantities[i].symbol) => (false, i),
+                None => continue,
             };
             match runs.last_mut() {
                 Some((kind, run)) if *kind == item.0 => run.push(item.1),
@@ -160,19 +183,70 @@ impl Case<'_> {
             if before.0 == leading {
                 continue;
             }
-            let (found, ps) = if leading {
+            let (found, others) = if leading {
                 (&after.1, &before.1)
             } else {
                 (&before.1, &after.1)
             };
-            if found.len() == ps.len() {
-                pairs.extend(found.iter().zip(ps).map(|(t, p)| (tests[*t].clone(), *p)));
-            } else if ps.len() == 1 || found.len() == 1 {
+            if found.len() == others.len() {
+                pairs.extend(found.iter().zip(others).map(|(t, p)| (tests[*t].clone(), *p)));
+            } else if others.len() == 1 || found.len() == 1 {
                 let nearest = if leading { found[0] } else { found[found.len() - 1] };
-                pairs.push((tests[nearest].clone(), ps[0]));
+                pairs.push((tests[nearest].clone(), others[0]));
             }
         }
         pairs
+    }
+
+    /// The sample sizes that go with a test: its own, else the only one in the statement, else the
+    /// only borrowed one.
+    pub(super) fn sizes(&self, test: &Test) -> Vec<usize> {
+        if !test.sizes.is_empty() {
+            return test.sizes.clone();
+        }
+        let all: Vec<usize> = (0..self.quantities.len()).collect();
+        let (own, borrowed): (Vec<usize>, Vec<usize>) = all.into_iter().partition(|i| self.own(*i));
+        let here = |i: &usize| matches!(self.quantities[*i].symbol, "n" | "N");
+        if own.iter().any(here) {
+            return self.only(&own, &["n", "N"]).into_iter().collect();
+        }
+        self.only(&borrowed, &["n", "N"]).into_iter().collect()
+    }
+
+    /// The confidence and credible intervals of the statement, each with the estimates that it can
+    /// belong to, the nearest first: those between the interval before it and itself.
+    pub(super) fn intervals(&self) -> Vec<Bounds> {
+        let mut found = Vec::new();
+        let mut from = 0;
+        for low in 0..self.quantities.len().saturating_sub(1) {
+            let credible = match (self.quantities[low].symbol, self.quantities[low + 1].symbol) {
+                ("CI_low", "CI_high") => false,
+                ("CrI_low", "CrI_high") => true,
+                _ => continue,
+            };
+            let level = low
+                .checked_sub(1)
+                .filter(|i| matches!(self.quantities[*i].symbol, "CI_level" | "CrI_level"));
+            let mut estimates: Vec<usize> = (from..low)
+                .rev()
+                .filter(|i| ESTIMATES.contains(&self.quantities[*i].symbol))
+                .collect();
+            // Two means before an interval, or a mean before a test: the interval is that of their
+            // difference.
+            let means = (from..low).filter(|i| self.quantities[*i].symbol == "M").count();
+            estimates.retain(|i| {
+                self.quantities[*i].symbol != "M" || (means == 1 && !self.between(*i, low, &TESTS))
+            });
+            found.push(Bounds {
+                level,
+                low,
+                high: low + 1,
+                credible,
+                estimates,
+            });
+            from = low + 2;
+        }
+        found
     }
 
     /// Whether one of these symbols stands between two quantities.

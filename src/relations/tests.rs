@@ -221,8 +221,8 @@ fn p_goes_with_the_nearest_test_and_in_order() {
 
 #[test]
 fn worked_examples_of_p() {
-    // Values from SciPy 1.17: 2*t.sf(2.2, 28) = 0.036234…, f.sf(8.31, 1, 52) = 0.005726…,
-    // chi2.sf(6.83, 1) = 0.008966…, 2*norm.sf(2.31) = 0.020887…
+    // Values from SciPy 1.17: 2*t.sf(2.2, 28) = 0.036225…, f.sf(8.31, 1, 52) = 0.005720…,
+    // chi2.sf(6.83, 1) = 0.008963…, 2*norm.sf(2.31) = 0.020888…
     agrees("p-from-t", "t 2.20 df 28 p .036");
     agrees("p-from-t", "t -2.20 df 28 p .036");
     conflicts("p-from-t", "t 2.20 df 28 p .063");
