@@ -121,7 +121,8 @@ impl Math {
         };
         match name {
             "mfenced" => {
-                self.text.push_str(&attribute("open").unwrap_or_else(|| "(".into()));
+                self.text
+                    .push_str(&attribute("open").unwrap_or_else(|| "(".into()));
                 frame.close = attribute("close").unwrap_or_else(|| ")".into());
                 frame.separators = attribute("separators").unwrap_or_else(|| ",".into());
                 frame.separators.retain(|c| !c.is_whitespace());
@@ -199,7 +200,9 @@ impl Math {
 
     /// Nothing readable has been found so far.
     pub fn is_blank(&self) -> bool {
-        self.text.chars().all(|c| c.is_whitespace() || c == PERHAPS_BRACKET)
+        self.text
+            .chars()
+            .all(|c| c.is_whitespace() || c == PERHAPS_BRACKET)
     }
 
     /// Writes the formula.
@@ -232,7 +235,9 @@ impl Math {
 
     /// What stands between the children of the innermost element.
     fn next_child(&mut self) {
-        let Some(frame) = self.frames.last_mut() else { return };
+        let Some(frame) = self.frames.last_mut() else {
+            return;
+        };
         let index = frame.children;
         frame.children += 1;
         let kind = frame.kind;
@@ -286,13 +291,13 @@ impl Math {
 
     /// Puts what was written since `at`, where a mark stands, in brackets if it is compound.
     fn bracket(&mut self, at: usize) {
-        let Some(inside) = self.text.get(at + 1..) else { return };
+        let Some(inside) = self.text.get(at + 1..) else {
+            return;
+        };
         let simple = inside
             .chars()
             .all(|c| c.is_alphanumeric() || matches!(c, '.' | PERHAPS_BRACKET | '\u{300}'..='\u{36f}' | '|'));
-        let wrapped = inside.starts_with('(')
-            && inside.ends_with(')')
-            && inside.matches('(').count() == 1;
+        let wrapped = inside.starts_with('(') && inside.ends_with(')') && inside.matches('(').count() == 1;
         if !simple && !wrapped && self.text[at..].starts_with(PERHAPS_BRACKET) {
             self.text.replace_range(at..at + 1, "(");
             self.text.push(')');
@@ -339,12 +344,19 @@ impl Math {
 
     /// Keeps words apart that the markup keeps apart: `log x`, `, p`.
     fn part_words(&mut self, next: &str) {
-        let Some(last) = self.text.chars().next_back() else { return };
+        let Some(last) = self.text.chars().next_back() else {
+            return;
+        };
         let apart = match last {
             ',' | ';' => true,
             c if c.is_alphabetic() => {
                 let next_is_word = next.chars().filter(|c| c.is_alphabetic()).nth(1).is_some();
-                let last_is_word = self.text.chars().rev().nth(1).is_some_and(|c| c.is_ascii_lowercase())
+                let last_is_word = self
+                    .text
+                    .chars()
+                    .rev()
+                    .nth(1)
+                    .is_some_and(|c| c.is_ascii_lowercase())
                     && c.is_ascii_lowercase()
                     && is_function(&self.text);
                 next.starts_with(char::is_alphabetic) && (next_is_word || last_is_word)
@@ -358,9 +370,11 @@ impl Math {
 }
 
 fn is_function(text: &str) -> bool {
-    ["log", "ln", "exp", "sin", "cos", "tan", "max", "min", "lim", "var", "logit", "det"]
-        .iter()
-        .any(|f| text.ends_with(f))
+    [
+        "log", "ln", "exp", "sin", "cos", "tan", "max", "min", "lim", "var", "logit", "det",
+    ]
+    .iter()
+    .any(|f| text.ends_with(f))
 }
 
 fn kind_of(name: &str) -> Kind {
@@ -391,8 +405,30 @@ fn kind_of(name: &str) -> Kind {
 fn is_relation(sign: &str) -> bool {
     matches!(
         sign,
-        "=" | "<" | ">" | "≤" | "≥" | "⩽" | "⩾" | "≦" | "≧" | "≈" | "≅" | "≃" | "≠" | "∼" | "~" | "≪" | "≫" | "∈"
-            | "→" | "⇒" | "≡" | "∝" | "<=" | ">=" | "<<"
+        "=" | "<"
+            | ">"
+            | "≤"
+            | "≥"
+            | "⩽"
+            | "⩾"
+            | "≦"
+            | "≧"
+            | "≈"
+            | "≅"
+            | "≃"
+            | "≠"
+            | "∼"
+            | "~"
+            | "≪"
+            | "≫"
+            | "∈"
+            | "→"
+            | "⇒"
+            | "≡"
+            | "∝"
+            | "<="
+            | ">="
+            | "<<"
     )
 }
 

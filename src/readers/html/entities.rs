@@ -442,7 +442,14 @@ mod tests {
 
     #[test]
     fn names_are_found() {
-        for (name, text) in [("chi", "χ"), ("eta", "η"), ("minus", "−"), ("nbsp", "\u{a0}"), ("le", "≤"), ("plusmn", "±")] {
+        for (name, text) in [
+            ("chi", "χ"),
+            ("eta", "η"),
+            ("minus", "−"),
+            ("nbsp", "\u{a0}"),
+            ("le", "≤"),
+            ("plusmn", "±"),
+        ] {
             assert_eq!(named(name), Some(text));
         }
         assert_eq!(named("watering"), None);
@@ -453,7 +460,11 @@ mod tests {
     fn tables_are_sorted_and_whole() {
         assert!(NAMED.is_sorted_by(|a, b| a.0 < b.0));
         assert!(UNTERMINATED.is_sorted());
-        assert!(UNTERMINATED.iter().all(|n| named(n).is_some() && n.len() <= LONGEST_UNTERMINATED));
+        assert!(
+            UNTERMINATED
+                .iter()
+                .all(|n| named(n).is_some() && n.len() <= LONGEST_UNTERMINATED)
+        );
     }
 
     #[test]

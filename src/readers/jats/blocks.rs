@@ -258,7 +258,11 @@ impl<'a> Reading<'a> {
             self.text(" ");
             return 0;
         }
-        let span = |name| attribute(e, name).and_then(|v| v.trim().parse().ok()).unwrap_or(1);
+        let span = |name| {
+            attribute(e, name)
+                .and_then(|v| v.trim().parse().ok())
+                .unwrap_or(1)
+        };
         self.b.cell(CellShape {
             rowspan: span("rowspan"),
             colspan: span("colspan"),
@@ -274,7 +278,11 @@ impl<'a> Reading<'a> {
         let Some(wrap) = self.wraps.pop() else { return };
         let tables = wrap.first_table..self.b.table_count();
         if tables.is_empty() && wrap.picture {
-            let name = if wrap.label.is_empty() { "a table" } else { &wrap.label };
+            let name = if wrap.label.is_empty() {
+                "a table"
+            } else {
+                &wrap.label
+            };
             self.b
                 .remark(format!("{name} is stored as a picture and was not read"));
         }
@@ -397,7 +405,9 @@ impl<'a> Reading<'a> {
     /// description.
     pub(super) fn close_formula(&mut self) {
         self.flush_shift();
-        let Some(formula) = self.formulas.pop() else { return };
+        let Some(formula) = self.formulas.pop() else {
+            return;
+        };
         let mut read = formula.read;
         if !read && !self.context.silent {
             let tex = tex_body(&formula.tex);

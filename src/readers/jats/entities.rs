@@ -30,12 +30,18 @@ impl<'a> Declared<'a> {
                 return;
             }
             let declaration = rest.trim_start();
-            let Some(name_end) = declaration.find(|c: char| c.is_whitespace()) else { return };
+            let Some(name_end) = declaration.find(|c: char| c.is_whitespace()) else {
+                return;
+            };
             let (name, value) = declaration.split_at(name_end);
             let value = value.trim_start();
             // Parameter entities and entities in other files have no text here.
-            let Some(quote) = value.chars().next().filter(|c| matches!(c, '"' | '\'')) else { continue };
-            let Some(text) = value[1..].split(quote).next() else { continue };
+            let Some(quote) = value.chars().next().filter(|c| matches!(c, '"' | '\'')) else {
+                continue;
+            };
+            let Some(text) = value[1..].split(quote).next() else {
+                continue;
+            };
             // Everything up to the closing quote belongs to this declaration.
             rest = &value[1 + text.len()..];
             if let Some(text) = plain(text) {

@@ -8,8 +8,8 @@ mod blocks;
 mod entities;
 mod tags;
 
-use super::mathml::Math;
 use super::Unreadable;
+use super::mathml::Math;
 use crate::manuscript::{BlockKind, Builder, CellShape, Format, Manuscript, Part};
 use blocks::local_is;
 use entities::Declared;
@@ -172,10 +172,12 @@ impl<'a> Reading<'a> {
         }
         match self.formula_pictures {
             0 => {}
-            1 => self.b.remark("1 formula is stored only as a picture and was not read"),
-            n => self
+            1 => self
                 .b
-                .remark(format!("{n} formulas are stored only as pictures and were not read")),
+                .remark("1 formula is stored only as a picture and was not read"),
+            n => self.b.remark(format!(
+                "{n} formulas are stored only as pictures and were not read"
+            )),
         }
         self.declared.remark_unknown(&mut self.b);
         Ok(self.b.finish())
@@ -455,7 +457,9 @@ impl<'a> Reading<'a> {
     }
 
     fn end(&mut self) -> Result<(), Unreadable> {
-        let Some(frame) = self.frames.pop() else { return Ok(()) };
+        let Some(frame) = self.frames.pop() else {
+            return Ok(());
+        };
         self.context = frame.outside;
         match frame.tag {
             Tag::Inline | Tag::Meta | Tag::Skip | Tag::Letter | Tag::Math | Tag::Break => {}

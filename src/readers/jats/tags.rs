@@ -110,11 +110,37 @@ pub(super) fn tag(name: &str) -> Tag {
         "app" | "app-group" => Appendix,
         "sub-article" | "response" => Letter,
         // References, metadata, programs, and what only describes a picture.
-        "ref-list" | "ref" | "element-citation" | "nlm-citation" | "citation-alternatives" | "object-id"
-        | "alt-text" | "long-desc" | "permissions" | "copyright-statement" | "license" | "sec-meta"
-        | "kwd-group" | "contrib-group" | "author-notes" | "history" | "counts" | "code" | "preformat"
-        | "private-char" | "rp" | "rt" | "index-term" | "toc" | "related-object" | "processing-meta"
-        | "journal-meta" | "custom-meta-group" | "custom-meta-wrap" | "colgroup" | "col" => Skip,
+        "ref-list"
+        | "ref"
+        | "element-citation"
+        | "nlm-citation"
+        | "citation-alternatives"
+        | "object-id"
+        | "alt-text"
+        | "long-desc"
+        | "permissions"
+        | "copyright-statement"
+        | "license"
+        | "sec-meta"
+        | "kwd-group"
+        | "contrib-group"
+        | "author-notes"
+        | "history"
+        | "counts"
+        | "code"
+        | "preformat"
+        | "private-char"
+        | "rp"
+        | "rt"
+        | "index-term"
+        | "toc"
+        | "related-object"
+        | "processing-meta"
+        | "journal-meta"
+        | "custom-meta-group"
+        | "custom-meta-wrap"
+        | "colgroup"
+        | "col" => Skip,
         _ => Inline,
     }
 }
@@ -123,7 +149,8 @@ pub(super) fn tag(name: &str) -> Tag {
 pub(super) fn is_about_authors(note_type: &str) -> bool {
     matches!(
         note_type,
-        "con" | "conflict"
+        "con"
+            | "conflict"
             | "coi-statement"
             | "financial-disclosure"
             | "supported-by"
