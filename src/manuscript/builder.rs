@@ -40,6 +40,9 @@ impl Default for CellShape {
 /// Spans beyond this are taken for a mistake in the file, not for a table this large.
 const LARGEST_SPAN: u32 = 1000;
 
+/// Cells beyond this column share it: no page is that wide, and a damaged file may claim it.
+const LAST_COLUMN: u32 = 4095;
+
 struct OpenTable {
     index: usize,
     row: u32,
@@ -432,6 +435,7 @@ impl Builder {
         {
             table.column += 1;
         }
+        table.column = table.column.min(LAST_COLUMN);
         let (rowspan, colspan) = (
             shape.rowspan.clamp(1, LARGEST_SPAN),
             shape.colspan.clamp(1, LARGEST_SPAN),

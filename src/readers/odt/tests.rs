@@ -343,7 +343,12 @@ fn deep_nesting_is_no_danger() {
     }
     let spans = format!("{}deep{}", "<text:span>".repeat(980), "</text:span>".repeat(980));
     assert_eq!(text(&p(&spans)), "deep\n");
-    for (depth, name) in [(480, "math:mrow"), (970, "math:mrow"), (970, "math:msup"), (970, "math:mfrac")] {
+    for (depth, name) in [
+        (480, "math:mrow"),
+        (970, "math:mrow"),
+        (970, "math:msup"),
+        (970, "math:mfrac"),
+    ] {
         let formula = format!(
             "<draw:frame><draw:object><math:math>{}<math:mi>x</math:mi>{}</math:math></draw:object></draw:frame>",
             format!("<{name}>").repeat(depth),

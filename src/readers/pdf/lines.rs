@@ -72,7 +72,11 @@ pub fn rows(mut pieces: Vec<Piece>) -> Vec<Vec<Piece>> {
             row.iter().all(|p| {
                 let size = p.size.max(piece.size);
                 // Raised marks that stand off from their line still belong to it.
-                let slack = if p.size.min(piece.size) < 0.85 * size { 0.5 } else { 0.35 };
+                let slack = if p.size.min(piece.size) < 0.85 * size {
+                    0.5
+                } else {
+                    0.35
+                };
                 (p.baseline - piece.baseline).abs() < slack * size
                     && (p.area[2] - 0.3 * size <= piece.area[0] || piece.area[2] - 0.3 * size <= p.area[0])
             })

@@ -265,7 +265,11 @@ impl Measure {
             return Seam::Apart;
         }
         // Titles are larger than what is usual in the column, and so are their line distances.
-        let usual = if size > 1.07 * self.body.size { self.leading.max(self.body.leading.max(1.3) * size) } else { self.leading };
+        let usual = if size > 1.07 * self.body.size {
+            self.leading.max(self.body.leading.max(1.3) * size)
+        } else {
+            self.leading
+        };
         if step > (1.25 * usual).max(usual + 0.22 * size) || step < 0.0 {
             return Seam::Apart;
         }
@@ -345,8 +349,9 @@ pub enum Standing {
 /// column and the first of a later one, if the former stops in the middle of a sentence. What
 /// stands between them (footnotes, figures, tables) then comes after.
 pub fn join(blocks: Vec<Block>, body: Body, standing: impl Fn(&Block) -> Standing) -> Vec<Block> {
-    let running =
-        |b: &Block| !b.row && !b.aside && !b.bold() && body.is_size(b.size()) && standing(b) == Standing::Text;
+    let running = |b: &Block| {
+        !b.row && !b.aside && !b.bold() && body.is_size(b.size()) && standing(b) == Standing::Text
+    };
     let is_heading = |b: &Block| standing(b) == Standing::Heading;
     let mut slots: Vec<Option<Block>> = blocks.into_iter().map(Some).collect();
     let mut at = 0;
