@@ -93,7 +93,10 @@ impl Body {
             }
             for pair in column.lines.windows(2) {
                 let leading = (pair[1].baseline - pair[0].baseline) / pair[1].size;
-                if (pair[1].size - pair[0].size).abs() < 0.05 * pair[0].size && (0.8..3.0).contains(&leading)
+                let text = pair.iter().all(|l| l.words.len() >= 4);
+                if text
+                    && (pair[1].size - pair[0].size).abs() < 0.05 * pair[0].size
+                    && (0.8..3.0).contains(&leading)
                 {
                     leadings.push(leading);
                 }
@@ -226,6 +229,8 @@ impl Measure {
         let mut steps: Vec<f32> = lines
             .windows(2)
             .filter(|w| (w[1].size - w[0].size).abs() < 0.05 * w[0].size)
+            // Formulas and labels have distances of their own.
+            .filter(|w| w.iter().all(|l| l.words.len() >= 4))
             .map(|w| w[1].baseline - w[0].baseline)
             .filter(|s| *s > 2.0)
             .collect();
@@ -287,6 +292,9 @@ impl Measure {
         }
         if is_marker(&first) && (ended || short) && !(block.lines.len() == 1 && indent > 0.7 * size && !short)
         {
+            return Seam::Paragraph;
+        }
+        if line.font != last.font && short && !lower {
             return Seam::Paragraph;
         }
         if indent.abs() < 0.7 * size {
