@@ -1,7 +1,6 @@
 //! An *excerpt* is the part of a manuscript around a statement, broken into lines, with a row of
 //! carets below the numbers in question.
 
-use super::harmless;
 use std::ops::Range;
 use unicode_normalization::char::is_combining_mark;
 
@@ -72,10 +71,8 @@ pub fn lines(
 
 /// Plain text broken into lines of at most `width` columns at its spaces.
 pub fn paragraph(text: &str, width: usize) -> Vec<String> {
-    let glyphs: Vec<Glyph> = harmless(text)
-        .chars()
-        .map(|c| Glyph::new(if c.is_whitespace() { ' ' } else { c }, false))
-        .collect();
+    let words: Vec<&str> = text.split_whitespace().collect();
+    let glyphs: Vec<Glyph> = words.join(" ").chars().map(|c| Glyph::new(c, false)).collect();
     wrap(&glyphs, width)
         .into_iter()
         .map(|line| line.iter().map(|g| g.shown).collect())
@@ -248,9 +245,8 @@ mod tests {
             shown(&text, &[".063"], 40),
             "… word word word word word word word\n\
              word word word word word word word word\n\
-             word word word word t(28) = 2.20,\n\
-             p = .063, more more more more more more\n    ^^^^\n\
-             more more more …"
+             word t(28) = 2.20, p = .063, more more\n                       ^^^^\n\
+             more more more more more more …"
         );
     }
 

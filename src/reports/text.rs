@@ -281,7 +281,7 @@ impl Text {
             (counts.agrees, Verdict::Agrees),
         ]
         .into_iter()
-        .filter(|(n, verdict)| *n > 0 || *verdict == Verdict::Agrees)
+        .filter(|(n, _)| *n > 0)
         .map(|(n, verdict)| verb(n, verdict))
         .collect();
         let checks = count(checks, "check", "checks");
