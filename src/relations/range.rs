@@ -38,9 +38,6 @@ pub fn ties(case: &Case) -> Vec<Tie> {
             let value = quantity.number.value();
             let whole = move |_: usize, _: &[Interval]| -> Set {
                 vec![Interval::point(value.floor()), Interval::point(value.ceil())]
-                    .into_iter()
-                    .filter(|i| i.low != value)
-                    .collect()
             };
             variants.push(Variant::new(&["n counts persons"], whole));
             variants.push(Variant::new(&[], law).left_open("an n of weighted data need not be whole"));
