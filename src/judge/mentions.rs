@@ -16,7 +16,7 @@ struct Hit {
 }
 
 /// Meanings that concern the one result they stand with, if they stand with one.
-const ABOUT_ONE: [&str; 2] = ["adjusted", "one-sided"];
+const ABOUT_ONE: [&str; 4] = ["adjusted", "adjusted-unnamed", "bonferroni", "one-sided"];
 
 /// All words that matter in a manuscript.
 pub struct Mentions<'a> {
@@ -61,6 +61,14 @@ impl<'a> Mentions<'a> {
                     about_one,
                 });
             }
+        }
+        // "Corrected for multiple comparisons" means the method that the manuscript names, if it names one.
+        let named = hits
+            .iter()
+            .any(|h| matches!(h.meaning, "adjusted" | "bonferroni"));
+        hits.retain(|h| h.meaning != "adjusted-unnamed" || !named);
+        for hit in hits.iter_mut().filter(|h| h.meaning == "adjusted-unnamed") {
+            hit.meaning = "adjusted";
         }
         Mentions {
             manuscript,
