@@ -18,6 +18,8 @@ pub use find::find;
 pub use grammar::Grammar;
 
 use crate::numbers::{Comparator, Decimal, Interval};
+use std::cell::OnceCell;
+use std::collections::HashSet;
 use std::ops::Range;
 
 /// One reported number.
@@ -63,4 +65,6 @@ pub(crate) struct Scan<'a> {
     commas: bool,
     /// The level of significance, which `n.s.` refers to.
     alpha: f64,
+    /// The meanings of the words that matter in this block, looked for when first asked for.
+    words: OnceCell<HashSet<&'static str>>,
 }

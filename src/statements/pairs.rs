@@ -276,9 +276,13 @@ impl Scan<'_> {
 
     /// A word of this meaning stands in the block.
     fn near(&self, meaning: &str) -> bool {
-        self.grammar
-            .words_in(self.text_of_block())
-            .any(|(found, _)| found == meaning)
+        let words = self.words.get_or_init(|| {
+            self.grammar
+                .words_in(self.text_of_block())
+                .map(|(found, _)| found)
+                .collect()
+        });
+        words.contains(meaning)
     }
 
     fn text_of_block(&self) -> &str {
