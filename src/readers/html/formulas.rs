@@ -137,7 +137,7 @@ impl<'a> Reading<'a> {
                 .get(..100.min(rest.len()))
                 .unwrap_or(rest)
                 .contains("katex-mathml");
-            self.context.unhide = !for_reading;
+            self.context.twofold = for_reading;
             return;
         }
         self.formula_read = false;

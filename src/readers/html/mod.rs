@@ -44,8 +44,8 @@ struct Context {
     silent: bool,
     /// A formula may be read in here even so: it is the form of it meant for reading.
     math_in_silence: bool,
-    /// What is hidden from screen readers only is the only form there is.
-    unhide: bool,
+    /// In a formula whose form for reading stands beside the one kept from screen readers.
+    twofold: bool,
     /// Inside a formula, where `$` and `\(` are marks of TeX.
     formula: bool,
     /// Blocks become text of the block around them.
@@ -121,7 +121,7 @@ impl<'a> Reading<'a> {
                 part: None,
                 silent: false,
                 math_in_silence: false,
-                unhide: false,
+                twofold: false,
                 formula: false,
                 joined: false,
                 preformatted: false,
@@ -249,7 +249,7 @@ impl<'a> Reading<'a> {
             own: false,
         };
         let hidden =
-            element == Element::Hidden || marks.hidden || (marks.aria_hidden && !self.context.unhide);
+            element == Element::Hidden || marks.hidden || (marks.aria_hidden && self.context.twofold);
         if hidden {
             self.context.silent = true;
             self.context.math_in_silence = false;
