@@ -170,7 +170,7 @@ impl<'a> Reading<'a> {
 fn mathml<'t>(tokens: &mut Tokens<'t>) -> (Math, Option<Token<'t>>) {
     let mut math = Math::new();
     let mut open: Vec<&str> = Vec::new();
-    while let Some(token) = tokens.next() {
+    for token in tokens.by_ref() {
         match token {
             Token::Text(raw) => math.text(&decode(raw)),
             Token::Literal(text) => math.text(text),

@@ -172,10 +172,10 @@ impl<'a> Reading<'a> {
         if self.context.silent {
             return;
         }
-        if raw.bytes().all(|b| b.is_ascii_whitespace()) {
-            if !self.context.preformatted || raw.bytes().filter(|b| *b == b'\n').count() < 2 {
-                return self.text(raw);
-            }
+        let breaks = |raw: &str| raw.bytes().filter(|b| *b == b'\n').count();
+        let blank = raw.bytes().all(|b| b.is_ascii_whitespace());
+        if blank && !(self.context.preformatted && breaks(raw) > 1) {
+            return self.text(raw);
         }
         let begins = raw.as_ptr() as usize - self.source.as_ptr() as usize;
         let line = self.line_at(begins);
@@ -187,8 +187,7 @@ impl<'a> Reading<'a> {
             self.b.line(line);
             return self.text(&decode(raw));
         }
-        let mut count = 0;
-        for part in raw.split_inclusive('\n') {
+        for (count, part) in (0..).zip(raw.split_inclusive('\n')) {
             let blank = part.trim().is_empty();
             if self.context.preformatted && blank && !self.context.joined {
                 self.close_block();
@@ -197,7 +196,6 @@ impl<'a> Reading<'a> {
                 self.b.line(line + count);
             }
             self.text(&decode(part));
-            count += 1;
         }
     }
 

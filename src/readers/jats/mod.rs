@@ -479,6 +479,8 @@ impl<'a> Reading<'a> {
                     self.flush_shift();
                     self.b.close();
                     self.flush_put_off()?;
+                    // The title names no section: text before the first heading stands in none.
+                    self.b.return_to_section(None);
                 }
             }
             Tag::Abstract

@@ -441,10 +441,9 @@ fn write(b: &mut Builder, run: &str, shift: Shift) {
                 || (bare.len() == 1 && bare.bytes().all(|c| (b'a'..=b'h').contains(&c)));
             if letters == 0 || raisable {
                 b.superscript(bare);
-            } else if bare.chars().count() == 1 {
-                b.text("^");
-                b.text(bare);
-            } else if bare.starts_with('(') && bare.find(')') == Some(bare.len() - 1) {
+            } else if bare.chars().count() == 1
+                || (bare.starts_with('(') && bare.find(')') == Some(bare.len() - 1))
+            {
                 b.text("^");
                 b.text(bare);
             } else {
