@@ -11,6 +11,7 @@ pub mod latex;
 pub mod markdown;
 pub mod mathml;
 pub mod odt;
+pub mod office;
 pub mod package;
 pub mod pdf;
 pub mod plain;

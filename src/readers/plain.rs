@@ -21,6 +21,7 @@ pub fn read(source: &str) -> Result<Manuscript, Unreadable> {
         b: Builder::new(Format::Text),
         parts: Parts::new(),
         last_item: None,
+        bullet: None,
         in_table: false,
     };
     let mut chunk: Vec<Line> = Vec::new();
@@ -66,6 +67,8 @@ struct Reader {
     parts: Parts,
     /// The number of the list item before, for lists that go on in the next chunk.
     last_item: Option<u32>,
+    /// Bullet and indentation of the list item before, within a chunk.
+    bullet: Option<(char, usize)>,
     /// The block before was a row of a table or its caption.
     in_table: bool,
 }
@@ -99,7 +102,7 @@ impl Reader {
             for line in rest {
                 if !is_rule(line.text) {
                     self.start(BlockKind::Paragraph, line);
-                    self.b.text(line.text);
+                    self.long(line.text, line);
                     self.b.close();
                 }
             }
@@ -143,6 +146,7 @@ impl Reader {
     fn running(&mut self, lines: &[Line]) {
         let widest = lines.iter().map(|l| l.text.len()).max().unwrap_or(0);
         let mut length = 0;
+        self.bullet = None;
         for (i, line) in lines.iter().enumerate() {
             let before = i.checked_sub(1).map(|k| &lines[k]);
             let item = self.item(line, before);
@@ -216,7 +220,11 @@ impl Reader {
             let rest = &text[first.len_utf8()..];
             let words = rest.trim_start();
             let bullet = rest.len() > words.len() && words.starts_with(char::is_alphabetic);
-            return (bullet && (after_sentence || first == '•')).then(|| text.len() - words.len());
+            let follows = after_sentence || first == '•' || self.bullet == Some((first, line.indent));
+            return (bullet && follows).then(|| {
+                self.bullet = Some((first, line.indent));
+                text.len() - words.len()
+            });
         }
         let digits = text
             .bytes()

@@ -100,12 +100,64 @@ pub(super) fn skip_space(source: &str, at: usize) -> usize {
     source.len()
 }
 
+/// The contents of the braces at or after `at`, and the position behind them.
+pub(super) fn braced<'a>(source: &'a str, braces: &Braces, at: usize) -> Option<(&'a str, usize)> {
+    let open = skip_space(source, at);
+    if !source[open..].starts_with('{') {
+        return None;
+    }
+    let close = braces.close(open)?;
+    Some((&source[open + 1..close], close + 1))
+}
+
+/// A needed argument: a group, a macro's name or a single character.
+pub(super) fn needed<'a>(source: &'a str, braces: &Braces, at: usize) -> (&'a str, usize) {
+    if let Some(found) = braced(source, braces, at) {
+        return found;
+    }
+    let start = skip_space(source, at);
+    let length = match source[start..].chars().next() {
+        Some('\\') => 1 + name_at(source, start).len(),
+        Some('}') | None => 0,
+        Some(c) => c.len_utf8(),
+    };
+    (&source[start..start + length], start + length)
+}
+
+/// The name in `{\name}` or `\name`.
+pub(super) fn macro_name<'a>(source: &'a str, braces: &Braces, at: usize) -> Option<(&'a str, usize)> {
+    if let Some((inner, end)) = braced(source, braces, at) {
+        return Some((inner.trim().strip_prefix('\\')?, end));
+    }
+    let at = skip_space(source, at);
+    source[at..].starts_with('\\').then(|| {
+        let name = name_at(source, at);
+        (name, at + 1 + name.len())
+    })
+}
+
+/// The name in `\input{name}` or `\input name`.
+pub(super) fn file_name<'a>(source: &'a str, braces: &Braces, at: usize) -> Option<(&'a str, usize)> {
+    if let Some(found) = braced(source, braces, at) {
+        return Some(found);
+    }
+    let bare = source[at..].strip_prefix(' ')?.trim_start_matches(' ');
+    let start = source.len() - bare.len();
+    let length = bare
+        .find(|c: char| c.is_whitespace() || matches!(c, '\\' | '{' | '}' | '%'))
+        .unwrap_or(bare.len());
+    (length > 0).then(|| (&bare[..length], start + length))
+}
+
 /// How many arguments in braces of a macro are settings rather than text. Brackets among them are
 /// settings too.
 pub(super) fn settings(name: &str) -> usize {
     match name {
         "label"
         | "index"
+        | "hspace"
+        | "fitfigure"
+        | "fitbitmap"
         | "vspace"
         | "vskip"
         | "includegraphics"

@@ -2,7 +2,9 @@
 //! author's macros are replaced by their bodies. Expansion has a budget, because macros can be
 //! written that never end or double with every step.
 
-use super::arguments::{Braces, bracket_end, name_at, skip_space};
+use super::arguments::{Braces, braced, bracket_end, file_name, macro_name, name_at, needed, skip_space};
+use super::code::{chunk_end, conditional_end, verbatim_end};
+use super::definitions::{Macro, Parameter, fill};
 use super::include::Includes;
 use memchr::memmem;
 use std::collections::HashMap;
@@ -23,8 +25,6 @@ pub(super) const UNKNOWN: &str = "…";
 
 const DEEPEST: usize = 40;
 const MOST_EXPANSIONS: usize = 400_000;
-/// Longer bodies define layout, not words.
-const LONGEST_BODY: usize = 4000;
 
 /// Environments whose content is code or drawing.
 const CODE: &[&str] = &[
@@ -54,66 +54,6 @@ const CODE: &[&str] = &[
     "CodeChunk",
     "rawfile",
 ];
-
-/// Macros that are read by their usual meaning whatever the author makes of them.
-const KEPT: &[&str] = &[
-    "section",
-    "subsection",
-    "subsubsection",
-    "paragraph",
-    "chapter",
-    "part",
-    "title",
-    "abstract",
-    "caption",
-    "footnote",
-    "item",
-    "textit",
-    "textbf",
-    "emph",
-    "textsuperscript",
-    "textsubscript",
-    "begin",
-    "end",
-    "label",
-    "ref",
-    "cite",
-    "citep",
-    "citet",
-    "author",
-    "and",
-    "input",
-    "include",
-    "num",
-    "SI",
-    "multicolumn",
-    "multirow",
-    "frac",
-    "sqrt",
-    "text",
-    "mathrm",
-    "hline",
-    "toprule",
-    "midrule",
-    "bottomrule",
-    "maketitle",
-    "appendix",
-    "par",
-    "bibitem",
-];
-
-#[derive(Clone)]
-enum Parameter {
-    Needed,
-    Optional(String),
-    Star,
-}
-
-#[derive(Clone)]
-struct Macro {
-    parameters: Vec<Parameter>,
-    body: String,
-}
 
 #[derive(Clone, Copy, PartialEq)]
 enum Kind {
@@ -152,12 +92,12 @@ pub(super) fn flatten(source: &str, folder: Option<&Path>) -> Flat {
     }
 }
 
-struct Expander {
+pub(super) struct Expander {
     out: String,
     lines: Vec<(usize, u32)>,
     start: usize,
     remarks: Vec<String>,
-    macros: HashMap<String, Macro>,
+    pub(super) macros: HashMap<String, Macro>,
     includes: Includes,
     expansions: usize,
     /// How much text expansions and included files may still add.
@@ -388,246 +328,6 @@ impl Expander {
         self.bytes_left -= text.len();
         self.run(&text, Kind::Body, depth + 1);
         at
-    }
-
-    fn define(&mut self, name: &str, parameters: Vec<Parameter>, body: &str) {
-        if !KEPT.contains(&name) && body.len() <= LONGEST_BODY && !name.is_empty() {
-            let body = body.to_string();
-            self.macros.insert(name.to_string(), Macro { parameters, body });
-        }
-    }
-
-    /// `\newcommand{\name}[2][default]{body}`
-    fn define_command(&mut self, source: &str, after: usize, braces: &Braces) -> usize {
-        let after = after + usize::from(source[after..].starts_with('*'));
-        let Some((name, mut at)) = macro_name(source, braces, after) else {
-            return after;
-        };
-        let mut parameters = Vec::new();
-        let open = skip_space(source, at);
-        if source[open..].starts_with('[')
-            && let Some(end) = bracket_end(source, braces, open)
-        {
-            let count: usize = source[open + 1..end].trim().parse().unwrap_or(0);
-            parameters = vec![Parameter::Needed; count.min(9)];
-            at = end + 1;
-            let open = skip_space(source, at);
-            if source[open..].starts_with('[')
-                && let Some(end) = bracket_end(source, braces, open)
-            {
-                if let Some(first) = parameters.first_mut() {
-                    *first = Parameter::Optional(source[open + 1..end].to_string());
-                }
-                at = end + 1;
-            }
-        }
-        let Some((body, end)) = braced(source, braces, at) else {
-            return at;
-        };
-        self.define(name, parameters, body);
-        end
-    }
-
-    /// `\NewDocumentCommand{\name}{s O{default} m}{body}`
-    fn define_document_command(&mut self, source: &str, after: usize, braces: &Braces) -> usize {
-        let Some((name, at)) = macro_name(source, braces, after) else {
-            return after;
-        };
-        let Some((spec, at)) = braced(source, braces, at) else {
-            return at;
-        };
-        let Some((body, end)) = braced(source, braces, at) else {
-            return at;
-        };
-        let mut parameters = Vec::new();
-        let mut rest = spec;
-        while let Some(c) = rest.chars().next() {
-            rest = &rest[c.len_utf8()..];
-            match c {
-                'm' => parameters.push(Parameter::Needed),
-                's' => parameters.push(Parameter::Star),
-                'o' => parameters.push(Parameter::Optional(String::new())),
-                'O' => {
-                    let inner = rest.strip_prefix('{').unwrap_or(rest);
-                    let end = inner.find('}').unwrap_or(inner.len());
-                    parameters.push(Parameter::Optional(inner[..end].to_string()));
-                    rest = inner[end..].strip_prefix('}').unwrap_or("");
-                }
-                _ => {}
-            }
-        }
-        parameters.truncate(9);
-        self.define(name, parameters, body);
-        end
-    }
-
-    /// `\def\name#1#2{body}`; other patterns of arguments are not followed.
-    fn define_primitively(&mut self, source: &str, after: usize, braces: &Braces) -> usize {
-        let at = skip_space(source, after);
-        if !source[at..].starts_with('\\') {
-            return after;
-        }
-        let name = name_at(source, at);
-        let at = at + 1 + name.len();
-        let Some(open) = memchr::memchr(b'{', &source.as_bytes()[at..]).map(|n| at + n) else {
-            return at;
-        };
-        let pattern = source[at..open].trim();
-        let Some((body, end)) = braced(source, braces, open) else {
-            return at;
-        };
-        let simple = pattern.len() <= 18
-            && pattern.bytes().enumerate().all(|(i, b)| {
-                if i % 2 == 0 {
-                    b == b'#'
-                } else {
-                    b == b'1' + (i / 2) as u8
-                }
-            });
-        if simple {
-            self.define(name, vec![Parameter::Needed; pattern.len() / 2], body);
-        } else if pattern.len() > 100 {
-            return at;
-        }
-        end
-    }
-}
-
-/// The contents of the braces at or after `at`, and the position behind them.
-fn braced<'a>(source: &'a str, braces: &Braces, at: usize) -> Option<(&'a str, usize)> {
-    let open = skip_space(source, at);
-    if !source[open..].starts_with('{') {
-        return None;
-    }
-    let close = braces.close(open)?;
-    Some((&source[open + 1..close], close + 1))
-}
-
-/// A needed argument: a group, a macro's name or a single character.
-fn needed<'a>(source: &'a str, braces: &Braces, at: usize) -> (&'a str, usize) {
-    if let Some(found) = braced(source, braces, at) {
-        return found;
-    }
-    let start = skip_space(source, at);
-    let length = match source[start..].chars().next() {
-        Some('\\') => 1 + name_at(source, start).len(),
-        Some('}') | None => 0,
-        Some(c) => c.len_utf8(),
-    };
-    (&source[start..start + length], start + length)
-}
-
-/// The name in `{\name}` or `\name`.
-fn macro_name<'a>(source: &'a str, braces: &Braces, at: usize) -> Option<(&'a str, usize)> {
-    if let Some((inner, end)) = braced(source, braces, at) {
-        return Some((inner.trim().strip_prefix('\\')?, end));
-    }
-    let at = skip_space(source, at);
-    source[at..].starts_with('\\').then(|| {
-        let name = name_at(source, at);
-        (name, at + 1 + name.len())
-    })
-}
-
-/// The name in `\input{name}` or `\input name`.
-fn file_name<'a>(source: &'a str, braces: &Braces, at: usize) -> Option<(&'a str, usize)> {
-    if let Some(found) = braced(source, braces, at) {
-        return Some(found);
-    }
-    let bare = source[at..].strip_prefix(' ')?.trim_start_matches(' ');
-    let start = source.len() - bare.len();
-    let length = bare
-        .find(|c: char| c.is_whitespace() || matches!(c, '\\' | '{' | '}' | '%'))
-        .unwrap_or(bare.len());
-    (length > 0).then(|| (&bare[..length], start + length))
-}
-
-/// The body with its arguments in place.
-fn fill(body: &str, arguments: &[&str]) -> String {
-    let mut out = String::with_capacity(body.len());
-    let mut rest = body;
-    while let Some(at) = rest.find('#') {
-        out.push_str(&rest[..at]);
-        rest = &rest[at + 1..];
-        if let Some(digit @ b'1'..=b'9') = rest.as_bytes().first() {
-            if let Some(argument) = arguments.get(usize::from(digit - b'1')) {
-                out.push_str(argument);
-            }
-            rest = &rest[1..];
-        } else if rest.starts_with('#') {
-            out.push('#');
-            rest = &rest[1..];
-        }
-    }
-    out.push_str(rest);
-    out
-}
-
-/// The end of `|code|` or `{code}` behind `\verb` and its relatives.
-fn verbatim_end(source: &str, after: usize, braces: &Braces) -> usize {
-    let mut at = after + usize::from(source[after..].starts_with('*'));
-    if source[at..].starts_with('[')
-        && let Some(end) = bracket_end(source, braces, at)
-    {
-        at = end + 1;
-    }
-    // `\mintinline{r}|code|` names its language first.
-    if source[after..].starts_with('{')
-        && let Some(close) = braces.close(at)
-    {
-        at = close + 1;
-        if !source[at..].starts_with(['|', '{', '!', '+', '/']) {
-            return at;
-        }
-    }
-    if source[at..].starts_with('{')
-        && let Some(close) = braces.close(at)
-    {
-        return close + 1;
-    }
-    let Some(mark) = source[at..].chars().next() else {
-        return at;
-    };
-    let inner = &source[at + mark.len_utf8()..];
-    let line = &inner[..inner.find('\n').unwrap_or(inner.len())];
-    match line.find(mark) {
-        Some(end) => at + mark.len_utf8() + end + mark.len_utf8(),
-        None => at,
-    }
-}
-
-/// Behind the `\fi` that ends a condition.
-fn conditional_end(source: &str, after: usize) -> usize {
-    let mut depth = 1;
-    let mut at = after;
-    while let Some(n) = memchr::memchr(b'\\', &source.as_bytes()[at..]) {
-        let name = name_at(source, at + n);
-        at += n + 1 + name.len();
-        if name == "fi" {
-            depth -= 1;
-            if depth == 0 {
-                return at;
-            }
-        } else if name == "else" && depth == 1 {
-            return at;
-        } else if name.starts_with("if") && name != "iff" && name != "ifthenelse" {
-            depth += 1;
-        }
-    }
-    source.len()
-}
-
-/// Behind a chunk of R code, `<<name>>=` to `@`, that begins at `at`.
-fn chunk_end(source: &str, at: usize) -> usize {
-    let line_end =
-        |from: usize| memchr::memchr(b'\n', &source.as_bytes()[from..]).map_or(source.len(), |n| from + n);
-    let first = line_end(at);
-    if !source[at..first].trim_end().ends_with(">>=") {
-        return at;
-    }
-    match memmem::find(&source.as_bytes()[first..], b"\n@") {
-        Some(n) => line_end(first + n + 1),
-        None => source.len(),
     }
 }
 

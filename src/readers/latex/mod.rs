@@ -5,14 +5,17 @@
 
 mod accents;
 mod arguments;
+mod code;
+mod definitions;
 mod expand;
+mod glyphs;
 mod include;
 mod structure;
 mod tables;
 mod walk;
 
 use super::Unreadable;
-use crate::manuscript::Manuscript;
+use crate::manuscript::{Builder, Format, Manuscript};
 use std::path::Path;
 
 /// Reads the document; `folder` is where `\input` files are looked for, in it or below it.
@@ -22,7 +25,18 @@ use std::path::Path;
 /// become remarks.
 pub fn read(source: &str, folder: Option<&Path>) -> Result<Manuscript, Unreadable> {
     let flat = expand::flatten(source, folder);
-    Ok(walk::walk(&flat))
+    let mut b = Builder::new(Format::Latex);
+    walk::walk_into(&mut b, &flat);
+    Ok(b.finish())
+}
+
+/// Reads a piece of LaTeX that stands in a document of another format, beginning on line `first`.
+pub(super) fn read_within(b: &mut Builder, source: &str, first: u32) {
+    let mut flat = expand::flatten(source, None);
+    for (_, line) in &mut flat.lines {
+        *line += first - 1;
+    }
+    walk::walk_into(b, &flat);
 }
 
 #[cfg(test)]

@@ -32,7 +32,7 @@ impl Walker<'_> {
     pub(super) fn structure(&mut self, at: usize, name: &str, after: usize, to: usize) -> Option<usize> {
         Some(match name {
             "begin" => match self.group(after) {
-                Some((from, until, end)) => self.begin(at, from, until, end, to),
+                Some((from, until, end)) => self.begin(from, until, end, to),
                 None => after,
             },
             "end" => match self.group(after) {
@@ -74,8 +74,7 @@ impl Walker<'_> {
                 self.end_paragraph();
                 self.skip(after, 1)
             }
-            "par" | "newpage" | "clearpage" | "pagebreak" | "maketitle" | "bigskip" | "medskip"
-            | "smallskip" => {
+            "par" | "newpage" | "clearpage" | "maketitle" | "bigskip" | "medskip" | "smallskip" => {
                 self.end_paragraph();
                 after
             }
@@ -102,8 +101,7 @@ impl Walker<'_> {
                 self.line_end(at);
                 after
             }
-            "newline" | "linebreak" | "quad" | "qquad" | "hfill" | "enspace" | "thinspace" | "space"
-            | "linewidth" => {
+            "newline" | "quad" | "qquad" | "hfill" | "enspace" | "thinspace" | "space" | "linewidth" => {
                 self.b.text(" ");
                 after
             }
@@ -117,7 +115,12 @@ impl Walker<'_> {
                 self.skip(after, 1)
             }
             "endfirsthead" => self.repeated_head(after, to),
-            "textsuperscript" => self.shifted(at, true, after),
+            "toprule" | "midrule" | "bottomrule" | "addlinespace" | "pagebreak" | "nopagebreak"
+            | "nolinebreak" | "linebreak" => {
+                self.b.text(" ");
+                self.skip_option(after)
+            }
+            "textsuperscript" | "tnote" | "tabfnm" => self.shifted(at, true, after),
             "textsubscript" => self.shifted(at, false, after),
             "num" | "SI" | "qty" | "SIrange" | "numrange" | "qtyrange" | "ang" | "numlist" | "tablenum" => {
                 self.numbers(at, name, after)
@@ -130,7 +133,7 @@ impl Walker<'_> {
             }
             "ensuremath" => {
                 let (from, until, end) = self.group(after)?;
-                self.math(at, from, until);
+                self.math(from, until);
                 end
             }
             "enquote" | "textquote" | "blockquote" => {
@@ -147,7 +150,7 @@ impl Walker<'_> {
                     Some((_, _, second)) if name != "sqrt" => second,
                     _ => first,
                 };
-                self.math(at, at, end);
+                self.math(at, end);
                 end
             }
             "ce" => self.math_group(at, after)?,
@@ -161,7 +164,7 @@ impl Walker<'_> {
         Some(end)
     }
 
-    fn begin(&mut self, at: usize, from: usize, until: usize, end: usize, to: usize) -> usize {
+    fn begin(&mut self, from: usize, until: usize, end: usize, to: usize) -> usize {
         let text = self.text;
         let name = text[from..until].trim();
         let bare = name.trim_end_matches('*');
@@ -172,7 +175,7 @@ impl Walker<'_> {
             };
             let start = if bare == "alignat" { self.skip(end, 1) } else { end };
             self.b.text(" ");
-            self.math(at, start.min(stop), stop);
+            self.math(start.min(stop), stop);
             self.b.text(" ");
             return stop + close.len();
         }
@@ -189,7 +192,7 @@ impl Walker<'_> {
             | "talltblr" => {
                 self.end_paragraph();
                 // A table within a float shares its caption.
-                if !(bare.eq_ignore_ascii_case("threeparttable") && !self.floats.is_empty()) {
+                if self.floats.is_empty() || !bare.eq_ignore_ascii_case("threeparttable") {
                     let is_table = bare.contains("table") || bare.contains("Table");
                     let mut float = Float::new(is_table);
                     float.own = bare.eq_ignore_ascii_case("threeparttable");

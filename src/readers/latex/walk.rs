@@ -6,9 +6,9 @@ use super::accents::accent;
 use super::arguments::{self, Braces, bracket_end, name_at, skip_space};
 use super::expand::{Flat, UNKNOWN};
 use super::tables::Tabular;
-use crate::manuscript::{BlockKind, Builder, Format, Manuscript, Part};
+use crate::manuscript::{BlockKind, Builder, Format, Part};
 use crate::readers::headings::Parts;
-use crate::readers::tex_math::{flat as flat_math, push_math, push_number};
+use crate::readers::tex_math::push_math;
 use crate::readers::tex_symbols::symbol;
 use std::collections::{HashSet, VecDeque};
 
@@ -17,14 +17,17 @@ const DEEPEST: usize = 16;
 /// A formula ends within this many bytes.
 const LONGEST_FORMULA: usize = 20_000;
 
-/// Reads flat source.
-pub(super) fn walk(flat: &Flat) -> Manuscript {
+/// Reads flat source into the builder, in the part that it is in.
+pub(super) fn walk_into(b: &mut Builder, flat: &Flat) {
+    let mut parts = Parts::new();
+    parts.enter(b.current_part());
     let mut walker = Walker {
         text: &flat.text,
         lines: &flat.lines,
         braces: Braces::of(&flat.text),
-        b: Builder::new(Format::Latex),
-        parts: Parts::new(),
+        // Lent for the walk and given back at its end.
+        b: std::mem::replace(b, Builder::new(Format::Latex)),
+        parts,
         footnotes: VecDeque::new(),
         kinds: Vec::new(),
         floats: Vec::new(),
@@ -43,7 +46,7 @@ pub(super) fn walk(flat: &Flat) -> Manuscript {
     for remark in &flat.remarks {
         walker.b.remark(remark.clone());
     }
-    walker.b.finish()
+    *b = walker.b;
 }
 
 /// A float or what else holds tables with their captions and notes.
@@ -76,7 +79,7 @@ pub(super) struct Walker<'a> {
     within: usize,
     /// Environment ends that do not come any more, so that they are not looked for again.
     missing: HashSet<String>,
-    german: bool,
+    pub(super) german: bool,
     /// The text being walked stays in the block that is open.
     pub(super) inline: bool,
 }
@@ -270,38 +273,6 @@ impl<'a> Walker<'a> {
         end
     }
 
-    /// Dashes and quotation marks made of several characters.
-    fn ligature(&mut self, at: usize, to: usize) -> usize {
-        let rest = &self.text[at..to];
-        let (text, length) = if rest.starts_with("---") {
-            ("—", 3)
-        } else if rest.starts_with("--") {
-            ("–", 2)
-        } else if rest.starts_with("``") || rest.starts_with("''") {
-            ("\"", 2)
-        } else if rest.starts_with('`') {
-            ("'", 1)
-        } else if self.german && rest.starts_with('"') {
-            match rest.as_bytes().get(1) {
-                Some(b'a') => ("ä", 2),
-                Some(b'o') => ("ö", 2),
-                Some(b'u') => ("ü", 2),
-                Some(b'A') => ("Ä", 2),
-                Some(b'O') => ("Ö", 2),
-                Some(b'U') => ("Ü", 2),
-                Some(b's') => ("ß", 2),
-                Some(b'`' | b'\'') => ("\"", 2),
-                Some(b'=' | b'~') => ("-", 2),
-                Some(b'-' | b'"' | b'|') => ("", 2),
-                _ => ("\"", 1),
-            }
-        } else {
-            (&rest[..1], 1)
-        };
-        self.push(at, text);
-        at + length
-    }
-
     fn dollar(&mut self, at: usize, to: usize) -> usize {
         let display = self.text[at..to].starts_with("$$");
         let start = at + if display { 2 } else { 1 };
@@ -315,7 +286,7 @@ impl<'a> Walker<'a> {
                 b'{' => depth += 1,
                 b'}' => depth -= 1,
                 b'$' if depth <= 0 => {
-                    self.math(at, start, i);
+                    self.math(start, i);
                     let both = display && bytes.get(i + 1) == Some(&b'$');
                     return i + if both { 2 } else { 1 };
                 }
@@ -335,15 +306,21 @@ impl<'a> Walker<'a> {
         start
     }
 
-    pub(super) fn math(&mut self, at: usize, from: usize, to: usize) {
+    pub(super) fn math(&mut self, from: usize, to: usize) {
         let tex = &self.text[from..to];
         if tex.trim().is_empty() {
             self.b.text(" ");
             return;
         }
-        self.ensure(at);
+        let start = from + (tex.len() - tex.trim_start().len());
+        self.ensure(start);
+        let several = memchr::memchr(b'\n', tex.as_bytes()).is_some();
+        if several {
+            let line = self.line_of(start);
+            self.b.line(line);
+        }
         push_math(&mut self.b, tex);
-        if memchr::memchr(b'\n', tex.as_bytes()).is_some() {
+        if several {
             let line = self.line_of(to);
             self.b.line(line);
         }
@@ -472,7 +449,7 @@ impl<'a> Walker<'a> {
                         if name == "[" {
                             self.b.text(" ");
                         }
-                        self.math(at, after, end);
+                        self.math(after, end);
                         if name == "[" {
                             self.b.text(" ");
                         }
@@ -530,68 +507,6 @@ impl<'a> Walker<'a> {
             }
             None => after,
         }
-    }
-
-    /// `\num`, `\SI` and the like.
-    pub(super) fn numbers(&mut self, at: usize, name: &str, after: usize) -> usize {
-        let after = self.skip_option(after);
-        let text = self.text;
-        let Some((from, to, mut end)) = self.group(after) else {
-            return after;
-        };
-        let first = &text[from..to];
-        let mut second = "";
-        let (range, unit) = match name {
-            "numrange" => (true, false),
-            "SIrange" | "qtyrange" => (true, true),
-            "num" | "ang" | "numlist" | "tablenum" => (false, false),
-            _ => (false, true),
-        };
-        if range && let Some((from, to, behind)) = self.group(end) {
-            second = &text[from..to];
-            end = behind;
-        }
-        let mut unit_text = "";
-        if unit {
-            let option = self.skip_option(end);
-            if let Some((from, to, behind)) = self.group(option) {
-                unit_text = &text[from..to];
-                end = behind;
-            }
-        }
-        self.ensure(at);
-        match name {
-            "ang" => push_number(&mut self.b, first, "\\degree"),
-            "numlist" => {
-                for (i, number) in first.split(';').enumerate() {
-                    if i > 0 {
-                        self.b.text(", ");
-                    }
-                    push_number(&mut self.b, number, "");
-                }
-            }
-            _ => push_number(&mut self.b, first, unit_text),
-        }
-        if range {
-            self.b.text(" to ");
-            push_number(&mut self.b, second, unit_text);
-        }
-        end
-    }
-
-    /// Raised or lowered text, which may contain formulas.
-    pub(super) fn shifted(&mut self, at: usize, raised: bool, after: usize) -> usize {
-        let Some((from, to, end)) = self.group(after) else {
-            return after;
-        };
-        let text = flat_math(&self.text[from..to]);
-        self.ensure(at);
-        if raised {
-            self.b.superscript(&text);
-        } else {
-            self.b.subscript(&text);
-        }
-        end
     }
 
     /// A heading; its footnotes follow it.

@@ -39,6 +39,8 @@ pub(super) struct Lines<'a> {
 struct Margin {
     step: u32,
     next: u32,
+    /// The numbers stand between the lines rather than before them.
+    alone: bool,
 }
 
 impl<'a> Lines<'a> {
@@ -72,15 +74,23 @@ impl<'a> Lines<'a> {
                 page_end: true,
             });
         }
-        if self.done {
-            return None;
+        let mut raw = match self.done {
+            true => return None,
+            false => self.raw(),
+        };
+        while self.is_lone_number(raw) {
+            if self.done || self.turn {
+                raw = "";
+                break;
+            }
+            raw = self.raw();
         }
-        let raw = self.raw();
         let bare = raw.trim_start();
         let mut text = bare.trim_end();
         let space = &raw[..raw.len() - bare.len()];
         let mut indent: usize = space.chars().map(|c| if c == '\t' { 4 } else { 1 }).sum();
         if let Some(margin) = &mut self.margin
+            && !margin.alone
             && let Some((number, rest)) = leading_number(text)
             && (number % margin.step == 0 || margin.step == 1)
             && (number == margin.next
@@ -115,6 +125,23 @@ impl<'a> Lines<'a> {
             indent,
             page_end,
         })
+    }
+
+    /// Whether the line is a margin number that stands on a line of its own, as copying out of
+    /// a viewer leaves them.
+    fn is_lone_number(&mut self, raw: &str) -> bool {
+        let Some(margin) = self.margin.as_mut().filter(|m| m.alone) else {
+            return false;
+        };
+        match leading_number(raw.trim()) {
+            Some((number, ""))
+                if number == margin.step || (margin.next..margin.next + 4).contains(&number) =>
+            {
+                margin.next = number + 1;
+                true
+            }
+            _ => false,
+        }
     }
 
     /// Takes the next line from the source, up to a line feed, carriage return or form feed.
@@ -213,14 +240,17 @@ fn leading_number(text: &str) -> Option<(u32, &str)> {
 fn margin(source: &str) -> Option<Margin> {
     let mut lines = 0u32;
     let mut first = None;
-    let (mut singles, mut fives) = (0u32, 0u32);
+    let (mut singles, mut fives, mut lone) = (0u32, 0u32, 0u32);
     let mut before: Option<u32> = None;
     let mut before_five: Option<(u32, u32)> = None;
     for line in source.lines().map(str::trim).filter(|l| !l.is_empty()).take(600) {
         lines += 1;
-        let Some((number, _)) = leading_number(line) else {
+        let Some((number, rest)) = leading_number(line) else {
             continue;
         };
+        if rest.is_empty() && before.is_none_or(|b| number == b + 1) {
+            lone += 1;
+        }
         if before.is_some_and(|b| number == b + 1 || number == 1) || before.is_none() {
             singles += 1;
             first.get_or_insert(number);
@@ -237,9 +267,21 @@ fn margin(source: &str) -> Option<Margin> {
         return Some(Margin {
             step: 1,
             next: first.unwrap_or(1),
+            alone: false,
         });
     }
-    (fives >= 4 && fives * 10 >= lines).then_some(Margin { step: 5, next: 5 })
+    if lone >= 5 && lone * 10 >= lines * 4 {
+        return Some(Margin {
+            step: 1,
+            next: first.unwrap_or(1),
+            alone: true,
+        });
+    }
+    (fives >= 4 && fives * 10 >= lines).then_some(Margin {
+        step: 5,
+        next: 5,
+        alone: false,
+    })
 }
 
 #[cfg(test)]
@@ -297,6 +339,19 @@ mod tests {
         assert_eq!(read[11], (12, None, "line of the text 12".to_string()));
         let list = "12 plots\n40 litres\n3 hoses\n7 cans\n9 spades\n11 rakes\n";
         assert_eq!(texts(list)[1].2, "40 litres");
+    }
+
+    #[test]
+    fn numbers_on_lines_of_their_own_go_too() {
+        let source: String = (1..=9).map(|n| format!("{n}\nwords here\n")).collect();
+        let mut lines = Lines::of(&source);
+        let mut read = Vec::new();
+        while let Some(line) = lines.next_line() {
+            read.push((line.number, line.text));
+        }
+        read.retain(|(_, text)| !text.is_empty());
+        assert_eq!(read.len(), 9);
+        assert_eq!((read[0], read[8]), ((2, "words here"), (18, "words here")));
     }
 
     #[test]

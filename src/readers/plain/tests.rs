@@ -100,12 +100,12 @@ fn indented_and_unbroken_paragraphs() {
 
 #[test]
 fn lists() {
-    let source = "We expected that:\n- mulch saves water;\n- shade saves\nmore;\n\n1. Soil first\n2. Seeds then, p = .04\nas shown\n\nb = .2,\n- .31 and so on\n";
+    let source = "We expected that:\n- mulch saves water\n- shade saves\nmore;\n\n1. Soil first\n2. Seeds then, p = .04\nas shown\n\nb = .2,\n- .31 and so on\n";
     assert_eq!(
         kinds(source),
         [
             (Paragraph, "We expected that:"),
-            (ListItem, "mulch saves water;"),
+            (ListItem, "mulch saves water"),
             (ListItem, "shade saves more;"),
             (ListItem, "1. Soil first"),
             (ListItem, "2. Seeds then, p = .04 as shown"),

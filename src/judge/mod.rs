@@ -1,0 +1,77 @@
+//! The *judge* tries every relation on every statement and says what it found. It knows neither
+//! file formats nor how findings are shown.
+
+mod borrowing;
+mod evaluate;
+mod finding;
+mod mentions;
+mod repairs;
+mod wording;
+
+pub use finding::{Counts, Document, Finding, Repair, Verdict};
+pub use mentions::stated_alpha;
+
+use crate::manuscript::Manuscript;
+use crate::relations::{Case, REGISTRY, Relation};
+use crate::statements::{Grammar, Statement};
+use mentions::Mentions;
+
+/// The level of significance when neither the person nor the manuscript names one.
+pub const USUAL_ALPHA: f64 = 0.05;
+
+/// What the person asked for.
+#[derive(Clone, Debug, Default)]
+pub struct Options {
+    /// The level of significance; otherwise the one that the manuscript states, otherwise .05.
+    pub alpha: Option<f64>,
+    /// Tests are one-sided where nothing else is said.
+    pub one_sided: bool,
+    /// Only these relations; all if empty.
+    pub only: Vec<String>,
+    /// Not these relations.
+    pub skip: Vec<String>,
+}
+
+impl Options {
+    /// The relations to be tried.
+    fn relations(&self) -> Vec<&'static Relation> {
+        let wanted = |r: &&Relation| {
+            (self.only.is_empty() || self.only.iter().any(|n| n == r.name))
+                && !self.skip.iter().any(|n| n == r.name)
+        };
+        REGISTRY.iter().filter(wanted).collect()
+    }
+}
+
+/// Tries the relations on the statements of a manuscript; `alpha` is the level of significance.
+/// Findings come in the order of the text.
+pub fn judge(
+    manuscript: &Manuscript,
+    statements: &[Statement],
+    grammar: &Grammar,
+    options: &Options,
+    alpha: f64,
+) -> Vec<Finding> {
+    let relations = options.relations();
+    if statements.is_empty() || relations.is_empty() {
+        return Vec::new();
+    }
+    let mentions = Mentions::collect(manuscript, grammar);
+    let mut findings = Vec::new();
+    for (index, statement) in statements.iter().enumerate() {
+        let near = mentions.around(statement);
+        let quantities = borrowing::with_borrowed(statements, index, manuscript);
+        let case = Case {
+            quantities: &quantities,
+            mentions: &near,
+            alpha,
+            one_sided: options.one_sided,
+        };
+        for relation in &relations {
+            for tie in (relation.ties)(&case) {
+                findings.push(evaluate::finding(relation, &tie, &case, statement, manuscript));
+            }
+        }
+    }
+    findings
+}

@@ -1,0 +1,291 @@
+//! *Repairs*: each quantity in turn is left out and solved for; what would agree is printed at the
+//! printed precision, and named slips that lead from it to what is printed come first.
+
+use super::finding::Repair;
+use crate::numbers::{Comparator, Decimal, Interval, Set};
+use crate::relations::Tie;
+use crate::statements::Quantity;
+
+/// More candidates than this are shown as a range.
+const MOST_SINGLE: i64 = 3;
+
+/// What would make the tie agree, the likeliest first.
+pub fn repairs(tie: &Tie, parts: &[&Quantity], values: &[Interval]) -> Vec<Repair> {
+    let mut named = Vec::new();
+    let mut plain = Vec::new();
+    let Some(variant) = tie.variants.first() else {
+        return Vec::new();
+    };
+    for (index, part) in parts.iter().enumerate() {
+        if part.borrowed.is_some() {
+            continue;
+        }
+        let possible = variant.law.solve(index, values);
+        if let Some(repair) = turned(part, &possible).or_else(|| slip(part, &possible)) {
+            named.push(repair);
+        } else if let Some(to) = printed(part, &possible) {
+            plain.push(Repair {
+                symbol: part.symbol,
+                to,
+                slip: None,
+            });
+        }
+    }
+    named.extend(plain);
+    named
+}
+
+/// The comparator the other way round.
+fn turned(part: &Quantity, possible: &Set) -> Option<Repair> {
+    let value = part.number.value();
+    let other = match part.comparator {
+        Comparator::Below | Comparator::AtMost => Interval::at_least(value),
+        Comparator::Above | Comparator::AtLeast => Interval::at_most(value),
+        _ => return None,
+    };
+    let sign = if matches!(part.comparator, Comparator::Below | Comparator::AtMost) {
+        ">"
+    } else {
+        "<"
+    };
+    // All that is possible must lie there, or the turned sign would be just another conflict.
+    let all = !possible.is_empty()
+        && possible
+            .iter()
+            .all(|i| other.contains(i.low) && other.contains(i.high));
+    all.then(|| Repair {
+        symbol: part.symbol,
+        to: format!("{sign} {}", part.printed),
+        slip: Some("comparator turned round"),
+    })
+}
+
+/// A value that one named slip turns into what is printed.
+fn slip(part: &Quantity, possible: &Set) -> Option<Repair> {
+    let exact = part.interval.low == part.interval.high;
+    let fits = |d: &Decimal| {
+        let range = if exact {
+            Interval::point(d.value())
+        } else {
+            d.rounding()
+        };
+        possible.iter().any(|i| i.meets(range))
+    };
+    let repair = |d: Decimal, slip| Repair {
+        symbol: part.symbol,
+        to: d.print_like(&part.printed),
+        slip: Some(slip),
+    };
+    if part.comparator != Comparator::Equal || possible.is_empty() {
+        return None;
+    }
+    // Cut off: some possible value begins with the printed digits.
+    let unit = 10f64.powi(part.number.place);
+    let cut = Interval::new(
+        part.number.value(),
+        part.number.value() + if part.number.negative { -unit } else { unit },
+    );
+    if !exact && part.number.place < 0 && possible.iter().any(|i| i.meets(cut)) {
+        let up = Decimal::at(
+            part.number.digits + if part.number.negative { -1 } else { 1 },
+            part.number.place,
+        );
+        if fits(&up) {
+            return Some(repair(up, "cut off instead of rounded"));
+        }
+    }
+    if part.symbol == "p" {
+        let doubled = Interval::new(part.interval.low * 2.0, part.interval.high * 2.0);
+        if let Some(both) = possible.iter().find_map(|i| i.meet(doubled))
+            && let Some((low, _)) = Decimal::printings(both, part.number.place)
+            && fits(&low)
+        {
+            return Some(repair(low, "one-sided p printed as two-sided"));
+        }
+    }
+    if part.number.digits != 0 {
+        let turned = Decimal {
+            digits: -part.number.digits,
+            negative: !part.number.negative,
+            ..part.number
+        };
+        if fits(&turned) && !possible.iter().any(|i| i.low < 0.0 && i.high > 0.0) {
+            return Some(repair(turned, "sign lost or added"));
+        }
+    }
+    candidates(&part.number)
+        .into_iter()
+        .find(|(d, _)| fits(d))
+        .map(|(d, slip)| repair(d, slip))
+}
+
+/// Numbers that a slip of the keyboard turns into the printed one, the commonest slips first.
+fn candidates(printed: &Decimal) -> Vec<(Decimal, &'static str)> {
+    let mut found: Vec<(Decimal, &'static str)> = Vec::new();
+    let width = (printed.decimals() as usize + 1).max(printed.digits.unsigned_abs().to_string().len());
+    let digits: Vec<u8> = format!("{:0>width$}", printed.digits.unsigned_abs()).into_bytes();
+    let sign = if printed.negative { -1 } else { 1 };
+    let mut add = |d: &[u8], place: i32, slip: &'static str| {
+        let Ok(text) = std::str::from_utf8(d) else { return };
+        let Ok(value) = text.parse::<i64>() else { return };
+        let decimal = Decimal {
+            digits: value * sign,
+            place,
+            negative: printed.negative,
+        };
+        if decimal != *printed {
+            found.push((decimal, slip));
+        }
+    };
+    for i in 1..digits.len() {
+        let mut d = digits.clone();
+        d.swap(i - 1, i);
+        add(&d, printed.place, "digits swapped");
+    }
+    for shift in [1, -1, 2, -2] {
+        add(&digits, printed.place + shift, "decimal point shifted");
+    }
+    for i in 0..digits.len() {
+        for digit in b'0'..=b'9' {
+            let mut d = digits.clone();
+            d[i] = digit;
+            add(&d, printed.place, "one digit wrong");
+        }
+    }
+    for i in 1..digits.len() {
+        if digits[i] == digits[i - 1] {
+            let mut d = digits.clone();
+            d.remove(i);
+            add(&d, printed.place.min(0), "digit doubled");
+        }
+    }
+    if digits.len() < 12 {
+        for i in 0..=digits.len() {
+            for digit in b'0'..=b'9' {
+                let mut d = digits.clone();
+                d.insert(i, digit);
+                add(&d, printed.place, "digit dropped");
+            }
+        }
+    }
+    found
+}
+
+/// The possible values as they would be printed: one, a few, or a range.
+fn printed(part: &Quantity, possible: &Set) -> Option<String> {
+    let middle = part.number.value();
+    // Of several ranges the one nearest to what is printed, on its side of zero.
+    let near = possible.iter().min_by(|a, b| {
+        let far = |i: &Interval| (i.low - middle).max(middle - i.high).max(0.0);
+        far(a).total_cmp(&far(b))
+    })?;
+    if near.high == f64::INFINITY && near.low.is_finite() {
+        return Some(format!(
+            "{} or more",
+            Decimal::round(near.low, part.number.place)?.print_like(&part.printed)
+        ));
+    }
+    if near.low == f64::NEG_INFINITY && near.high.is_finite() {
+        return Some(format!(
+            "{} or less",
+            Decimal::round(near.high, part.number.place)?.print_like(&part.printed)
+        ));
+    }
+    let whole = matches!(part.symbol, "df" | "df1" | "df2" | "n" | "N" | "count") && part.number.is_whole();
+    let place = part.number.place;
+    if whole && !near.has_whole() {
+        return None;
+    }
+    let (low, high) = Decimal::printings(*near, place)?;
+    let show = |d: Decimal| d.print_like(&part.printed);
+    if part.symbol == "p" && high.digits == 0 {
+        return Some(format!(
+            "< {}",
+            Decimal::at(1, place.min(-3)).print_like(&part.printed)
+        ));
+    }
+    Some(match high.digits - low.digits {
+        0 => show(low),
+        1..=MOST_SINGLE => (low.digits..=high.digits)
+            .map(|d| show(Decimal::at(d, place)))
+            .collect::<Vec<_>>()
+            .join(" or "),
+        _ => format!("{} to {}", show(low), show(high)),
+    })
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    fn quantity(symbol: &'static str, printed: &str) -> Quantity {
+        let bare = printed.trim_start_matches('-');
+        let number = Decimal::read(bare, bare != printed, 0).expect("a number");
+        Quantity {
+            symbol,
+            printed: printed.into(),
+            comparator: Comparator::Equal,
+            number,
+            interval: Comparator::Equal.interval(&number, symbol == "df"),
+            span: 0..1,
+            borrowed: None,
+        }
+    }
+
+    fn named(symbol: &'static str, printed: &str, low: f64, high: f64) -> Option<(String, &'static str)> {
+        let repair = slip(&quantity(symbol, printed), &vec![Interval::new(low, high)])?;
+        Some((repair.to, repair.slip.unwrap_or_default()))
+    }
+
+    #[test]
+    fn slips_are_named() {
+        assert_eq!(
+            named("p", ".063", 0.0358, 0.0366),
+            Some((".036".into(), "digits swapped"))
+        );
+        assert_eq!(
+            named("p", ".36", 0.0358, 0.0366),
+            Some((".036".into(), "decimal point shifted"))
+        );
+        assert_eq!(
+            named("p", ".018", 0.0358, 0.0366),
+            Some((".036".into(), "one-sided p printed as two-sided"))
+        );
+        assert_eq!(
+            named("p", ".035", 0.0357, 0.0359),
+            Some((".036".into(), "cut off instead of rounded"))
+        );
+        assert_eq!(
+            named("t", "2.90", 2.19, 2.21),
+            Some(("2.20".into(), "one digit wrong"))
+        );
+        assert_eq!(
+            named("t", "-2.20", 2.19, 2.21),
+            Some(("2.20".into(), "sign lost or added"))
+        );
+        assert_eq!(
+            named("df", "28", 128.0, 128.0),
+            Some(("128".into(), "digit dropped"))
+        );
+        assert_eq!(named("t", "9.13", 2.19, 2.21), None);
+    }
+
+    #[test]
+    fn what_no_slip_explains_is_printed_as_it_would_stand() {
+        let set = vec![Interval::new(0.0358, 0.0366)];
+        assert_eq!(printed(&quantity("p", ".21"), &set), Some(".04".into()));
+        assert_eq!(printed(&quantity("p", ".210"), &set), Some(".036".into()));
+        assert_eq!(
+            printed(&quantity("t", "3.1"), &vec![Interval::new(5.0, 9.0)]),
+            Some("5.0 to 9.0".into())
+        );
+        assert_eq!(
+            printed(&quantity("p", ".210"), &vec![Interval::new(1e-9, 2e-9)]),
+            Some("< .001".into())
+        );
+        assert_eq!(
+            printed(&quantity("df", "28"), &vec![Interval::new(30.2, 30.9)]),
+            None
+        );
+    }
+}

@@ -1,0 +1,330 @@
+//! The engine: hayro interprets the pages, and what it draws is taken down as [`Glyphs`].
+//!
+//! A page can ask for endless work in a few bytes (forms that draw each other many times over).
+//! Every call of the engine is counted, and beyond [`Limits`] the page is given up by unwinding
+//! through the engine, which has no other way to be stopped.
+
+use super::nesting::Forms;
+use super::glyphs::{FontUse, Glyph, Glyphs, Meaning, PageGlyphs, Shape, Step, Turn};
+use hayro_interpret::font::{Glyph as Drawn, GlyphIdentifier, GlyphRun};
+use hayro_interpret::hayro_cmap::BfString;
+use hayro_interpret::kurbo::{Affine, BezPath, PathEl, Point, Shape as _};
+use hayro_interpret::{
+    BlendMode, ClipPath, Context, Device, DrawMode, DrawProps, Image, ImageDrawProps, InterpreterCache,
+    InterpreterSettings, RenderContent, SoftMask, TransformExt, interpret_page,
+};
+use hayro_syntax::{DecryptionError, LoadPdfError, Pdf};
+use std::collections::HashMap;
+use std::hash::{Hash, Hasher};
+use std::panic::{AssertUnwindSafe, catch_unwind, resume_unwind};
+use std::time::{Duration, Instant};
+
+/// How much work one file may ask for.
+#[derive(Clone, Copy, Debug)]
+pub struct Limits {
+    pub pages: usize,
+    /// Glyphs, paths, images and clips on one page.
+    pub calls_per_page: u64,
+    /// Forms drawn for one page, those drawn by forms included.
+    pub forms_per_page: u64,
+    pub time: Duration,
+}
+
+impl Default for Limits {
+    fn default() -> Self {
+        Limits {
+            pages: 2000,
+            calls_per_page: 2_000_000,
+            forms_per_page: 100_000,
+            time: Duration::from_secs(60),
+        }
+    }
+}
+
+/// Why nothing came out.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub enum Refusal {
+    /// Needs a password.
+    Locked,
+    /// Encrypted in a way the engine doesn't know.
+    UnknownCipher,
+    /// Not a PDF, or too damaged.
+    Damaged,
+}
+
+/// Takes down the glyphs of all pages. May panic on damaged files: call it through
+/// [`guard`](super::guard).
+pub fn glyphs(bytes: Vec<u8>, limits: Limits) -> Result<Glyphs, Refusal> {
+    let pdf = Pdf::new(bytes).map_err(|e| match e {
+        LoadPdfError::Decryption(DecryptionError::PasswordProtected) => Refusal::Locked,
+        LoadPdfError::Decryption(_) => Refusal::UnknownCipher,
+        LoadPdfError::Invalid => Refusal::Damaged,
+    })?;
+    let settings = InterpreterSettings {
+        // Notes on the margin and form fields are not what the authors print.
+        render_content: RenderContent::PAGE,
+        ..InterpreterSettings::default()
+    };
+    let end = Instant::now() + limits.time;
+    let mut taker = Taker::new(limits.calls_per_page, end);
+    let all = pdf.pages();
+    let mut cache = InterpreterCache::new();
+    let mut forms = Forms::default();
+    taker.out.left_out = all.len().saturating_sub(limits.pages);
+    for (index, page) in all.iter().take(limits.pages).enumerate() {
+        if Instant::now() > end {
+            taker.out.left_out += all.len().min(limits.pages) - index;
+            break;
+        }
+        let (width, height) = page.render_dimensions();
+        taker.start_page(index as u32 + 1, width, height);
+        if forms.drawn_on(page) > limits.forms_per_page {
+            taker.page.cut_short = true;
+            taker.end_page();
+            continue;
+        }
+        let done = catch_unwind(AssertUnwindSafe(|| {
+            let mut context = Context::new(
+                page.initial_transform(true).to_kurbo(),
+                hayro_interpret::kurbo::Rect::new(0.0, 0.0, width as f64, height as f64),
+                &cache,
+                page.xref(),
+                settings.clone(),
+            );
+            interpret_page(page, &mut context, &mut taker);
+        }));
+        if done.is_err() {
+            // A page given up half-way may leave the cache in any state.
+            cache = InterpreterCache::new();
+            taker.page.cut_short = true;
+        }
+        taker.end_page();
+    }
+    taker.out.find_bold_fonts();
+    Ok(taker.out)
+}
+
+/// The payload with which a page is given up.
+struct Enough;
+
+struct Taker {
+    out: Glyphs,
+    page: PageGlyphs,
+    calls: u64,
+    allowed: u64,
+    end: Instant,
+    fonts: HashMap<u128, u16>,
+    shapes: HashMap<GlyphIdentifier, u32>,
+}
+
+impl Taker {
+    fn new(allowed: u64, end: Instant) -> Taker {
+        Taker {
+            out: Glyphs::default(),
+            page: PageGlyphs::default(),
+            calls: 0,
+            allowed,
+            end,
+            fonts: HashMap::new(),
+            shapes: HashMap::new(),
+        }
+    }
+
+    fn start_page(&mut self, number: u32, width: f32, height: f32) {
+        self.calls = 0;
+        self.page = PageGlyphs {
+            number,
+            width,
+            height,
+            ..PageGlyphs::default()
+        };
+    }
+
+    fn end_page(&mut self) {
+        self.out.pages.push(std::mem::take(&mut self.page));
+    }
+
+    fn count(&mut self, calls: u64) {
+        self.calls += calls;
+        let late = self.calls % 4096 < calls && Instant::now() > self.end;
+        if self.calls > self.allowed || late {
+            // Unlike `panic!` this prints nothing.
+            resume_unwind(Box::new(Enough));
+        }
+    }
+
+    fn font(&mut self, key: u128) -> u16 {
+        let fonts = &mut self.out.fonts;
+        let index = *self.fonts.entry(key).or_insert_with(|| {
+            fonts.push(FontUse::default());
+            (fonts.len() - 1).min(u16::MAX as usize) as u16
+        });
+        fonts[index as usize].uses += 1;
+        index
+    }
+
+    fn take(&mut self, glyph: &Drawn<'_>, place: Affine, next: Option<Point>) {
+        let (advance, font, shape) = match glyph {
+            Drawn::Outline(g) => {
+                let id = g.identifier();
+                let font = self.font(font_key(&id));
+                let shapes = &mut self.out.shapes;
+                let shape = *self.shapes.entry(id).or_insert_with(|| {
+                    shapes.push(shape(font, g.char_code(), &g.outline()));
+                    shapes.len() as u32 - 1
+                });
+                (g.advance_width(), font, Some(shape))
+            }
+            Drawn::Type3(g) => (g.advance_width(), self.font(0), None),
+        };
+        let advance = advance.filter(|a| a.is_finite()).unwrap_or(500.0) as f64;
+        let origin = place * Point::new(0.0, 0.0);
+        let mut end = place * Point::new(advance, 0.0);
+        let along = place * Point::new(1000.0, 0.0) - origin;
+        let up = place * Point::new(0.0, 1000.0) - origin;
+        let size = up.hypot() as f32;
+        if !(0.5..2000.0).contains(&size) || !origin.is_finite() || !along.is_finite() || along.hypot() == 0.0 {
+            return;
+        }
+        // Fonts that are not embedded are stretched; where the next glyph begins is then the truth.
+        if let Some(next) = next {
+            let (whole, part) = ((end - origin).hypot(), (next - origin).dot(along) / along.hypot());
+            if part > 0.3 * whole && part < 0.95 * whole {
+                end = origin + along * (part / along.hypot());
+            }
+        }
+        let unit = along / along.hypot();
+        let turn = match (unit.x, unit.y) {
+            (x, _) if x > 0.96 => Turn::None,
+            (x, _) if x < -0.96 => Turn::Half,
+            (_, y) if y > 0.96 => Turn::Quarter,
+            (_, y) if y < -0.96 => Turn::ThreeQuarters,
+            // Slanted text is a watermark or an axis label.
+            _ => return,
+        };
+        let (width, height) = (self.page.width, self.page.height);
+        let middle = origin.midpoint(end);
+        let inside = |v: f64, limit: f32| v > -2.0 && v < limit as f64 + 2.0;
+        if !inside(middle.x, width) || !inside(middle.y, height) {
+            return;
+        }
+        let to = |p: Point| turn.to_reading((p.x as f32, p.y as f32), (width, height));
+        let (x0, baseline) = to(origin);
+        let (x1, _) = to(end);
+        self.page.glyphs.push(Glyph {
+            meaning: meaning(glyph),
+            code: glyph.char_code(),
+            font,
+            shape,
+            size,
+            x0: x0.min(x1),
+            x1: x0.max(x1),
+            baseline,
+            turn,
+        });
+    }
+}
+
+/// What the text layer says. Bitmap fonts and Type 1 fonts with home-made glyph names often say
+/// nothing, but then use the ASCII code.
+fn meaning(glyph: &Drawn<'_>) -> Meaning {
+    match glyph.as_unicode() {
+        Some(BfString::Char(c)) if c != '\0' => Meaning::Char(c),
+        Some(BfString::String(s)) if !s.is_empty() => Meaning::Many(s.into()),
+        _ => {
+            let coded_in_ascii = match glyph {
+                Drawn::Type3(_) => true,
+                Drawn::Outline(g) => g.font_data().is_none(),
+            };
+            match char::from_u32(glyph.char_code()) {
+                Some(c @ ' '..='~') if coded_in_ascii => Meaning::Char(c),
+                _ => Meaning::Unknown,
+            }
+        }
+    }
+}
+
+/// The engine tells fonts apart inside a glyph's identifier only; its hash begins with the font.
+fn font_key(id: &GlyphIdentifier) -> u128 {
+    #[derive(Default)]
+    struct First(Option<u128>);
+    impl Hasher for First {
+        fn finish(&self) -> u64 {
+            0
+        }
+        fn write(&mut self, _: &[u8]) {}
+        fn write_u128(&mut self, value: u128) {
+            self.0.get_or_insert(value);
+        }
+    }
+    let mut first = First::default();
+    id.hash(&mut first);
+    first.0.unwrap_or(1)
+}
+
+fn shape(font: u16, code: u32, path: &BezPath) -> Shape {
+    let p = |p: Point| [p.x as f32, p.y as f32];
+    let outline = path
+        .elements()
+        .iter()
+        .map(|e| match *e {
+            PathEl::MoveTo(a) => Step::Move(p(a)),
+            PathEl::LineTo(a) => Step::Line(p(a)),
+            PathEl::QuadTo(a, b) => Step::Quad(p(a), p(b)),
+            PathEl::CurveTo(a, b, c) => Step::Curve(p(a), p(b), p(c)),
+            PathEl::ClosePath => Step::Close,
+        })
+        .collect();
+    let bounds = path.bounding_box();
+    Shape {
+        font,
+        code,
+        outline,
+        ink: path.area().abs() as f32,
+        bounds: [
+            bounds.x0 as f32,
+            bounds.y0 as f32,
+            bounds.x1 as f32,
+            bounds.y1 as f32,
+        ],
+    }
+}
+
+impl<'a> Device<'a> for Taker {
+    fn draw_glyph_run(&mut self, run: &GlyphRun<'_, 'a>, props: DrawProps<'a>, _: &DrawMode) {
+        let glyphs = run.glyphs();
+        self.count(1 + glyphs.len() as u64);
+        for (i, glyph) in glyphs.iter().enumerate() {
+            let place = props.transform * glyph.transform();
+            let next = glyphs
+                .get(i + 1)
+                .map(|n| props.transform * n.transform() * Point::ORIGIN);
+            self.take(glyph, place, next);
+        }
+    }
+
+    fn draw_image(&mut self, _: Image<'a, '_>, _: ImageDrawProps<'a>) {
+        self.count(1);
+        self.page.image = true;
+    }
+
+    fn draw_path(&mut self, _: &BezPath, _: DrawProps<'a>, _: &DrawMode) {
+        self.count(1);
+    }
+
+    fn push_clip_path(&mut self, _: &ClipPath) {
+        self.count(1);
+    }
+
+    fn push_transparency_group(&mut self, _: f32, _: Option<SoftMask<'a>>, _: BlendMode) {
+        self.count(1);
+    }
+
+    fn pop_clip(&mut self) {}
+
+    fn pop_transparency_group(&mut self) {}
+
+    fn begin_marked_content(&mut self, _: &[u8], _: Option<&hayro_syntax::object::Dict<'_>>) {
+        self.count(1);
+    }
+}

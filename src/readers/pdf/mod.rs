@@ -1,0 +1,254 @@
+//! PDF stores glyphs at positions, not text. Reading it means finding out again what was on the
+//! author's screen: [`engine_hayro`] hands over the [`glyphs`]; they make [`pieces`] of lines; what
+//! stands in the [`margins`] is set aside; [`columns`] finds the reading order; [`lines`] and
+//! [`paragraphs`] put the text together; [`roles`] tells headings, captions and notes; [`compose`]
+//! fills the manuscript.
+//!
+//! Files are not trusted: the engine runs behind a [`guard`], the second engine ([`fallback`]) in a
+//! process of its own.
+
+mod columns;
+mod compose;
+mod engine_hayro;
+mod fallback;
+pub mod glyphs;
+mod guard;
+mod lines;
+mod margins;
+mod nesting;
+mod paragraphs;
+mod pieces;
+mod roles;
+#[cfg(test)]
+mod sample;
+#[cfg(test)]
+mod tests;
+
+pub use fallback::worker;
+
+use super::Unreadable;
+use crate::manuscript::{BlockKind, Builder, Format, Manuscript};
+use compose::Sheet;
+use engine_hayro::{Limits, Refusal};
+use glyphs::{Glyphs, PageGlyphs, Turn};
+use paragraphs::{Body, Column};
+use std::time::Duration;
+
+/// Reads the document.
+pub fn read(bytes: &[u8]) -> Result<Manuscript, Unreadable> {
+    read_within(bytes, Limits::default())
+}
+
+fn read_within(bytes: &[u8], limits: Limits) -> Result<Manuscript, Unreadable> {
+    let owned = bytes.to_vec();
+    // The engine looks at the clock itself; the guard's patience is for where it can't.
+    let patience = limits.time + Duration::from_secs(5);
+    match guard::run(patience, move || engine_hayro::glyphs(owned, limits)) {
+        Ok(Ok(glyphs)) if !glyphs.pages.is_empty() => manuscript(glyphs, bytes),
+        Ok(Err(Refusal::Locked)) => Err(Unreadable::new(
+            "is encrypted; save a copy without a password and read that",
+        )),
+        Ok(Err(Refusal::UnknownCipher)) => Err(Unreadable::new(
+            "is encrypted in a way that is not known here; save an unprotected copy and read that",
+        )),
+        Err(guard::Mishap::TooLong) => Err(Unreadable::new(format!(
+            "takes more than {} seconds to interpret; print it to a new PDF and read that",
+            limits.time.as_secs()
+        ))),
+        Err(guard::Mishap::NoThread) => {
+            Err(Unreadable::new("cannot be read now: the system gives no thread; try again"))
+        }
+        Ok(Ok(_)) | Ok(Err(Refusal::Damaged)) | Err(guard::Mishap::Panicked) => second_try(bytes),
+    }
+}
+
+fn is_cut_off(bytes: &[u8]) -> bool {
+    let tail = &bytes[bytes.len().saturating_sub(2048)..];
+    memchr::memmem::find(tail, b"%%EOF").is_none() && memchr::memmem::find(tail, b"startxref").is_none()
+}
+
+fn second_try(bytes: &[u8]) -> Result<Manuscript, Unreadable> {
+    let head = &bytes[..bytes.len().min(1024)];
+    if memchr::memmem::find(head, b"%PDF-").is_none() {
+        return Err(Unreadable::new("is not a PDF although it is called one; check the file"));
+    }
+    let Some(pages) = fallback::pages(bytes) else {
+        return Err(Unreadable::new(if is_cut_off(bytes) {
+            "is cut off before its end and no page can be found; get the complete file"
+        } else {
+            "is damaged and no page can be found; get another copy or print it to a new PDF"
+        }));
+    };
+    let mut b = Builder::new(Format::Pdf);
+    b.remark("the file is damaged; its text was recovered without columns and headings, so check what is found against the pages");
+    for (index, page) in pages.iter().enumerate() {
+        b.page(index as u32 + 1);
+        for (number, line) in page.lines().enumerate() {
+            if line.trim().is_empty() {
+                b.close();
+                continue;
+            }
+            if b.is_open() {
+                b.line_break();
+            } else {
+                b.open(BlockKind::Paragraph);
+            }
+            b.line(number as u32 + 1);
+            b.text(line);
+        }
+        b.close();
+    }
+    if b.is_blank() {
+        return Err(no_text());
+    }
+    Ok(b.finish())
+}
+
+fn no_text() -> Unreadable {
+    Unreadable::new("has no text layer (page images only): run text recognition on it first")
+}
+
+fn manuscript(glyphs: Glyphs, bytes: &[u8]) -> Result<Manuscript, Unreadable> {
+    let with_text = |p: &PageGlyphs| p.glyphs.iter().any(|g| !g.meaning.is_space());
+    if !glyphs.pages.iter().any(with_text) {
+        if glyphs.pages.iter().any(|p| p.cut_short) {
+            return Err(Unreadable::new(
+                "asks for endless drawing and shows no text before that; print it to a new PDF and read that",
+            ));
+        }
+        if is_cut_off(bytes) {
+            return Err(Unreadable::new(
+                "is cut off before its end and no text can be found; get the complete file",
+            ));
+        }
+        return Err(no_text());
+    }
+    let columns = read_columns(&glyphs);
+    let body = Body::of(&columns);
+    let blocks = paragraphs::blocks(&columns, body);
+    let blocks = paragraphs::join(blocks, body, |block| {
+        roles::heading(block, body).is_some()
+            || matches!(
+                roles::kind(block, body, 0.0),
+                BlockKind::Caption | BlockKind::TableNote | BlockKind::Footnote
+            )
+    });
+    let sheets: Vec<Sheet> = glyphs
+        .pages
+        .iter()
+        .map(|p| Sheet {
+            number: p.number,
+            height: p.height,
+        })
+        .collect();
+    let mut b = Builder::new(Format::Pdf);
+    remarks(&mut b, &glyphs, bytes);
+    compose::compose(&mut b, &blocks, body, &sheets);
+    Ok(b.finish())
+}
+
+/// What the person should know about the reading.
+fn remarks(b: &mut Builder, glyphs: &Glyphs, bytes: &[u8]) {
+    let numbers = |which: &dyn Fn(&PageGlyphs) -> bool| {
+        let hits: Vec<u32> = glyphs.pages.iter().filter(|p| which(p)).map(|p| p.number).collect();
+        hits
+    };
+    let bare = numbers(&|p| p.image && !p.glyphs.iter().any(|g| !g.meaning.is_space()));
+    if let Some(pages) = listed(&bare) {
+        b.remark(format!("{pages} without text (images only): not read; run text recognition on the file"));
+    }
+    if let Some(pages) = listed(&numbers(&|p| p.cut_short)) {
+        b.remark(format!("{pages} only read in part: damaged, or too much drawing"));
+    }
+    if glyphs.left_out > 0 {
+        b.remark(format!("the last {} pages were not read: the file is too long", glyphs.left_out));
+    }
+    if is_cut_off(bytes) {
+        b.remark("the file is cut off before its end; pages may be missing");
+    }
+    let mut unknown = Vec::new();
+    for page in &glyphs.pages {
+        let strange = page.glyphs.iter().filter(|g| g.meaning == glyphs::Meaning::Unknown).count();
+        if strange * 20 > page.glyphs.len() {
+            unknown.push(page.number);
+        }
+    }
+    if let Some(pages) = listed(&unknown) {
+        b.remark(format!(
+            "{pages} with characters whose meaning the file does not say; they are shown as \u{fffd}"
+        ));
+    }
+}
+
+/// `page 3`, `pages 3, 5–7`.
+fn listed(pages: &[u32]) -> Option<String> {
+    let mut ranges: Vec<(u32, u32)> = Vec::new();
+    for page in pages {
+        match ranges.last_mut() {
+            Some((_, end)) if *end + 1 == *page => *end = *page,
+            _ => ranges.push((*page, *page)),
+        }
+    }
+    let text: Vec<String> = ranges
+        .iter()
+        .map(|(a, b)| if a == b { a.to_string() } else { format!("{a}–{b}") })
+        .collect();
+    match pages.len() {
+        0 => None,
+        1 => Some(format!("page {}", text[0])),
+        _ => Some(format!("pages {}", text.join(", "))),
+    }
+}
+
+/// The columns of all pages in reading order.
+fn read_columns(glyphs: &Glyphs) -> Vec<Column> {
+    let pages: Vec<&PageGlyphs> = glyphs.pages.iter().collect();
+    let mut main: Vec<Vec<pieces::Piece>> = Vec::with_capacity(pages.len());
+    let mut aside: Vec<Vec<Vec<pieces::Piece>>> = Vec::with_capacity(pages.len());
+    for page in &pages {
+        let turns = turns(page);
+        let mut all = turns.iter().map(|t| pieces::pieces(page, *t));
+        let mut first = all.next().unwrap_or_default();
+        margins::drop_line_numbers(page, &mut first);
+        main.push(first);
+        aside.push(all.collect());
+    }
+    margins::drop_running_lines(&pages, &mut main);
+    let mut out = Vec::new();
+    for ((page, main), aside) in pages.iter().zip(main).zip(aside) {
+        let mut number = 1;
+        let mut add = |pieces, aside| {
+            for region in columns::regions(pieces) {
+                let lines: Vec<lines::Line> = lines::rows(region.pieces)
+                    .iter()
+                    .filter_map(|row| lines::line(row, page, glyphs))
+                    .collect();
+                if lines.is_empty() {
+                    continue;
+                }
+                let first_number = number;
+                number += lines.len() as u32;
+                out.push(Column {
+                    lines,
+                    left: region.left,
+                    right: region.right,
+                    first_number,
+                    aside,
+                });
+            }
+        };
+        add(main, false);
+        for pieces in aside {
+            add(pieces, true);
+        }
+    }
+    out
+}
+
+/// The directions of text on a page, the one of most glyphs first.
+fn turns(page: &PageGlyphs) -> Vec<Turn> {
+    let mut counts = [Turn::None, Turn::Quarter, Turn::Half, Turn::ThreeQuarters]
+        .map(|t| (page.glyphs.iter().filter(|g| g.turn == t).count(), t));
+    counts.sort_by_key(|c| std::cmp::Reverse(c.0));
+    counts.into_iter().filter(|c| c.0 > 0).map(|c| c.1).collect()
+}

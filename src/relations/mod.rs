@@ -1,0 +1,221 @@
+//! A *relation* is a law that ties quantities together, such as "p follows from t and df". Each
+//! stands in a file of its own, whose opening `//!` text is the documentation that
+//! `tieout explain` prints. This file holds what all of them share and the registry.
+
+mod laws;
+mod p_from_chi2;
+mod p_from_f;
+mod p_from_r;
+mod p_from_t;
+mod p_from_tau;
+mod p_from_z;
+mod p_value;
+mod reading;
+mod search;
+
+use crate::numbers::{Interval, Set};
+use crate::statements::Quantity;
+
+/// One law, as the registry lists it.
+pub struct Relation {
+    /// Its name in VOCABULARY style, e.g. `p-from-t`.
+    pub name: &'static str,
+    /// The source text of its file; the documentation is cut from its head.
+    source: &'static str,
+    /// Finds every place in a case where the law applies.
+    pub ties: fn(&Case) -> Vec<Tie>,
+}
+
+/// One line of the registry: the name, and the module that has the law and its documentation.
+macro_rules! relation {
+    ($name:literal, $module:ident) => {
+        Relation {
+            name: $name,
+            source: include_str!(concat!(stringify!($module), ".rs")),
+            ties: $module::ties,
+        }
+    };
+}
+
+/// Every relation there is, in the order in which findings of one statement are listed. A relation
+/// that is not in this table does not exist.
+pub const REGISTRY: &[Relation] = &[
+    relation!("p-from-t", p_from_t),
+    relation!("p-from-f", p_from_f),
+    relation!("p-from-chi2", p_from_chi2),
+    relation!("p-from-z", p_from_z),
+    relation!("p-from-r", p_from_r),
+    relation!("p-from-tau", p_from_tau),
+];
+
+impl Relation {
+    /// The documentation of the law: the `//!` text at the head of its file.
+    pub fn documentation(&self) -> String {
+        let lines = self.source.lines().take_while(|l| l.starts_with("//!"));
+        lines
+            .map(|l| l.trim_start_matches("//!").strip_prefix(' ').unwrap_or(""))
+            .fold(String::new(), |mut text, line| {
+                text.push_str(line);
+                text.push('\n');
+                text
+            })
+    }
+
+    /// The first line of the documentation: the law in one line.
+    pub fn summary(&self) -> String {
+        self.documentation()
+            .lines()
+            .next()
+            .unwrap_or_default()
+            .to_string()
+    }
+}
+
+/// How far from a statement something stands.
+#[derive(Clone, Copy, Debug, PartialEq, Eq, PartialOrd, Ord)]
+pub enum Reach {
+    Sentence,
+    Paragraph,
+    Section,
+    Document,
+}
+
+/// A word that matters for judging ("one-tailed", "Bonferroni"), found near or far.
+#[derive(Clone, Debug)]
+pub struct Mention {
+    /// What the word means, as the grammar names it: `one-sided`, `adjusted`, `sphericity`, `welch` …
+    pub meaning: &'static str,
+    /// The word as printed.
+    pub words: String,
+    /// Numbers that belong to it: `7-point` has 7, `from 1 to 5` has 1 and 5, `12 items` has 12.
+    pub numbers: Vec<f64>,
+    pub reach: Reach,
+    /// Paragraph number where it stands.
+    pub paragraph: u32,
+}
+
+/// What one relation gets to see: the quantities of one statement and the words around it.
+pub struct Case<'a> {
+    pub quantities: &'a [Quantity],
+    /// The nearest mention of each meaning.
+    pub mentions: &'a [Mention],
+    /// The level of significance.
+    pub alpha: f64,
+    /// The person says that tests are one-sided.
+    pub one_sided: bool,
+}
+
+impl Case<'_> {
+    /// Indexes of all quantities with this symbol, in the order of the text.
+    pub fn all(&self, symbol: &str) -> Vec<usize> {
+        (0..self.quantities.len())
+            .filter(|i| self.quantities[*i].symbol == symbol)
+            .collect()
+    }
+
+    /// The first quantity with this symbol.
+    pub fn first(&self, symbol: &str) -> Option<usize> {
+        self.quantities.iter().position(|q| q.symbol == symbol)
+    }
+
+    /// The first quantity with any of these symbols, trying them in order.
+    pub fn first_of(&self, symbols: &[&str]) -> Option<usize> {
+        symbols.iter().find_map(|s| self.first(s))
+    }
+
+    /// The nearest mention with this meaning, if it is not farther away than `reach`.
+    pub fn mention(&self, meaning: &str, reach: Reach) -> Option<&Mention> {
+        self.mentions
+            .iter()
+            .filter(|m| m.meaning == meaning && m.reach <= reach)
+            .min_by_key(|m| m.reach)
+    }
+}
+
+/// One application of a relation: the quantities that it ties together and the legitimate forms
+/// of the law.
+pub struct Tie {
+    /// Indexes into [`Case::quantities`]; the first is the one whose expected range is shown.
+    pub parts: Vec<usize>,
+    /// Tried in order: the first that fits makes the tie agree; the first of all is the one whose
+    /// range is shown when none fits.
+    pub variants: Vec<Variant>,
+    /// What is missing, when the law applies but cannot be decided. Then there are no variants.
+    pub open: Option<String>,
+    /// Remarks that are shown whatever the verdict, e.g. `p = .000 is read as p < .0005`.
+    pub remarks: Vec<String>,
+}
+
+impl Tie {
+    pub fn new(parts: Vec<usize>, variants: Vec<Variant>) -> Tie {
+        Tie {
+            parts,
+            variants,
+            open: None,
+            remarks: Vec::new(),
+        }
+    }
+
+    /// A tie that cannot be decided, with the reason.
+    pub fn open(parts: Vec<usize>, reason: impl Into<String>) -> Tie {
+        Tie {
+            parts,
+            variants: Vec::new(),
+            open: Some(reason.into()),
+            remarks: Vec::new(),
+        }
+    }
+}
+
+/// One legitimate form of a law.
+pub struct Variant {
+    /// What the finding says is assumed if this variant fits, e.g. `two-sided`.
+    pub assumes: Vec<String>,
+    /// If set, fitting only by this variant leaves the verdict `open`, with this reason.
+    pub only_open: Option<String>,
+    pub law: Box<dyn Law>,
+}
+
+impl Variant {
+    pub fn new(assumes: &[&str], law: impl Law + 'static) -> Variant {
+        Variant {
+            assumes: assumes.iter().map(|s| s.to_string()).collect(),
+            only_open: None,
+            law: Box::new(law),
+        }
+    }
+
+    /// The same, but agreeing by it alone is not enough to say `agrees`.
+    pub fn left_open(self, reason: impl Into<String>) -> Variant {
+        Variant {
+            only_open: Some(reason.into()),
+            ..self
+        }
+    }
+}
+
+/// The arithmetic of one variant, over intervals.
+pub trait Law: Send + Sync {
+    /// All values that part `target` can have, given that every other part lies in its interval
+    /// (`values[target]` is not looked at, except where the law says so). The set must enclose
+    /// every value that is really possible; where it can be exact, it is.
+    fn solve(&self, target: usize, values: &[Interval]) -> Set;
+
+    /// Whether some values inside the intervals satisfy the law.
+    fn holds(&self, values: &[Interval]) -> bool {
+        self.solve(0, values).iter().any(|set| set.meets(values[0]))
+    }
+}
+
+/// A law given by a function of target and values.
+impl<F> Law for F
+where
+    F: Fn(usize, &[Interval]) -> Set + Send + Sync,
+{
+    fn solve(&self, target: usize, values: &[Interval]) -> Set {
+        self(target, values)
+    }
+}
+
+#[cfg(test)]
+mod tests;

@@ -1,0 +1,95 @@
+//! *Bait*: what looks like a result and is none: thresholds, legends, plans, coordinates, quotations.
+
+use super::grammar::Class;
+use super::join::Draft;
+use super::{Scan, sentences};
+use crate::numbers::Comparator;
+use std::ops::Range;
+
+/// Levels that thresholds and legends are printed with.
+const LEVELS: [f64; 10] = [
+    0.1, 0.05, 0.025, 0.02, 0.01, 0.005, 0.001, 0.0005, 0.0001, 0.00001,
+];
+
+impl Scan<'_> {
+    /// Whether the draft is a result. `supported`: a p, a df or the word for a test stands in the block.
+    pub(super) fn is_result(&self, draft: &Draft, block: &Range<usize>, supported: bool) -> bool {
+        let bytes = draft.items[0].bytes.start..draft.items.iter().map(|i| i.bytes.end).max().unwrap_or(0);
+        if draft.items.iter().any(|i| i.class == Class::Bait) {
+            return false;
+        }
+        if self.quoted(&bytes, block) {
+            return false;
+        }
+        let lonely = draft.items.len() == 1;
+        let first = &draft.items[0];
+        if lonely && first.class == Class::Df {
+            return false;
+        }
+        // Nearly the whole block is this: somebody typed just the result.
+        let whole = (bytes.end - bytes.start) * 2 > block.end - block.start;
+        if draft.items.iter().all(|i| !i.alone && !i.plain) && !supported && !whole {
+            return false;
+        }
+        let only_p = draft
+            .items
+            .iter()
+            .all(|i| i.class == Class::P || i.class == Class::Size);
+        let level = draft.items.iter().all(|i| {
+            i.class != Class::P
+                || matches!(i.quantities[0].comparator, Comparator::Below | Comparator::AtMost)
+                    && LEVELS.contains(&i.quantities[0].number.value())
+        });
+        let equal_level = only_p && lonely && LEVELS.contains(&first.quantities[0].number.value());
+        if only_p && (level || equal_level) {
+            let sentence = sentences::around(self.text, block, &bytes);
+            if level && self.legend(&bytes, block) {
+                return false;
+            }
+            // Up to the end of the sentence for `if …` and the like, the part before decides.
+            let before = &self.text[sentence.start..bytes.start];
+            if self.grammar.thresholds.is_match(&self.text[sentence.clone()]) && lonely
+                || self.grammar.thresholds.is_match(before) && before.len() < 60
+            {
+                return false;
+            }
+        }
+        let planned = draft.items.iter().all(|i| {
+            matches!(i.class, Class::Effect | Class::Size)
+                || matches!(i.quantities[0].symbol, "power" | "level")
+        });
+        if planned && !draft.items.iter().all(|i| i.class == Class::Size) {
+            let sentence = sentences::around(self.text, block, &bytes);
+            if self.grammar.plans.is_match(&self.text[sentence]) {
+                return false;
+            }
+        }
+        true
+    }
+
+    /// `*p < .05`, `** P < 0.01`, `a: p < .05`, `† = p < .1`: the explanation of a mark.
+    fn legend(&self, bytes: &Range<usize>, block: &Range<usize>) -> bool {
+        let before = self.text[block.start..bytes.start].trim_end_matches([' ', '=', ':', '(', ',']);
+        before.ends_with(['*', '†', '‡', '§', '#', '¶', '+', '^'])
+            || before.ends_with("indicates")
+            || before.ends_with("indicate")
+            || before.ends_with("denotes")
+            || before.ends_with("denote")
+            || before.chars().next_back().is_some_and(|c| matches!(c, 'ᵃ'..='ᶻ'))
+    }
+
+    /// Inside quotation marks of one sentence: somebody else's words.
+    fn quoted(&self, bytes: &Range<usize>, block: &Range<usize>) -> bool {
+        let from = self.text[block.start..bytes.start].rfind('"');
+        let Some(open) = from.map(|o| block.start + o) else {
+            return false;
+        };
+        let Some(close) = self.text[bytes.end..block.end].find('"').map(|c| bytes.end + c) else {
+            return false;
+        };
+        let opens = !self.text[..open]
+            .ends_with(|c: char| c.is_alphanumeric() || matches!(c, '.' | ',' | ')'))
+            && !self.text[open + 1..].starts_with(' ');
+        opens && close - open < 200
+    }
+}

@@ -1,0 +1,121 @@
+//! Finding all statements of a manuscript, block by block.
+
+use super::grammar::{Class, Grammar};
+use super::tokens::{self, Token};
+use super::{Quantity, Scan, Statement, sentences, values};
+use crate::manuscript::{Block, BlockKind, Manuscript, Part};
+use std::ops::Range;
+
+/// Finds the statements of the abstract and the body.
+pub fn find(manuscript: &Manuscript, grammar: &Grammar, alpha: f64) -> Vec<Statement> {
+    let text = manuscript.text.as_str();
+    let commas = values::writes_decimal_commas(text);
+    let mut tokens: Vec<Token> = Vec::new();
+    let mut statements = Vec::new();
+    for (index, block) in manuscript.blocks.iter().enumerate() {
+        if !holds_results(block) || !may_hold_results(&text.as_bytes()[block.range.clone()]) {
+            continue;
+        }
+        tokens.clear();
+        tokens::tokenize(text, block.range.start, block.range.end, &mut tokens);
+        let scan = Scan {
+            text,
+            tokens: &tokens,
+            grammar,
+            commas,
+            alpha,
+        };
+        scan.statements(index, &block.range, &mut statements);
+    }
+    for (i, statement) in statements.iter_mut().enumerate() {
+        statement.id = i + 1;
+    }
+    statements
+}
+
+fn holds_results(block: &Block) -> bool {
+    matches!(block.part, Part::Abstract | Part::Body) && block.kind != BlockKind::Quote
+}
+
+/// A quick look: without a digit and one of these marks or words there is no result. (`n.s.` needs
+/// no digit, but then stands beside a p.)
+fn may_hold_results(bytes: &[u8]) -> bool {
+    memchr::memchr3(b'=', b'<', b'>', bytes).is_some()
+        || memchr::memchr2(b'%', 0xc2, bytes).is_some()
+        || memchr::memchr2(0xe2, b':', bytes).is_some()
+        || bytes
+            .windows(2)
+            .any(|w| matches!(w, b"CI" | b"SD" | b"SE" | b"OR" | b"RR" | b"HR"))
+        || bytes.windows(4).any(|w| {
+            matches!(
+                w,
+                b"mean" | b"medi" | b"valu" | b"rati" | b"risk" | b"n.s." | b"Mean" | b"Medi"
+            )
+        })
+}
+
+impl Scan<'_> {
+    /// Appends the statements of one block.
+    fn statements(&self, block: usize, range: &Range<usize>, found: &mut Vec<Statement>) {
+        let items = self.items();
+        if items.is_empty() {
+            return;
+        }
+        let supported = items
+            .iter()
+            .any(|i| i.class == Class::P || i.class == Class::Statistic && i.plain)
+            || tests_are_named(&self.text[range.clone()]);
+        for draft in self.join(items) {
+            if !self.is_result(&draft, range, supported) {
+                continue;
+            }
+            let start = draft
+                .items
+                .iter()
+                .map(|i| i.bytes.start)
+                .min()
+                .unwrap_or(range.start);
+            let end = draft.items.iter().map(|i| i.bytes.end).max().unwrap_or(start);
+            let quantities: Vec<Quantity> = draft
+                .items
+                .iter()
+                .flat_map(|i| {
+                    i.quantities.iter().chain(if i.class == Class::P {
+                        i.more_values.iter()
+                    } else {
+                        [].iter()
+                    })
+                })
+                .cloned()
+                .collect();
+            found.push(Statement {
+                id: 0,
+                block,
+                range: start..end,
+                sentence: sentences::around(self.text, range, &(start..end)),
+                quantities,
+            });
+        }
+    }
+}
+
+/// Words that show that single letters in this block are statistics.
+fn tests_are_named(text: &str) -> bool {
+    const WORDS: [&str; 12] = [
+        "ignifican",
+        "orrelat",
+        "t-test",
+        "t test",
+        "ANOVA",
+        "egress",
+        "effect",
+        "chi-square",
+        "variance",
+        "Cohen",
+        "Wilcoxon",
+        "Mann",
+    ];
+    WORDS
+        .iter()
+        .any(|w| memchr::memmem::find(text.as_bytes(), w.as_bytes()).is_some())
+}

@@ -1,0 +1,66 @@
+//! A *statement* is a group of quantities that are reported together about one result, such as
+//! `t(28) = 2.20, p = .036`. This room turns the text of blocks into statements by the grammars;
+//! it knows neither file formats nor what makes numbers agree.
+
+mod bait;
+mod find;
+mod forms;
+mod grammar;
+mod items;
+mod join;
+mod pairs;
+mod sentences;
+mod spellings;
+mod tokens;
+mod values;
+
+pub use find::find;
+pub use grammar::Grammar;
+
+use crate::numbers::{Comparator, Decimal, Interval};
+use std::ops::Range;
+
+/// One reported number.
+#[derive(Clone, Debug)]
+pub struct Quantity {
+    /// Symbol as in the vocabulary: `t`, `df`, `p`, `eta2p`, `CI_low` …
+    pub symbol: &'static str,
+    /// The digits as they stand in the text.
+    pub printed: String,
+    pub comparator: Comparator,
+    pub number: Decimal,
+    /// The true values that are described by comparator and digits.
+    pub interval: Interval,
+    /// Byte range of the digits in the text as read.
+    pub span: Range<usize>,
+    /// Where the number was taken from, when it does not stand in the statement itself,
+    /// e.g. `n = 28 taken from paragraph 3`.
+    pub borrowed: Option<String>,
+}
+
+/// Quantities reported together.
+#[derive(Clone, Debug)]
+pub struct Statement {
+    /// From 1, in the order of the text.
+    pub id: usize,
+    /// Index of the block it stands in.
+    pub block: usize,
+    /// Byte range from the first symbol to the last digit, with closing brackets.
+    pub range: Range<usize>,
+    /// Byte range of the sentence around it.
+    pub sentence: Range<usize>,
+    pub quantities: Vec<Quantity>,
+}
+
+/// One block on its way from text to statements: its tokens and what the manuscript's numbers
+/// look like.
+pub(crate) struct Scan<'a> {
+    /// The whole text as read; tokens give offsets in it.
+    text: &'a str,
+    tokens: &'a [tokens::Token],
+    grammar: &'a Grammar,
+    /// The manuscript writes decimal commas.
+    commas: bool,
+    /// The level of significance, which `n.s.` refers to.
+    alpha: f64,
+}

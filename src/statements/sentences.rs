@@ -1,0 +1,107 @@
+//! *Sentences*: the stretch of text around a range, from one full stop to the next.
+
+use std::ops::Range;
+
+/// The sentence of `text[block]` that holds `range`.
+pub fn around(text: &str, block: &Range<usize>, range: &Range<usize>) -> Range<usize> {
+    let before = &text[block.start..range.start];
+    let start = ends(before).last().map_or(block.start, |e| block.start + e);
+    let behind = &text[range.end..block.end];
+    let end = ends(behind).next().map_or(block.end, |e| range.end + e);
+    let lead = text[start..end].len() - text[start..end].trim_start().len();
+    let trail = text[start..end].len() - text[start..end].trim_end().len();
+    start + lead..(end - trail).max(range.end)
+}
+
+/// Byte offsets behind the ends of sentences.
+fn ends(text: &str) -> impl Iterator<Item = usize> + '_ {
+    let bytes = text.as_bytes();
+    memchr::memchr3_iter(b'.', b'?', b'!', bytes).filter_map(move |at| {
+        let mut end = at + 1;
+        while end < bytes.len() && matches!(bytes[end], b')' | b'"' | b'\'' | b']') {
+            end += 1;
+        }
+        // Citation numbers raised behind the stop.
+        let rest =
+            text[end..].trim_start_matches(|c: char| matches!(c, '⁰'..='⁹' | '¹' | '²' | '³' | ',' | '⁻'));
+        let skipped = text.len() - end - rest.len();
+        end += skipped;
+        if end >= bytes.len() {
+            return Some(end);
+        }
+        let space = bytes[end] == b' ' || bytes[end] == b'\n';
+        let next = text[end..].trim_start().chars().next()?;
+        let opens = next.is_uppercase()
+            || matches!(next, '(' | '[' | '"')
+            || next.is_ascii_digit() && bytes[at] != b'.';
+        (space && opens && !abbreviation(&text[..at], next)).then_some(end)
+    })
+}
+
+/// The dot at the end of `before` belongs to an abbreviation.
+fn abbreviation(before: &str, next: char) -> bool {
+    let word = before
+        .rsplit(|c: char| !(c.is_alphanumeric() || c == '.'))
+        .next()
+        .unwrap_or("");
+    if matches!(
+        word.to_ascii_lowercase().as_str(),
+        "e.g"
+            | "i.e"
+            | "cf"
+            | "vs"
+            | "fig"
+            | "figs"
+            | "al"
+            | "no"
+            | "nos"
+            | "eq"
+            | "eqs"
+            | "approx"
+            | "ca"
+            | "st"
+            | "dr"
+            | "resp"
+            | "viz"
+            | "tab"
+            | "adj"
+            | "est"
+            | "coef"
+            | "supp"
+            | "ref"
+            | "sec"
+            | "std"
+            | "d.f"
+            | "s.d"
+            | "s.e"
+            | "s.e.m"
+    ) {
+        return true;
+    }
+    // Initials; but a result may well end in a single letter: `higher for group B. The`.
+    word.len() == 1 && word.as_bytes()[0].is_ascii_lowercase() && next != '('
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    fn around_text(text: &str, needle: &str) -> String {
+        let at = text.find(needle).expect("the needle is there");
+        text[around(text, &(0..text.len()), &(at..at + needle.len()))].to_string()
+    }
+
+    #[test]
+    fn a_sentence_goes_from_stop_to_stop() {
+        let text = "Plots were dry. Watering (cf. Fig. 2) differed, t(28) = 2.20, p = .036.¹² Beds did not.";
+        assert_eq!(
+            around_text(text, "t(28) = 2.20, p = .036"),
+            "Watering (cf. Fig. 2) differed, t(28) = 2.20, p = .036.¹²"
+        );
+        assert_eq!(around_text("One p = .03. Two", "p = .03"), "One p = .03.");
+        assert_eq!(
+            around_text("t = 2.2, d.f. = 28 alone", "t = 2.2"),
+            "t = 2.2, d.f. = 28 alone"
+        );
+    }
+}

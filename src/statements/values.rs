@@ -1,0 +1,320 @@
+//! *Values*: the printed number at a token, with its sign, grouping, decimal mark and power of ten.
+
+use super::Scan;
+use super::tokens::{Kind, on_the_line};
+use crate::numbers::Decimal;
+use std::ops::Range;
+
+/// A number as read.
+#[derive(Clone, Debug)]
+pub struct Value {
+    pub number: Decimal,
+    /// Byte range of sign and digits.
+    pub span: Range<usize>,
+    /// The token behind it.
+    pub next: usize,
+}
+
+/// In which company a number stands; decides what a comma inside it means.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub enum Company {
+    /// Alone behind a comparator: a comma before exactly three digits groups thousands.
+    Single,
+    /// A whole number alone behind a comparator: a space or point may group thousands too.
+    Whole,
+    /// One of a list: commas separate, unless the manuscript writes decimal commas.
+    List,
+    /// The only number in a bracket that takes one: `t(1,150)`.
+    Sole,
+}
+
+impl Scan<'_> {
+    /// Reads the number at token `at`, signs included.
+    pub fn value(&self, at: usize, company: Company) -> Option<Value> {
+        let mut i = at;
+        let mut negative = false;
+        let mut start = None;
+        // At most one sign; a typesetter's space may stand behind it.
+        if let Some(sign) = self.mark(i)
+            && matches!(sign, "-" | "+" | "–" | "−")
+        {
+            negative = sign != "+";
+            start = Some(self.tokens[i].start as usize);
+            i += 1;
+        }
+        let first = self.tokens.get(i)?;
+        if first.kind != Kind::Number {
+            return None;
+        }
+        let start = start.unwrap_or(first.start as usize);
+        let mut shown = first.text(self.text).replace('·', ".");
+        let mut end = first.end as usize;
+        i += 1;
+        let mut exponent = 0;
+        if let Some(e) = shown.find(['e', 'E']) {
+            exponent = shown[e + 1..].parse().ok()?;
+            shown.truncate(e);
+        } else {
+            // Groups of thousands and decimal commas.
+            loop {
+                let (Some(mark), Some(digits)) = (self.tokens.get(i), self.tokens.get(i + 1)) else {
+                    break;
+                };
+                let part = digits.text(self.text);
+                let tight = !mark.spaced
+                    && !digits.spaced
+                    && digits.kind == Kind::Number
+                    && part.as_bytes()[0].is_ascii_digit();
+                if tight && mark.text(self.text) == "," {
+                    if self.groups(&shown, part, company) {
+                        shown.push_str(part);
+                    } else if !shown.contains('.')
+                        && part.bytes().all(|b| b.is_ascii_digit())
+                        && self.comma_is_decimal(&shown, part, company, i + 2)
+                    {
+                        shown.push('.');
+                        shown.push_str(part);
+                    } else {
+                        break;
+                    }
+                    end = digits.end as usize;
+                    i += 2;
+                    continue;
+                }
+                break;
+            }
+            if company == Company::Whole {
+                // 12 406 with a thin space; 12.406 in a manuscript with decimal commas.
+                while let Some(digits) = self.tokens.get(i)
+                    && digits.kind == Kind::Number
+                    && digits.spaced
+                    && digits.end - digits.start == 3
+                    && digits.text(self.text).bytes().all(|b| b.is_ascii_digit())
+                    && (1..=3).contains(&(shown.len() % 4))
+                    && !shown.contains('.')
+                    && !shown.starts_with('0')
+                    && self
+                        .text
+                        .as_bytes()
+                        .get(digits.end as usize)
+                        .is_none_or(|b| !b.is_ascii_alphanumeric())
+                {
+                    shown.push_str(digits.text(self.text));
+                    end = digits.end as usize;
+                    i += 1;
+                }
+                if self.commas
+                    && let Some((whole, part)) = shown.split_once('.')
+                    && part.len() == 3
+                    && (1..=3).contains(&whole.len())
+                {
+                    shown = format!("{whole}{part}");
+                }
+            }
+            if let Some((power, behind)) = self.power_of_ten(i) {
+                exponent = power;
+                end = self.tokens[behind - 1].end as usize;
+                i = behind;
+            }
+        }
+        // `1,2-dimethyl`, `3rd`, `2x2` and the like are parts of words.
+        if self
+            .tokens
+            .get(i)
+            .is_some_and(|t| !t.spaced && t.kind == Kind::Word && !self.may_follow_number(t.text(self.text)))
+        {
+            return None;
+        }
+        Some(Value {
+            number: Decimal::read(&shown, negative, exponent)?,
+            span: start..end,
+            next: i,
+        })
+    }
+
+    fn groups(&self, shown: &str, part: &str, company: Company) -> bool {
+        let whole_part = &part[..part.find('.').unwrap_or(part.len())];
+        let sizes = whole_part.len() == 3 && !shown.contains('.') && !shown.starts_with('0');
+        let length = shown.len();
+        let start = length >= 1;
+        match company {
+            Company::Single | Company::Whole => sizes && start && !self.commas,
+            Company::Sole => sizes && start && !(self.commas && length <= 3 && part.len() != 3),
+            Company::List => false,
+        }
+    }
+
+    fn comma_is_decimal(&self, shown: &str, part: &str, company: Company, behind: usize) -> bool {
+        // `0,04` can be nothing else; a longer run `0,1,2` is a list.
+        let another = self.mark(behind) == Some(",")
+            && self.tokens.get(behind).is_some_and(|t| !t.spaced)
+            && self
+                .tokens
+                .get(behind + 1)
+                .is_some_and(|t| !t.spaced && t.kind == Kind::Number);
+        match company {
+            Company::List => {
+                if self.commas {
+                    true
+                } else {
+                    shown == "0" && part.len() > 1 && !another
+                }
+            }
+            Company::Sole => self.commas && !another,
+            Company::Single | Company::Whole => (self.commas || shown == "0" || part.len() != 3) && !another,
+        }
+    }
+
+    /// Letters that may stand right behind a number: groups (`3.1a`), exponents were taken before.
+    fn may_follow_number(&self, word: &str) -> bool {
+        word.chars().count() == 1 && !matches!(word, "x" | "X" | "D" | "d")
+            || matches!(
+                word,
+                "ns" | "to" | "and" | "ms" | "mm" | "cm" | "kg" | "mg" | "years" | "yrs" | "CI"
+            )
+            || self.grammar.units.contains(word)
+            || word.chars().all(|c| c.is_lowercase()) && word.len() <= 3 && word != "x"
+    }
+
+    /// `× 10⁻⁵`, `x 10^-6`, `× 10-6`, `·10^{-6}` at token `at`: the power and the token behind.
+    fn power_of_ten(&self, at: usize) -> Option<(i32, usize)> {
+        if !matches!(self.shown(at)?, "×" | "x" | "X" | "*" | "·" | "∙") || self.shown(at + 1)? != "10" {
+            return None;
+        }
+        let mut i = at + 2;
+        let raised = self.tokens.get(i)?;
+        if raised.kind == Kind::Raised {
+            return Some((on_the_line(raised.text(self.text)).parse().ok()?, i + 1));
+        }
+        let caret = self.mark(i) == Some("^");
+        if caret {
+            i += 1;
+        }
+        let brace = self.mark(i) == Some("{");
+        if brace {
+            i += 1;
+        }
+        let negative = matches!(self.mark(i), Some("-" | "–"));
+        if negative {
+            i += 1;
+        } else if !caret {
+            return None;
+        }
+        let digits: i32 = self.shown(i)?.parse().ok()?;
+        i += 1;
+        if brace && self.mark(i) == Some("}") {
+            i += 1;
+        }
+        Some((if negative { -digits } else { digits }, i))
+    }
+
+    /// The text of a token.
+    pub fn shown(&self, at: usize) -> Option<&str> {
+        self.tokens.get(at).map(|t| t.text(self.text))
+    }
+
+    /// The text of a token that is a mark.
+    pub fn mark(&self, at: usize) -> Option<&str> {
+        self.tokens
+            .get(at)
+            .filter(|t| t.kind == Kind::Mark)
+            .map(|t| t.text(self.text))
+    }
+
+    /// The text of a token that is a word.
+    pub fn word(&self, at: usize) -> Option<&str> {
+        self.tokens
+            .get(at)
+            .filter(|t| t.kind == Kind::Word)
+            .map(|t| t.text(self.text))
+    }
+}
+
+/// Whether a manuscript writes its decimals with commas: more numbers behind comparators do than don't.
+pub fn writes_decimal_commas(text: &str) -> bool {
+    let bytes = text.as_bytes();
+    let (mut commas, mut points) = (0usize, 0usize);
+    for at in memchr::memchr3_iter(b'=', b'<', b'>', bytes) {
+        let mut i = at + 1;
+        while i < bytes.len() && matches!(bytes[i], b' ' | b'-') {
+            i += 1;
+        }
+        let digits = bytes[i.min(bytes.len())..]
+            .iter()
+            .take_while(|b| b.is_ascii_digit())
+            .count();
+        i += digits;
+        let behind = bytes
+            .get(i + 1..)
+            .unwrap_or(&[])
+            .iter()
+            .take_while(|b| b.is_ascii_digit())
+            .count();
+        match bytes.get(i) {
+            Some(b'.') if behind > 0 => points += 1,
+            // Three digits behind a number other than 0 may be thousands.
+            Some(b',') if digits > 0 && behind > 0 && (behind != 3 || bytes[i - digits] == b'0') => {
+                commas += 1
+            }
+            _ => {}
+        }
+    }
+    commas > points
+}
+
+#[cfg(test)]
+mod tests {
+    use super::super::{Grammar, tokens};
+    use super::*;
+
+    fn read(text: &str, company: Company, commas: bool) -> Option<(String, String)> {
+        let mut t = Vec::new();
+        tokens::tokenize(text, 0, text.len(), &mut t);
+        let scan = Scan {
+            text,
+            tokens: &t,
+            grammar: Grammar::built_in(),
+            commas,
+            alpha: 0.05,
+        };
+        scan.value(0, company)
+            .map(|v| (v.number.to_string(), text[v.span].to_string()))
+    }
+
+    #[test]
+    fn numbers_as_people_print_them() {
+        use Company::*;
+        for (text, company, commas, number, printed) in [
+            (".036", Single, false, "0.036", ".036"),
+            ("-0.31", Single, false, "-0.31", "-0.31"),
+            ("- 0.31)", Single, false, "-0.31", "- 0.31"),
+            ("12,406 people", Single, false, "12406", "12,406"),
+            ("1,294,221", Single, false, "1294221", "1,294,221"),
+            ("12 406 people", Whole, false, "12406", "12 406"),
+            ("0,04", Single, false, "0.04", "0,04"),
+            ("3,21", Single, true, "3.21", "3,21"),
+            ("1,85; 3", List, true, "1.85", "1,85"),
+            ("1,52", List, false, "1", "1"),
+            ("1,150)", Sole, false, "1150", "1,150"),
+            ("0·021", Single, false, "0.021", "0·021"),
+            ("3.4 × 10⁻⁶", Single, false, "0.0000034", "3.4 × 10⁻⁶"),
+            ("3.4 × 10-6", Single, false, "0.0000034", "3.4 × 10-6"),
+            ("3.4 x 10^-6", Single, false, "0.0000034", "3.4 x 10^-6"),
+            ("3·10^{-2}", Single, false, "0.03", "3·10^{-2}"),
+            ("4.1e-06", Single, false, "0.0000041", "4.1e-06"),
+            ("3.1a", Single, false, "3.1", "3.1"),
+        ] {
+            let (n, p) = read(text, company, commas).unwrap_or_else(|| panic!("{text} is a number"));
+            assert_eq!((n.as_str(), p.as_str()), (number, printed), "{text}");
+        }
+        assert!(read("2x2", Single, false).is_none());
+        assert!(read("3D", Single, false).is_none());
+    }
+
+    #[test]
+    fn the_manuscript_decides_what_a_comma_is() {
+        assert!(writes_decimal_commas("rho = 0,182; p = 0,04"));
+        assert!(!writes_decimal_commas("N = 12,406, p = .04"));
+        assert!(!writes_decimal_commas("F(1,24) = 3.2"));
+    }
+}
