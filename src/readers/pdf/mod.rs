@@ -123,7 +123,11 @@ fn manuscript(glyphs: Glyphs, bytes: &[u8]) -> Result<Manuscript, Unreadable> {
                 "is cut off before its end and no text can be found; get the complete file",
             ));
         }
-        return Err(no_text());
+        return Err(if glyphs.pages.iter().any(|p| p.image) {
+            no_text()
+        } else {
+            Unreadable::new("has no text on its pages; if they show any, run text recognition on it first")
+        });
     }
     let columns = read_columns(&glyphs);
     let body = Body::of(&columns);
