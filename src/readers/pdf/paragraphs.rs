@@ -261,7 +261,7 @@ impl Measure {
             return Seam::Apart;
         }
         if line.bold != last.bold
-            && !(lower && !ended)
+            && (!lower || ended)
             && line
                 .words
                 .iter()
