@@ -246,7 +246,7 @@ mod tests {
             "… word word word word word word word\n\
              word word word word word word word word\n\
              word t(28) = 2.20, p = .063, more more\n                       ^^^^\n\
-             more more more more more more …"
+             more more more more more more more …"
         );
     }
 
