@@ -71,6 +71,7 @@ pub struct Grammar {
     pub units: HashSet<String>,
     pub replicates: HashSet<String>,
     pub before: HashSet<String>,
+    pub labels: HashSet<String>,
     pub thresholds: Regex,
     pub plans: Regex,
     words: AhoCorasick,
@@ -90,6 +91,7 @@ struct File {
     units: Vec<String>,
     replicates: Vec<String>,
     before: Vec<String>,
+    labels: Vec<String>,
     thresholds: Vec<String>,
     plans: Vec<String>,
 }
@@ -224,6 +226,7 @@ impl Grammar {
             all.units.extend(file.units);
             all.replicates.extend(file.replicates);
             all.before.extend(file.before);
+            all.labels.extend(file.labels);
             all.thresholds.extend(file.thresholds);
             all.plans.extend(file.plans);
         }
@@ -328,6 +331,7 @@ impl Grammar {
             units: all.units.into_iter().collect(),
             replicates: all.replicates.into_iter().collect(),
             before: all.before.into_iter().collect(),
+            labels: all.labels.into_iter().collect(),
             thresholds: either(&all.thresholds)?,
             plans: either(&all.plans)?,
             words,

@@ -41,7 +41,10 @@ impl Scan<'_> {
                     .or_else(|| self.paired(at))
                     .or_else(|| self.assignment(at))
                     .map(|(item, next)| (vec![item], next)),
-                Kind::Number => self.form(at).or_else(|| self.mean_and_spread(at)),
+                Kind::Number => self
+                    .form(at)
+                    .or_else(|| self.mean_and_spread(at))
+                    .or_else(|| self.unnamed(at)),
                 Kind::Mark if !token.text(self.text).is_ascii() => {
                     self.assignment(at).map(|(item, next)| (vec![item], next))
                 }
@@ -64,7 +67,7 @@ impl Scan<'_> {
     }
 
     /// `symbol arguments comparator number` at token `at`.
-    fn assignment(&self, at: usize) -> Option<(Item, usize)> {
+    pub(super) fn assignment(&self, at: usize) -> Option<(Item, usize)> {
         let found = self.grammar.spellings.at(self.text, self.tokens, at, |_| true)?;
         if !self.begins_word(at) {
             return None;
@@ -76,13 +79,12 @@ impl Scan<'_> {
         if arguments.is_empty() && !symbol.arguments.is_empty() && self.mark(next) == Some("_") {
             next += 1;
         }
-        // A remark in brackets: `p (two-tailed) = .03`.
-        if let Some(behind) = self.remark(next) {
+        // A remark in brackets: `p (two-tailed) = .03`, `odds ratio [OR] 1.5`.
+        if let Some(behind) = self.remark(next).or_else(|| self.abbreviation(next, symbol.name)) {
             next = behind;
         }
-        let compared =
-            self.grammar
-                .comparator(self.text, self.tokens, next, words || symbol.class == Class::P);
+        let wordy = words || symbol.bare || symbol.class == Class::P;
+        let compared = self.grammar.comparator(self.text, self.tokens, next, wordy);
         let (comparator, value_at) = match compared {
             Some((comparator, behind)) => {
                 // `p-value was < .001`: the sign decides.
@@ -155,12 +157,16 @@ impl Scan<'_> {
         }
         if symbol.class == Class::Size
             && self
-                .word(next)
+                .word(next + usize::from(self.word(next) == Some("independent")))
                 .is_some_and(|w| self.grammar.replicates.contains(w))
         {
             return None;
         }
-        if !with_arguments && !words && self.misleading_before(at) {
+        // No size has decimals.
+        if symbol.whole && !value.number.is_whole() {
+            return None;
+        }
+        if !with_arguments && !words && self.misleading_before(at) && !self.goes_on(next) {
             return None;
         }
         let mut name = self.renamed(symbol, &value, words);
@@ -260,7 +266,13 @@ impl Scan<'_> {
             return true;
         }
         match self.tokens[at - 1].kind {
-            Kind::Mark => !matches!(self.shown(at - 1), Some("@" | "#" | "$" | "\\" | "&")),
+            // `&P = 0.09` below a table explains a sign.
+            Kind::Mark if self.shown(at - 1) == Some("&") => self.tokens[at - 1].spaced,
+            // The letter at the end of a name: `IL-2`, `BEAN-S2`.
+            Kind::Mark if self.shown(at - 1) == Some("-") && at > 1 && !self.tokens[at - 1].spaced => !self
+                .word(at - 2)
+                .is_some_and(|w| w.len() > 1 && w.bytes().all(|b| b.is_ascii_uppercase())),
+            Kind::Mark => !matches!(self.shown(at - 1), Some("@" | "#" | "$" | "\\")),
             Kind::Raised => true,
             _ => false,
         }
@@ -317,7 +329,8 @@ impl Scan<'_> {
         let mut numbers = Vec::new();
         let mut named = Vec::new();
         while at < end {
-            if let Some(value) = self.value(at, company).filter(|v| v.next <= end) {
+            let value = self.value(at, company).or_else(|| self.lowered_value(at));
+            if let Some(value) = value.filter(|v| v.next <= end) {
                 at = value.next;
                 numbers.push(value);
             } else if let Some((item, next)) = self.assignment(at).filter(|(_, next)| *next <= end) {
@@ -378,28 +391,16 @@ impl Scan<'_> {
             if !lowered && token.kind != Kind::Number {
                 return None;
             }
-            let mut shown = on_the_line(token.text(self.text));
-            let mut end = token.end;
-            i += 1;
-            // A lowered decimal point stays on the line: ₄₁₂.₃₅.
-            if lowered
-                && self.mark(i) == Some(".")
-                && self
-                    .tokens
-                    .get(i + 1)
-                    .is_some_and(|t| t.kind == Kind::Lowered && !t.spaced)
-            {
-                shown.push('.');
-                shown.push_str(&on_the_line(self.tokens[i + 1].text(self.text)));
-                end = self.tokens[i + 1].end;
-                i += 2;
-            }
-            let number = Decimal::read(&shown, false, 0)?;
-            let value = Value {
-                number,
-                span: token.start as usize..end as usize,
-                next: i,
+            let value = if lowered {
+                self.lowered_value(i)?
+            } else {
+                Value {
+                    number: Decimal::read(token.text(self.text), false, 0)?,
+                    span: token.start as usize..token.end as usize,
+                    next: i + 1,
+                }
             };
+            i = value.next;
             if quantities.len() >= symbol.arguments.len() {
                 return None;
             }
@@ -422,6 +423,29 @@ impl Scan<'_> {
             .is_some();
         let required = symbol.arguments.iter().filter(|a| !a.optional).count();
         (compared && quantities.len() >= required).then_some((quantities, i))
+    }
+
+    /// The number in lowered digits at token `at`.
+    fn lowered_value(&self, at: usize) -> Option<Value> {
+        let is_lowered = |i: usize| self.tokens.get(i).filter(|t| t.kind == Kind::Lowered);
+        let token = is_lowered(at)?;
+        let mut shown = on_the_line(token.text(self.text));
+        let mut end = token.end;
+        let mut next = at + 1;
+        // A lowered decimal point stays on the line: ₄₁₂.₃₅.
+        if self.mark(next) == Some(".")
+            && let Some(part) = is_lowered(next + 1).filter(|t| !t.spaced)
+        {
+            shown.push('.');
+            shown.push_str(&on_the_line(part.text(self.text)));
+            end = part.end;
+            next += 2;
+        }
+        Some(Value {
+            number: Decimal::read(&shown, false, 0)?,
+            span: token.start as usize..end as usize,
+            next,
+        })
     }
 
     fn argument(&self, symbol: &Symbol, index: usize, value: &Value) -> Quantity {
@@ -470,6 +494,21 @@ impl Scan<'_> {
             .at(self.text, self.tokens, at + 1, |_| true)
             .is_some_and(|f| f.next == close);
         (wordy && close > at + 1 && !pair).then_some(close + 1)
+    }
+
+    /// `[SD]`, `(aOR)` at token `at`, another spelling of the symbol before it: the token behind.
+    pub(super) fn abbreviation(&self, at: usize, name: &str) -> Option<usize> {
+        let close = match self.mark(at)? {
+            "(" => ")",
+            "[" => "]",
+            _ => return None,
+        };
+        let found = self
+            .grammar
+            .spellings
+            .at(self.text, self.tokens, at + 1, |_| true)?;
+        let same = self.grammar.symbols[found.spelling.meaning].name == name;
+        (same && self.mark(found.next) == Some(close)).then_some(found.next + 1)
     }
 
     /// `n.s.`, `ns`, `NS` at token `at`: the token behind it.
@@ -537,6 +576,21 @@ impl Scan<'_> {
                 .is_some_and(|w| self.grammar.before.contains(w.to_lowercase().as_str()))
     }
 
+    /// A df or a p stands behind the comma at token `at`: what is before it is a test.
+    fn goes_on(&self, at: usize) -> bool {
+        matches!(self.mark(at), Some("," | ";" | ":"))
+            && self
+                .grammar
+                .spellings
+                .at(self.text, self.tokens, at + 1, |_| true)
+                .is_some_and(|f| {
+                    matches!(
+                        self.grammar.symbols[f.spelling.meaning].class,
+                        Class::P | Class::Df
+                    )
+                })
+    }
+
     /// The byte range of tokens.
     pub(super) fn bytes(&self, from: usize, to: usize) -> Range<usize> {
         self.tokens[from].start as usize..self.tokens[to - 1].end as usize
@@ -562,7 +616,8 @@ impl Scan<'_> {
         if !matches!(
             behind,
             "/" | "(" | "[" | "%" | "," | "of" | "out" | "df" | "d" | "degrees" | "degree" | "and"
-        ) {
+        ) && !self.may_count(at)
+        {
             return None;
         }
         for form in &self.grammar.forms {

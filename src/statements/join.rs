@@ -300,7 +300,9 @@ impl Scan<'_> {
                     "." => {
                         let next = self.tokens.get(i + 1);
                         let ends = next.is_none_or(|t| {
-                            t.spaced
+                            // `. *P < .05`: a star opens its explanation.
+                            t.spaced && matches!(t.text(self.text), "*" | "†" | "‡")
+                                || t.spaced
                                 && t.text(self.text).starts_with(|c: char| c.is_uppercase())
                                 && self
                                     .grammar

@@ -12,6 +12,7 @@ mod pairs;
 mod sentences;
 mod spellings;
 mod tokens;
+mod unnamed;
 mod values;
 
 pub use find::find;
