@@ -46,6 +46,9 @@ enum Command {
     Try(try_text::Try),
     /// List the relations, or explain one: formula, assumptions, cautions, source
     Explain(explain::Explain),
+    /// The process of its own in which difficult PDFs are read; called by the reader, never by hand
+    #[command(name = "worker-pdf", hide = true)]
+    WorkerPdf,
 }
 
 impl Cli {
@@ -55,6 +58,7 @@ impl Cli {
             Command::Check(check) => check.run(),
             Command::Try(try_text) => try_text.run(),
             Command::Explain(explain) => explain.run(),
+            Command::WorkerPdf => return crate::readers::pdf::worker::run(),
         };
         match done {
             Ok(status) => status.into(),

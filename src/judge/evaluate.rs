@@ -99,6 +99,11 @@ fn shown_range(set: &Set, printed: Option<Interval>) -> Option<[f64; 2]> {
         return Some([first.low, first.high]);
     }
     let middle = printed.map_or(0.0, |p| (p.low + p.high) / 2.0);
+    // The same size with either sign: the side of what is printed.
+    if set.len() == 2 && first.low == -last.high && first.high == -last.low {
+        let side = if middle < 0.0 { first } else { last };
+        return Some([side.low, side.high]);
+    }
     let below = set
         .iter()
         .rev()

@@ -10,7 +10,13 @@ struct Hit {
     meaning: &'static str,
     range: Range<usize>,
     block: usize,
+    /// The sentence holds a result, which the word is about: `Bonferroni-adjusted p = .050` says
+    /// nothing about results elsewhere, unlike `post hoc tests were Bonferroni-corrected`.
+    about_one: bool,
 }
+
+/// Meanings that concern the one result they stand with, if they stand with one.
+const ABOUT_ONE: [&str; 2] = ["adjusted", "one-sided"];
 
 /// All words that matter in a manuscript.
 pub struct Mentions<'a> {
@@ -21,7 +27,15 @@ pub struct Mentions<'a> {
 
 impl<'a> Mentions<'a> {
     /// Finds them once for the whole text.
-    pub fn collect(manuscript: &'a Manuscript, grammar: &'a Grammar) -> Mentions<'a> {
+    pub fn collect(
+        manuscript: &'a Manuscript,
+        grammar: &'a Grammar,
+        statements: &[Statement],
+    ) -> Mentions<'a> {
+        let results: Vec<&Statement> = statements
+            .iter()
+            .filter(|s| s.quantities.iter().any(|q| q.symbol == "p"))
+            .collect();
         let mut hits = Vec::new();
         let mut block = 0;
         for (meaning, range) in grammar.words_in(&manuscript.text) {
@@ -35,10 +49,16 @@ impl<'a> Mentions<'a> {
                 .get(block)
                 .is_some_and(|b| b.range.contains(&range.start));
             if inside && speaks(&manuscript.blocks[block]) {
+                let before = results.partition_point(|s| s.sentence.end < range.start);
+                let about_one = ABOUT_ONE.contains(&meaning)
+                    && results
+                        .get(before)
+                        .is_some_and(|s| s.sentence.contains(&range.start));
                 hits.push(Hit {
                     meaning,
                     range,
                     block,
+                    about_one,
                 });
             }
         }
@@ -66,6 +86,9 @@ impl<'a> Mentions<'a> {
             } else {
                 Reach::Document
             };
+            if hit.about_one && reach >= Reach::Section {
+                continue;
+            }
             match near.iter_mut().find(|m| m.meaning == hit.meaning) {
                 Some(known) if known.reach <= reach => {}
                 known => {

@@ -56,7 +56,7 @@ pub fn judge(
     if statements.is_empty() || relations.is_empty() {
         return Vec::new();
     }
-    let mentions = Mentions::collect(manuscript, grammar);
+    let mentions = Mentions::collect(manuscript, grammar, statements);
     let mut findings = Vec::new();
     for (index, statement) in statements.iter().enumerate() {
         let near = mentions.around(statement);

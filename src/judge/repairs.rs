@@ -6,6 +6,9 @@ use crate::numbers::{Comparator, Decimal, Interval, Set};
 use crate::relations::Tie;
 use crate::statements::Quantity;
 
+/// Levels that a small p is commonly said to lie below.
+const BOUNDS: [f64; 5] = [0.05, 0.01, 0.001, 0.0001, 0.00001];
+
 /// More candidates than this are shown as a range.
 const MOST_SINGLE: i64 = 3;
 
@@ -93,6 +96,16 @@ fn slip(part: &Quantity, possible: &Set) -> Option<Repair> {
         if fits(&up) {
             return Some(repair(up, "cut off instead of rounded"));
         }
+    }
+    // `p = .001` for `p < .001`: all that is possible lies below a level that bounds are printed with.
+    let printed = part.number.value();
+    if part.symbol == "p" && BOUNDS.contains(&printed) && possible.iter().all(|i| i.high < printed) {
+        let to = format!("< {}", part.printed);
+        return Some(Repair {
+            symbol: part.symbol,
+            to,
+            slip: Some("= printed for <"),
+        });
     }
     if part.symbol == "p" {
         let doubled = Interval::new(part.interval.low * 2.0, part.interval.high * 2.0);
@@ -266,6 +279,10 @@ mod tests {
         assert_eq!(
             named("df", "28", 128.0, 128.0),
             Some(("128".into(), "digit dropped"))
+        );
+        assert_eq!(
+            named("p", ".001", 1e-6, 2e-6),
+            Some(("< .001".into(), "= printed for <"))
         );
         assert_eq!(named("t", "9.13", 2.19, 2.21), None);
     }

@@ -21,7 +21,7 @@ pub fn says(
     let borrowed = parts.iter().any(|q| q.borrowed.is_some());
     let given = others.iter().map(|q| as_printed(q)).collect::<Vec<_>>();
     let range = shown
-        .map(|[low, high]| range(low, high, expected.len() > 1, &target.printed))
+        .map(|[low, high]| range(low, high, apart(expected), &target.printed))
         .unwrap_or_default();
     let grounds = if assumes.is_empty() {
         String::new()
@@ -91,6 +91,14 @@ fn capitalised(text: &str) -> String {
         }
         Some(first) => std::iter::once(first).chain(chars).collect(),
         None => String::new(),
+    }
+}
+
+/// Several single values are possible, and the nearest are shown; a size with either sign is one.
+fn apart(expected: &Set) -> bool {
+    match expected.as_slice() {
+        [a, b] => a.low != -b.high,
+        more => more.len() > 1,
     }
 }
 

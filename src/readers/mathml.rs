@@ -235,7 +235,10 @@ impl Math {
         frame.children += 1;
         let kind = frame.kind;
         let previous = frame.child;
+        // Within a power, scripts are part of the power: it must not fall into pieces.
+        let power = self.shift == Shift::Raised && index > 0;
         match kind {
+            Kind::Sup | Kind::Sub | Kind::SubSup | Kind::Multi if power => {}
             Kind::Sup if index == 1 => self.shift(Shift::Raised),
             Kind::Sub if index == 1 => self.shift(Shift::Lowered),
             Kind::SubSup if index == 1 => self.shift(Shift::Lowered),
@@ -435,6 +438,9 @@ fn write(b: &mut Builder, run: &str, shift: Shift) {
             } else if bare.chars().count() == 1 {
                 b.text("^");
                 b.text(bare);
+            } else if bare.starts_with('(') && bare.find(')') == Some(bare.len() - 1) {
+                b.text("^");
+                b.text(bare);
             } else {
                 b.text("^(");
                 b.text(bare);
@@ -556,6 +562,12 @@ mod tests {
                 "<mmultiscripts><mi>X</mi><mn>1</mn><mn>2</mn><mprescripts/><none/><mn>3</mn></mmultiscripts>"
             ),
             "X₁²³"
+        );
+        assert_eq!(
+            line(
+                "<msup><mi>e</mi><mrow><mo>−</mo><msub><mi>a</mi><mn>2</mn></msub></mrow></msup><msup><mi>y</mi><mrow><mo>(</mo><mi>j</mi><mo>)</mo></mrow></msup>"
+            ),
+            "e^(-a2)y^(j)"
         );
     }
 

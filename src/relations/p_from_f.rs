@@ -92,9 +92,13 @@ impl FLaw {
     /// P(χ²(a)/χ²(b) > w) rises in a and falls in b and w, which bounds p over a box; boxes are
     /// halved where the bound is not yet tight.
     fn extreme(&self, f: f64, df1: Interval, df2: Interval, largest: bool) -> f64 {
-        let natural = |df: Interval| Interval {
-            low: df.low.clamp(1e-3, 1e15),
-            high: df.high.clamp(1e-3, 1e15),
+        // Where a range is open-ended, 1e8 stands for no end: p has settled there.
+        let natural = |df: Interval| {
+            let most = if df.low == df.high { 1e15 } else { 1e8 };
+            Interval {
+                low: df.low.clamp(1e-3, most),
+                high: df.high.clamp(1e-3, most),
+            }
         };
         let (df1, df2) = (natural(df1), natural(df2));
         let start: Box3 = [df1, df2, self.epsilon(df1)];
@@ -134,7 +138,9 @@ impl FLaw {
             }
         }
         let mut boxes = vec![(bound(&start), start)];
-        for _ in 0..MOST_BOXES {
+        // `df > 20` and the like: not worth more than a first bound.
+        let wide = start[..2].iter().any(|df| df.high > 2.0 * df.low);
+        for _ in 0..if wide { 0 } else { MOST_BOXES } {
             let worst = (0..boxes.len()).reduce(|a, b| if beyond(boxes[b].0, boxes[a].0) { b } else { a });
             let Some(worst) = worst else { break };
             let limit = if largest {

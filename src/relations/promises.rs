@@ -295,3 +295,97 @@ proptest! {
         }
     }
 }
+
+/// Comparator, digits, place and kind of a number.
+type Any = (usize, i64, i32, u8);
+
+/// One or two results of a usual form, with any numbers.
+fn anything() -> impl Strategy<Value = Vec<(usize, Vec<Any>)>> {
+    let number = (0usize..6, -200i64..20_000, -6i32..2, 0u8..9);
+    proptest::collection::vec((0usize..FORMS.len(), proptest::collection::vec(number, 8)), 1..3)
+}
+
+const FORMS: [&str; 16] = [
+    "t df p d",
+    "t df p g",
+    "n n t df p d",
+    "F df1 df2 p eta2p",
+    "F df1 df2 p omega2",
+    "R2 F df1 df2 p",
+    "chi2 df N p V",
+    "z p r n",
+    "U n n z p",
+    "r n p CI_level CI_low CI_high",
+    "rho df p",
+    "tau n p",
+    "b SE t df p CI_low CI_high",
+    "OR CI_level CI_low CI_high p",
+    "M SD n",
+    "count N percent",
+];
+
+const MEANINGS: [&str; 10] = [
+    "one-sided",
+    "adjusted",
+    "sphericity",
+    "scale",
+    "items",
+    "whole-answers",
+    "bootstrap",
+    "partial",
+    "bayes",
+    "permutation",
+];
+
+proptest! {
+    #![proptest_config(ProptestConfig::with_cases(100))]
+
+    #[test]
+    fn nothing_that_stands_together_breaks_a_law(
+        items in anything(), meanings in proptest::collection::vec((0usize..MEANINGS.len(), 0u8..4, 0.0..9.0f64), 0..3),
+    ) {
+        use crate::numbers::{Comparator, Decimal};
+        let comparators = [
+            Comparator::Equal, Comparator::Below, Comparator::AtMost, Comparator::Above, Comparator::AtLeast, Comparator::About,
+        ];
+        let numbers = items.iter().flat_map(|(form, numbers)| FORMS[*form].split(' ').zip(numbers));
+        let given: Vec<Quantity> = numbers.map(|(symbol, (comparator, digits, place, kind))| {
+            let whole = matches!(symbol, "df" | "df1" | "df2" | "n" | "N" | "count");
+            // Mostly what is usual: equal signs, whole sizes, and values that are not negative.
+            let digits = if *kind == 8 { *digits } else { digits.abs() };
+            let number = Decimal::at(digits, if whole && *kind < 7 { 0 } else { *place });
+            let comparator = if *kind < 6 { Comparator::Equal } else { comparators[*comparator] };
+            Quantity {
+                symbol,
+                printed: number.to_string(),
+                comparator,
+                number,
+                interval: comparator.interval(&number, whole),
+                span: 0..0,
+                borrowed: None,
+            }
+        }).collect();
+        let reaches = [Reach::Sentence, Reach::Paragraph, Reach::Section, Reach::Document];
+        let mentions: Vec<Mention> = meanings.iter().map(|(m, reach, number)| {
+            super::tests::mention(MEANINGS[*m], "words", reaches[usize::from(*reach)], &[number.floor()])
+        }).collect();
+        let case = Case { quantities: &given, mentions: &mentions, alpha: 0.05, one_sided: false };
+        for relation in REGISTRY {
+            for tie in (relation.ties)(&case) {
+                prop_assert!(tie.open.is_some() == tie.variants.is_empty(), "{}", relation.name);
+                let values: Vec<Interval> = tie.parts.iter().map(|i| given[*i].interval).collect();
+                for variant in &tie.variants {
+                    for target in 0..values.len() {
+                        let start = std::time::Instant::now();
+                        let set = variant.law.solve(target, &values);
+                        prop_assert!(start.elapsed().as_secs() < 10, "{} part {target}: {values:?}", relation.name);
+                        for found in set {
+                            prop_assert!(found.low <= found.high, "{} part {target}: {found:?} {values:?}", relation.name);
+                        }
+                    }
+                    variant.law.holds(&values);
+                }
+            }
+        }
+    }
+}

@@ -10,7 +10,7 @@ use crate::readers::office::line::Line;
 use crate::readers::office::setting::Setting;
 use crate::readers::office::symbols;
 use crate::readers::office::tree::Element;
-use std::collections::HashMap;
+use std::collections::{HashMap, HashSet};
 
 /// Footnotes and endnotes by their number in the file.
 #[derive(Default)]
@@ -61,6 +61,8 @@ pub struct Walker<'s, 't> {
     styles: &'s Styles,
     notes: &'s Notes<'t>,
     fields: Fields,
+    /// Notes already read: a file that refers to one a million times shows it once.
+    seen: HashSet<(&'static str, i64)>,
     in_note: bool,
     equations: usize,
     linked: usize,
@@ -72,6 +74,7 @@ impl<'s, 't> Walker<'s, 't> {
             styles,
             notes,
             fields: Fields::default(),
+            seen: HashSet::new(),
             in_note: false,
             equations: 0,
             linked: 0,
@@ -233,11 +236,9 @@ impl<'s, 't> Walker<'s, 't> {
                     }
                     self.inline(child, open);
                 }
-                "oMath" | "oMathPara" => {
-                    if self.fields.shown() {
-                        self.fields.fill();
-                        omml::push(child, &mut open.line);
-                    }
+                "oMath" | "oMathPara" if self.fields.shown() => {
+                    self.fields.fill();
+                    omml::push(child, &mut open.line);
                 }
                 "sdt" => {
                     let around = control(child, Around::default());
@@ -301,8 +302,8 @@ impl<'s, 't> Walker<'s, 't> {
                     }
                 }
                 "instrText" => self.fields.instruct(&child.text()),
-                "footnoteReference" => self.refer(&self.notes.foot, child, open),
-                "endnoteReference" => self.refer(&self.notes.end, child, open),
+                "footnoteReference" => self.refer("foot", child, open),
+                "endnoteReference" => self.refer("end", child, open),
                 "drawing" | "pict" | "object" => self.drawing(child, open),
                 "AlternateContent" => {
                     if let Some(choice) = choice(child) {
@@ -326,9 +327,16 @@ impl<'s, 't> Walker<'s, 't> {
         }
     }
 
-    fn refer(&self, notes: &HashMap<i64, Element<'t>>, reference: Element<'t>, open: &mut Open<'t>) {
-        let note = reference.number("id").and_then(|id| notes.get(&id));
-        open.notes.extend(note);
+    fn refer(&mut self, kind: &'static str, reference: Element<'t>, open: &mut Open<'t>) {
+        let Some(id) = reference.number("id") else { return };
+        let notes = if kind == "foot" {
+            &self.notes.foot
+        } else {
+            &self.notes.end
+        };
+        if self.seen.insert((kind, id)) {
+            open.notes.extend(notes.get(&id));
+        }
     }
 
     /// Text boxes in a drawing, and equations of the old editors, which are objects.
@@ -352,10 +360,14 @@ impl<'s, 't> Walker<'s, 't> {
     }
 }
 
+/// Of an alternative, so many elements are looked at for something to read.
+const LOOK_AHEAD: usize = 100_000;
+
 /// Of several ways to store the same thing, the first that has something to read.
 pub fn choice(alternatives: Element<'_>) -> Option<Element<'_>> {
     let readable = |e: &Element<'_>| {
         e.all()
+            .take(LOOK_AHEAD)
             .any(|d| matches!(d.name(), "txbxContent" | "t" | "oMath" | "tbl"))
     };
     let choices = || {

@@ -5,6 +5,8 @@ use crate::readers::office::symbols::{self, Font};
 
 /// Instructions beyond this many bytes hold the data of a citation manager.
 const START: usize = 300;
+/// Fields within more fields than this are not counted.
+const DEEPEST: usize = 100;
 
 #[derive(Default)]
 struct Field {
@@ -52,7 +54,7 @@ impl Fields {
     /// result, which is a character if it is a symbol field.
     pub fn mark(&mut self, kind: &str) -> Option<char> {
         match kind {
-            "begin" => self.open.push(Field::default()),
+            "begin" if self.open.len() < DEEPEST => self.open.push(Field::default()),
             "separate" => {
                 if let Some(field) = self.open.last_mut() {
                     field.result = true;

@@ -2,6 +2,8 @@
 //! changes accepted and without comments.
 
 mod body;
+#[cfg(test)]
+mod damage_tests;
 mod fields;
 mod omml;
 mod styles;

@@ -4,15 +4,12 @@
 use super::body::{Around, Walker, choice};
 use super::styles::is_on;
 use crate::manuscript::CellShape;
-use crate::readers::office::flow::{Cell, Item, lines};
+use crate::readers::office::flow::{Cell, Item, deepen_header, lines};
 use crate::readers::office::line::{Line, joined};
 use crate::readers::office::tree::Element;
 
 /// Spans beyond this are mistakes.
 const LARGEST_SPAN: i64 = 1000;
-
-/// Headers of more rows than this are columns of their own.
-const DEEPEST_HEADER: usize = 4;
 
 #[derive(Clone, Copy, PartialEq)]
 enum Merge {
@@ -123,23 +120,6 @@ pub fn push<'t>(walker: &mut Walker<'_, 't>, tbl: Element<'t>, out: &mut Vec<Ite
         }
     }
     out.extend(notes);
-}
-
-/// A header cell that reaches down makes headers of the rows it reaches: `M` and `SD` below `Litres`
-/// and beside `Plot`, which spans both rows.
-fn deepen_header(rows: &mut [Vec<Cell>]) {
-    let reach = |row: &Vec<Cell>| {
-        row.iter()
-            .filter(|c| c.shape.header)
-            .map(|c| c.shape.rowspan)
-            .max()
-    };
-    let depth = rows.first().and_then(reach).unwrap_or(0) as usize;
-    if depth <= DEEPEST_HEADER && depth < rows.len() {
-        for cell in rows[..depth].iter_mut().flatten() {
-            cell.shape.header = true;
-        }
-    }
 }
 
 /// The number in a span element.

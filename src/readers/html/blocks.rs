@@ -205,6 +205,8 @@ impl<'a> Reading<'a> {
             self.text(" ");
         } else if !self.context.table || self.groups.last().is_some_and(|g| g.ended) {
             self.close_block();
+        } else if self.context.foot {
+            self.row_due = true;
         } else {
             self.begin_table();
             self.b.row();
@@ -235,6 +237,7 @@ impl<'a> Reading<'a> {
         if ended || (self.context.foot && colspan > 1) {
             // Notes are often set as the last rows of the table.
             self.b.close_table();
+            self.row_due = false;
             if let Some(group) = self.groups.last_mut() {
                 group.ended = true;
             }
@@ -243,9 +246,10 @@ impl<'a> Reading<'a> {
             self.close_block();
             return false;
         }
-        if !self.b.in_table() {
+        if !self.b.in_table() || self.row_due {
             self.begin_table();
             self.b.row();
+            self.row_due = false;
         }
         self.b.part(self.context.part.unwrap_or(self.parts.current()));
         let th = start.name.eq_ignore_ascii_case("th");

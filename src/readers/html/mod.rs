@@ -97,6 +97,8 @@ struct Reading<'a> {
     groups: Vec<Group>,
     /// The last block, if it is a caption that a table may follow: its index and label.
     waiting_caption: Option<(usize, Option<String>)>,
+    /// A row of the foot has begun, but none of its cells.
+    row_due: bool,
     /// A formula has just been read, in a form that others may follow.
     formula_read: bool,
     /// Position of the next script, as far as it has been looked for.
@@ -134,6 +136,7 @@ impl<'a> Reading<'a> {
             shifted: String::new(),
             groups: Vec::new(),
             waiting_caption: None,
+            row_due: false,
             formula_read: false,
             next_script: 0,
             line: 1,
@@ -415,32 +418,30 @@ impl<'a> Reading<'a> {
 
     /// Ends the elements that a start tag ends without saying so.
     fn imply_ends(&mut self, element: Element) {
+        use Element::*;
         let closes: fn(Element) -> bool = match element {
-            Element::Item => |e| e == Element::Item,
-            Element::Row => |e| matches!(e, Element::Row),
-            Element::Cell => |e| matches!(e, Element::Cell),
-            Element::TableHead | Element::TableBody | Element::TableFoot => {
-                |e| matches!(e, Element::TableHead | Element::TableBody | Element::TableFoot)
+            Item => |e| e == Item,
+            Row => |e| matches!(e, Row | Cell),
+            Cell => |e| e == Cell,
+            TableHead | TableBody | TableFoot => {
+                |e| matches!(e, TableHead | TableBody | TableFoot | Row | Cell)
             }
-            Element::Heading(_) => |e| matches!(e, Element::Heading(_) | Element::Paragraph),
-            e if e.is_block() => |e| e == Element::Paragraph,
+            Heading(_) => |e| matches!(e, Heading(_) | Paragraph),
+            e if e.is_block() => |e| e == Paragraph,
             _ => return,
         };
         let stops: fn(Element) -> bool = match element {
-            Element::Item => |e| matches!(e, Element::List) || e.is_border(),
-            Element::Row | Element::Cell | Element::TableHead | Element::TableBody | Element::TableFoot => {
-                |e| e == Element::Table
-            }
-            _ => |e| e.is_border() || matches!(e, Element::Item | Element::Block | Element::Sectioning),
+            Item => |e| e == List || e.is_border(),
+            Row | Cell | TableHead | TableBody | TableFoot => |e| e == Table,
+            _ => |e| e.is_border() || matches!(e, Item | Block | Sectioning),
         };
-        let back = self
-            .open
-            .iter()
-            .rev()
-            .take(LOOK_BACK)
+        let open = self.open.iter().rev().take(LOOK_BACK);
+        let back = open
             .take_while(|o| !stops(o.element))
-            .position(|o| closes(o.element));
-        if let Some(back) = back {
+            .enumerate()
+            .filter(|(_, o)| closes(o.element))
+            .last();
+        if let Some((back, _)) = back {
             self.close_down_to(self.open.len() - 1 - back);
         }
         // An item also ends the paragraph before it.

@@ -377,7 +377,7 @@ impl<'a> Reading<'a> {
                 self.open_block(BlockKind::ListItem);
                 self.context.joined = true;
             }
-            Tag::Term => self.text(" "),
+            Tag::Term => {}
             Tag::Def => self.text(": "),
             Tag::Quote => {
                 self.split();
@@ -493,7 +493,11 @@ impl<'a> Reading<'a> {
                 self.b.return_to_section(frame.note.checked_sub(1));
             }
             Tag::Label => self.close_label(),
-            Tag::Title | Tag::Paragraph | Tag::Attrib | Tag::Caption | Tag::TableFoot | Tag::DefItem => {
+            Tag::Title => {
+                self.close_title();
+                self.flush_put_off()?;
+            }
+            Tag::Paragraph | Tag::Attrib | Tag::Caption | Tag::TableFoot | Tag::DefItem => {
                 self.close_block();
                 self.flush_put_off()?;
             }

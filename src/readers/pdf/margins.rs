@@ -65,7 +65,9 @@ pub fn drop_running_lines(pages: &[&PageGlyphs], pieces: &mut [Vec<Piece>]) {
             .filter(|o| (o.y - c.y).abs() < WANDER);
         let mut on: Vec<usize> = same.map(|o| o.page).collect();
         on.dedup();
-        let repeated = on.len() >= enough && c.text.chars().any(|t| t.is_alphabetic());
+        // Twice is enough at the very edge of the page.
+        let edge = on.len() >= 2 && c.outermost && c.text.chars().count() >= 8;
+        let repeated = (on.len() >= enough || edge) && c.text.chars().any(|t| t.is_alphabetic());
         let counts_up = c.number.is_some_and(|n| {
             candidates.iter().any(|o| {
                 (o.y - c.y).abs() < WANDER

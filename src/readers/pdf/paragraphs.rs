@@ -93,7 +93,10 @@ impl Body {
             }
             for pair in column.lines.windows(2) {
                 let leading = (pair[1].baseline - pair[0].baseline) / pair[1].size;
-                if (pair[1].size - pair[0].size).abs() < 0.05 * pair[0].size && (0.8..3.0).contains(&leading)
+                let text = pair.iter().all(|l| l.words.len() >= 4);
+                if text
+                    && (pair[1].size - pair[0].size).abs() < 0.05 * pair[0].size
+                    && (0.8..3.0).contains(&leading)
                 {
                     leadings.push(leading);
                 }
@@ -226,6 +229,8 @@ impl Measure {
         let mut steps: Vec<f32> = lines
             .windows(2)
             .filter(|w| (w[1].size - w[0].size).abs() < 0.05 * w[0].size)
+            // Formulas and labels have distances of their own.
+            .filter(|w| w.iter().all(|l| l.words.len() >= 4))
             .map(|w| w[1].baseline - w[0].baseline)
             .filter(|s| *s > 2.0)
             .collect();
@@ -265,7 +270,11 @@ impl Measure {
             return Seam::Apart;
         }
         // Titles are larger than what is usual in the column, and so are their line distances.
-        let usual = if size > 1.07 * self.body.size { self.leading.max(self.body.leading.max(1.3) * size) } else { self.leading };
+        let usual = if size > 1.07 * self.body.size {
+            self.leading.max(self.body.leading.max(1.3) * size)
+        } else {
+            self.leading
+        };
         if step > (1.25 * usual).max(usual + 0.22 * size) || step < 0.0 {
             return Seam::Apart;
         }
@@ -283,6 +292,9 @@ impl Measure {
         }
         if is_marker(&first) && (ended || short) && !(block.lines.len() == 1 && indent > 0.7 * size && !short)
         {
+            return Seam::Paragraph;
+        }
+        if line.font != last.font && short && !lower {
             return Seam::Paragraph;
         }
         if indent.abs() < 0.7 * size {
@@ -345,8 +357,9 @@ pub enum Standing {
 /// column and the first of a later one, if the former stops in the middle of a sentence. What
 /// stands between them (footnotes, figures, tables) then comes after.
 pub fn join(blocks: Vec<Block>, body: Body, standing: impl Fn(&Block) -> Standing) -> Vec<Block> {
-    let running =
-        |b: &Block| !b.row && !b.aside && !b.bold() && body.is_size(b.size()) && standing(b) == Standing::Text;
+    let running = |b: &Block| {
+        !b.row && !b.aside && !b.bold() && body.is_size(b.size()) && standing(b) == Standing::Text
+    };
     let is_heading = |b: &Block| standing(b) == Standing::Heading;
     let mut slots: Vec<Option<Block>> = blocks.into_iter().map(Some).collect();
     let mut at = 0;
