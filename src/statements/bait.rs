@@ -73,6 +73,8 @@ impl Scan<'_> {
     fn legend(&self, bytes: &Range<usize>, block: &Range<usize>) -> bool {
         let before = self.text[block.start..bytes.start].trim_end_matches([' ', '=', ':', '(', ',']);
         before.ends_with(['*', '†', '‡', '§', '#', '¶', '+', '^'])
+            || self.text[block.start..].starts_with(['*', '†', '‡', '§', '#', '¶', '&'])
+                && !before.contains(". ")
             || before.ends_with("indicates")
             || before.ends_with("indicate")
             || before.ends_with("denotes")

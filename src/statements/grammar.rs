@@ -42,6 +42,7 @@ pub struct Symbol {
     pub above: Option<(f64, &'static str)>,
     pub below: Option<(f64, &'static str)>,
     pub several: Option<&'static str>,
+    pub beside: Option<[&'static str; 3]>,
 }
 
 /// One argument of a symbol, e.g. `df2` of F.
@@ -120,6 +121,7 @@ struct RawSymbol {
     above: Option<(f64, String)>,
     below: Option<(f64, String)>,
     several: Option<String>,
+    beside: Option<[String; 3]>,
 }
 
 fn yes() -> bool {
@@ -247,7 +249,12 @@ impl Grammar {
                 (&raw.words, false, true),
             ] {
                 for text in list {
-                    spellings.add(text, Spelling::new(!words, index, plural, words))?;
+                    // `p values`, `z scores`
+                    let several = words
+                        && matches!(class, Class::Statistic | Class::P)
+                        && text.ends_with('s')
+                        && !text.ends_with(" s");
+                    spellings.add(text, Spelling::new(!words, index, plural || several, words))?;
                 }
             }
             symbols.push(Symbol {
@@ -268,6 +275,10 @@ impl Grammar {
                 above: raw.above.as_ref().map(|(v, s)| (*v, names.get(s))),
                 below: raw.below.as_ref().map(|(v, s)| (*v, names.get(s))),
                 several: raw.several.as_ref().map(|s| names.get(s)),
+                beside: raw
+                    .beside
+                    .as_ref()
+                    .map(|b| [names.get(&b[0]), names.get(&b[1]), names.get(&b[2])]),
             });
         }
         let mut comparators = Vec::new();

@@ -95,6 +95,11 @@ impl Scan<'_> {
             }
             None if words || symbol.bare => {
                 let skipped = matches!(self.mark(next), Some("," | ":"));
+                // `SD118` is a name.
+                let decimals = self.shown(next).is_some_and(|s| s.contains(['.', '·']));
+                if !skipped && !decimals && self.tokens.get(next).is_some_and(|t| !t.spaced) {
+                    return None;
+                }
                 (Comparator::Equal, if skipped { next + 1 } else { next })
             }
             None if symbol.class == Class::P && self.not_significant(next).is_some() => {
@@ -139,7 +144,8 @@ impl Scan<'_> {
             Company::Single
         };
         let value = self.value(value_at, company)?;
-        if compared.is_none() && !self.stands_by(value_at, words) {
+        let plain = words || !matches!(symbol.class, Class::Ratio | Class::Descriptive | Class::Df);
+        if compared.is_none() && !self.stands_by(value_at, plain) {
             return None;
         }
         let mut next = value.next;
@@ -162,6 +168,16 @@ impl Scan<'_> {
         {
             return None;
         }
+        // `k = 1, …, n` and `t = 2t₁`: a running index, a formula.
+        let runs_on = usize::from(self.mark(next) == Some(","));
+        let multiplied = self.word(next).is_some_and(|_| !self.tokens[next].spaced)
+            && self
+                .tokens
+                .get(next + 1)
+                .is_some_and(|t| t.kind == Kind::Lowered && !t.spaced);
+        if self.mark(next + runs_on) == Some("…") || multiplied {
+            return None;
+        }
         // No size has decimals.
         if symbol.whole && !value.number.is_whole() {
             return None;
@@ -177,7 +193,9 @@ impl Scan<'_> {
             next = upper.next;
         }
         // `df = 2, 45` behind F.
-        if upper.is_none() && (found.spelling.plural || symbol.name == "df") {
+        let paired_off = matches!(symbol.class, Class::Statistic | Class::P) || symbol.name == "M";
+        let respectively = paired_off && !found.spelling.plural && self.respectively(next);
+        if upper.is_none() && (found.spelling.plural || symbol.name == "df" || respectively) {
             let mut behind = next;
             while let Some((further, after)) = self.next_in_list(behind) {
                 more_values.push(self.quantity(name, comparator, &further, symbol.whole));
@@ -204,6 +222,9 @@ impl Scan<'_> {
             first.printed = on_the_line(&self.text[first.span.clone()]);
             first.interval = first.interval.hull(upper.number.rounding());
         }
+        // `OR 1.80`; a whole number may be a heart rate or a rate of breaths.
+        let is_ratio = !first.number.is_whole() && first.number.value() < 20.0;
+        let has_more = !more_values.is_empty();
         let mut quantities = vec![first];
         quantities.append(&mut arguments);
         if symbol.name == "df" && more_values.len() == 1 {
@@ -220,8 +241,8 @@ impl Scan<'_> {
             bytes: self.bytes(at, next),
             quantities,
             more_values,
-            plural: found.spelling.plural,
-            alone: symbol.alone,
+            plural: found.spelling.plural || respectively && has_more,
+            alone: symbol.alone || symbol.class == Class::Ratio && is_ratio,
             plain: words || with_arguments,
         };
         Some((item, next))
@@ -231,9 +252,11 @@ impl Scan<'_> {
     fn range_end(&self, symbol: &Symbol, comparator: Comparator, at: usize) -> Option<Value> {
         let ranged = matches!(
             symbol.class,
-            Class::Statistic | Class::P | Class::Effect | Class::Estimate
+            Class::Statistic | Class::P | Class::Effect | Class::Estimate | Class::Ratio
         );
-        let dash = self.mark(at) == Some("–") || self.mark(at) == Some("-") && !self.tokens[at].spaced;
+        let dash = self.mark(at) == Some("–")
+            || self.mark(at) == Some("-") && !self.tokens[at].spaced
+            || self.word(at) == Some("to") && self.shown(at + 1).is_some_and(|s| s.contains(['.', '·']));
         if !ranged || !dash || comparator != Comparator::Equal {
             return None;
         }
@@ -256,7 +279,10 @@ impl Scan<'_> {
         match (symbol.above, symbol.below) {
             (Some((limit, other)), _) if size > limit => other,
             (_, Some((limit, other))) if size <= limit && !words => other,
-            _ => symbol.name,
+            _ => match symbol.beside {
+                Some([here, not_here, other]) if !words && self.near(here) && !self.near(not_here) => other,
+                _ => symbol.name,
+            },
         }
     }
 
@@ -266,6 +292,8 @@ impl Scan<'_> {
             return true;
         }
         match self.tokens[at - 1].kind {
+            // The bounds of a sum: `∑_(m = 1)`.
+            Kind::Mark if self.shown(at - 1) == Some("(") => at < 2 || self.mark(at - 2) != Some("_"),
             // `&P = 0.09` below a table explains a sign.
             Kind::Mark if self.shown(at - 1) == Some("&") => self.tokens[at - 1].spaced,
             // The letter at the end of a name: `IL-2`, `BEAN-S2`.
@@ -528,6 +556,15 @@ impl Scan<'_> {
             });
         }
         None
+    }
+
+    /// A list goes on at token `at` that the sentence deals out with `respectively`.
+    fn respectively(&self, at: usize) -> bool {
+        const WITHIN: usize = 40;
+        self.next_in_list(at).is_some()
+            && (at..self.tokens.len().min(at + WITHIN))
+                .take_while(|i| self.mark(*i) != Some("."))
+                .any(|i| self.word(i) == Some("respectively"))
     }
 
     /// A further number of a list at token `at`: `, .31`, ` and .759`, `, and .2`, `/ .3`, `or`, `&`.

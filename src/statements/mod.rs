@@ -64,4 +64,6 @@ pub(crate) struct Scan<'a> {
     commas: bool,
     /// The level of significance, which `n.s.` refers to.
     alpha: f64,
+    /// Meanings of the words in the block, looked for once.
+    meanings: std::cell::OnceCell<Vec<&'static str>>,
 }

@@ -287,9 +287,18 @@ impl Scan<'_> {
 
     /// A word of this meaning stands in the block.
     pub(super) fn near(&self, meaning: &str) -> bool {
-        self.grammar
-            .words_in(self.text_of_block())
-            .any(|(found, _)| found == meaning)
+        self.meanings
+            .get_or_init(|| {
+                let mut all: Vec<_> = self
+                    .grammar
+                    .words_in(self.text_of_block())
+                    .map(|(found, _)| found)
+                    .collect();
+                all.sort_unstable();
+                all.dedup();
+                all
+            })
+            .contains(&meaning)
     }
 
     fn text_of_block(&self) -> &str {

@@ -111,7 +111,15 @@ impl Scan<'_> {
                     shown = format!("{whole}{part}");
                 }
             }
-            if let Some((power, behind)) = self.power_of_ten(i) {
+            // `10⁻⁷`, without a factor.
+            let alone = (shown == "10" && self.tokens.get(i).is_some_and(|t| !t.spaced))
+                .then(|| self.exponent(i, false))
+                .flatten()
+                .filter(|(power, _)| *power < 0);
+            if alone.is_some() {
+                shown.pop();
+            }
+            if let Some((power, behind)) = alone.or_else(|| self.power_of_ten(i)) {
                 exponent = power;
                 end = self.tokens[behind - 1].end as usize;
                 i = behind;
@@ -181,7 +189,12 @@ impl Scan<'_> {
         if !matches!(self.shown(at)?, "×" | "x" | "X" | "*" | "·" | "∙") || self.shown(at + 1)? != "10" {
             return None;
         }
-        let mut i = at + 2;
+        self.exponent(at + 2, true)
+    }
+
+    /// The exponent of a 10 at token `at`, and the token behind. `loose`: `-6` on the line will do.
+    fn exponent(&self, at: usize, loose: bool) -> Option<(i32, usize)> {
+        let mut i = at;
         let raised = self.tokens.get(i)?;
         if raised.kind == Kind::Raised {
             return Some((on_the_line(raised.text(self.text)).parse().ok()?, i + 1));
@@ -198,6 +211,9 @@ impl Scan<'_> {
         if negative {
             i += 1;
         } else if !caret {
+            return None;
+        }
+        if !caret && !loose {
             return None;
         }
         let digits: i32 = self.shown(i)?.parse().ok()?;
@@ -276,6 +292,7 @@ mod tests {
             grammar: Grammar::built_in(),
             commas,
             alpha: 0.05,
+            meanings: Default::default(),
         };
         scan.value(0, company)
             .map(|v| (v.number.to_string(), text[v.span].to_string()))
