@@ -205,6 +205,9 @@ impl Scan<'_> {
                 }
             }
             next = behind;
+            if !symbol.units && !with_arguments && !more_values.is_empty() && self.unit(next) {
+                return None;
+            }
         }
         if let Some(several) = symbol.several
             && (upper.is_some() || !more_values.is_empty())

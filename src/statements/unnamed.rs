@@ -131,6 +131,10 @@ impl Scan<'_> {
 
     /// A name written out, or a ratio, in the same sentence before token `from`, no number between.
     fn name_before(&self, from: usize) -> Option<(&'static str, Class)> {
+        let told = self.mark(from.wrapping_sub(1)) == Some(":")
+            || self
+                .word(from.wrapping_sub(1))
+                .is_some_and(|w| matches!(w, "was" | "were" | "is" | "of" | "to" | "being" | "by"));
         for i in (from.saturating_sub(NAME_WITHIN)..from).rev() {
             let token = self.tokens[i];
             if matches!(token.kind, Kind::Number | Kind::Dotted)
@@ -145,8 +149,9 @@ impl Scan<'_> {
                 let symbol = &self.grammar.symbols[found.spelling.meaning];
                 let named = match symbol.class {
                     Class::Ratio => true,
-                    Class::Estimate | Class::Effect | Class::Descriptive => found.spelling.words,
-                    Class::Other => found.spelling.words && symbol.name != "percent",
+                    Class::Estimate | Class::Effect | Class::Descriptive | Class::Other => {
+                        told && (found.spelling.words || token.text(self.text).len() > 2)
+                    }
                     _ => false,
                 };
                 if named && found.next <= from {
@@ -160,6 +165,11 @@ impl Scan<'_> {
     /// `74 (43–106)` where quartiles are spoken of.
     fn quartiles(&self, value: &Value, from: usize, open: usize) -> Option<(Vec<Item>, usize)> {
         let (low, high, behind) = self.two_ends(open)?;
+        // Nothing else in the bracket: `55 (5.9%, 95% CI …)` is another thing.
+        let tight = behind > high.next && matches!(self.mark(behind - 1), Some(")" | "]"));
+        if !tight || self.mark(low.next) == Some("%") {
+            return None;
+        }
         let x = value.number.value();
         let (least, most) = (low.number.value(), high.number.value());
         if !(least <= x && x <= most && least < most) {
@@ -187,9 +197,9 @@ impl Scan<'_> {
         {
             return false;
         }
-        // `of 302 gardeners` is the whole, unless it is `a total of`.
+        // `of 302 gardeners` is the whole, unless it is `a total of`; so is `the 302 gardeners`.
         at < 2
-            || self.word(at - 1) != Some("of")
+            || self.word(at - 1) != Some("the") && self.word(at - 1) != Some("of")
             || self
                 .word(at - 2)
                 .is_some_and(|w| matches!(w, "total" | "number" | "sum" | "sample"))
