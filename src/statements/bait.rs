@@ -84,11 +84,12 @@ impl Scan<'_> {
 
     /// Inside quotation marks of one sentence: somebody else's words.
     fn quoted(&self, bytes: &Range<usize>, block: &Range<usize>) -> bool {
-        let from = self.text[block.start..bytes.start].rfind('"');
-        let Some(open) = from.map(|o| block.start + o) else {
+        let window = sentences::around(self.text, block, bytes);
+        let from = self.text[window.start..bytes.start].rfind('"');
+        let Some(open) = from.map(|o| window.start + o) else {
             return false;
         };
-        let Some(close) = self.text[bytes.end..block.end].find('"').map(|c| bytes.end + c) else {
+        let Some(close) = self.text[bytes.end..window.end].find('"').map(|c| bytes.end + c) else {
             return false;
         };
         let opens = !self.text[..open]

@@ -24,7 +24,7 @@ pub fn find(manuscript: &Manuscript, grammar: &Grammar, alpha: f64) -> Vec<State
             grammar,
             commas,
             alpha,
-            meanings: Default::default(),
+            words: Default::default(),
         };
         scan.statements(index, &block.range, &mut statements);
     }

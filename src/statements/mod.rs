@@ -19,6 +19,8 @@ pub use find::find;
 pub use grammar::Grammar;
 
 use crate::numbers::{Comparator, Decimal, Interval};
+use std::cell::OnceCell;
+use std::collections::HashSet;
 use std::ops::Range;
 
 /// One reported number.
@@ -64,6 +66,6 @@ pub(crate) struct Scan<'a> {
     commas: bool,
     /// The level of significance, which `n.s.` refers to.
     alpha: f64,
-    /// Meanings of the words in the block, looked for once.
-    meanings: std::cell::OnceCell<Vec<&'static str>>,
+    /// The meanings of the words that matter in this block, looked for when first asked for.
+    words: OnceCell<HashSet<&'static str>>,
 }

@@ -287,18 +287,13 @@ impl Scan<'_> {
 
     /// A word of this meaning stands in the block.
     pub(super) fn near(&self, meaning: &str) -> bool {
-        self.meanings
-            .get_or_init(|| {
-                let mut all: Vec<_> = self
-                    .grammar
-                    .words_in(self.text_of_block())
-                    .map(|(found, _)| found)
-                    .collect();
-                all.sort_unstable();
-                all.dedup();
-                all
-            })
-            .contains(&meaning)
+        let words = self.words.get_or_init(|| {
+            self.grammar
+                .words_in(self.text_of_block())
+                .map(|(found, _)| found)
+                .collect()
+        });
+        words.contains(meaning)
     }
 
     fn text_of_block(&self) -> &str {

@@ -292,7 +292,7 @@ mod tests {
             grammar: Grammar::built_in(),
             commas,
             alpha: 0.05,
-            meanings: Default::default(),
+            words: Default::default(),
         };
         scan.value(0, company)
             .map(|v| (v.number.to_string(), text[v.span].to_string()))
