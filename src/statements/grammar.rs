@@ -75,6 +75,7 @@ pub struct Grammar {
     pub labels: HashSet<String>,
     pub thresholds: Regex,
     pub plans: Regex,
+    pub medians: Regex,
     words: AhoCorasick,
     word_meanings: Vec<&'static str>,
     pub patterns: Vec<(&'static str, Vec<Regex>)>,
@@ -95,6 +96,7 @@ struct File {
     labels: Vec<String>,
     thresholds: Vec<String>,
     plans: Vec<String>,
+    medians: Vec<String>,
 }
 
 #[derive(Deserialize)]
@@ -231,6 +233,7 @@ impl Grammar {
             all.labels.extend(file.labels);
             all.thresholds.extend(file.thresholds);
             all.plans.extend(file.plans);
+            all.medians.extend(file.medians);
         }
         let mut names = Names::default();
         let mut symbols: Vec<Symbol> = Vec::new();
@@ -345,6 +348,7 @@ impl Grammar {
             labels: all.labels.into_iter().collect(),
             thresholds: either(&all.thresholds)?,
             plans: either(&all.plans)?,
+            medians: either(&all.medians)?,
             words,
             word_meanings,
             patterns,

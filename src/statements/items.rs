@@ -40,7 +40,8 @@ impl Scan<'_> {
                     .interval(at)
                     .or_else(|| self.paired(at))
                     .or_else(|| self.assignment(at))
-                    .map(|(item, next)| (vec![item], next)),
+                    .map(|(item, next)| (vec![item], next))
+                    .or_else(|| self.number_word(at).and_then(|_| self.form(at))),
                 Kind::Number => self
                     .form(at)
                     .or_else(|| self.mean_and_spread(at))
@@ -54,7 +55,7 @@ impl Scan<'_> {
                 Some((found, next)) => {
                     for item in found {
                         let follower = self.follower(&item);
-                        items.push(item);
+                        items.push(self.shared_power(item, &follower));
                         items.extend(follower);
                     }
                     let end = items.last().map_or(next, |i| i.tokens.end);
@@ -83,7 +84,7 @@ impl Scan<'_> {
         if let Some(behind) = self.remark(next).or_else(|| self.abbreviation(next, symbol.name)) {
             next = behind;
         }
-        let wordy = words || symbol.bare || symbol.class == Class::P;
+        let wordy = words || symbol.bare || with_arguments || symbol.class == Class::P;
         let compared = self.grammar.comparator(self.text, self.tokens, next, wordy);
         let (comparator, value_at) = match compared {
             Some((comparator, behind)) => {

@@ -38,13 +38,26 @@ impl Scan<'_> {
             }
         } else if bracket && !percent && self.spread_after(follows) {
             ("M", Class::Descriptive)
-        } else if bracket && !percent && self.near("medians") {
+        } else if bracket && !percent && (self.near("medians") || self.medians && !self.names_intervals()) {
             return self.quartiles(&value, from, next);
         } else {
             return None;
         };
         let item = self.lone(symbol, class, &value, from);
         Some((vec![item], value.next))
+    }
+
+    /// The block speaks of other intervals or ranges, or is a cell, which its own head names.
+    fn names_intervals(&self) -> bool {
+        self.cell
+            || self.tokens.iter().enumerate().any(|(i, t)| {
+                t.kind == Kind::Word
+                    && self
+                        .grammar
+                        .interval_spellings
+                        .at(self.text, self.tokens, i, |_| true)
+                        .is_some()
+            })
     }
 
     fn lone(&self, symbol: &'static str, class: Class, value: &Value, from: usize) -> Item {
@@ -183,6 +196,33 @@ impl Scan<'_> {
         item.quantities
             .push(self.quantity("IQR_high", Comparator::Equal, &high, false));
         Some((vec![item], behind))
+    }
+
+    /// `4.6 ± 0.8 × 10⁻³`: the power belongs to the mean, too.
+    pub(super) fn shared_power(&self, mut item: Item, followers: &[Item]) -> Item {
+        let (Some(head), Some(spread)) = (
+            item.quantities.first_mut(),
+            followers.first().and_then(|f| f.quantities.first()),
+        ) else {
+            return item;
+        };
+        let between = &self.text[head.span.end.min(spread.span.start)..spread.span.start];
+        let factor = spread
+            .printed
+            .find(['×', 'x', 'X', '*', '∙'])
+            .map(|end| spread.printed[..end].trim_end());
+        let (Some(factor), "±") = (factor, between.trim()) else {
+            return item;
+        };
+        if head.printed.contains("10") && head.printed.contains(['×', 'x', 'X', '*', '∙']) {
+            return item;
+        }
+        let decimals = factor
+            .find(['.', '·'])
+            .map_or(0, |point| factor[point..].chars().count() as i32 - 1);
+        head.number.place += spread.number.place + decimals;
+        head.interval = head.comparator.interval(&head.number, false);
+        item
     }
 
     /// Whether the number at token `at` may be a count of things that are named behind it:

@@ -140,6 +140,44 @@ impl Scan<'_> {
         })
     }
 
+    /// `nine` at token `at`.
+    pub fn number_word(&self, at: usize) -> Option<Value> {
+        const WORDS: [&str; 20] = [
+            "one",
+            "two",
+            "three",
+            "four",
+            "five",
+            "six",
+            "seven",
+            "eight",
+            "nine",
+            "ten",
+            "eleven",
+            "twelve",
+            "thirteen",
+            "fourteen",
+            "fifteen",
+            "sixteen",
+            "seventeen",
+            "eighteen",
+            "nineteen",
+            "twenty",
+        ];
+        let word = self.word(at)?;
+        let index = WORDS.iter().position(|w| w.eq_ignore_ascii_case(word))?;
+        let token = self.tokens[at];
+        Some(Value {
+            number: Decimal {
+                digits: index as i64 + 1,
+                place: 0,
+                negative: false,
+            },
+            span: token.start as usize..token.end as usize,
+            next: at + 1,
+        })
+    }
+
     fn groups(&self, shown: &str, part: &str, company: Company) -> bool {
         let whole_part = &part[..part.find('.').unwrap_or(part.len())];
         let sizes = whole_part.len() == 3 && !shown.contains('.') && !shown.starts_with('0');
@@ -292,6 +330,8 @@ mod tests {
             grammar: Grammar::built_in(),
             commas,
             alpha: 0.05,
+            medians: false,
+            cell: false,
             words: Default::default(),
         };
         scan.value(0, company)
