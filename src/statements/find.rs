@@ -12,6 +12,7 @@ use std::sync::OnceLock;
 pub fn find(manuscript: &Manuscript, grammar: &Grammar, alpha: f64) -> Vec<Statement> {
     let text = manuscript.text.as_str();
     let commas = values::writes_decimal_commas(text);
+    let medians = grammar.medians.is_match(text);
     let mut tokens: Vec<Token> = Vec::new();
     let mut statements = Vec::new();
     for (index, block) in manuscript.blocks.iter().enumerate() {
@@ -26,6 +27,8 @@ pub fn find(manuscript: &Manuscript, grammar: &Grammar, alpha: f64) -> Vec<State
             grammar,
             commas,
             alpha,
+            medians,
+            cell: block.kind == BlockKind::Cell,
             words: Default::default(),
         };
         scan.statements(index, &block.range, &mut statements);

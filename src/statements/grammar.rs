@@ -42,6 +42,7 @@ pub struct Symbol {
     pub above: Option<(f64, &'static str)>,
     pub below: Option<(f64, &'static str)>,
     pub several: Option<&'static str>,
+    pub beside: Option<[&'static str; 3]>,
 }
 
 /// One argument of a symbol, e.g. `df2` of F.
@@ -71,8 +72,10 @@ pub struct Grammar {
     pub units: HashSet<String>,
     pub replicates: HashSet<String>,
     pub before: HashSet<String>,
+    pub labels: HashSet<String>,
     pub thresholds: Regex,
     pub plans: Regex,
+    pub medians: Regex,
     words: AhoCorasick,
     word_meanings: Vec<&'static str>,
     pub patterns: Vec<(&'static str, Vec<Regex>)>,
@@ -90,8 +93,10 @@ struct File {
     units: Vec<String>,
     replicates: Vec<String>,
     before: Vec<String>,
+    labels: Vec<String>,
     thresholds: Vec<String>,
     plans: Vec<String>,
+    medians: Vec<String>,
 }
 
 #[derive(Deserialize)]
@@ -118,6 +123,7 @@ struct RawSymbol {
     above: Option<(f64, String)>,
     below: Option<(f64, String)>,
     several: Option<String>,
+    beside: Option<[String; 3]>,
 }
 
 fn yes() -> bool {
@@ -224,8 +230,10 @@ impl Grammar {
             all.units.extend(file.units);
             all.replicates.extend(file.replicates);
             all.before.extend(file.before);
+            all.labels.extend(file.labels);
             all.thresholds.extend(file.thresholds);
             all.plans.extend(file.plans);
+            all.medians.extend(file.medians);
         }
         let mut names = Names::default();
         let mut symbols: Vec<Symbol> = Vec::new();
@@ -244,7 +252,12 @@ impl Grammar {
                 (&raw.words, false, true),
             ] {
                 for text in list {
-                    spellings.add(text, Spelling::new(!words, index, plural, words))?;
+                    // `p values`, `z scores`
+                    let several = words
+                        && matches!(class, Class::Statistic | Class::P)
+                        && text.ends_with('s')
+                        && !text.ends_with(" s");
+                    spellings.add(text, Spelling::new(!words, index, plural || several, words))?;
                 }
             }
             symbols.push(Symbol {
@@ -265,6 +278,10 @@ impl Grammar {
                 above: raw.above.as_ref().map(|(v, s)| (*v, names.get(s))),
                 below: raw.below.as_ref().map(|(v, s)| (*v, names.get(s))),
                 several: raw.several.as_ref().map(|s| names.get(s)),
+                beside: raw
+                    .beside
+                    .as_ref()
+                    .map(|b| [names.get(&b[0]), names.get(&b[1]), names.get(&b[2])]),
             });
         }
         let mut comparators = Vec::new();
@@ -330,8 +347,10 @@ impl Grammar {
             units: all.units.into_iter().collect(),
             replicates: all.replicates.into_iter().collect(),
             before: all.before.into_iter().collect(),
+            labels: all.labels.into_iter().collect(),
             thresholds: either(&all.thresholds)?,
             plans: either(&all.plans)?,
+            medians: either(&all.medians)?,
             words,
             word_meanings,
             patterns,

@@ -20,6 +20,8 @@ struct Gap {
     broken: bool,
     /// Words such as `versus` or `than`, behind which another result begins.
     turns: bool,
+    /// `; and`: a list goes on.
+    lists: bool,
 }
 
 impl Gap {
@@ -145,6 +147,7 @@ impl Scan<'_> {
             Size => {
                 let counted = item.quantities.len() == 1;
                 gap.within(2)
+                    && !gap.lists
                     && counted
                     && !draft.only(Other)
                     && (!again || symbol == "n" && !draft.only(Size))
@@ -254,6 +257,7 @@ impl Scan<'_> {
             bytes: 0,
             broken: false,
             turns: false,
+            lists: false,
         };
         if to <= from {
             return gap;
@@ -271,6 +275,7 @@ impl Scan<'_> {
                         gap.words += 1;
                     }
                     gap.broken |= closed;
+                    gap.lists |= shown == "and" && i > from && self.mark(i - 1) == Some(";");
                     gap.turns |= matches!(
                         shown,
                         "vs" | "versus"
@@ -300,12 +305,14 @@ impl Scan<'_> {
                     "." => {
                         let next = self.tokens.get(i + 1);
                         let ends = next.is_none_or(|t| {
-                            t.spaced
-                                && t.text(self.text).starts_with(|c: char| c.is_uppercase())
-                                && self
-                                    .grammar
-                                    .comparator(self.text, self.tokens, i + 2, false)
-                                    .is_none()
+                            // `. *P < .05`: a star opens its explanation.
+                            t.spaced && matches!(t.text(self.text), "*" | "†" | "‡")
+                                || t.spaced
+                                    && t.text(self.text).starts_with(|c: char| c.is_uppercase())
+                                    && self
+                                        .grammar
+                                        .comparator(self.text, self.tokens, i + 2, false)
+                                        .is_none()
                         });
                         gap.broken |= ends;
                     }
