@@ -15,7 +15,11 @@ fn read(text: &str) -> Vec<String> {
         for q in &s.quantities {
             let shown = &manuscript.text[q.span.clone()];
             // Lowered digits are printed on the line.
-            assert!(shown == q.printed || !shown.is_ascii(), "span and digits agree: {shown} {}", q.printed);
+            assert!(
+                shown == q.printed || !shown.is_ascii(),
+                "span and digits agree: {shown} {}",
+                q.printed
+            );
             assert!(q.interval.low <= q.interval.high);
         }
     }

@@ -60,7 +60,11 @@ impl Gutter {
 }
 
 fn divide(whole: Region, depth: u32, out: &mut Vec<Region>) {
-    let gutter = if depth < DEEPEST { best_gutter(&whole) } else { None };
+    let gutter = if depth < DEEPEST {
+        best_gutter(&whole)
+    } else {
+        None
+    };
     let Some(gutter) = gutter else {
         out.push(whole);
         return;
@@ -171,7 +175,11 @@ fn bands(mut pieces: Vec<Piece>, gutter: Gutter, left: f32, right: f32) -> Vec<B
             Some((false, _)) => gap > 0.9 * piece.size,
             Some((true, _)) => false,
         };
-        bottom = if new { piece.area[3] } else { bottom.max(piece.area[3]) };
+        bottom = if new {
+            piece.area[3]
+        } else {
+            bottom.max(piece.area[3])
+        };
         match strips.last_mut() {
             Some(last) if !new => last.1.push(piece),
             _ => strips.push((across, vec![piece])),

@@ -21,7 +21,11 @@ pub fn compose(b: &mut Builder, blocks: &[Block], body: Body, sheets: &[Sheet]) 
             .iter()
             .find(|s| s.number == block.first().page)
             .map_or(800.0, |s| s.height);
-        let depth = if Some(index) == state.title { None } else { roles::heading(block, body) };
+        let depth = if Some(index) == state.title {
+            None
+        } else {
+            roles::heading(block, body)
+        };
         let kind = depth.map_or_else(|| roles::kind(block, body, height), BlockKind::Heading);
         state.enter(index, block, kind);
         b.part(state.part_of(kind));
@@ -55,14 +59,20 @@ impl State {
         let title = blocks
             .iter()
             .enumerate()
-            .take_while(|(i, b)| b.first().page == first_page && Some(*i) != abstract_at && Some(*i) != intro_at)
+            .take_while(|(i, b)| {
+                b.first().page == first_page && Some(*i) != abstract_at && Some(*i) != intro_at
+            })
             .filter(|(_, b)| !b.row && !b.aside && b.text().chars().filter(|c| c.is_alphabetic()).count() > 8)
             .filter(|(_, b)| b.size() > 1.15 * body.size && b.lines.len() <= 6)
             .max_by(|a, b| a.1.size().total_cmp(&b.1.size()).then(b.0.cmp(&a.0)))
             .map(|(i, _)| i);
         // An abstract after the introduction is no abstract.
         let abstract_at = abstract_at.filter(|a| intro_at.is_none_or(|i| *a < i));
-        let part = if abstract_at.is_some() { Part::Front } else { Part::Body };
+        let part = if abstract_at.is_some() {
+            Part::Front
+        } else {
+            Part::Body
+        };
         State {
             part,
             title,
@@ -73,7 +83,10 @@ impl State {
 
     /// The part that a block belongs to; a title is front matter wherever the rest begins.
     fn part_of(&self, kind: BlockKind) -> Part {
-        if self.float_page.is_some() && self.part == Part::References && !matches!(kind, BlockKind::Heading(_)) {
+        if self.float_page.is_some()
+            && self.part == Part::References
+            && !matches!(kind, BlockKind::Heading(_))
+        {
             return Part::Body;
         }
         self.part
@@ -102,7 +115,10 @@ impl State {
         }
         let BlockKind::Heading(depth) = kind else {
             // A paper whose introduction has no heading: running text on a later page is the body.
-            if self.part == Part::Front && self.abstract_at.is_some_and(|a| index > a) && block.text().len() > 250 {
+            if self.part == Part::Front
+                && self.abstract_at.is_some_and(|a| index > a)
+                && block.text().len() > 250
+            {
                 self.part = Part::Body;
             }
             return;
@@ -127,7 +143,9 @@ impl State {
 
 fn ends_abstract(heading: &str) -> bool {
     let lower = heading.to_lowercase();
-    lower.contains("introduction") || lower.contains("einleitung") || heading.starts_with(|c: char| c.is_ascii_digit())
+    lower.contains("introduction")
+        || lower.contains("einleitung")
+        || heading.starts_with(|c: char| c.is_ascii_digit())
 }
 
 /// Writes the lines of a block, marking where each stands.

@@ -4,8 +4,8 @@
 //! Every call of the engine is counted, and beyond [`Limits`] the page is given up by unwinding
 //! through the engine, which has no other way to be stopped.
 
-use super::nesting::Forms;
 use super::glyphs::{FontUse, Glyph, Glyphs, Meaning, PageGlyphs, Shape, Step, Turn};
+use super::nesting::Forms;
 use hayro_interpret::font::{Glyph as Drawn, GlyphIdentifier, GlyphRun};
 use hayro_interpret::hayro_cmap::BfString;
 use hayro_interpret::kurbo::{Affine, BezPath, PathEl, Point, Shape as _};
@@ -183,7 +183,8 @@ impl Taker {
         let along = place * Point::new(1000.0, 0.0) - origin;
         let up = place * Point::new(0.0, 1000.0) - origin;
         let size = up.hypot() as f32;
-        if !(0.5..2000.0).contains(&size) || !origin.is_finite() || !along.is_finite() || along.hypot() == 0.0 {
+        if !(0.5..2000.0).contains(&size) || !origin.is_finite() || !along.is_finite() || along.hypot() == 0.0
+        {
             return;
         }
         // Fonts that are not embedded are stretched; where the next glyph begins is then the truth.

@@ -62,12 +62,7 @@ fn pages_with(executable: PathBuf, bytes: &[u8]) -> Option<Vec<String>> {
     if !good || answer.trim().is_empty() {
         return None;
     }
-    Some(
-        answer
-            .split_terminator(PAGE_END)
-            .map(str::to_string)
-            .collect(),
-    )
+    Some(answer.split_terminator(PAGE_END).map(str::to_string).collect())
 }
 
 /// Waits for the child; kills it when it takes too long.
@@ -107,10 +102,16 @@ pub mod worker {
         limit();
         std::panic::set_hook(Box::new(|_| {}));
         let mut bytes = Vec::new();
-        if std::io::stdin().lock().take(crate::readers::LARGEST_FILE).read_to_end(&mut bytes).is_err() {
+        if std::io::stdin()
+            .lock()
+            .take(crate::readers::LARGEST_FILE)
+            .read_to_end(&mut bytes)
+            .is_err()
+        {
             return ExitCode::from(2);
         }
-        let Ok(Ok(pages)) = std::panic::catch_unwind(|| pdf_extract::extract_text_from_mem_by_pages(&bytes)) else {
+        let Ok(Ok(pages)) = std::panic::catch_unwind(|| pdf_extract::extract_text_from_mem_by_pages(&bytes))
+        else {
             return ExitCode::FAILURE;
         };
         let mut out = std::io::stdout().lock();
@@ -125,7 +126,11 @@ pub mod worker {
                 return ExitCode::FAILURE;
             }
         }
-        if out.flush().is_err() { ExitCode::FAILURE } else { ExitCode::SUCCESS }
+        if out.flush().is_err() {
+            ExitCode::FAILURE
+        } else {
+            ExitCode::SUCCESS
+        }
     }
 
     #[cfg(unix)]

@@ -98,7 +98,11 @@ pub fn line(row: &[Piece], page: &PageGlyphs, glyphs: &Glyphs) -> Option<Line> {
     let mut words = Vec::new();
     for piece in row {
         // Scanned pages and slightly turned text: each piece has its own baseline.
-        let own = if piece.size >= 0.9 * size { piece.baseline } else { baseline };
+        let own = if piece.size >= 0.9 * size {
+            piece.baseline
+        } else {
+            baseline
+        };
         piece_words(piece, own, size, page, glyphs, &mut words);
     }
     let area = words.iter().map(|w: &Word| w.area).reduce(union)?;

@@ -70,7 +70,8 @@ pub fn drop_running_lines(pages: &[&PageGlyphs], pieces: &mut [Vec<Piece>]) {
             candidates.iter().any(|o| {
                 (o.y - c.y).abs() < WANDER
                     && o.page != c.page
-                    && o.number.is_some_and(|m| m as i64 - n as i64 == o.page as i64 - c.page as i64)
+                    && o.number
+                        .is_some_and(|m| m as i64 - n as i64 == o.page as i64 - c.page as i64)
             })
         });
         // A bare number at the very edge of the page is its number even when there is only one page.
@@ -111,7 +112,10 @@ fn page_number(text: &str) -> Option<u32> {
     let rest = &digits[head.len()..];
     let rest_fits = rest.is_empty()
         || rest.trim_start_matches([' ', '/']).starts_with("of ")
-        || rest.trim_start_matches([' ', '/']).bytes().all(|b| b.is_ascii_digit());
+        || rest
+            .trim_start_matches([' ', '/'])
+            .bytes()
+            .all(|b| b.is_ascii_digit());
     if head.len() <= 5 && rest_fits {
         head.parse().ok()
     } else {
@@ -127,7 +131,9 @@ pub fn drop_line_numbers(page: &PageGlyphs, pieces: &mut Vec<Piece>) {
         .enumerate()
         .filter_map(|(i, p)| {
             let text = p.plain_text(page);
-            (text.len() <= 4).then(|| text.parse().ok().map(|n| (i, n))).flatten()
+            (text.len() <= 4)
+                .then(|| text.parse().ok().map(|n| (i, n)))
+                .flatten()
         })
         .collect();
     if numbers.len() < 4 {
@@ -140,13 +146,29 @@ pub fn drop_line_numbers(page: &PageGlyphs, pieces: &mut Vec<Piece>) {
             let Some(column) = largest_column(pieces, &numbers, edge) else {
                 continue;
             };
-            let left = column.iter().map(|c| pieces[c.0].area[0]).fold(f32::MAX, f32::min);
-            let right = column.iter().map(|c| pieces[c.0].area[2]).fold(f32::MIN, f32::max);
+            let left = column
+                .iter()
+                .map(|c| pieces[c.0].area[0])
+                .fold(f32::MAX, f32::min);
+            let right = column
+                .iter()
+                .map(|c| pieces[c.0].area[2])
+                .fold(f32::MIN, f32::max);
             let mine = |i: usize| column.iter().any(|c| c.0 == i);
-            let others = pieces.iter().enumerate().filter(|(i, _)| !mine(*i)).map(|(_, p)| p);
+            let others = pieces
+                .iter()
+                .enumerate()
+                .filter(|(i, _)| !mine(*i))
+                .map(|(_, p)| p);
             let beyond = others.clone().count();
             let clear = others
-                .filter(|p| if side == 0 { p.area[0] > right } else { p.area[2] < left })
+                .filter(|p| {
+                    if side == 0 {
+                        p.area[0] > right
+                    } else {
+                        p.area[2] < left
+                    }
+                })
                 .count();
             if beyond > 0 && clear * 20 >= beyond * 19 && counts_evenly(pieces, &column) {
                 drop.extend(column.iter().map(|c| c.0));

@@ -55,9 +55,9 @@ fn read_within(bytes: &[u8], limits: Limits) -> Result<Manuscript, Unreadable> {
             "takes more than {} seconds to interpret; print it to a new PDF and read that",
             limits.time.as_secs()
         ))),
-        Err(guard::Mishap::NoThread) => {
-            Err(Unreadable::new("cannot be read now: the system gives no thread; try again"))
-        }
+        Err(guard::Mishap::NoThread) => Err(Unreadable::new(
+            "cannot be read now: the system gives no thread; try again",
+        )),
         Ok(Ok(_)) | Ok(Err(Refusal::Damaged)) | Err(guard::Mishap::Panicked) => second_try(bytes),
     }
 }
@@ -70,7 +70,9 @@ fn is_cut_off(bytes: &[u8]) -> bool {
 fn second_try(bytes: &[u8]) -> Result<Manuscript, Unreadable> {
     let head = &bytes[..bytes.len().min(1024)];
     if memchr::memmem::find(head, b"%PDF-").is_none() {
-        return Err(Unreadable::new("is not a PDF although it is called one; check the file"));
+        return Err(Unreadable::new(
+            "is not a PDF although it is called one; check the file",
+        ));
     }
     let Some(pages) = fallback::pages(bytes) else {
         return Err(Unreadable::new(if is_cut_off(bytes) {
@@ -150,25 +152,39 @@ fn manuscript(glyphs: Glyphs, bytes: &[u8]) -> Result<Manuscript, Unreadable> {
 /// What the person should know about the reading.
 fn remarks(b: &mut Builder, glyphs: &Glyphs, bytes: &[u8]) {
     let numbers = |which: &dyn Fn(&PageGlyphs) -> bool| {
-        let hits: Vec<u32> = glyphs.pages.iter().filter(|p| which(p)).map(|p| p.number).collect();
+        let hits: Vec<u32> = glyphs
+            .pages
+            .iter()
+            .filter(|p| which(p))
+            .map(|p| p.number)
+            .collect();
         hits
     };
     let bare = numbers(&|p| p.image && !p.glyphs.iter().any(|g| !g.meaning.is_space()));
     if let Some(pages) = listed(&bare) {
-        b.remark(format!("{pages} without text (images only): not read; run text recognition on the file"));
+        b.remark(format!(
+            "{pages} without text (images only): not read; run text recognition on the file"
+        ));
     }
     if let Some(pages) = listed(&numbers(&|p| p.cut_short)) {
         b.remark(format!("{pages} only read in part: damaged, or too much drawing"));
     }
     if glyphs.left_out > 0 {
-        b.remark(format!("the last {} pages were not read: the file is too long", glyphs.left_out));
+        b.remark(format!(
+            "the last {} pages were not read: the file is too long",
+            glyphs.left_out
+        ));
     }
     if is_cut_off(bytes) {
         b.remark("the file is cut off before its end; pages may be missing");
     }
     let mut unknown = Vec::new();
     for page in &glyphs.pages {
-        let strange = page.glyphs.iter().filter(|g| g.meaning == glyphs::Meaning::Unknown).count();
+        let strange = page
+            .glyphs
+            .iter()
+            .filter(|g| g.meaning == glyphs::Meaning::Unknown)
+            .count();
         if strange * 20 > page.glyphs.len() {
             unknown.push(page.number);
         }
@@ -191,7 +207,13 @@ fn listed(pages: &[u32]) -> Option<String> {
     }
     let text: Vec<String> = ranges
         .iter()
-        .map(|(a, b)| if a == b { a.to_string() } else { format!("{a}–{b}") })
+        .map(|(a, b)| {
+            if a == b {
+                a.to_string()
+            } else {
+                format!("{a}–{b}")
+            }
+        })
         .collect();
     match pages.len() {
         0 => None,

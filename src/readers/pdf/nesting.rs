@@ -55,7 +55,9 @@ impl Forms {
                 continue;
             }
             self.draws.insert(id, Vec::new());
-            let Ok(content) = form.decoded_data() else { continue };
+            let Ok(content) = form.decoded_data() else {
+                continue;
+            };
             let own = form.dict().get::<Dict<'_>>(RESOURCES).map(Resources::new);
             let inner = drawn(&content, own.as_ref().unwrap_or(resources), &mut todo);
             self.draws.insert(id, inner);

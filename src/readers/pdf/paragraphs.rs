@@ -78,15 +78,23 @@ impl Body {
         let mut leadings: Vec<f32> = Vec::new();
         for column in columns.iter().filter(|c| !c.aside) {
             for line in &column.lines {
-                let n = line.words.iter().map(|w| w.parts.iter().map(|p| p.1.len()).sum::<usize>()).sum();
-                match sizes.iter_mut().find(|(s, _)| (*s - line.size).abs() < 0.03 * line.size) {
+                let n = line
+                    .words
+                    .iter()
+                    .map(|w| w.parts.iter().map(|p| p.1.len()).sum::<usize>())
+                    .sum();
+                match sizes
+                    .iter_mut()
+                    .find(|(s, _)| (*s - line.size).abs() < 0.03 * line.size)
+                {
                     Some((_, sum)) => *sum += n,
                     None => sizes.push((line.size, n)),
                 }
             }
             for pair in column.lines.windows(2) {
                 let leading = (pair[1].baseline - pair[0].baseline) / pair[1].size;
-                if (pair[1].size - pair[0].size).abs() < 0.05 * pair[0].size && (0.8..3.0).contains(&leading) {
+                if (pair[1].size - pair[0].size).abs() < 0.05 * pair[0].size && (0.8..3.0).contains(&leading)
+                {
                     leadings.push(leading);
                 }
             }
@@ -157,16 +165,23 @@ fn is_row(lines: &[Line], i: usize) -> bool {
             .is_some_and(|l| l.pieces > 1 && (l.baseline - line.baseline).abs() < 3.0 * line.size)
     };
     // A list's number or bullet before its text is no cell.
-    let marker = line.pieces == 2 && line.words.get(1).is_some_and(|w| w.after_gap) && is_marker(&line.words[0].text());
+    let marker = line.pieces == 2
+        && line.words.get(1).is_some_and(|w| w.after_gap)
+        && is_marker(&line.words[0].text());
     !marker && (line.pieces > 2 || widest > 3.0 || near(i.checked_sub(1)) || near(Some(i + 1)))
 }
 
 /// `•`, `–`, `3.`, `(b)`, `[12]`.
 pub fn is_marker(word: &str) -> bool {
-    if matches!(word, "•" | "–" | "-" | "—" | "◦" | "▪" | "■" | "·" | "*" | "∙" | "○" | "●" | "➢") {
+    if matches!(
+        word,
+        "•" | "–" | "-" | "—" | "◦" | "▪" | "■" | "·" | "*" | "∙" | "○" | "●" | "➢"
+    ) {
         return true;
     }
-    let bare = word.trim_start_matches(['(', '[']).trim_end_matches(['.', ')', ']']);
+    let bare = word
+        .trim_start_matches(['(', '['])
+        .trim_end_matches(['.', ')', ']']);
     bare.len() < word.len()
         && !bare.is_empty()
         && (bare.len() <= 3 && bare.bytes().all(|b| b.is_ascii_digit())
@@ -234,7 +249,13 @@ impl Measure {
         if (line.size - last.size).abs() > 0.07 * size && !(lower && !ended && step < 1.2 * self.leading) {
             return Seam::Apart;
         }
-        if line.bold != last.bold && !(lower && !ended) && line.words.iter().any(|w| w.text().chars().any(char::is_alphabetic)) {
+        if line.bold != last.bold
+            && !(lower && !ended)
+            && line
+                .words
+                .iter()
+                .any(|w| w.text().chars().any(char::is_alphabetic))
+        {
             return Seam::Apart;
         }
         if step > (1.25 * self.leading).max(self.leading + 0.22 * size) || step < 0.0 {
@@ -252,15 +273,22 @@ impl Measure {
         if centred && !ended {
             return Seam::None;
         }
-        if is_marker(&first) && (ended || short) && !(block.lines.len() == 1 && indent > 0.7 * size && !short) {
+        if is_marker(&first) && (ended || short) && !(block.lines.len() == 1 && indent > 0.7 * size && !short)
+        {
             return Seam::Paragraph;
         }
         if indent.abs() < 0.7 * size {
-            return if short && (ended || very_short && !lower) { Seam::Paragraph } else { Seam::None };
+            return if short && (ended || very_short && !lower) {
+                Seam::Paragraph
+            } else {
+                Seam::None
+            };
         }
         if indent > 0.0 && is_indented(line) {
             let marked = block.lines.len() == 1 && last.words.first().is_some_and(|w| is_marker(&w.text()));
-            let hangs = next.is_some_and(|n| (n.area[0] - line.area[0]).abs() < 1.5 && n.baseline - line.baseline < 1.3 * self.leading);
+            let hangs = next.is_some_and(|n| {
+                (n.area[0] - line.area[0]).abs() < 1.5 && n.baseline - line.baseline < 1.3 * self.leading
+            });
             let single = block.lines.len() == 1 && !short;
             if marked || (hangs && single) || (!ended && !short) || lower {
                 return Seam::None;
@@ -270,9 +298,17 @@ impl Measure {
         if indent < 0.0 {
             // Back from an indented first line, or the end of a hanging or quoted paragraph.
             let first_line = block.lines.len() == 1;
-            return if first_line && !(short && ended) || (!ended && !short) || lower { Seam::None } else { Seam::Paragraph };
+            return if first_line && !(short && ended) || (!ended && !short) || lower {
+                Seam::None
+            } else {
+                Seam::Paragraph
+            };
         }
-        if lower && !ended { Seam::None } else { Seam::Paragraph }
+        if lower && !ended {
+            Seam::None
+        } else {
+            Seam::Paragraph
+        }
     }
 }
 
@@ -344,7 +380,11 @@ fn continuation(
         if next.column == from.column {
             return None;
         }
-        if !next.fills_column() && next.lines.len() == 1 && next.first().width() < 0.3 * (next.right - next.left) && !starts_low(next) {
+        if !next.fills_column()
+            && next.lines.len() == 1
+            && next.first().width() < 0.3 * (next.right - next.left)
+            && !starts_low(next)
+        {
             continue;
         }
         if (next.size() - from.size()).abs() > 0.05 * from.size() {
@@ -352,7 +392,8 @@ fn continuation(
         }
         let full = last.area[2] > from.right - 0.12 * (from.right - from.left);
         let goes_on = starts_low(next) || ends_open(&end) || full;
-        let indented = next.lines.len() > 1 && next.first().area[0] - next.lines[1].1.area[0] > 0.7 * next.size();
+        let indented =
+            next.lines.len() > 1 && next.first().area[0] - next.lines[1].1.area[0] > 0.7 * next.size();
         return (goes_on && (!indented || starts_low(next) || ends_open(&end))).then_some(to);
     }
     None
@@ -374,8 +415,9 @@ fn starts_low(block: &Block) -> bool {
 
 /// Ends as no sentence ends.
 fn ends_open(text: &str) -> bool {
-    text.ends_with(['-', '\u{ad}', '\u{2010}', ',', ';', '=', '<', '>', '≤', '≥', '±', '(', '[', '−'])
-        || text.ends_with("et al.")
+    text.ends_with([
+        '-', '\u{ad}', '\u{2010}', ',', ';', '=', '<', '>', '≤', '≥', '±', '(', '[', '−',
+    ]) || text.ends_with("et al.")
         || text.ends_with(" vs.")
         || text.ends_with("Fig.")
         || text.ends_with("e.g.")

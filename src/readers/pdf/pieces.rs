@@ -67,7 +67,10 @@ const CELL_GAP: f32 = 1.15;
 pub fn main_line(glyphs: &[&Glyph]) -> (f32, f32) {
     let mut sizes: Vec<(f32, u32)> = Vec::new();
     for g in glyphs {
-        match sizes.iter_mut().find(|(s, _)| (*s - g.size).abs() < 0.04 * g.size) {
+        match sizes
+            .iter_mut()
+            .find(|(s, _)| (*s - g.size).abs() < 0.04 * g.size)
+        {
             Some((_, n)) => *n += 1,
             None => sizes.push((g.size, 1)),
         }
@@ -149,7 +152,8 @@ fn follows(last: &Glyph, base: &Glyph, g: &Glyph) -> bool {
         // A subscript may go back below its superscript.
         return (-2.0 * size..0.5 * size).contains(&gap);
     }
-    let level = (g.baseline - last.baseline).abs() < 0.12 * g.size && (g.size - last.size).abs() < 0.1 * g.size;
+    let level =
+        (g.baseline - last.baseline).abs() < 0.12 * g.size && (g.size - last.size).abs() < 0.1 * g.size;
     if level && shift < 0.75 * size {
         return (-0.3 * size..0.4 * size).contains(&gap);
     }

@@ -50,30 +50,116 @@ pub fn named(text: &str) -> Option<Named> {
         name.retain(|c| c != ' ');
     }
     Some(match name.as_str() {
-        "abstract" | "summary" | "zusammenfassung" | "résumé" | "resumen" | "resumo" | "abstrakt" => Named::Abstract,
+        "abstract" | "summary" | "zusammenfassung" | "résumé" | "resumen" | "resumo" | "abstrakt" => {
+            Named::Abstract
+        }
         "keywords" | "key words" | "index terms" | "schlüsselwörter" => Named::Keywords,
-        "introduction" | "background" | "method" | "methods" | "materials and methods" | "material and methods"
-        | "methods and materials" | "patients and methods" | "participants" | "procedure" | "measures"
-        | "materials" | "design" | "data analysis" | "statistical analysis" | "statistical analyses"
-        | "results" | "findings" | "discussion" | "general discussion" | "results and discussion"
-        | "conclusion" | "conclusions" | "limitations" | "einleitung" | "methode" | "methoden" | "ergebnisse"
-        | "diskussion" | "résultats" | "resultados" | "métodos" | "discusión" | "discussão" | "experiment"
-        | "study 1" | "study 2" | "study 3" | "study 4" | "experiment 1" | "experiment 2" | "experiment 3" => Named::Main,
-        "acknowledgements" | "acknowledgments" | "acknowledgement" | "acknowledgment" | "funding"
-        | "author contributions" | "authors' contributions" | "authors’ contributions" | "credit author statement"
-        | "conflict of interest" | "conflicts of interest" | "competing interests" | "declaration of interest"
-        | "declaration of interests" | "declaration of competing interest" | "disclosure" | "disclosures"
-        | "disclosure statement" | "conflict of interest statement" | "declaration of conflicting interests"
-        | "data availability" | "data availability statement" | "availability of data and materials"
-        | "ethics statement" | "ethical approval" | "funding information" | "financial support"
-        | "author note" | "danksagung" | "abbreviations" | "orcid" => Named::Back,
-        "references" | "reference" | "bibliography" | "literature cited" | "literature" | "works cited"
-        | "reference list" | "references cited" | "cited literature" | "references and notes" | "literatur"
-        | "literaturverzeichnis" | "références" | "bibliographie" | "referencias" | "referências"
-        | "bibliografía" | "bibliografia" | "piśmiennictwo" | "computational details and references" => Named::References,
-        n if n.starts_with("appendix") || n.starts_with("supplement") || n.starts_with("supporting information")
-            || n == "appendices" || n.starts_with("online resource") || n == "tables" || n == "figures"
-            || n == "figure captions" || n == "figure legends" || n.starts_with("anhang") => Named::Appendix,
+        "introduction"
+        | "background"
+        | "method"
+        | "methods"
+        | "materials and methods"
+        | "material and methods"
+        | "methods and materials"
+        | "patients and methods"
+        | "participants"
+        | "procedure"
+        | "measures"
+        | "materials"
+        | "design"
+        | "data analysis"
+        | "statistical analysis"
+        | "statistical analyses"
+        | "results"
+        | "findings"
+        | "discussion"
+        | "general discussion"
+        | "results and discussion"
+        | "conclusion"
+        | "conclusions"
+        | "limitations"
+        | "einleitung"
+        | "methode"
+        | "methoden"
+        | "ergebnisse"
+        | "diskussion"
+        | "résultats"
+        | "resultados"
+        | "métodos"
+        | "discusión"
+        | "discussão"
+        | "experiment"
+        | "study 1"
+        | "study 2"
+        | "study 3"
+        | "study 4"
+        | "experiment 1"
+        | "experiment 2"
+        | "experiment 3" => Named::Main,
+        "acknowledgements"
+        | "acknowledgments"
+        | "acknowledgement"
+        | "acknowledgment"
+        | "funding"
+        | "author contributions"
+        | "authors' contributions"
+        | "authors’ contributions"
+        | "credit author statement"
+        | "conflict of interest"
+        | "conflicts of interest"
+        | "competing interests"
+        | "declaration of interest"
+        | "declaration of interests"
+        | "declaration of competing interest"
+        | "disclosure"
+        | "disclosures"
+        | "disclosure statement"
+        | "conflict of interest statement"
+        | "declaration of conflicting interests"
+        | "data availability"
+        | "data availability statement"
+        | "availability of data and materials"
+        | "ethics statement"
+        | "ethical approval"
+        | "funding information"
+        | "financial support"
+        | "author note"
+        | "danksagung"
+        | "abbreviations"
+        | "orcid" => Named::Back,
+        "references"
+        | "reference"
+        | "bibliography"
+        | "literature cited"
+        | "literature"
+        | "works cited"
+        | "reference list"
+        | "references cited"
+        | "cited literature"
+        | "references and notes"
+        | "literatur"
+        | "literaturverzeichnis"
+        | "références"
+        | "bibliographie"
+        | "referencias"
+        | "referências"
+        | "bibliografía"
+        | "bibliografia"
+        | "piśmiennictwo"
+        | "computational details and references" => Named::References,
+        n if n.starts_with("appendix")
+            || n.starts_with("supplement")
+            || n.starts_with("supporting information")
+            || n == "appendices"
+            || n.starts_with("online resource")
+            || n == "tables"
+            || n == "figures"
+            || n == "figure captions"
+            || n == "figure legends"
+            || n.starts_with("anhang") =>
+        {
+            Named::Appendix
+        }
         _ => return None,
     })
 }
@@ -105,7 +191,8 @@ pub fn is_caption(block: &Block, body: Body) -> bool {
     };
     let rest = &text[found.end()..];
     let label_alone = rest.trim().is_empty();
-    let punctuated = rest.starts_with(['.', ':', '|', '—', '–']) || rest.trim_start().starts_with(['|', '—', '–']);
+    let punctuated =
+        rest.starts_with(['.', ':', '|', '—', '–']) || rest.trim_start().starts_with(['|', '—', '–']);
     let first_word_bold = block.first().words.first().is_some_and(|w| w.bold);
     // `Table 2 shows that …` at the top of a column is a sentence.
     let sentence = rest
@@ -113,9 +200,11 @@ pub fn is_caption(block: &Block, body: Body) -> bool {
         .chars()
         .next()
         .is_some_and(|c| c.is_lowercase() || c == ',' || c == ')');
-    label_alone || punctuated || (first_word_bold && !sentence) || (!body.is_size(block.size()) && !sentence) || {
-        !sentence && text.chars().count() < 160 && !text.trim_end().ends_with(',')
-    }
+    label_alone
+        || punctuated
+        || (first_word_bold && !sentence)
+        || (!body.is_size(block.size()) && !sentence)
+        || { !sentence && text.chars().count() < 160 && !text.trim_end().ends_with(',') }
 }
 
 /// The kind of a block that is no heading.
@@ -136,7 +225,11 @@ pub fn kind(block: &Block, body: Body, page_height: f32) -> BlockKind {
     if !block.row && block.size() < 0.93 * body.size && marked && first.baseline > 0.5 * page_height {
         return BlockKind::Footnote;
     }
-    if !block.row && first.words.len() > 1 && is_marker(&first.words[0].text()) && !first.words[0].text().starts_with('[') {
+    if !block.row
+        && first.words.len() > 1
+        && is_marker(&first.words[0].text())
+        && !first.words[0].text().starts_with('[')
+    {
         return BlockKind::ListItem;
     }
     BlockKind::Paragraph
@@ -164,13 +257,21 @@ pub fn heading(block: &Block, body: Body) -> Option<u8> {
     let size = block.size() / body.size;
     let bold = block.bold();
     let shouting = letters >= 4 && !text.chars().any(char::is_lowercase);
-    let ends_open = text.ends_with([',', ';', '=', '-']) || (text.ends_with('.') && known.is_none() && depth.is_none() && !bold);
+    let ends_open = text.ends_with([',', ';', '=', '-'])
+        || (text.ends_with('.') && known.is_none() && depth.is_none() && !bold);
     let stands_out = size > 1.07 || (bold && size > 0.9);
     let sentence = text.ends_with('.') && count > 90;
-    if ends_open || sentence || !text.chars().next().is_some_and(|c| c.is_alphanumeric() && !c.is_lowercase()) {
+    if ends_open
+        || sentence
+        || !text
+            .chars()
+            .next()
+            .is_some_and(|c| c.is_alphanumeric() && !c.is_lowercase())
+    {
         return None;
     }
-    let is_heading = known.is_some() || (block.apart && (stands_out || (shouting && block.lines.len() <= 2 && size > 0.9 && count < 80)));
+    let is_heading = known.is_some()
+        || (block.apart && (stands_out || (shouting && block.lines.len() <= 2 && size > 0.9 && count < 80)));
     if !is_heading {
         return None;
     }

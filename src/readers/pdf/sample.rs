@@ -36,7 +36,11 @@ pub fn bold(x: f32, y: f32, size: f32, text: &str) -> At<'_> {
 pub fn content(texts: &[At]) -> String {
     let mut out = String::from("BT\n");
     for t in texts {
-        let shown = t.text.replace('\\', "\\\\").replace('(', "\\(").replace(')', "\\)");
+        let shown = t
+            .text
+            .replace('\\', "\\\\")
+            .replace('(', "\\(")
+            .replace(')', "\\)");
         let font = if t.bold { "B" } else { "R" };
         out.push_str(&format!(
             "/{font} {} Tf 1 0 0 1 {} {} Tm ({shown}) Tj\n",
@@ -53,7 +57,10 @@ pub fn pdf(contents: &[String], extra: &str) -> Vec<u8> {
     let pages = contents.len();
     let mut objects = vec!["<< /Type /Catalog /Pages 2 0 R >>".to_string()];
     let kids: Vec<String> = (0..pages).map(|i| format!("{} 0 R", 5 + 2 * i)).collect();
-    objects.push(format!("<< /Type /Pages /Count {pages} /Kids [{}] >>", kids.join(" ")));
+    objects.push(format!(
+        "<< /Type /Pages /Count {pages} /Kids [{}] >>",
+        kids.join(" ")
+    ));
     for name in ["Times-Roman", "Times-Bold"] {
         objects.push(format!(
             "<< /Type /Font /Subtype /Type1 /BaseFont /{name} /Encoding /WinAnsiEncoding >>"
@@ -65,7 +72,10 @@ pub fn pdf(contents: &[String], extra: &str) -> Vec<u8> {
              /Resources << /Font << /R 3 0 R /B 4 0 R >> >> >>",
             6 + 2 * i
         ));
-        objects.push(format!("<< /Length {} >>\nstream\n{content}endstream", content.len()));
+        objects.push(format!(
+            "<< /Length {} >>\nstream\n{content}endstream",
+            content.len()
+        ));
     }
     let mut out = b"%PDF-1.4\n".to_vec();
     let mut places = Vec::new();

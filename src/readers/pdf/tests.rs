@@ -39,9 +39,17 @@ const RIGHT: &[&str] = &[
 
 #[test]
 fn two_columns_under_a_title_are_read_one_after_the_other() {
-    let mut page = vec![bold(120.0, 740.0, 18.0, "Watering diaries and the yield of gardens")];
+    let mut page = vec![bold(
+        120.0,
+        740.0,
+        18.0,
+        "Watering diaries and the yield of gardens",
+    )];
     // The file draws the lines of both columns in turn.
-    for (l, r) in column(50.0, 700.0, LEFT).into_iter().zip(column(320.0, 700.0, RIGHT)) {
+    for (l, r) in column(50.0, 700.0, LEFT)
+        .into_iter()
+        .zip(column(320.0, 700.0, RIGHT))
+    {
         page.push(l);
         page.push(r);
     }
@@ -49,7 +57,9 @@ fn two_columns_under_a_title_are_read_one_after_the_other() {
     let all = texts(&m);
     assert_eq!(all.len(), 2, "{all:#?}");
     assert!(all[1].starts_with("Gardeners kept") && all[1].ends_with("between the weeks."));
-    let found = all[1].find("t (118) = 2.31, p = .023").expect("the result is joined across columns");
+    let found = all[1]
+        .find("t (118) = 2.31, p = .023")
+        .expect("the result is joined across columns");
     let block = &m.blocks[1];
     let place = m.place(block, block.range.start + found..block.range.start + found + 7);
     assert_eq!((place.page, place.line), (Some(1), Some(6)));
@@ -90,13 +100,20 @@ fn a_paragraph_goes_on_across_pages_headers_and_footnotes() {
         } else if i == 1 {
             page.extend(column(50.0, 700.0, RIGHT));
         } else {
-            page.extend(column(50.0, 700.0, &["Nothing else happened in the gardens in that year."]));
+            page.extend(column(
+                50.0,
+                700.0,
+                &["Nothing else happened in the gardens in that year."],
+            ));
         }
         pages.push(page);
     }
     let m = read_pages(&pages);
     let all = texts(&m);
-    assert!(!m.text.contains("Allotment Studies") && !m.text.contains("102"), "{all:#?}");
+    assert!(
+        !m.text.contains("Allotment Studies") && !m.text.contains("102"),
+        "{all:#?}"
+    );
     assert_eq!(all.len(), 3, "{all:#?}");
     let result = "t (118) = 2.31, p = .023";
     let start = m.text.find(result).expect("joined across the page");
@@ -112,8 +129,16 @@ fn sections_captions_and_references_are_told_apart() {
         bold(50.0, 740.0, 12.0, "Abstract"),
         at(50.0, 720.0, "We asked 120 gardeners, t(118) = 2.31, p = .023."),
         bold(50.0, 690.0, 12.0, "1. Introduction"),
-        at(50.0, 670.0, "Gardeners keep diaries of the water that they carry to their beds in summer."),
-        at(50.0, 658.0, "They were collected at the end of each month by the secretary of the society."),
+        at(
+            50.0,
+            670.0,
+            "Gardeners keep diaries of the water that they carry to their beds in summer.",
+        ),
+        at(
+            50.0,
+            658.0,
+            "They were collected at the end of each month by the secretary of the society.",
+        ),
         sized(50.0, 620.0, 9.0, "Table 1. Litres per week by group"),
         at(50.0, 600.0, "Group"),
         at(150.0, 600.0, "M"),
@@ -122,12 +147,22 @@ fn sections_captions_and_references_are_told_apart() {
         at(150.0, 588.0, "31.4"),
         at(250.0, 588.0, ".023"),
         bold(50.0, 550.0, 12.0, "References"),
-        at(50.0, 530.0, "Plotholder, B. (2011). Cans and cabbages. Allotment Studies, 3, 12-18. p = .900."),
+        at(
+            50.0,
+            530.0,
+            "Plotholder, B. (2011). Cans and cabbages. Allotment Studies, 3, 12-18. p = .900.",
+        ),
     ]]);
     let seen: Vec<(BlockKind, Part, &str)> = m
         .blocks
         .iter()
-        .map(|b| (b.kind, b.part, m.block_text(b).split(' ').next().unwrap_or_default()))
+        .map(|b| {
+            (
+                b.kind,
+                b.part,
+                m.block_text(b).split(' ').next().unwrap_or_default(),
+            )
+        })
         .collect();
     use BlockKind::{Caption, Heading, Paragraph};
     assert_eq!(
@@ -161,10 +196,14 @@ fn line_numbers_of_manuscripts_are_set_aside() {
 
 #[test]
 fn words_hyphenated_at_the_line_end_are_joined() {
-    let m = read_pages(&[column(50.0, 700.0, &[
-        "Gardeners kept a diary of every can of water, and the differ-",
-        "ence between the groups was not small at all (p = .03).",
-    ])]);
+    let m = read_pages(&[column(
+        50.0,
+        700.0,
+        &[
+            "Gardeners kept a diary of every can of water, and the differ-",
+            "ence between the groups was not small at all (p = .03).",
+        ],
+    )]);
     assert!(m.text.contains("and the difference between"), "{}", m.text);
 }
 
@@ -181,7 +220,10 @@ fn turned_pages_are_read_upright() {
 
 #[test]
 fn what_is_cropped_away_is_not_read() {
-    let page = content(&[at(50.0, 700.0, "Seen on the page."), at(50.0, 20.0, "Printer's mark.")]);
+    let page = content(&[
+        at(50.0, 700.0, "Seen on the page."),
+        at(50.0, 20.0, "Printer's mark."),
+    ]);
     let m = read(&pdf(&[page], "/CropBox [0 100 600 800]")).expect("the sample is a PDF");
     assert_eq!(texts(&m), ["Seen on the page."]);
 }
@@ -217,7 +259,10 @@ fn damaged_files_have_one_reason() {
     let cut = whole.len() - 300;
     let m = read(&whole[..cut]).expect("the page is still there");
     assert!(m.text.contains("Gardeners kept"));
-    assert_eq!(m.remarks, ["the file is cut off before its end; pages may be missing"]);
+    assert_eq!(
+        m.remarks,
+        ["the file is cut off before its end; pages may be missing"]
+    );
 }
 
 #[test]
@@ -231,7 +276,11 @@ fn forms_that_draw_each_other_without_end_are_given_up() {
     let result = read_within(bytes, limits);
     assert!(start.elapsed() < Duration::from_secs(20));
     if let Ok(m) = result {
-        assert!(m.remarks.iter().any(|r| r.contains("only read in part")), "{:?}", m.remarks);
+        assert!(
+            m.remarks.iter().any(|r| r.contains("only read in part")),
+            "{:?}",
+            m.remarks
+        );
     }
 }
 
