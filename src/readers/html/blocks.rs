@@ -270,7 +270,8 @@ impl<'a> Reading<'a> {
     pub(super) fn describe_group(&mut self) {
         let Some(group) = self.groups.pop() else { return };
         let tables = group.first_table..self.b.table_count();
-        for table in tables {
+        // A figure with more tables than this is no figure, but a page without end tags.
+        for table in tables.take(100) {
             self.b
                 .describe_table(table, group.label.as_deref(), &group.captions, &group.notes);
         }
