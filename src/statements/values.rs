@@ -165,6 +165,12 @@ impl Scan<'_> {
             "twenty",
         ];
         let word = self.word(at)?;
+        // Most words are none of these.
+        if !(3..=9).contains(&word.len())
+            || !word.starts_with(['o', 't', 'f', 's', 'e', 'n', 'O', 'T', 'F', 'S', 'E', 'N'])
+        {
+            return None;
+        }
         let index = WORDS.iter().position(|w| w.eq_ignore_ascii_case(word))?;
         let token = self.tokens[at];
         Some(Value {
