@@ -56,10 +56,7 @@ impl Scan<'_> {
             shown.truncate(e);
         } else {
             // Groups of thousands and decimal commas.
-            loop {
-                let (Some(mark), Some(digits)) = (self.tokens.get(i), self.tokens.get(i + 1)) else {
-                    break;
-                };
+            while let (Some(mark), Some(digits)) = (self.tokens.get(i), self.tokens.get(i + 1)) {
                 let part = digits.text(self.text);
                 let tight = !mark.spaced
                     && !digits.spaced
