@@ -36,6 +36,7 @@ impl Scan<'_> {
         while at < self.tokens.len() {
             let token = self.tokens[at];
             let found = match token.kind {
+                Kind::Word if !self.grammar.may_begin(token.text(self.text)) => None,
                 Kind::Word => self
                     .interval(at)
                     .or_else(|| self.paired(at))

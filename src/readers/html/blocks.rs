@@ -137,11 +137,9 @@ impl<'a> Reading<'a> {
 
     /// Whether preformatted text is program code or its output rather than part of the paper.
     pub(super) fn is_program(&self, start: &Start<'_>) -> bool {
-        const LOOK_AHEAD: usize = 1 << 16;
-        let rest = self.tokens.rest().as_bytes();
-        let rest = &rest[..rest.len().min(LOOK_AHEAD)];
-        let content = &rest[..memchr::memmem::find(rest, b"</pre").unwrap_or(rest.len())];
-        memchr::memmem::find(content, b"<code").is_some()
+        let content = self.tokens.rest().trim_start();
+        let tag = content.as_bytes().get(..5).unwrap_or_default();
+        tag.eq_ignore_ascii_case(b"<code")
             || start
                 .raw("class")
                 .is_some_and(|c| c.to_ascii_lowercase().contains("code"))

@@ -44,8 +44,8 @@ struct Context {
     silent: bool,
     /// A formula may be read in here even so: it is the form of it meant for reading.
     math_in_silence: bool,
-    /// What is hidden from screen readers only is the only form there is.
-    unhide: bool,
+    /// In a formula whose form for reading stands beside the one kept from screen readers.
+    twofold: bool,
     /// Inside a formula, where `$` and `\(` are marks of TeX.
     formula: bool,
     /// Blocks become text of the block around them.
@@ -121,7 +121,7 @@ impl<'a> Reading<'a> {
                 part: None,
                 silent: false,
                 math_in_silence: false,
-                unhide: false,
+                twofold: false,
                 formula: false,
                 joined: false,
                 preformatted: false,
@@ -172,10 +172,10 @@ impl<'a> Reading<'a> {
         if self.context.silent {
             return;
         }
-        if raw.bytes().all(|b| b.is_ascii_whitespace()) {
-            if !self.context.preformatted || raw.bytes().filter(|b| *b == b'\n').count() < 2 {
-                return self.text(raw);
-            }
+        let breaks = |raw: &str| raw.bytes().filter(|b| *b == b'\n').count();
+        let blank = raw.bytes().all(|b| b.is_ascii_whitespace());
+        if blank && !(self.context.preformatted && breaks(raw) > 1) {
+            return self.text(raw);
         }
         let begins = raw.as_ptr() as usize - self.source.as_ptr() as usize;
         let line = self.line_at(begins);
@@ -187,8 +187,7 @@ impl<'a> Reading<'a> {
             self.b.line(line);
             return self.text(&decode(raw));
         }
-        let mut count = 0;
-        for part in raw.split_inclusive('\n') {
+        for (count, part) in (0..).zip(raw.split_inclusive('\n')) {
             let blank = part.trim().is_empty();
             if self.context.preformatted && blank && !self.context.joined {
                 self.close_block();
@@ -197,7 +196,6 @@ impl<'a> Reading<'a> {
                 self.b.line(line + count);
             }
             self.text(&decode(part));
-            count += 1;
         }
     }
 
@@ -249,7 +247,7 @@ impl<'a> Reading<'a> {
             own: false,
         };
         let hidden =
-            element == Element::Hidden || marks.hidden || (marks.aria_hidden && !self.context.unhide);
+            element == Element::Hidden || marks.hidden || (marks.aria_hidden && self.context.twofold);
         if hidden {
             self.context.silent = true;
             self.context.math_in_silence = false;
