@@ -87,7 +87,12 @@ impl Scan<'_> {
         }
         let wordy = words || symbol.bare || with_arguments || symbol.class == Class::P;
         let compared = self.grammar.comparator(self.text, self.tokens, next, wordy);
-        let (comparator, value_at) = match compared {
+        // `The mean age of the sample at baseline was 74.4 years`
+        let compared = compared.filter(|(_, behind)| !words || self.word(*behind).is_none());
+        let phrased = (compared.is_none() && words && matches!(symbol.name, "M" | "Mdn"))
+            .then(|| self.phrase(next))
+            .flatten();
+        let (comparator, value_at) = match compared.or(phrased) {
             Some((comparator, behind)) => {
                 // `p-value was < .001`: the sign decides.
                 match self.grammar.comparator(self.text, self.tokens, behind, false) {
@@ -270,7 +275,7 @@ impl Scan<'_> {
     }
 
     /// A number that stands by itself right behind a symbol: not the start of a range, a date, or a unit.
-    fn stands_by(&self, at: usize, words: bool) -> bool {
+    pub(super) fn stands_by(&self, at: usize, words: bool) -> bool {
         let signed = matches!(self.mark(at), Some("-" | "+"));
         let number = if signed { at + 1 } else { at };
         // `mean 2014`, `median (12)`: written-out symbols need a decimal point or a bracket behind.

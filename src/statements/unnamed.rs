@@ -14,14 +14,37 @@ use crate::numbers::Comparator;
 const NAME_WITHIN: usize = 16;
 
 impl Scan<'_> {
+    /// Words from token `at` on that lead to a number: `age of the sample at baseline was`. Gives the
+    /// comparator and the token of the number.
+    pub(super) fn phrase(&self, at: usize) -> Option<(Comparator, usize)> {
+        const WITHIN: usize = 10;
+        // `by means of …`, `medians of both …`
+        if self.word(at - 1).is_none_or(|w| w.ends_with('s')) {
+            return None;
+        }
+        for i in at..at + WITHIN {
+            let joined = self.mark(i) == Some("-") && !self.tokens[i].spaced;
+            let word = self.word(i);
+            if !joined && word.is_none_or(|w| matches!(w, "and" | "or" | "but" | "that" | "which")) {
+                return None;
+            }
+            if matches!(word, Some("was" | "were" | "is" | "are")) {
+                let (comparator, behind) = self.grammar.comparator(self.text, self.tokens, i, true)?;
+                return self.stands_by(behind, true).then_some((comparator, behind));
+            }
+        }
+        None
+    }
+
     /// A number at token `at` whose interval or spread follows.
     pub(super) fn unnamed(&self, at: usize) -> Option<(Vec<Item>, usize)> {
+        if !self.something_follows(at) {
+            return None;
+        }
         let (value, from) = self.with_sign(at)?;
         let mut next = value.next;
         let percent = self.mark(next) == Some("%");
-        if percent {
-            next += 1;
-        } else if self.unit_word(next) {
+        if percent || self.unit_word(next) {
             next += 1;
         }
         let bracket = matches!(self.mark(next), Some("(" | "["));
@@ -45,6 +68,22 @@ impl Scan<'_> {
         };
         let item = self.lone(symbol, class, &value, from);
         Some((vec![item], value.next))
+    }
+
+    /// A quick look: a bracket, or a comma and then a name or a percentage, stands close behind.
+    fn something_follows(&self, at: usize) -> bool {
+        const WITHIN: usize = 6;
+        (at + 1..self.tokens.len().min(at + WITHIN)).any(|i| match self.mark(i) {
+            Some("(" | "[") => true,
+            Some("," | ";") => match self.tokens.get(i + 1).map(|t| t.kind) {
+                Some(Kind::Number) => self.mark(i + 2) == Some("%") || self.word(i + 2).is_some(),
+                Some(Kind::Word) => self
+                    .shown(i + 1)
+                    .is_some_and(|w| w.starts_with(|c: char| c.is_ascii_uppercase())),
+                _ => false,
+            },
+            _ => false,
+        })
     }
 
     /// The block speaks of other intervals or ranges, or is a cell, which its own head names.
