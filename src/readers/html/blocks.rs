@@ -91,7 +91,13 @@ impl<'a> Reading<'a> {
             return self.close_block_in(inside);
         }
         let part = match inside.part {
-            Some(part) => part,
+            // A heading that is marked itself (`<h1 id=references>`) speaks for what follows it.
+            Some(part) => {
+                if self.context.part.is_none() {
+                    self.parts.enter(part);
+                }
+                part
+            }
             None => self.parts.heading(level, self.b.open_text().trim()),
         };
         self.b.part(part);
