@@ -45,15 +45,15 @@ impl Style {
         Style {
             decimals: r.whole(1, 3),
             p_decimals: r.whole(2, 4),
-            rounding: *r.pick(&[Rounding::Up, Rounding::Even, Rounding::Down]),
+            rounding: r.pick(&[Rounding::Up, Rounding::Even, Rounding::Down]),
             leading_zero: r.unit() < 0.5,
             bounds: r.unit() < 0.3,
             comma: r.unit() < 0.15,
-            brackets: *r.pick(&[("(", ")"), ("[", "]"), (" (", ")")]),
-            equals: *r.pick(&[" = ", "=", " \u{2009}=\u{2009}", "\u{a0}= "]),
-            p_symbol: *r.pick(&["p", "P", "𝑝", "p-value"]),
-            minus: *r.pick(&["-", "−", "–", "− "]),
-            separator: *r.pick(&[", ", "; ", ", "]),
+            brackets: r.pick(&[("(", ")"), ("[", "]"), (" (", ")")]),
+            equals: r.pick(&[" = ", "=", " \u{2009}=\u{2009}", "\u{a0}= "]),
+            p_symbol: r.pick(&["p", "P", "𝑝", "p-value"]),
+            minus: r.pick(&["-", "−", "–", "− "]),
+            separator: r.pick(&[", ", "; ", ", "]),
         }
     }
 
