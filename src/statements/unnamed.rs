@@ -61,7 +61,10 @@ impl Scan<'_> {
             }
         } else if bracket && !percent && self.spread_after(follows) {
             ("M", Class::Descriptive)
-        } else if bracket && !percent && (self.near("medians") || self.medians && !self.names_intervals()) {
+        } else if bracket
+            && !percent
+            && (self.near("medians") || self.medians && !self.names_intervals() || self.after_spread(from))
+        {
             return self.quartiles(&value, from, next);
         } else {
             return None;
@@ -84,6 +87,11 @@ impl Scan<'_> {
             },
             _ => false,
         })
+    }
+
+    /// `62 ± 12 57 (43–84)`: the median of a cell that gives both, in a manuscript that says so.
+    fn after_spread(&self, from: usize) -> bool {
+        self.medians && from > 1 && self.mark(from - 2) == Some("±")
     }
 
     /// The block speaks of other intervals or ranges, or is a cell, which its own head names.
