@@ -42,6 +42,7 @@ pub struct Symbol {
     pub above: Option<(f64, &'static str)>,
     pub below: Option<(f64, &'static str)>,
     pub several: Option<&'static str>,
+    pub sure: Option<(f64, f64)>,
     pub beside: Option<[&'static str; 3]>,
 }
 
@@ -73,6 +74,7 @@ pub struct Grammar {
     pub replicates: HashSet<String>,
     pub before: HashSet<String>,
     pub labels: HashSet<String>,
+    pub resampling: HashSet<String>,
     pub thresholds: Regex,
     pub plans: Regex,
     pub medians: Regex,
@@ -94,6 +96,7 @@ struct File {
     replicates: Vec<String>,
     before: Vec<String>,
     labels: Vec<String>,
+    resampling: Vec<String>,
     thresholds: Vec<String>,
     plans: Vec<String>,
     medians: Vec<String>,
@@ -123,6 +126,7 @@ struct RawSymbol {
     above: Option<(f64, String)>,
     below: Option<(f64, String)>,
     several: Option<String>,
+    sure: Option<(f64, f64)>,
     beside: Option<[String; 3]>,
 }
 
@@ -231,6 +235,7 @@ impl Grammar {
             all.replicates.extend(file.replicates);
             all.before.extend(file.before);
             all.labels.extend(file.labels);
+            all.resampling.extend(file.resampling);
             all.thresholds.extend(file.thresholds);
             all.plans.extend(file.plans);
             all.medians.extend(file.medians);
@@ -277,6 +282,7 @@ impl Grammar {
                 units: raw.units,
                 above: raw.above.as_ref().map(|(v, s)| (*v, names.get(s))),
                 below: raw.below.as_ref().map(|(v, s)| (*v, names.get(s))),
+                sure: raw.sure,
                 several: raw.several.as_ref().map(|s| names.get(s)),
                 beside: raw
                     .beside
@@ -348,6 +354,7 @@ impl Grammar {
             replicates: all.replicates.into_iter().collect(),
             before: all.before.into_iter().collect(),
             labels: all.labels.into_iter().collect(),
+            resampling: all.resampling.into_iter().collect(),
             thresholds: either(&all.thresholds)?,
             plans: either(&all.plans)?,
             medians: either(&all.medians)?,

@@ -36,7 +36,9 @@ impl Scan<'_> {
         while at < self.tokens.len() {
             let token = self.tokens[at];
             let found = match token.kind {
-                Kind::Word if !self.grammar.may_begin(token.text(self.text)) => None,
+                Kind::Word if !self.grammar.may_begin(token.text(self.text)) => {
+                    self.number_word(at).and_then(|_| self.form(at))
+                }
                 Kind::Word => self
                     .interval(at)
                     .or_else(|| self.paired(at))
@@ -155,6 +157,11 @@ impl Scan<'_> {
         if compared.is_none() && !self.stands_by(value_at, plain) {
             return None;
         }
+        // `the Spearman correlation of 14,737 pairs`
+        let told = compared.is_some() && value_at > 0 && self.word(value_at - 1).is_some();
+        if told && symbol.class == Class::Statistic && !self.stands_by(value_at, true) {
+            return None;
+        }
         let mut next = value.next;
         if matches!(self.mark(next), Some("%")) {
             if matches!(
@@ -172,6 +179,14 @@ impl Scan<'_> {
             && self
                 .word(next + usize::from(self.word(next) == Some("independent")))
                 .is_some_and(|w| self.grammar.replicates.contains(w))
+        {
+            return None;
+        }
+        // `Bootstrap values (n = 1000)`
+        if symbol.class == Class::Size
+            && (at.saturating_sub(4)..at)
+                .filter_map(|i| self.word(i))
+                .any(|w| self.grammar.resampling.contains(w.to_lowercase().as_str()))
         {
             return None;
         }
@@ -232,8 +247,12 @@ impl Scan<'_> {
             first.printed = on_the_line(&self.text[first.span.clone()]);
             first.interval = first.interval.hull(upper.number.rounding());
         }
-        // `OR 1.80`; a whole number may be a heart rate or a rate of breaths.
-        let is_ratio = !first.number.is_whole() && first.number.value() < 20.0;
+        // `OR 1.80`, `r² = 0.48`; a whole number may be a heart rate or a rate of breaths.
+        let sure = symbol.sure.is_some_and(|(low, high)| {
+            comparator == Comparator::Equal
+                && !first.number.is_whole()
+                && (low..=high).contains(&first.number.value())
+        });
         let has_more = !more_values.is_empty();
         let mut quantities = vec![first];
         quantities.append(&mut arguments);
@@ -252,7 +271,7 @@ impl Scan<'_> {
             quantities,
             more_values,
             plural: found.spelling.plural || respectively && has_more,
-            alone: symbol.alone || symbol.class == Class::Ratio && is_ratio,
+            alone: symbol.alone || sure,
             plain: words || with_arguments,
         };
         Some((item, next))

@@ -61,7 +61,10 @@ impl Scan<'_> {
             }
         } else if bracket && !percent && self.spread_after(follows) {
             ("M", Class::Descriptive)
-        } else if bracket && !percent && (self.near("medians") || self.medians && !self.names_intervals()) {
+        } else if bracket
+            && !percent
+            && (self.near("medians") || self.medians && !self.names_intervals() || self.after_spread(from))
+        {
             return self.quartiles(&value, from, next);
         } else {
             return None;
@@ -84,6 +87,16 @@ impl Scan<'_> {
             },
             _ => false,
         })
+    }
+
+    /// `62 ± 12 57 (43–84)`: the median of a cell that gives both, in a manuscript that says so.
+    fn after_spread(&self, from: usize) -> bool {
+        // Stars and daggers of the table's notes may stand between.
+        let before = (0..from).rev().find(|i| {
+            !matches!(self.mark(*i), Some("*" | "†" | "‡" | "#" | "&" | "§"))
+                && self.tokens[*i].kind != Kind::Raised
+        });
+        self.medians && before.is_some_and(|i| i > 0 && self.mark(i - 1) == Some("±"))
     }
 
     /// The block speaks of other intervals or ranges, or is a cell, which its own head names.
@@ -282,5 +295,34 @@ impl Scan<'_> {
             || self
                 .word(at - 2)
                 .is_some_and(|w| matches!(w, "total" | "number" | "sum" | "sample"))
+    }
+}
+
+#[cfg(test)]
+mod tests {
+    use crate::manuscript::{BlockKind, Builder, Format};
+    use crate::statements::{Grammar, find};
+
+    #[test]
+    fn quartiles_are_read_where_the_manuscript_announces_them() {
+        let read = |announced: &str| {
+            let mut builder = Builder::new(Format::Text);
+            for text in [
+                announced,
+                "Watering took 35 ± 6 min, 33 (28–40) in the east, see Figures 3 (5–9).",
+            ] {
+                builder.open(BlockKind::Paragraph);
+                builder.text(text);
+            }
+            let manuscript = builder.finish();
+            let found = find(&manuscript, Grammar::built_in(), 0.05);
+            let symbols = found.iter().flat_map(|s| s.quantities.iter().map(|q| q.symbol));
+            symbols.collect::<Vec<_>>()
+        };
+        assert_eq!(
+            read("We give means ± SEM and medians (1st quartile–3rd quartile)."),
+            ["M", "spread", "Mdn", "IQR_low", "IQR_high"]
+        );
+        assert_eq!(read("We give means ± SEM and medians."), ["M", "spread"]);
     }
 }
