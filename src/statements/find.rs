@@ -49,8 +49,20 @@ fn may_hold_results(bytes: &[u8]) -> bool {
         || bytes.windows(4).any(|w| {
             matches!(
                 w,
-                b"mean" | b"medi" | b"valu" | b"rati" | b"risk" | b"n.s." | b"Mean" | b"Medi"
-            )
+                b"mean"
+                    | b"medi"
+                    | b"valu"
+                    | b"rati"
+                    | b"risk"
+                    | b"n.s."
+                    | b"Mean"
+                    | b"Medi"
+                    | b"aver"
+                    | b"alph"
+                    | b"kapp"
+                    | b"oeff"
+                    | b"t of"
+            ) || w.starts_with(b"of ") && w[3].is_ascii_digit()
         })
 }
 
@@ -61,10 +73,10 @@ impl Scan<'_> {
         if items.is_empty() {
             return;
         }
-        let supported = items
-            .iter()
-            .any(|i| i.class == Class::P || i.class == Class::Statistic && i.plain)
-            || tests_are_named(&self.text[range.clone()]);
+        let supported = items.iter().any(|i| {
+            let spread = i.class == Class::Descriptive && matches!(i.quantities[0].symbol, "SD" | "SE");
+            i.class == Class::P || i.class == Class::Statistic && i.plain || spread
+        }) || tests_are_named(&self.text[range.clone()]);
         for draft in self.join(items) {
             if !self.is_result(&draft, range, supported) {
                 continue;

@@ -42,6 +42,9 @@ pub struct Symbol {
     pub above: Option<(f64, &'static str)>,
     pub below: Option<(f64, &'static str)>,
     pub several: Option<&'static str>,
+    /// Letters of the symbol that a label may be run together with.
+    pub labelled: Vec<char>,
+    pub zero: bool,
 }
 
 /// One argument of a symbol, e.g. `df2` of F.
@@ -71,6 +74,7 @@ pub struct Grammar {
     pub units: HashSet<String>,
     pub replicates: HashSet<String>,
     pub before: HashSet<String>,
+    pub numbered: HashSet<String>,
     pub thresholds: Regex,
     pub plans: Regex,
     words: AhoCorasick,
@@ -90,6 +94,7 @@ struct File {
     units: Vec<String>,
     replicates: Vec<String>,
     before: Vec<String>,
+    numbered: Vec<String>,
     thresholds: Vec<String>,
     plans: Vec<String>,
 }
@@ -118,6 +123,10 @@ struct RawSymbol {
     above: Option<(f64, String)>,
     below: Option<(f64, String)>,
     several: Option<String>,
+    #[serde(default)]
+    labelled: Vec<char>,
+    #[serde(default = "yes")]
+    zero: bool,
 }
 
 fn yes() -> bool {
@@ -224,6 +233,7 @@ impl Grammar {
             all.units.extend(file.units);
             all.replicates.extend(file.replicates);
             all.before.extend(file.before);
+            all.numbered.extend(file.numbered);
             all.thresholds.extend(file.thresholds);
             all.plans.extend(file.plans);
         }
@@ -265,6 +275,8 @@ impl Grammar {
                 above: raw.above.as_ref().map(|(v, s)| (*v, names.get(s))),
                 below: raw.below.as_ref().map(|(v, s)| (*v, names.get(s))),
                 several: raw.several.as_ref().map(|s| names.get(s)),
+                labelled: raw.labelled.clone(),
+                zero: raw.zero,
             });
         }
         let mut comparators = Vec::new();
@@ -328,6 +340,7 @@ impl Grammar {
             units: all.units.into_iter().collect(),
             replicates: all.replicates.into_iter().collect(),
             before: all.before.into_iter().collect(),
+            numbered: all.numbered.into_iter().collect(),
             thresholds: either(&all.thresholds)?,
             plans: either(&all.plans)?,
             words,

@@ -41,7 +41,10 @@ impl Scan<'_> {
                     .or_else(|| self.paired(at))
                     .or_else(|| self.assignment(at))
                     .map(|(item, next)| (vec![item], next)),
-                Kind::Number => self.form(at).or_else(|| self.mean_and_spread(at)),
+                Kind::Number => self
+                    .form(at)
+                    .or_else(|| self.counted(at))
+                    .or_else(|| self.mean_and_spread(at)),
                 Kind::Mark if !token.text(self.text).is_ascii() => {
                     self.assignment(at).map(|(item, next)| (vec![item], next))
                 }
@@ -65,8 +68,11 @@ impl Scan<'_> {
 
     /// `symbol arguments comparator number` at token `at`.
     fn assignment(&self, at: usize) -> Option<(Item, usize)> {
-        let found = self.grammar.spellings.at(self.text, self.tokens, at, |_| true)?;
-        if !self.begins_word(at) {
+        let found = self
+            .squared_behind(at)
+            .or_else(|| self.grammar.spellings.at(self.text, self.tokens, at, |_| true))
+            .or_else(|| self.labelled(at))?;
+        if !self.begins_word(at) || self.index_of_a_sum(at) {
             return None;
         }
         let symbol = &self.grammar.symbols[found.spelling.meaning];
@@ -80,9 +86,24 @@ impl Scan<'_> {
         if let Some(behind) = self.remark(next) {
             next = behind;
         }
-        let compared =
-            self.grammar
-                .comparator(self.text, self.tokens, next, words || symbol.class == Class::P);
+        let named = words || symbol.bare || symbol.class == Class::P;
+        let compared = self
+            .grammar
+            .comparator(self.text, self.tokens, next, named)
+            .filter(|(_, behind)| {
+                // `mean of the` is no comparator yet.
+                let on = self.word(next).is_some() && self.word(*behind).is_some();
+                !on || self.not_significant(*behind).is_some()
+            })
+            .or_else(|| {
+                let passes = words || matches!(symbol.class, Class::P | Class::Ratio);
+                passes.then(|| self.passing(symbol.class, next))?
+            })
+            .or_else(|| {
+                // `Estimate: 0.81`
+                let long = symbol.class == Class::Estimate && self.word(at).is_some_and(|w| w.len() > 2);
+                (long && self.mark(next) == Some(":")).then_some((Comparator::Equal, next + 1))
+            });
         let (comparator, value_at) = match compared {
             Some((comparator, behind)) => {
                 // `p-value was < .001`: the sign decides.
@@ -137,7 +158,9 @@ impl Scan<'_> {
             Company::Single
         };
         let value = self.value(value_at, company)?;
-        if compared.is_none() && !self.stands_by(value_at, words) {
+        if compared.is_none() && !self.stands_by(value_at, symbol.class, words)
+            || self.is_no_size(symbol, compared.map(|c| c.0), &value)
+        {
             return None;
         }
         let mut next = value.next;
@@ -187,7 +210,7 @@ impl Scan<'_> {
         {
             name = several;
         }
-        let class = if name == "level" {
+        let class = if matches!(name, "level" | "time") {
             Class::Bait
         } else {
             symbol.class
@@ -216,7 +239,7 @@ impl Scan<'_> {
             more_values,
             plural: found.spelling.plural,
             alone: symbol.alone,
-            plain: words || with_arguments,
+            plain: words || with_arguments || symbol.class == Class::Ratio && compared.is_some(),
         };
         Some((item, next))
     }
@@ -236,9 +259,19 @@ impl Scan<'_> {
     }
 
     /// A number that stands by itself right behind a symbol: not the start of a range, a date, or a unit.
-    fn stands_by(&self, at: usize, words: bool) -> bool {
+    fn stands_by(&self, at: usize, class: Class, words: bool) -> bool {
         let signed = matches!(self.mark(at), Some("-" | "+"));
         let number = if signed { at + 1 } else { at };
+        // `ET08` is a name; so is `PR 2512`.
+        let name = !words
+            && (!self.tokens[at].spaced
+                || class == Class::Ratio
+                    && self
+                        .shown(number)
+                        .is_some_and(|n| n.len() > 3 && !n.contains(['.', '·'])));
+        if name {
+            return false;
+        }
         // `mean 2014`, `median (12)`: written-out symbols need a decimal point or a bracket behind.
         let shown = self.shown(number).unwrap_or_default();
         !words || shown.contains(['.', '·']) || matches!(self.mark(number + 1), Some("(" | "[" | "±"))
@@ -260,7 +293,7 @@ impl Scan<'_> {
             return true;
         }
         match self.tokens[at - 1].kind {
-            Kind::Mark => !matches!(self.shown(at - 1), Some("@" | "#" | "$" | "\\" | "&")),
+            Kind::Mark => !matches!(self.shown(at - 1), Some("@" | "#" | "$" | "\\" | "&" | "^")),
             Kind::Raised => true,
             _ => false,
         }
@@ -275,7 +308,7 @@ impl Scan<'_> {
         }
         if let Some((start, end)) = found.rest {
             let span = start as usize..end as usize;
-            if let Some(number) = Decimal::read(&self.text[span.clone()], false, 0) {
+            if let Some(number) = Decimal::read(&on_the_line(&self.text[span.clone()]), false, 0) {
                 let value = Value {
                     number,
                     span,
@@ -455,12 +488,12 @@ impl Scan<'_> {
         let close = (at + 1..self.tokens.len().min(at + 8)).find(|i| self.mark(*i) == Some(")"))?;
         let wordy = (at + 1..close).all(|i| {
             self.word(i).is_some() || matches!(self.mark(i), Some("-" | "–" | "'" | "," | "/")) || {
-                // `1-tailed`, `2-sided`.
+                // `1-tailed`, `2-sided`, `2-t`.
                 self.tokens[i].kind == Kind::Number
                     && self.mark(i + 1) == Some("-")
                     && self
                         .word(i + 2)
-                        .is_some_and(|w| w.starts_with("tail") || w.starts_with("side"))
+                        .is_some_and(|w| w.starts_with("tail") || w.starts_with("side") || w == "t")
             }
         });
         // The brackets of `M (SD) = …` are no remark, but a second symbol.

@@ -20,6 +20,8 @@ struct Gap {
     broken: bool,
     /// Words such as `versus` or `than`, behind which another result begins.
     turns: bool,
+    /// It ends in a word and a colon, which name what comes: `; weeding: α = .87`.
+    labels: bool,
 }
 
 impl Gap {
@@ -204,7 +206,7 @@ impl Scan<'_> {
                 draft.has_class(Size) && gap.within(0)
             }
             Other if symbol == "count" || symbol == "percent" => false,
-            Other => !again && gap.within(1) && !draft.has("count"),
+            Other => !again && gap.within(1) && !draft.has("count") && !gap.labels,
             Bait => gap.within(1),
         }
     }
@@ -254,10 +256,12 @@ impl Scan<'_> {
             bytes: 0,
             broken: false,
             turns: false,
+            labels: false,
         };
         if to <= from {
             return gap;
         }
+        gap.labels = to >= from + 2 && self.mark(to - 1) == Some(":") && self.word(to - 2).is_some();
         gap.bytes = (self.tokens[to - 1].end - self.tokens[from].start) as usize;
         let mut depth = 0i32;
         let mut closed = false;

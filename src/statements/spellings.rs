@@ -85,6 +85,14 @@ impl Spellings {
         self
     }
 
+    /// The spelling that is this one piece and nothing else.
+    pub fn only(&self, piece: &str) -> Option<&Spelling> {
+        self.by_head
+            .get(&head(piece))?
+            .iter()
+            .find(|s| s.exact && s.pieces.len() == 1 && s.pieces[0].text == piece)
+    }
+
     /// The longest spelling that stands at token `at` and that `allow` accepts.
     pub fn at(
         &self,

@@ -111,7 +111,15 @@ impl Scan<'_> {
                     shown = format!("{whole}{part}");
                 }
             }
-            if let Some((power, behind)) = self.power_of_ten(i) {
+            if shown == "10"
+                && let Some((power, behind)) = self.power_itself(i)
+            {
+                // `10⁻⁷` alone.
+                shown = "1".to_string();
+                exponent = power;
+                end = self.tokens[behind - 1].end as usize;
+                i = behind;
+            } else if let Some((power, behind)) = self.power_of_ten(i) {
                 exponent = power;
                 end = self.tokens[behind - 1].end as usize;
                 i = behind;
@@ -174,6 +182,28 @@ impl Scan<'_> {
             )
             || self.grammar.units.contains(word)
             || word.chars().all(|c| c.is_lowercase()) && word.len() <= 3 && word != "x"
+    }
+
+    /// `⁻⁷`, `^-7`, `^{-7}` right behind a 10 at token `at`: the power and the token behind.
+    fn power_itself(&self, at: usize) -> Option<(i32, usize)> {
+        let token = self.tokens.get(at).filter(|t| !t.spaced)?;
+        if token.kind == Kind::Raised {
+            let raised = on_the_line(token.text(self.text));
+            return raised
+                .starts_with('-')
+                .then(|| Some((raised.parse().ok()?, at + 1)))?;
+        }
+        if self.mark(at) != Some("^") {
+            return None;
+        }
+        let brace = usize::from(self.mark(at + 1) == Some("{"));
+        let sign = at + 1 + brace;
+        if !matches!(self.mark(sign), Some("-" | "–" | "−")) {
+            return None;
+        }
+        let power: i32 = self.shown(sign + 1)?.parse().ok()?;
+        let end = sign + 2 + usize::from(brace == 1 && self.mark(sign + 2) == Some("}"));
+        Some((-power, end))
     }
 
     /// `× 10⁻⁵`, `x 10^-6`, `× 10-6`, `·10^{-6}` at token `at`: the power and the token behind.
