@@ -1,6 +1,6 @@
 //! *Quantiles*: the value that leaves a given probability above it.
 
-use super::tails::{normal_upper, t_two_sided};
+use super::tails::t_two_sided;
 use statrs::distribution::{ContinuousCDF, Normal};
 
 /// The z with P(Z > z) = p; None unless 0 < p < 1.
@@ -8,16 +8,8 @@ pub fn normal_quantile_upper(p: f64) -> Option<f64> {
     if !(p > 0.0 && p < 1.0) {
         return None;
     }
-    // Where 1 − p would lose digits the symmetric side is asked.
-    let z = -Normal::standard().inverse_cdf(p);
-    // One Newton step on the tail, because the promise is about the tail.
-    let tail = normal_upper(z)?;
-    let density = (-0.5 * z * z).exp() / (2.0 * std::f64::consts::PI).sqrt();
-    Some(if density > 1e-290 {
-        z + (tail - p) / density
-    } else {
-        z
-    })
+    // The lower tail is asked, whose probabilities near zero keep their digits.
+    Some(-Normal::standard().inverse_cdf(p))
 }
 
 /// The t ≥ 0 with P(|T| > t) = p for `df` degrees of freedom; None unless 0 < p ≤ 1 and df > 0.

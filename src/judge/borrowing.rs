@@ -4,6 +4,9 @@
 use crate::manuscript::Manuscript;
 use crate::statements::{Quantity, Statement};
 
+/// Statements of the same block that are looked at, before and behind.
+const MOST_NEIGHBOURS: usize = 60;
+
 /// The quantities of a statement, followed by what it may borrow.
 pub fn with_borrowed(statements: &[Statement], index: usize, manuscript: &Manuscript) -> Vec<Quantity> {
     let statement = &statements[index];
@@ -19,9 +22,11 @@ pub fn with_borrowed(statements: &[Statement], index: usize, manuscript: &Manusc
         let back = statements[..index]
             .iter()
             .rev()
+            .take(MOST_NEIGHBOURS)
             .take_while(|s| s.block == statement.block);
         let ahead = statements[index + 1..]
             .iter()
+            .take(MOST_NEIGHBOURS)
             .take_while(|s| s.block == statement.block);
         back.chain(ahead).filter(same_block)
     };

@@ -121,7 +121,12 @@ fn reverses(tie: &Tie, parts: &[&Quantity], values: &[Interval], alpha: f64) -> 
     }
     let significant = values[0].high <= alpha;
     let not_significant = values[0].low >= alpha && !significant;
-    let all: Vec<Interval> = tie.variants.iter().flat_map(|v| v.law.solve(0, values)).collect();
+    let all: Vec<Interval> = tie
+        .variants
+        .iter()
+        .filter(|v| v.only_open.is_none())
+        .flat_map(|v| v.law.solve(0, values))
+        .collect();
     if all.is_empty() {
         return false;
     }

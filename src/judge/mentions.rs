@@ -2,7 +2,8 @@
 
 use crate::manuscript::{Block, BlockKind, Manuscript, Part};
 use crate::relations::{Mention, Reach};
-use crate::statements::{Grammar, Statement};
+use crate::statements::{Grammar, Quantity, Statement};
+use std::collections::HashMap;
 use std::ops::Range;
 
 /// A word that matters, somewhere in the manuscript.
@@ -16,13 +17,27 @@ struct Hit {
 }
 
 /// Meanings that concern the one result they stand with, if they stand with one.
-const ABOUT_ONE: [&str; 2] = ["adjusted", "one-sided"];
+const ABOUT_ONE: [&str; 4] = ["adjusted", "adjusted-unnamed", "bonferroni", "one-sided"];
+
+/// Bytes of a paragraph, to either side of a statement, that are looked at for a scale or a number
+/// of items: more than any paragraph that a person would write.
+const WINDOW: usize = 4000;
+
+/// The words of one meaning, and where to find the nearest.
+#[derive(Default)]
+struct Words {
+    /// In the order of the text.
+    hits: Vec<Hit>,
+    /// The first that speaks for its whole section, by section; and the first of all.
+    by_section: HashMap<Option<usize>, usize>,
+    first: Option<usize>,
+}
 
 /// All words that matter in a manuscript.
 pub struct Mentions<'a> {
     manuscript: &'a Manuscript,
     grammar: &'a Grammar,
-    hits: Vec<Hit>,
+    words: Vec<Words>,
 }
 
 impl<'a> Mentions<'a> {
@@ -38,6 +53,7 @@ impl<'a> Mentions<'a> {
             .collect();
         let mut hits = Vec::new();
         let mut block = 0;
+        let mut result = 0;
         for (meaning, range) in grammar.words_in(&manuscript.text) {
             while block + 1 < manuscript.blocks.len()
                 && manuscript.blocks[block + 1].range.start <= range.start
@@ -49,11 +65,13 @@ impl<'a> Mentions<'a> {
                 .get(block)
                 .is_some_and(|b| b.range.contains(&range.start));
             if inside && speaks(&manuscript.blocks[block]) {
-                let before = results.partition_point(|s| s.sentence.end < range.start);
-                let about_one = ABOUT_ONE.contains(&meaning)
-                    && results
-                        .get(before)
-                        .is_some_and(|s| s.sentence.contains(&range.start));
+                while results.get(result).is_some_and(|s| s.sentence.end < range.start) {
+                    result += 1;
+                }
+                let with_result = results
+                    .get(result)
+                    .is_some_and(|s| s.sentence.contains(&range.start));
+                let about_one = with_result && ABOUT_ONE.contains(&meaning);
                 hits.push(Hit {
                     meaning,
                     range,
@@ -62,55 +80,96 @@ impl<'a> Mentions<'a> {
                 });
             }
         }
+        // "Corrected for multiple comparisons" means the method that the manuscript names, if it names one.
+        let named = hits
+            .iter()
+            .any(|h| matches!(h.meaning, "adjusted" | "bonferroni"));
+        hits.retain(|h| h.meaning != "adjusted-unnamed" || !named);
+        let mut words: Vec<Words> = Vec::new();
+        for mut hit in hits {
+            if hit.meaning == "adjusted-unnamed" {
+                hit.meaning = "adjusted";
+            }
+            let slot = words
+                .iter()
+                .position(|w| w.hits[0].meaning == hit.meaning)
+                .unwrap_or_else(|| {
+                    words.push(Words::default());
+                    words.len() - 1
+                });
+            let same = &mut words[slot];
+            if !hit.about_one {
+                let index = same.hits.len();
+                same.by_section
+                    .entry(manuscript.blocks[hit.block].section)
+                    .or_insert(index);
+                same.first.get_or_insert(index);
+            }
+            same.hits.push(hit);
+        }
         Mentions {
             manuscript,
             grammar,
-            hits,
+            words,
         }
     }
 
     /// The nearest mention of each meaning, seen from a statement.
-    pub fn around(&self, statement: &Statement) -> Vec<Mention> {
+    pub fn around(&self, statement: &Statement, quantities: &[Quantity]) -> Vec<Mention> {
         let home = &self.manuscript.blocks[statement.block];
+        let paragraph = self.surroundings(home);
         let mut near: Vec<Mention> = Vec::new();
-        for hit in &self.hits {
-            let block = &self.manuscript.blocks[hit.block];
-            let reach = if hit.block == statement.block {
-                let inside =
-                    hit.range.start >= statement.sentence.start && hit.range.end <= statement.sentence.end;
-                if inside { Reach::Sentence } else { Reach::Paragraph }
-            } else if same_table(home, block) {
-                Reach::Paragraph
-            } else if block.section == home.section {
-                Reach::Section
-            } else {
-                Reach::Document
+        for words in &self.words {
+            let within = |range: &Range<usize>| {
+                let first = words.hits.partition_point(|h| h.range.start < range.start);
+                words.hits.get(first).filter(|h| h.range.end <= range.end)
             };
-            if hit.about_one && reach >= Reach::Section {
-                continue;
-            }
-            match near.iter_mut().find(|m| m.meaning == hit.meaning) {
-                Some(known) if known.reach <= reach => {}
-                known => {
-                    let mention = Mention {
-                        meaning: hit.meaning,
-                        words: self.manuscript.text[hit.range.clone()].trim().to_string(),
-                        numbers: Vec::new(),
-                        reach,
-                        paragraph: block.paragraph,
-                    };
-                    match known {
-                        Some(known) => *known = mention,
-                        None => near.push(mention),
-                    }
-                }
-            }
+            let nearest = within(&statement.sentence)
+                .map(|h| (h, Reach::Sentence))
+                .or_else(|| within(&paragraph).map(|h| (h, Reach::Paragraph)))
+                .or_else(|| {
+                    words
+                        .by_section
+                        .get(&home.section)
+                        .map(|i| (&words.hits[*i], Reach::Section))
+                })
+                .or_else(|| words.first.map(|i| (&words.hits[i], Reach::Document)));
+            let Some((hit, reach)) = nearest else { continue };
+            near.push(Mention {
+                meaning: hit.meaning,
+                words: self.manuscript.text[hit.range.clone()].trim().to_string(),
+                numbers: Vec::new(),
+                reach,
+                paragraph: self.manuscript.blocks[hit.block].paragraph,
+            });
         }
-        // The reasons to think that answers are whole numbers matter to means only.
-        if statement.quantities.iter().any(|q| q.symbol == "M") {
+        // The reasons to think that answers are whole numbers matter to means of known samples only.
+        let has = |symbol: &str| quantities.iter().any(|q| q.symbol == symbol);
+        if has("M") && (has("n") || has("N")) {
             self.patterns(statement, home, &mut near);
         }
         near
+    }
+
+    /// What counts as the same paragraph: the block, or the whole table around a cell.
+    fn surroundings(&self, home: &Block) -> Range<usize> {
+        let Some(at) = home.cell else {
+            return home.range.clone();
+        };
+        let cells = &self.manuscript.tables[at.table].cells;
+        let blocks = &self.manuscript.blocks;
+        let start = cells
+            .first()
+            .and_then(|c| blocks.get(c.block))
+            .map(|b| b.range.start);
+        let end = cells
+            .last()
+            .and_then(|c| blocks.get(c.block))
+            .map(|b| b.range.end);
+        match (start, end) {
+            (Some(start), Some(end)) if start <= home.range.start && home.range.end <= end => start..end,
+            _ => home.range.clone(),
+        }
     }
 
     fn patterns(&self, statement: &Statement, home: &Block, near: &mut Vec<Mention>) {
@@ -118,9 +177,13 @@ impl<'a> Mentions<'a> {
             if *meaning == "alpha" {
                 continue;
             }
+            let text = &self.manuscript.text;
+            let window = text.floor_char_boundary(statement.range.start.saturating_sub(WINDOW))
+                ..text.ceil_char_boundary((statement.range.end + WINDOW).min(text.len()));
+            let paragraph = home.range.start.max(window.start)..home.range.end.min(window.end);
             for (reach, range) in [
                 (Reach::Sentence, &statement.sentence),
-                (Reach::Paragraph, &home.range),
+                (Reach::Paragraph, &paragraph),
             ] {
                 if near.iter().any(|m| m.meaning == *meaning) {
                     break;
@@ -151,13 +214,6 @@ fn speaks(block: &Block) -> bool {
     matches!(block.part, Part::Abstract | Part::Body) && block.kind != BlockKind::Quote
 }
 
-fn same_table(a: &Block, b: &Block) -> bool {
-    match (a.cell, b.cell) {
-        (Some(a), Some(b)) => a.table == b.table,
-        _ => false,
-    }
-}
-
 /// A number in digits or in words.
 fn number(text: &str) -> Option<f64> {
     const WORDS: [&str; 13] = [
@@ -176,6 +232,11 @@ pub fn stated_alpha(manuscript: &Manuscript, grammar: &Grammar) -> Option<f64> {
     let mut stated: Option<f64> = None;
     for block in manuscript.blocks.iter().filter(|b| speaks(b)) {
         let text = manuscript.block_text(block);
+        // A level is printed as .05, .01, .1 …; most paragraphs hold nothing like it.
+        let level = |part: &str| memchr::memmem::find(text.as_bytes(), part.as_bytes()).is_some();
+        if ![".0", ".1", ",0", "·0"].into_iter().any(level) {
+            continue;
+        }
         for found in expressions.iter().flat_map(|e| e.captures_iter(text)) {
             let value = found
                 .get(1)

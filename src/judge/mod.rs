@@ -59,8 +59,8 @@ pub fn judge(
     let mentions = Mentions::collect(manuscript, grammar, statements);
     let mut findings = Vec::new();
     for (index, statement) in statements.iter().enumerate() {
-        let near = mentions.around(statement);
         let quantities = borrowing::with_borrowed(statements, index, manuscript);
+        let near = mentions.around(statement, &quantities);
         let case = Case {
             quantities: &quantities,
             mentions: &near,

@@ -478,8 +478,15 @@ impl Builder {
             while self.text.ends_with('\t') {
                 self.text.pop();
             }
+            // Empty cells at the end of the table stood in what was just cut off; left where they
+            // were, they would come to lie inside the characters of the next block.
+            let end = self.text.len();
+            for block in self.blocks.iter_mut().rev().take_while(|b| b.range.end > end) {
+                block.range = end..end;
+            }
             if !self.text.is_empty() && !self.text.ends_with("\n\n") {
-                self.text.push_str("\n\n");
+                self.text
+                    .push_str(if self.text.ends_with('\n') { "\n" } else { "\n\n" });
             }
             self.trim_marks();
         }
@@ -674,6 +681,36 @@ mod tests {
         assert_eq!(
             (place.table.as_deref(), place.row, place.column),
             (Some("Table 1"), Some(2), Some(3))
+        );
+    }
+
+    #[test]
+    fn empty_cells_at_the_end_of_a_table_do_not_reach_into_the_next_block() {
+        let mut b = Builder::new(Format::Html);
+        b.open_table();
+        for row in [["a", "", "", "", ""], ["", "", "", "", ""]] {
+            b.row();
+            for text in row {
+                b.cell(CellShape::default());
+                b.text(text);
+            }
+        }
+        b.close_table();
+        b.text("ηηηη");
+        let m = b.finish();
+        assert_eq!(m.text, "a\t\t\t\t\n\nηηηη\n");
+        let cells: Vec<&str> = m.tables[0]
+            .cells
+            .iter()
+            .map(|c| m.block_text(&m.blocks[c.block]))
+            .collect();
+        assert_eq!(cells.concat(), "a");
+        let after = m.text.find('η').expect("the text holds it");
+        assert!(
+            m.tables[0]
+                .cells
+                .iter()
+                .all(|c| m.blocks[c.block].range.end < after)
         );
     }
 

@@ -182,6 +182,42 @@ impl Law for Adjusted {
     }
 }
 
+/// p as the Bonferroni or Šidák correction for some number k of tests makes it of the one that a law
+/// gives: min(1, k·p) or 1 − (1 − p)^k.
+pub(super) struct Multiplied(pub Box<dyn Law>);
+
+impl Law for Multiplied {
+    fn solve(&self, target: usize, values: &[Interval]) -> Set {
+        if target > 0 {
+            // An enclosure is enough here: it only serves repairs.
+            let mut values = values.to_vec();
+            values[0].low = 0.0;
+            return if values[0].high < 0.0 {
+                Set::new()
+            } else {
+                self.0.solve(target, &values)
+            };
+        }
+        let Some(raw) = self.0.solve(0, values).first().copied() else {
+            return Set::new();
+        };
+        let mut set = Set::new();
+        let mut k = 1.0;
+        loop {
+            let low = -(k * (-raw.low.min(1.0)).ln_1p()).exp_m1();
+            let high = (k * raw.high).min(1.0);
+            // From here on the multiples run into each other, or p is 1.
+            let next = -((k + 1.0) * (-raw.low.min(1.0)).ln_1p()).exp_m1();
+            if high >= 1.0 || next <= high || k > 200.0 {
+                set.push(Interval { low, high: 1.0 }.widen(ACCURACY));
+                return set;
+            }
+            set.push(Interval { low, high }.widen(ACCURACY));
+            k += 1.0;
+        }
+    }
+}
+
 /// p near the one that a law gives: from `shrink` times it to `grow` times it and `more`.
 pub(super) struct Loosened {
     pub law: Box<dyn Law>,

@@ -13,7 +13,7 @@
 //!
 //! Example: 28 answers on a scale from 1 to 7 can have the mean 3.43 or 3.46, but not 3.45.
 
-use super::{Case, Law, Reach, Tie, Variant, p_value};
+use super::{Case, Law, Mention, Reach, Tie, Variant, p_value};
 use crate::numbers::{Comparator, Interval, Set};
 
 /// Totals (or sample sizes) listed one by one at most.
@@ -51,6 +51,10 @@ pub fn ties(case: &Case) -> Vec<Tie> {
         if printed.comparator != Comparator::Equal || !whole || printed.number.decimals() > 8 {
             continue;
         }
+        // A mean beyond the scale is of something else, such as an age or a time.
+        if mention("whole-answers").is_none() && off_scale(reason, printed.interval) {
+            continue;
+        }
         if !items_known {
             ties.push(Tie::open(
                 vec![mean, n],
@@ -76,11 +80,25 @@ pub fn ties(case: &Case) -> Vec<Tie> {
     ties
 }
 
+/// Whether a mean lies outside the points of the scale that is mentioned.
+fn off_scale(scale: &Mention, mean: Interval) -> bool {
+    let most = scale.numbers.iter().copied().reduce(f64::max);
+    scale.meaning == "scale"
+        && most.is_some_and(|most| {
+            !mean.meets(Interval {
+                low: -most,
+                high: most,
+            })
+        })
+}
+
 /// Every mean with the n that belongs to it: the first n between it and the next mean; else, where there
 /// are as many n as means, in order; else the only n; else the one borrowed from elsewhere.
 fn means_with_n(case: &Case) -> Vec<(usize, usize)> {
     let means: Vec<usize> = case.all("M").into_iter().filter(|i| case.own(*i)).collect();
-    let is_size = |i: &usize| matches!(case.quantities[*i].symbol, "n" | "N");
+    // The N of a χ² or a correlation is not that of a mean.
+    let of_tests: Vec<usize> = case.tests().into_iter().flat_map(|t| t.sizes).collect();
+    let is_size = |i: &usize| matches!(case.quantities[*i].symbol, "n" | "N") && !of_tests.contains(i);
     let here: Vec<usize> = (0..case.quantities.len())
         .filter(|i| is_size(i) && case.own(*i))
         .collect();

@@ -107,6 +107,7 @@ fn ranges() {
     open("range", "R2 -.20");
     for text in [
         "r -1.00",
+        "n 12.0",
         "p 1.00",
         "p <.001",
         "n 12",
@@ -206,6 +207,9 @@ fn means_of_whole_answers() {
     assert!(matches!(grim("M 3.46 SD 1.22 n 28", &scale), Outcome::Agrees(_)));
     assert!(matches!(grim("M 3.45 SD 1.22 n 128", &scale), Outcome::Open(_)));
     assert!(outcomes("mean-granularity", "M 3.45 SD 1.22 n 28", &[]).is_empty());
+    // An age is not on the scale, and the N of a χ² is not that of the mean.
+    assert!(outcomes("mean-granularity", "M 45.32 SD 12.2 n 27", &scale).is_empty());
+    assert!(outcomes("mean-granularity", "M 3.45 SD 1.22 chi2 6.8 df 1 N 28", &scale).is_empty());
     let two = [
         scale[0].clone(),
         mention("items", "2 items", Reach::Sentence, &[2.0]),

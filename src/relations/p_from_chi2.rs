@@ -42,8 +42,9 @@ pub fn ties(case: &Case) -> Vec<Tie> {
         };
         let one = case.quantities[df].interval == Interval::point(1.0);
         let mut variants = p_value::variants(case, &test, p, one, |side| Box::new(law(side)));
-        if let Some(first) = variants.first_mut() {
-            first.assumes.clear();
+        // χ² has one tail; what is halved is said by the variant itself.
+        for variant in &mut variants {
+            variant.assumes.retain(|a| a != "two-sided");
         }
         if test.symbol == "W" {
             let reason = "W may be something else than Wald's χ²";

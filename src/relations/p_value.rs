@@ -1,6 +1,6 @@
 //! What all laws about a *p* share: which variants the words around a result allow.
 
-use super::laws::{Adjusted, Anything, Side};
+use super::laws::{Adjusted, Anything, Multiplied, Side};
 use super::reading::Test;
 use super::{Case, Law, Mention, Reach, Variant};
 use crate::numbers::{Comparator, Decimal};
@@ -53,12 +53,19 @@ pub(super) fn variants(
             sides.extend([Side::Upper, Side::Lower]);
         }
     }
-    if let Some(mention) = case.mention("adjusted", Reach::Document) {
+    for meaning in ["bonferroni", "adjusted"] {
+        let Some(mention) = case.mention(meaning, Reach::Document) else {
+            continue;
+        };
         let said = quoted(mention);
-        for side in sides {
+        for side in &sides {
             let mut assumes = plain.clone();
             assumes.push(format!("adjusted for multiple tests ({said})"));
-            let variant = make(assumes, Box::new(Adjusted(law(side))));
+            let adjusted: Box<dyn Law> = match meaning {
+                "bonferroni" => Box::new(Multiplied(law(*side))),
+                _ => Box::new(Adjusted(law(*side))),
+            };
+            let variant = make(assumes, adjusted);
             variants.push(if mention.reach <= Reach::Paragraph {
                 variant
             } else {

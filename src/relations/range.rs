@@ -27,7 +27,7 @@ pub fn ties(case: &Case) -> Vec<Tie> {
         };
         let natural = Interval { low, high };
         let counts = matches!(quantity.symbol, "n" | "N");
-        let broken = counts && !quantity.interval.has_whole() | !quantity.number.is_whole();
+        let broken = counts && !quantity.interval.has_whole();
         if natural.meets(quantity.interval) && !broken {
             continue;
         }
@@ -38,11 +38,8 @@ pub fn ties(case: &Case) -> Vec<Tie> {
             let value = quantity.number.value();
             let whole = move |_: usize, _: &[Interval]| -> Set {
                 vec![Interval::point(value.floor()), Interval::point(value.ceil())]
-                    .into_iter()
-                    .filter(|i| i.low != value)
-                    .collect()
             };
-            variants.push(Variant::new(&["n counts persons"], Strict(Box::new(whole))));
+            variants.push(Variant::new(&["n counts persons"], whole));
             variants.push(Variant::new(&[], law).left_open("an n of weighted data need not be whole"));
         } else {
             variants.push(Variant::new(&[], law));
@@ -54,19 +51,6 @@ pub fn ties(case: &Case) -> Vec<Tie> {
         ties.push(case.tie(vec![i], variants));
     }
     ties
-}
-
-/// A law for a number that is printed as not whole and therefore is none of the whole ones.
-struct Strict(Box<dyn super::Law>);
-
-impl super::Law for Strict {
-    fn solve(&self, target: usize, values: &[Interval]) -> Set {
-        self.0.solve(target, values)
-    }
-
-    fn holds(&self, _values: &[Interval]) -> bool {
-        false
-    }
 }
 
 /// Lowest and highest value of a quantity.

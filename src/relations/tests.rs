@@ -235,6 +235,7 @@ fn worked_examples_of_p() {
     agrees("p-from-r", "r .29 df 46 p .046");
     agrees("p-from-r", "r .29 N 48 p .046");
     agrees("p-from-r", "r .29 p .046 ^n 48");
+    agrees("p-from-r", "r .29 p .046 N 48");
     conflicts("p-from-r", "r .29 df 46 p .46");
     open("p-from-r", "r .29 p .046");
     agrees("p-from-tau", "tau .21 n 50 p .031");

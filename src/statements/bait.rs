@@ -48,7 +48,8 @@ impl Scan<'_> {
         let equal_level = only_p && lonely && LEVELS.contains(&first.quantities[0].number.value());
         if only_p && (level || equal_level) {
             let sentence = sentences::around(self.text, block, &bytes);
-            if level && self.legend(&bytes, block) {
+            let any_p = draft.items.iter().any(|i| i.class == Class::P);
+            if level && any_p && self.legend(&bytes, block) {
                 return false;
             }
             // Up to the end of the sentence for `if …` and the like, the part before decides.
@@ -98,15 +99,27 @@ impl Scan<'_> {
         // `correlation of 14,737 genes`, `SD were 0.85 ± 0.16`
         let no_correlation =
             matches!(symbol.name, "r" | "rho" | "tau") && value.number.is_whole() && number.abs() > 1.0;
+        // `FMNH PR 2512`
+        let number_of_a_plate =
+            class == Class::Ratio && comparator.is_none() && value.number.is_whole() && number >= 1000.0;
         let no_spread = matches!(symbol.name, "SD" | "SE") && self.mark(next) == Some("±");
         let start = !symbol.zero && value.number.is_whole() && number == 0.0;
-        proportion || compound || no_p || start || no_correlation || no_spread || self.runs_on(next)
+        proportion
+            || compound
+            || no_p
+            || start
+            || number_of_a_plate
+            || no_correlation
+            || no_spread
+            || self.runs_on(next)
     }
 
     /// `*p < .05`, `** P < 0.01`, `a: p < .05`, `† = p < .1`: the explanation of a mark.
     fn legend(&self, bytes: &Range<usize>, block: &Range<usize>) -> bool {
         let before = self.text[block.start..bytes.start].trim_end_matches([' ', '=', ':', '(', ',']);
         before.ends_with(['*', '†', '‡', '§', '#', '¶', '+', '^'])
+            || self.text[block.start..].starts_with(['*', '†', '‡', '§', '#', '¶', '&'])
+                && !before.contains(". ")
             || before.ends_with("indicates")
             || before.ends_with("indicate")
             || before.ends_with("denotes")
@@ -116,11 +129,12 @@ impl Scan<'_> {
 
     /// Inside quotation marks of one sentence: somebody else's words.
     fn quoted(&self, bytes: &Range<usize>, block: &Range<usize>) -> bool {
-        let from = self.text[block.start..bytes.start].rfind('"');
-        let Some(open) = from.map(|o| block.start + o) else {
+        let window = sentences::around(self.text, block, bytes);
+        let from = self.text[window.start..bytes.start].rfind('"');
+        let Some(open) = from.map(|o| window.start + o) else {
             return false;
         };
-        let Some(close) = self.text[bytes.end..block.end].find('"').map(|c| bytes.end + c) else {
+        let Some(close) = self.text[bytes.end..window.end].find('"').map(|c| bytes.end + c) else {
             return false;
         };
         let opens = !self.text[..open]

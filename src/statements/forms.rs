@@ -15,6 +15,8 @@ enum Element {
     },
     /// Up to so many words.
     Words(usize),
+    /// One of these marks must follow; it stays outside.
+    Ahead(Vec<String>),
 }
 
 /// One compiled pattern.
@@ -34,6 +36,8 @@ impl Form {
             elements.push(
                 if let Some(inner) = part.strip_prefix('{').and_then(|p| p.strip_suffix('}')) {
                     Element::Slot(name(inner))
+                } else if let Some(marks) = part.strip_prefix('&').filter(|m| !m.is_empty()) {
+                    Element::Ahead(marks.split('|').map(str::to_lowercase).collect())
                 } else if let Some(count) = part.strip_prefix("..") {
                     Element::Words(
                         count
@@ -86,7 +90,10 @@ impl Form {
                 } else {
                     Company::Single
                 };
-                let value = scan.value(at, company)?;
+                let value = match *symbol {
+                    "count" => scan.value(at, company).or_else(|| scan.number_word(at)),
+                    _ => scan.value(at, company),
+                }?;
                 let next = value.next;
                 slots.push((symbol, value));
                 let done = self.from(scan, element + 1, next, slots);
@@ -109,6 +116,11 @@ impl Form {
                     None
                 }
             }
+            Element::Ahead(any) => any
+                .iter()
+                .any(|literal| literal_at(scan, literal, at).is_some())
+                .then(|| self.from(scan, element + 1, at, slots))
+                .flatten(),
             Element::Words(most) => (0..=*most).find_map(|count| {
                 let all_words = (at..at + count).all(|i| scan.word(i).is_some());
                 if all_words {

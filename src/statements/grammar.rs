@@ -5,7 +5,7 @@ use super::forms::Form;
 use super::spellings::{Spelling, Spellings};
 use super::tokens::Token;
 use crate::numbers::Comparator;
-use aho_corasick::{AhoCorasick, MatchKind};
+use aho_corasick::{AhoCorasick, AhoCorasickKind, MatchKind};
 use regex::{Regex, RegexBuilder};
 use serde::Deserialize;
 use std::collections::{HashMap, HashSet};
@@ -45,6 +45,7 @@ pub struct Symbol {
     /// Letters of the symbol that a label may be run together with.
     pub labelled: Vec<char>,
     pub zero: bool,
+    pub beside: Option<[&'static str; 3]>,
 }
 
 /// One argument of a symbol, e.g. `df2` of F.
@@ -74,9 +75,10 @@ pub struct Grammar {
     pub units: HashSet<String>,
     pub replicates: HashSet<String>,
     pub before: HashSet<String>,
-    pub numbered: HashSet<String>,
+    pub labels: HashSet<String>,
     pub thresholds: Regex,
     pub plans: Regex,
+    pub medians: Regex,
     words: AhoCorasick,
     word_meanings: Vec<&'static str>,
     pub patterns: Vec<(&'static str, Vec<Regex>)>,
@@ -94,9 +96,10 @@ struct File {
     units: Vec<String>,
     replicates: Vec<String>,
     before: Vec<String>,
-    numbered: Vec<String>,
+    labels: Vec<String>,
     thresholds: Vec<String>,
     plans: Vec<String>,
+    medians: Vec<String>,
 }
 
 #[derive(Deserialize)]
@@ -127,6 +130,7 @@ struct RawSymbol {
     labelled: Vec<char>,
     #[serde(default = "yes")]
     zero: bool,
+    beside: Option<[String; 3]>,
 }
 
 fn yes() -> bool {
@@ -233,9 +237,10 @@ impl Grammar {
             all.units.extend(file.units);
             all.replicates.extend(file.replicates);
             all.before.extend(file.before);
-            all.numbered.extend(file.numbered);
+            all.labels.extend(file.labels);
             all.thresholds.extend(file.thresholds);
             all.plans.extend(file.plans);
+            all.medians.extend(file.medians);
         }
         let mut names = Names::default();
         let mut symbols: Vec<Symbol> = Vec::new();
@@ -254,7 +259,12 @@ impl Grammar {
                 (&raw.words, false, true),
             ] {
                 for text in list {
-                    spellings.add(text, Spelling::new(!words, index, plural, words))?;
+                    // `p values`, `z scores`
+                    let several = words
+                        && matches!(class, Class::Statistic | Class::P)
+                        && text.ends_with('s')
+                        && !text.ends_with(" s");
+                    spellings.add(text, Spelling::new(!words, index, plural || several, words))?;
                 }
             }
             symbols.push(Symbol {
@@ -277,6 +287,10 @@ impl Grammar {
                 several: raw.several.as_ref().map(|s| names.get(s)),
                 labelled: raw.labelled.clone(),
                 zero: raw.zero,
+                beside: raw
+                    .beside
+                    .as_ref()
+                    .map(|b| [names.get(&b[0]), names.get(&b[1]), names.get(&b[2])]),
             });
         }
         let mut comparators = Vec::new();
@@ -318,6 +332,8 @@ impl Grammar {
         let words = AhoCorasick::builder()
             .ascii_case_insensitive(true)
             .match_kind(MatchKind::LeftmostLongest)
+            // The words are few, and every manuscript is searched for them from end to end.
+            .kind(Some(AhoCorasickKind::DFA))
             .build(words)
             .map_err(|e| format!("words: {e}"))?;
         let mut patterns = Vec::new();
@@ -325,7 +341,7 @@ impl Grammar {
             let compiled: Result<Vec<Regex>, String> = raw
                 .expressions
                 .iter()
-                .map(|e| Regex::new(e).map_err(|e| format!("pattern: {e}")))
+                .map(|e| Regex::new(&ascii_boundaries(e)).map_err(|e| format!("pattern: {e}")))
                 .collect();
             patterns.push((names.get(&raw.meaning), compiled?));
         }
@@ -340,9 +356,10 @@ impl Grammar {
             units: all.units.into_iter().collect(),
             replicates: all.replicates.into_iter().collect(),
             before: all.before.into_iter().collect(),
-            numbered: all.numbered.into_iter().collect(),
+            labels: all.labels.into_iter().collect(),
             thresholds: either(&all.thresholds)?,
             plans: either(&all.plans)?,
+            medians: either(&all.medians)?,
             words,
             word_meanings,
             patterns,
@@ -352,6 +369,11 @@ impl Grammar {
     /// The index of a symbol that the program itself needs to name.
     pub fn symbol(&self, name: &str) -> Option<usize> {
         self.symbols.iter().position(|s| s.name == name)
+    }
+
+    /// Whether a symbol or the name of an interval may begin with this word.
+    pub fn may_begin(&self, word: &str) -> bool {
+        self.spellings.may_begin(word) || self.interval_spellings.may_begin(word)
     }
 
     /// The comparator at token `at`, and the token behind it. Word comparators only where `words`.
@@ -385,6 +407,12 @@ impl Grammar {
     }
 }
 
+/// Word boundaries between ASCII letters only: the expressions' words are English, and this lets the
+/// fastest engine search texts with other letters, too.
+fn ascii_boundaries(expression: &str) -> String {
+    expression.replace(r"\b", r"(?-u:\b)")
+}
+
 /// One expression for all; matches nothing when there are none.
 fn either(expressions: &[String]) -> Result<Regex, String> {
     let all = if expressions.is_empty() {
@@ -392,7 +420,7 @@ fn either(expressions: &[String]) -> Result<Regex, String> {
     } else {
         expressions.join("|")
     };
-    RegexBuilder::new(&all)
+    RegexBuilder::new(&ascii_boundaries(&all))
         .case_insensitive(true)
         .build()
         .map_err(|e| format!("bait: {e}"))

@@ -2,6 +2,7 @@
 //! a number (`t(28) = 2.20`), an interval (`95% CI [0.1, 1.5]`), or a form without a comparator.
 
 use super::grammar::{Class, Symbol};
+use super::names::has_label;
 use super::spellings::Found;
 use super::tokens::{Kind, on_the_line};
 use super::values::{Company, Value};
@@ -36,15 +37,22 @@ impl Scan<'_> {
         while at < self.tokens.len() {
             let token = self.tokens[at];
             let found = match token.kind {
+                Kind::Word
+                    if !self.grammar.may_begin(token.text(self.text))
+                        && !has_label(token.text(self.text)) =>
+                {
+                    None
+                }
                 Kind::Word => self
                     .interval(at)
                     .or_else(|| self.paired(at))
                     .or_else(|| self.assignment(at))
-                    .map(|(item, next)| (vec![item], next)),
+                    .map(|(item, next)| (vec![item], next))
+                    .or_else(|| self.number_word(at).and_then(|_| self.form(at))),
                 Kind::Number => self
                     .form(at)
-                    .or_else(|| self.counted(at))
-                    .or_else(|| self.mean_and_spread(at)),
+                    .or_else(|| self.mean_and_spread(at))
+                    .or_else(|| self.unnamed(at)),
                 Kind::Mark if !token.text(self.text).is_ascii() => {
                     self.assignment(at).map(|(item, next)| (vec![item], next))
                 }
@@ -54,7 +62,7 @@ impl Scan<'_> {
                 Some((found, next)) => {
                     for item in found {
                         let follower = self.follower(&item);
-                        items.push(item);
+                        items.push(self.shared_power(item, &follower));
                         items.extend(follower);
                     }
                     let end = items.last().map_or(next, |i| i.tokens.end);
@@ -67,12 +75,12 @@ impl Scan<'_> {
     }
 
     /// `symbol arguments comparator number` at token `at`.
-    fn assignment(&self, at: usize) -> Option<(Item, usize)> {
+    pub(super) fn assignment(&self, at: usize) -> Option<(Item, usize)> {
         let found = self
             .squared_behind(at)
             .or_else(|| self.grammar.spellings.at(self.text, self.tokens, at, |_| true))
             .or_else(|| self.labelled(at))?;
-        if !self.begins_word(at) || self.index_of_a_sum(at) {
+        if !self.begins_word(at) {
             return None;
         }
         let symbol = &self.grammar.symbols[found.spelling.meaning];
@@ -82,14 +90,14 @@ impl Scan<'_> {
         if arguments.is_empty() && !symbol.arguments.is_empty() && self.mark(next) == Some("_") {
             next += 1;
         }
-        // A remark in brackets: `p (two-tailed) = .03`.
-        if let Some(behind) = self.remark(next) {
+        // A remark in brackets: `p (two-tailed) = .03`, `odds ratio [OR] 1.5`.
+        if let Some(behind) = self.remark(next).or_else(|| self.abbreviation(next, symbol.name)) {
             next = behind;
         }
-        let named = words || symbol.bare || symbol.class == Class::P;
+        let wordy = words || symbol.bare || with_arguments || symbol.class == Class::P;
         let compared = self
             .grammar
-            .comparator(self.text, self.tokens, next, named)
+            .comparator(self.text, self.tokens, next, wordy)
             .filter(|(_, behind)| {
                 // `mean of the` is no comparator yet.
                 let on = self.word(next).is_some() && self.word(*behind).is_some();
@@ -114,6 +122,11 @@ impl Scan<'_> {
             }
             None if words || symbol.bare => {
                 let skipped = matches!(self.mark(next), Some("," | ":"));
+                // `SD118` is a name.
+                let decimals = self.shown(next).is_some_and(|s| s.contains(['.', '·']));
+                if !skipped && !decimals && self.tokens.get(next).is_some_and(|t| !t.spaced) {
+                    return None;
+                }
                 (Comparator::Equal, if skipped { next + 1 } else { next })
             }
             None if symbol.class == Class::P && self.not_significant(next).is_some() => {
@@ -158,7 +171,8 @@ impl Scan<'_> {
             Company::Single
         };
         let value = self.value(value_at, company)?;
-        if compared.is_none() && !self.stands_by(value_at, symbol.class, words)
+        let plain = words || !matches!(symbol.class, Class::Ratio | Class::Descriptive | Class::Df);
+        if compared.is_none() && !self.stands_by(value_at, plain)
             || self.is_no_size(symbol, compared.map(|c| c.0), &value)
         {
             return None;
@@ -178,12 +192,26 @@ impl Scan<'_> {
         }
         if symbol.class == Class::Size
             && self
-                .word(next)
+                .word(next + usize::from(self.word(next) == Some("independent")))
                 .is_some_and(|w| self.grammar.replicates.contains(w))
         {
             return None;
         }
-        if !with_arguments && !words && self.misleading_before(at) {
+        // `k = 1, …, n` and `t = 2t₁`: a running index, a formula.
+        let runs_on = usize::from(self.mark(next) == Some(","));
+        let multiplied = self.word(next).is_some_and(|_| !self.tokens[next].spaced)
+            && self
+                .tokens
+                .get(next + 1)
+                .is_some_and(|t| t.kind == Kind::Lowered && !t.spaced);
+        if self.mark(next + runs_on) == Some("…") || multiplied {
+            return None;
+        }
+        // No size has decimals.
+        if symbol.whole && !value.number.is_whole() {
+            return None;
+        }
+        if !with_arguments && !words && self.misleading_before(at) && !self.goes_on(next) {
             return None;
         }
         let mut name = self.renamed(symbol, &value, words);
@@ -194,7 +222,9 @@ impl Scan<'_> {
             next = upper.next;
         }
         // `df = 2, 45` behind F.
-        if upper.is_none() && (found.spelling.plural || symbol.name == "df") {
+        let paired_off = matches!(symbol.class, Class::Statistic | Class::P) || symbol.name == "M";
+        let respectively = paired_off && !found.spelling.plural && self.respectively(next);
+        if upper.is_none() && (found.spelling.plural || symbol.name == "df" || respectively) {
             let mut behind = next;
             while let Some((further, after)) = self.next_in_list(behind) {
                 more_values.push(self.quantity(name, comparator, &further, symbol.whole));
@@ -204,6 +234,9 @@ impl Scan<'_> {
                 }
             }
             next = behind;
+            if !symbol.units && !with_arguments && !more_values.is_empty() && self.unit(next) {
+                return None;
+            }
         }
         if let Some(several) = symbol.several
             && (upper.is_some() || !more_values.is_empty())
@@ -221,6 +254,9 @@ impl Scan<'_> {
             first.printed = on_the_line(&self.text[first.span.clone()]);
             first.interval = first.interval.hull(upper.number.rounding());
         }
+        // `OR 1.80`; a whole number may be a heart rate or a rate of breaths.
+        let is_ratio = !first.number.is_whole() && first.number.value() < 20.0;
+        let has_more = !more_values.is_empty();
         let mut quantities = vec![first];
         quantities.append(&mut arguments);
         if symbol.name == "df" && more_values.len() == 1 {
@@ -237,9 +273,9 @@ impl Scan<'_> {
             bytes: self.bytes(at, next),
             quantities,
             more_values,
-            plural: found.spelling.plural,
-            alone: symbol.alone,
-            plain: words || with_arguments || symbol.class == Class::Ratio && compared.is_some(),
+            plural: found.spelling.plural || respectively && has_more,
+            alone: symbol.alone || symbol.class == Class::Ratio && is_ratio,
+            plain: words || with_arguments,
         };
         Some((item, next))
     }
@@ -248,9 +284,11 @@ impl Scan<'_> {
     fn range_end(&self, symbol: &Symbol, comparator: Comparator, at: usize) -> Option<Value> {
         let ranged = matches!(
             symbol.class,
-            Class::Statistic | Class::P | Class::Effect | Class::Estimate
+            Class::Statistic | Class::P | Class::Effect | Class::Estimate | Class::Ratio
         );
-        let dash = self.mark(at) == Some("–") || self.mark(at) == Some("-") && !self.tokens[at].spaced;
+        let dash = self.mark(at) == Some("–")
+            || self.mark(at) == Some("-") && !self.tokens[at].spaced
+            || self.word(at) == Some("to") && self.shown(at + 1).is_some_and(|s| s.contains(['.', '·']));
         if !ranged || !dash || comparator != Comparator::Equal {
             return None;
         }
@@ -259,19 +297,9 @@ impl Scan<'_> {
     }
 
     /// A number that stands by itself right behind a symbol: not the start of a range, a date, or a unit.
-    fn stands_by(&self, at: usize, class: Class, words: bool) -> bool {
+    fn stands_by(&self, at: usize, words: bool) -> bool {
         let signed = matches!(self.mark(at), Some("-" | "+"));
         let number = if signed { at + 1 } else { at };
-        // `ET08` is a name; so is `PR 2512`.
-        let name = !words
-            && (!self.tokens[at].spaced
-                || class == Class::Ratio
-                    && self
-                        .shown(number)
-                        .is_some_and(|n| n.len() > 3 && !n.contains(['.', '·'])));
-        if name {
-            return false;
-        }
         // `mean 2014`, `median (12)`: written-out symbols need a decimal point or a bracket behind.
         let shown = self.shown(number).unwrap_or_default();
         !words || shown.contains(['.', '·']) || matches!(self.mark(number + 1), Some("(" | "[" | "±"))
@@ -283,7 +311,10 @@ impl Scan<'_> {
         match (symbol.above, symbol.below) {
             (Some((limit, other)), _) if size > limit => other,
             (_, Some((limit, other))) if size <= limit && !words => other,
-            _ => symbol.name,
+            _ => match symbol.beside {
+                Some([here, not_here, other]) if !words && self.near(here) && !self.near(not_here) => other,
+                _ => symbol.name,
+            },
         }
     }
 
@@ -293,7 +324,15 @@ impl Scan<'_> {
             return true;
         }
         match self.tokens[at - 1].kind {
-            Kind::Mark => !matches!(self.shown(at - 1), Some("@" | "#" | "$" | "\\" | "&" | "^")),
+            // The bounds of a sum: `∑_(m = 1)`.
+            Kind::Mark if self.shown(at - 1) == Some("(") => at < 2 || self.mark(at - 2) != Some("_"),
+            // `&P = 0.09` below a table explains a sign.
+            Kind::Mark if self.shown(at - 1) == Some("&") => self.tokens[at - 1].spaced,
+            // The letter at the end of a name: `IL-2`, `BEAN-S2`.
+            Kind::Mark if self.shown(at - 1) == Some("-") && at > 1 && !self.tokens[at - 1].spaced => !self
+                .word(at - 2)
+                .is_some_and(|w| w.len() > 1 && w.bytes().all(|b| b.is_ascii_uppercase())),
+            Kind::Mark => !matches!(self.shown(at - 1), Some("@" | "#" | "$" | "\\" | "^")),
             Kind::Raised => true,
             _ => false,
         }
@@ -350,7 +389,8 @@ impl Scan<'_> {
         let mut numbers = Vec::new();
         let mut named = Vec::new();
         while at < end {
-            if let Some(value) = self.value(at, company).filter(|v| v.next <= end) {
+            let value = self.value(at, company).or_else(|| self.lowered_value(at));
+            if let Some(value) = value.filter(|v| v.next <= end) {
                 at = value.next;
                 numbers.push(value);
             } else if let Some((item, next)) = self.assignment(at).filter(|(_, next)| *next <= end) {
@@ -411,28 +451,16 @@ impl Scan<'_> {
             if !lowered && token.kind != Kind::Number {
                 return None;
             }
-            let mut shown = on_the_line(token.text(self.text));
-            let mut end = token.end;
-            i += 1;
-            // A lowered decimal point stays on the line: ₄₁₂.₃₅.
-            if lowered
-                && self.mark(i) == Some(".")
-                && self
-                    .tokens
-                    .get(i + 1)
-                    .is_some_and(|t| t.kind == Kind::Lowered && !t.spaced)
-            {
-                shown.push('.');
-                shown.push_str(&on_the_line(self.tokens[i + 1].text(self.text)));
-                end = self.tokens[i + 1].end;
-                i += 2;
-            }
-            let number = Decimal::read(&shown, false, 0)?;
-            let value = Value {
-                number,
-                span: token.start as usize..end as usize,
-                next: i,
+            let value = if lowered {
+                self.lowered_value(i)?
+            } else {
+                Value {
+                    number: Decimal::read(token.text(self.text), false, 0)?,
+                    span: token.start as usize..token.end as usize,
+                    next: i + 1,
+                }
             };
+            i = value.next;
             if quantities.len() >= symbol.arguments.len() {
                 return None;
             }
@@ -455,6 +483,29 @@ impl Scan<'_> {
             .is_some();
         let required = symbol.arguments.iter().filter(|a| !a.optional).count();
         (compared && quantities.len() >= required).then_some((quantities, i))
+    }
+
+    /// The number in lowered digits at token `at`.
+    fn lowered_value(&self, at: usize) -> Option<Value> {
+        let is_lowered = |i: usize| self.tokens.get(i).filter(|t| t.kind == Kind::Lowered);
+        let token = is_lowered(at)?;
+        let mut shown = on_the_line(token.text(self.text));
+        let mut end = token.end;
+        let mut next = at + 1;
+        // A lowered decimal point stays on the line: ₄₁₂.₃₅.
+        if self.mark(next) == Some(".")
+            && let Some(part) = is_lowered(next + 1).filter(|t| !t.spaced)
+        {
+            shown.push('.');
+            shown.push_str(&on_the_line(part.text(self.text)));
+            end = part.end;
+            next += 2;
+        }
+        Some(Value {
+            number: Decimal::read(&shown, false, 0)?,
+            span: token.start as usize..end as usize,
+            next,
+        })
     }
 
     fn argument(&self, symbol: &Symbol, index: usize, value: &Value) -> Quantity {
@@ -505,6 +556,21 @@ impl Scan<'_> {
         (wordy && close > at + 1 && !pair).then_some(close + 1)
     }
 
+    /// `[SD]`, `(aOR)` at token `at`, another spelling of the symbol before it: the token behind.
+    pub(super) fn abbreviation(&self, at: usize, name: &str) -> Option<usize> {
+        let close = match self.mark(at)? {
+            "(" => ")",
+            "[" => "]",
+            _ => return None,
+        };
+        let found = self
+            .grammar
+            .spellings
+            .at(self.text, self.tokens, at + 1, |_| true)?;
+        let same = self.grammar.symbols[found.spelling.meaning].name == name;
+        (same && self.mark(found.next) == Some(close)).then_some(found.next + 1)
+    }
+
     /// `n.s.`, `ns`, `NS` at token `at`: the token behind it.
     fn not_significant(&self, at: usize) -> Option<usize> {
         let word = self.word(at)?;
@@ -522,6 +588,15 @@ impl Scan<'_> {
             });
         }
         None
+    }
+
+    /// A list goes on at token `at` that the sentence deals out with `respectively`.
+    fn respectively(&self, at: usize) -> bool {
+        const WITHIN: usize = 40;
+        self.next_in_list(at).is_some()
+            && (at..self.tokens.len().min(at + WITHIN))
+                .take_while(|i| self.mark(*i) != Some("."))
+                .any(|i| self.word(i) == Some("respectively"))
     }
 
     /// A further number of a list at token `at`: `, .31`, ` and .759`, `, and .2`, `/ .3`, `or`, `&`.
@@ -570,6 +645,21 @@ impl Scan<'_> {
                 .is_some_and(|w| self.grammar.before.contains(w.to_lowercase().as_str()))
     }
 
+    /// A df or a p stands behind the comma at token `at`: what is before it is a test.
+    fn goes_on(&self, at: usize) -> bool {
+        matches!(self.mark(at), Some("," | ";" | ":"))
+            && self
+                .grammar
+                .spellings
+                .at(self.text, self.tokens, at + 1, |_| true)
+                .is_some_and(|f| {
+                    matches!(
+                        self.grammar.symbols[f.spelling.meaning].class,
+                        Class::P | Class::Df
+                    )
+                })
+    }
+
     /// The byte range of tokens.
     pub(super) fn bytes(&self, from: usize, to: usize) -> Range<usize> {
         self.tokens[from].start as usize..self.tokens[to - 1].end as usize
@@ -595,7 +685,8 @@ impl Scan<'_> {
         if !matches!(
             behind,
             "/" | "(" | "[" | "%" | "," | "of" | "out" | "df" | "d" | "degrees" | "degree" | "and"
-        ) {
+        ) && !self.may_count(at)
+        {
             return None;
         }
         for form in &self.grammar.forms {

@@ -22,6 +22,8 @@ struct Gap {
     turns: bool,
     /// It ends in a word and a colon, which name what comes: `; weeding: α = .87`.
     labels: bool,
+    /// `; and`: a list goes on.
+    lists: bool,
 }
 
 impl Gap {
@@ -147,6 +149,7 @@ impl Scan<'_> {
             Size => {
                 let counted = item.quantities.len() == 1;
                 gap.within(2)
+                    && !gap.lists
                     && counted
                     && !draft.only(Other)
                     && (!again || symbol == "n" && !draft.only(Size))
@@ -257,6 +260,7 @@ impl Scan<'_> {
             broken: false,
             turns: false,
             labels: false,
+            lists: false,
         };
         if to <= from {
             return gap;
@@ -275,6 +279,7 @@ impl Scan<'_> {
                         gap.words += 1;
                     }
                     gap.broken |= closed;
+                    gap.lists |= shown == "and" && i > from && self.mark(i - 1) == Some(";");
                     gap.turns |= matches!(
                         shown,
                         "vs" | "versus"
@@ -304,12 +309,14 @@ impl Scan<'_> {
                     "." => {
                         let next = self.tokens.get(i + 1);
                         let ends = next.is_none_or(|t| {
-                            t.spaced
-                                && t.text(self.text).starts_with(|c: char| c.is_uppercase())
-                                && self
-                                    .grammar
-                                    .comparator(self.text, self.tokens, i + 2, false)
-                                    .is_none()
+                            // `. *P < .05`: a star opens its explanation.
+                            t.spaced && matches!(t.text(self.text), "*" | "†" | "‡")
+                                || t.spaced
+                                    && t.text(self.text).starts_with(|c: char| c.is_uppercase())
+                                    && self
+                                        .grammar
+                                        .comparator(self.text, self.tokens, i + 2, false)
+                                        .is_none()
                         });
                         gap.broken |= ends;
                     }

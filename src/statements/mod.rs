@@ -13,12 +13,15 @@ mod pairs;
 mod sentences;
 mod spellings;
 mod tokens;
+mod unnamed;
 mod values;
 
 pub use find::find;
 pub use grammar::Grammar;
 
 use crate::numbers::{Comparator, Decimal, Interval};
+use std::cell::OnceCell;
+use std::collections::HashSet;
 use std::ops::Range;
 
 /// One reported number.
@@ -64,4 +67,10 @@ pub(crate) struct Scan<'a> {
     commas: bool,
     /// The level of significance, which `n.s.` refers to.
     alpha: f64,
+    /// The manuscript says that it gives medians with quartiles.
+    medians: bool,
+    /// The block is a cell of a table.
+    cell: bool,
+    /// The meanings of the words that matter in this block, looked for when first asked for.
+    words: OnceCell<HashSet<&'static str>>,
 }

@@ -4,10 +4,8 @@
 
 use super::Scan;
 use super::grammar::Class;
-use super::items::Item;
 use super::spellings::Found;
 use super::tokens::Kind;
-use super::values::Company;
 use crate::numbers::Comparator;
 
 /// Most tokens between a name and the `was` before its number.
@@ -19,11 +17,18 @@ const TURNS: [&str; 18] = [
     "versus", "vs", "as", "we", "there",
 ];
 
+/// Whether a word may be a letter with a label; false for nearly all.
+pub(super) fn has_label(word: &str) -> bool {
+    let b = word.as_bytes();
+    let letter = if b[0].is_ascii() { 1 } else { 2 };
+    b.len() >= letter + 3 && b[letter].is_ascii_uppercase()
+}
+
 impl Scan<'_> {
     /// A one-letter symbol with a label run together with it, as lowered labels come out of many
     /// formats: `bIndirect = .04`, `zNBR = -1.60`, `pHet = 0.02`.
     pub(super) fn labelled(&self, at: usize) -> Option<Found<'_>> {
-        let word = self.word(at)?;
+        let word = self.word(at).filter(|w| has_label(w))?;
         let letter = word.chars().next()?;
         let label = &word[letter.len_utf8()..];
         if label.len() < 3 || !label.bytes().all(|b| b.is_ascii_alphabetic()) {
@@ -195,57 +200,6 @@ impl Scan<'_> {
         next
     }
 
-    /// `125 seedlings (56.3%)`: a number of things, the things, and their share.
-    pub(super) fn counted(&self, at: usize) -> Option<(Vec<Item>, usize)> {
-        if self.word(at + 1).is_none() && self.mark(at + 1) != Some(",") {
-            return None;
-        }
-        let count = self.value(at, Company::Whole).filter(|v| v.number.is_whole())?;
-        self.word(count.next)?;
-        let open = (count.next + 1..count.next + 4).find(|i| self.word(*i).is_none())?;
-        if self.mark(open) != Some("(") || self.mark(open + 2) != Some("%") {
-            return None;
-        }
-        // `80 of these (65%)`
-        let pointing = self.word(count.next) == Some("of")
-            && matches!(
-                self.word(count.next + 1),
-                Some("these" | "them" | "those" | "which" | "whom")
-            );
-        let units = (count.next..open).any(|i| {
-            self.word(i).is_some_and(|w| {
-                let of = w == "of" && !(pointing && i == count.next);
-                of || self.grammar.units.contains(w)
-                    || TURNS.contains(&w)
-                    || matches!(w, "was" | "were" | "is" | "are")
-            })
-        });
-        // `grade 3 beds (12%)`, `week 3 (12%)`, `1–3 beds (12%)`: no count.
-        let before = at > 0 && {
-            let tight = !self.tokens[at].spaced && !matches!(self.mark(at - 1), Some("(" | "["));
-            tight
-                || self
-                    .word(at - 1)
-                    .is_some_and(|w| self.grammar.numbered.contains(w.to_lowercase().as_str()))
-        };
-        if units || before {
-            return None;
-        }
-        let share = self.bracketed_percent(open)?;
-        let item = Item {
-            class: Class::Other,
-            tokens: at..share.tokens.end,
-            bytes: count.span.start..share.bytes.end,
-            quantities: [self.quantity("count", Comparator::Equal, &count, true)]
-                .into_iter()
-                .chain(share.quantities)
-                .collect(),
-            ..share
-        };
-        let next = item.tokens.end;
-        Some((vec![item], next))
-    }
-
     /// `1, 2, …`: the start of a run of numbers, which is no result. Token `at` is behind the first.
     pub(super) fn runs_on(&self, at: usize) -> bool {
         if self.mark(at) != Some(",") {
@@ -264,10 +218,5 @@ impl Scan<'_> {
             }
         }
         false
-    }
-
-    /// The letter counts something in a formula: `∑_(n = 1)`.
-    pub(super) fn index_of_a_sum(&self, at: usize) -> bool {
-        at >= 2 && matches!(self.mark(at - 1), Some("(" | "{")) && self.mark(at - 2) == Some("_")
     }
 }

@@ -20,6 +20,16 @@ impl Scan<'_> {
             .at(self.text, self.tokens, at, |_| true)?;
         let names = &self.grammar.intervals[found.spelling.meaning];
         let mut next = found.next;
+        // `confidence interval [CI]`
+        if let (Some(open @ ("(" | "[")), Some(named)) = (
+            self.mark(next),
+            self.grammar
+                .interval_spellings
+                .at(self.text, self.tokens, next + 1, |_| true),
+        ) && self.mark(named.next) == Some(if open == "(" { ")" } else { "]" })
+        {
+            next = named.next + 1;
+        }
         let mut start = at;
         let mut level = None;
         if let Some((value, from)) = self.level_before(at) {
@@ -202,7 +212,8 @@ impl Scan<'_> {
                 .into_iter()
                 .collect();
         }
-        if !matches!(self.mark(at), Some("(" | "[")) || item.plural {
+        let listed = item.class == Class::Size && matches!(self.mark(at), Some("," | ";"));
+        if !matches!(self.mark(at), Some("(" | "[")) && !listed || item.plural {
             return Vec::new();
         }
         if item.class == Class::Size {
@@ -294,10 +305,14 @@ impl Scan<'_> {
     }
 
     /// A word of this meaning stands in the block.
-    fn near(&self, meaning: &str) -> bool {
-        self.grammar
-            .words_in(self.text_of_block())
-            .any(|(found, _)| found == meaning)
+    pub(super) fn near(&self, meaning: &str) -> bool {
+        let words = self.words.get_or_init(|| {
+            self.grammar
+                .words_in(self.text_of_block())
+                .map(|(found, _)| found)
+                .collect()
+        });
+        words.contains(meaning)
     }
 
     fn text_of_block(&self) -> &str {
@@ -345,6 +360,13 @@ impl Scan<'_> {
             "±" => None,
             _ => return None,
         };
+        // `odds ratio (OR) 1.5 (1.1–2.0)`: one symbol, named twice.
+        if self
+            .abbreviation(first.next, self.grammar.symbols[first.spelling.meaning].name)
+            .is_some()
+        {
+            return None;
+        }
         let inside = first.next + 1;
         let (second, ends, mut next) = if let Some(found) =
             self.grammar

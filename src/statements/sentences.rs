@@ -2,12 +2,15 @@
 
 use std::ops::Range;
 
+/// No sentence is looked for farther than this, in bytes, from the range.
+const LONGEST: usize = 3000;
+
 /// The sentence of `text[block]` that holds `range`.
 pub fn around(text: &str, block: &Range<usize>, range: &Range<usize>) -> Range<usize> {
-    let before = &text[block.start..range.start];
-    let start = ends(before).last().map_or(block.start, |e| block.start + e);
-    let behind = &text[range.end..block.end];
-    let end = ends(behind).next().map_or(block.end, |e| range.end + e);
+    let from = text.ceil_char_boundary(block.start.max(range.start.saturating_sub(LONGEST)));
+    let start = ends(&text[from..range.start]).last().map_or(from, |e| from + e);
+    let to = text.floor_char_boundary(block.end.min(range.end + LONGEST));
+    let end = ends(&text[range.end..to]).next().map_or(to, |e| range.end + e);
     let lead = text[start..end].len() - text[start..end].trim_start().len();
     let trail = text[start..end].len() - text[start..end].trim_end().len();
     start + lead..(end - trail).max(range.end)

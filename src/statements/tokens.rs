@@ -187,7 +187,7 @@ fn number(bytes: &[u8], at: &mut usize, text: &str) -> Kind {
             && end > from
             && !bytes
                 .get(end)
-                .is_some_and(|b| b.is_ascii_alphabetic() || *b == b'.')
+                .is_some_and(|b| b.is_ascii_alphabetic() || *b == b'.' && decimal_mark(bytes, end) > 0)
         {
             *at = end;
         }

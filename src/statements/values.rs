@@ -111,15 +111,15 @@ impl Scan<'_> {
                     shown = format!("{whole}{part}");
                 }
             }
-            if shown == "10"
-                && let Some((power, behind)) = self.power_itself(i)
-            {
-                // `10⁻⁷` alone.
-                shown = "1".to_string();
-                exponent = power;
-                end = self.tokens[behind - 1].end as usize;
-                i = behind;
-            } else if let Some((power, behind)) = self.power_of_ten(i) {
+            // `10⁻⁷`, without a factor.
+            let alone = (shown == "10" && self.tokens.get(i).is_some_and(|t| !t.spaced))
+                .then(|| self.exponent(i, false))
+                .flatten()
+                .filter(|(power, _)| *power < 0);
+            if alone.is_some() {
+                shown.pop();
+            }
+            if let Some((power, behind)) = alone.or_else(|| self.power_of_ten(i)) {
                 exponent = power;
                 end = self.tokens[behind - 1].end as usize;
                 i = behind;
@@ -137,6 +137,44 @@ impl Scan<'_> {
             number: Decimal::read(&shown, negative, exponent)?,
             span: start..end,
             next: i,
+        })
+    }
+
+    /// `nine` at token `at`.
+    pub fn number_word(&self, at: usize) -> Option<Value> {
+        const WORDS: [&str; 20] = [
+            "one",
+            "two",
+            "three",
+            "four",
+            "five",
+            "six",
+            "seven",
+            "eight",
+            "nine",
+            "ten",
+            "eleven",
+            "twelve",
+            "thirteen",
+            "fourteen",
+            "fifteen",
+            "sixteen",
+            "seventeen",
+            "eighteen",
+            "nineteen",
+            "twenty",
+        ];
+        let word = self.word(at)?;
+        let index = WORDS.iter().position(|w| w.eq_ignore_ascii_case(word))?;
+        let token = self.tokens[at];
+        Some(Value {
+            number: Decimal {
+                digits: index as i64 + 1,
+                place: 0,
+                negative: false,
+            },
+            span: token.start as usize..token.end as usize,
+            next: at + 1,
         })
     }
 
@@ -184,34 +222,17 @@ impl Scan<'_> {
             || word.chars().all(|c| c.is_lowercase()) && word.len() <= 3 && word != "x"
     }
 
-    /// `⁻⁷`, `^-7`, `^{-7}` right behind a 10 at token `at`: the power and the token behind.
-    fn power_itself(&self, at: usize) -> Option<(i32, usize)> {
-        let token = self.tokens.get(at).filter(|t| !t.spaced)?;
-        if token.kind == Kind::Raised {
-            let raised = on_the_line(token.text(self.text));
-            return raised
-                .starts_with('-')
-                .then(|| Some((raised.parse().ok()?, at + 1)))?;
-        }
-        if self.mark(at) != Some("^") {
-            return None;
-        }
-        let brace = usize::from(self.mark(at + 1) == Some("{"));
-        let sign = at + 1 + brace;
-        if !matches!(self.mark(sign), Some("-" | "–" | "−")) {
-            return None;
-        }
-        let power: i32 = self.shown(sign + 1)?.parse().ok()?;
-        let end = sign + 2 + usize::from(brace == 1 && self.mark(sign + 2) == Some("}"));
-        Some((-power, end))
-    }
-
     /// `× 10⁻⁵`, `x 10^-6`, `× 10-6`, `·10^{-6}` at token `at`: the power and the token behind.
     fn power_of_ten(&self, at: usize) -> Option<(i32, usize)> {
         if !matches!(self.shown(at)?, "×" | "x" | "X" | "*" | "·" | "∙") || self.shown(at + 1)? != "10" {
             return None;
         }
-        let mut i = at + 2;
+        self.exponent(at + 2, true)
+    }
+
+    /// The exponent of a 10 at token `at`, and the token behind. `loose`: `-6` on the line will do.
+    fn exponent(&self, at: usize, loose: bool) -> Option<(i32, usize)> {
+        let mut i = at;
         let raised = self.tokens.get(i)?;
         if raised.kind == Kind::Raised {
             return Some((on_the_line(raised.text(self.text)).parse().ok()?, i + 1));
@@ -228,6 +249,9 @@ impl Scan<'_> {
         if negative {
             i += 1;
         } else if !caret {
+            return None;
+        }
+        if !caret && !loose {
             return None;
         }
         let digits: i32 = self.shown(i)?.parse().ok()?;
@@ -306,6 +330,9 @@ mod tests {
             grammar: Grammar::built_in(),
             commas,
             alpha: 0.05,
+            medians: false,
+            cell: false,
+            words: Default::default(),
         };
         scan.value(0, company)
             .map(|v| (v.number.to_string(), text[v.span].to_string()))

@@ -137,11 +137,9 @@ impl<'a> Reading<'a> {
 
     /// Whether preformatted text is program code or its output rather than part of the paper.
     pub(super) fn is_program(&self, start: &Start<'_>) -> bool {
-        const LOOK_AHEAD: usize = 1 << 16;
-        let rest = self.tokens.rest().as_bytes();
-        let rest = &rest[..rest.len().min(LOOK_AHEAD)];
-        let content = &rest[..memchr::memmem::find(rest, b"</pre").unwrap_or(rest.len())];
-        memchr::memmem::find(content, b"<code").is_some()
+        let content = self.tokens.rest().trim_start();
+        let tag = content.as_bytes().get(..5).unwrap_or_default();
+        tag.eq_ignore_ascii_case(b"<code")
             || start
                 .raw("class")
                 .is_some_and(|c| c.to_ascii_lowercase().contains("code"))
@@ -205,6 +203,8 @@ impl<'a> Reading<'a> {
             self.text(" ");
         } else if !self.context.table || self.groups.last().is_some_and(|g| g.ended) {
             self.close_block();
+        } else if self.context.foot {
+            self.row_due = true;
         } else {
             self.begin_table();
             self.b.row();
@@ -235,6 +235,7 @@ impl<'a> Reading<'a> {
         if ended || (self.context.foot && colspan > 1) {
             // Notes are often set as the last rows of the table.
             self.b.close_table();
+            self.row_due = false;
             if let Some(group) = self.groups.last_mut() {
                 group.ended = true;
             }
@@ -243,9 +244,10 @@ impl<'a> Reading<'a> {
             self.close_block();
             return false;
         }
-        if !self.b.in_table() {
+        if !self.b.in_table() || self.row_due {
             self.begin_table();
             self.b.row();
+            self.row_due = false;
         }
         self.b.part(self.context.part.unwrap_or(self.parts.current()));
         let th = start.name.eq_ignore_ascii_case("th");

@@ -137,7 +137,7 @@ impl<'a> Reading<'a> {
                 .get(..100.min(rest.len()))
                 .unwrap_or(rest)
                 .contains("katex-mathml");
-            self.context.unhide = !for_reading;
+            self.context.twofold = for_reading;
             return;
         }
         self.formula_read = false;
@@ -170,7 +170,7 @@ impl<'a> Reading<'a> {
 fn mathml<'t>(tokens: &mut Tokens<'t>) -> (Math, Option<Token<'t>>) {
     let mut math = Math::new();
     let mut open: Vec<&str> = Vec::new();
-    while let Some(token) = tokens.next() {
+    for token in tokens.by_ref() {
         match token {
             Token::Text(raw) => math.text(&decode(raw)),
             Token::Literal(text) => math.text(text),

@@ -44,8 +44,8 @@ struct Context {
     silent: bool,
     /// A formula may be read in here even so: it is the form of it meant for reading.
     math_in_silence: bool,
-    /// What is hidden from screen readers only is the only form there is.
-    unhide: bool,
+    /// In a formula whose form for reading stands beside the one kept from screen readers.
+    twofold: bool,
     /// Inside a formula, where `$` and `\(` are marks of TeX.
     formula: bool,
     /// Blocks become text of the block around them.
@@ -97,6 +97,8 @@ struct Reading<'a> {
     groups: Vec<Group>,
     /// The last block, if it is a caption that a table may follow: its index and label.
     waiting_caption: Option<(usize, Option<String>)>,
+    /// A row of the foot has begun, but none of its cells.
+    row_due: bool,
     /// A formula has just been read, in a form that others may follow.
     formula_read: bool,
     /// Position of the next script, as far as it has been looked for.
@@ -119,7 +121,7 @@ impl<'a> Reading<'a> {
                 part: None,
                 silent: false,
                 math_in_silence: false,
-                unhide: false,
+                twofold: false,
                 formula: false,
                 joined: false,
                 preformatted: false,
@@ -134,6 +136,7 @@ impl<'a> Reading<'a> {
             shifted: String::new(),
             groups: Vec::new(),
             waiting_caption: None,
+            row_due: false,
             formula_read: false,
             next_script: 0,
             line: 1,
@@ -169,10 +172,10 @@ impl<'a> Reading<'a> {
         if self.context.silent {
             return;
         }
-        if raw.bytes().all(|b| b.is_ascii_whitespace()) {
-            if !self.context.preformatted || raw.bytes().filter(|b| *b == b'\n').count() < 2 {
-                return self.text(raw);
-            }
+        let breaks = |raw: &str| raw.bytes().filter(|b| *b == b'\n').count();
+        let blank = raw.bytes().all(|b| b.is_ascii_whitespace());
+        if blank && !(self.context.preformatted && breaks(raw) > 1) {
+            return self.text(raw);
         }
         let begins = raw.as_ptr() as usize - self.source.as_ptr() as usize;
         let line = self.line_at(begins);
@@ -184,8 +187,7 @@ impl<'a> Reading<'a> {
             self.b.line(line);
             return self.text(&decode(raw));
         }
-        let mut count = 0;
-        for part in raw.split_inclusive('\n') {
+        for (count, part) in (0..).zip(raw.split_inclusive('\n')) {
             let blank = part.trim().is_empty();
             if self.context.preformatted && blank && !self.context.joined {
                 self.close_block();
@@ -194,7 +196,6 @@ impl<'a> Reading<'a> {
                 self.b.line(line + count);
             }
             self.text(&decode(part));
-            count += 1;
         }
     }
 
@@ -246,7 +247,7 @@ impl<'a> Reading<'a> {
             own: false,
         };
         let hidden =
-            element == Element::Hidden || marks.hidden || (marks.aria_hidden && !self.context.unhide);
+            element == Element::Hidden || marks.hidden || (marks.aria_hidden && self.context.twofold);
         if hidden {
             self.context.silent = true;
             self.context.math_in_silence = false;
@@ -415,32 +416,30 @@ impl<'a> Reading<'a> {
 
     /// Ends the elements that a start tag ends without saying so.
     fn imply_ends(&mut self, element: Element) {
+        use Element::*;
         let closes: fn(Element) -> bool = match element {
-            Element::Item => |e| e == Element::Item,
-            Element::Row => |e| matches!(e, Element::Row),
-            Element::Cell => |e| matches!(e, Element::Cell),
-            Element::TableHead | Element::TableBody | Element::TableFoot => {
-                |e| matches!(e, Element::TableHead | Element::TableBody | Element::TableFoot)
+            Item => |e| e == Item,
+            Row => |e| matches!(e, Row | Cell),
+            Cell => |e| e == Cell,
+            TableHead | TableBody | TableFoot => {
+                |e| matches!(e, TableHead | TableBody | TableFoot | Row | Cell)
             }
-            Element::Heading(_) => |e| matches!(e, Element::Heading(_) | Element::Paragraph),
-            e if e.is_block() => |e| e == Element::Paragraph,
+            Heading(_) => |e| matches!(e, Heading(_) | Paragraph),
+            e if e.is_block() => |e| e == Paragraph,
             _ => return,
         };
         let stops: fn(Element) -> bool = match element {
-            Element::Item => |e| matches!(e, Element::List) || e.is_border(),
-            Element::Row | Element::Cell | Element::TableHead | Element::TableBody | Element::TableFoot => {
-                |e| e == Element::Table
-            }
-            _ => |e| e.is_border() || matches!(e, Element::Item | Element::Block | Element::Sectioning),
+            Item => |e| e == List || e.is_border(),
+            Row | Cell | TableHead | TableBody | TableFoot => |e| e == Table,
+            _ => |e| e.is_border() || matches!(e, Item | Block | Sectioning),
         };
-        let back = self
-            .open
-            .iter()
-            .rev()
-            .take(LOOK_BACK)
+        let open = self.open.iter().rev().take(LOOK_BACK);
+        let back = open
             .take_while(|o| !stops(o.element))
-            .position(|o| closes(o.element));
-        if let Some(back) = back {
+            .enumerate()
+            .filter(|(_, o)| closes(o.element))
+            .last();
+        if let Some((back, _)) = back {
             self.close_down_to(self.open.len() - 1 - back);
         }
         // An item also ends the paragraph before it.

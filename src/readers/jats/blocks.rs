@@ -1,6 +1,7 @@
 //! Blocks, tables, formulas and raised text of a JATS file: what the events lead to.
 
 use super::*;
+use crate::readers::headings;
 
 impl<'a> Reading<'a> {
     /// Text at the place reached.
@@ -32,6 +33,12 @@ impl<'a> Reading<'a> {
                 return;
             }
             self.open_block(self.context.kind);
+        } else if self.context.joined
+            && is_blank(raw)
+            && self.frames.last().is_some_and(|f| f.tag == Tag::DefItem)
+        {
+            // The indentation between a term and its definition.
+            return;
         }
         if self.in_citation && is_number_list(raw) && glued(self.last) {
             // Citation numbers without brackets are raised on the page.
@@ -86,7 +93,7 @@ impl<'a> Reading<'a> {
             self.close_block();
             if let Some(title) = self.due_heading.take() {
                 self.b.part(self.context.part);
-                self.b.heading(self.context.level.max(1), title);
+                self.b.heading(1, title);
             }
             self.b.part(self.context.part);
             self.b.open(kind);
@@ -169,6 +176,21 @@ impl<'a> Reading<'a> {
             self.due_heading = None;
         }
         self.open_block(BlockKind::Heading(self.context.level.max(1)));
+    }
+
+    /// The end of a title. Some journals keep acknowledgements and the like among the sections of
+    /// the body, where only their titles tell them apart.
+    pub(super) fn close_title(&mut self) {
+        let section = self.frames.last().is_some_and(|f| f.tag == Tag::Section);
+        if section && self.context.level == 1 && self.context.part == Part::Body {
+            self.flush_shift();
+            let part = headings::known(self.b.open_text()).map(|known| known.part);
+            if let Some(part @ (Part::Back | Part::References)) = part {
+                self.context.part = part;
+                self.b.part(part);
+            }
+        }
+        self.close_block();
     }
 
     pub(super) fn close_label(&mut self) {

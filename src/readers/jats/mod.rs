@@ -7,6 +7,7 @@
 mod blocks;
 mod entities;
 mod tags;
+mod trouble;
 
 use super::Unreadable;
 use super::mathml::Math;
@@ -16,6 +17,7 @@ use entities::Declared;
 use quick_xml::Reader;
 use quick_xml::events::{BytesStart, Event};
 use tags::Tag;
+use trouble::{Trouble, last_open, not_well_formed};
 
 /// Elements nested deeper than this make a file unreadable.
 const DEEPEST: usize = 1000;
@@ -377,7 +379,7 @@ impl<'a> Reading<'a> {
                 self.open_block(BlockKind::ListItem);
                 self.context.joined = true;
             }
-            Tag::Term => self.text(" "),
+            Tag::Term => {}
             Tag::Def => self.text(": "),
             Tag::Quote => {
                 self.split();
@@ -477,6 +479,8 @@ impl<'a> Reading<'a> {
                     self.flush_shift();
                     self.b.close();
                     self.flush_put_off()?;
+                    // The title names no section: text before the first heading stands in none.
+                    self.b.return_to_section(None);
                 }
             }
             Tag::Abstract
@@ -493,7 +497,11 @@ impl<'a> Reading<'a> {
                 self.b.return_to_section(frame.note.checked_sub(1));
             }
             Tag::Label => self.close_label(),
-            Tag::Title | Tag::Paragraph | Tag::Attrib | Tag::Caption | Tag::TableFoot | Tag::DefItem => {
+            Tag::Title => {
+                self.close_title();
+                self.flush_put_off()?;
+            }
+            Tag::Paragraph | Tag::Attrib | Tag::Caption | Tag::TableFoot | Tag::DefItem => {
                 self.close_block();
                 self.flush_put_off()?;
             }
@@ -560,42 +568,6 @@ impl<'a> Reading<'a> {
         }
         Ok(())
     }
-}
-
-/// The name of the innermost element still open at the end of a file cut short.
-fn last_open(source: &str) -> String {
-    let mut reader = Reader::from_str(source);
-    let mut open = Vec::new();
-    loop {
-        match reader.read_event() {
-            Ok(Event::Start(e)) => open.push(e.name().as_ref().to_string()),
-            Ok(Event::End(_)) => {
-                open.pop();
-            }
-            Ok(Event::Eof) | Err(_) => return open.pop().unwrap_or_default(),
-            Ok(_) => {}
-        }
-    }
-}
-
-/// What can go wrong between two events.
-enum Trouble {
-    Xml(quick_xml::Error),
-    Told(Unreadable),
-}
-
-impl From<quick_xml::Error> for Trouble {
-    fn from(error: quick_xml::Error) -> Trouble {
-        Trouble::Xml(error)
-    }
-}
-
-fn not_well_formed(source: &str, at: usize, reason: &str) -> Unreadable {
-    let before = &source.as_bytes()[..at.min(source.len())];
-    let line = 1 + memchr::memchr_iter(b'\n', before).count();
-    Unreadable::new(format!(
-        "is not well-formed XML near line {line}: {reason}; download or export it again"
-    ))
 }
 
 #[cfg(test)]

@@ -261,8 +261,10 @@ pub fn heading(block: &Block, body: Body) -> Option<u8> {
         || (text.ends_with('.') && known.is_none() && depth.is_none() && !bold);
     let stands_out = size > 1.07 || (bold && size > 0.9);
     let sentence = text.ends_with('.') && count > 90;
+    let running = !bold && size < 1.2 && known.is_none() && text.split(' ').count() > 12;
     if ends_open
         || sentence
+        || running
         || !text
             .chars()
             .next()

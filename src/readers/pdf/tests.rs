@@ -231,11 +231,13 @@ fn what_is_cropped_away_is_not_read() {
 #[test]
 fn pages_without_text_are_named() {
     let error = read(&pdf(&[String::new()], "")).expect_err("nothing to read");
+    assert!(error.0.starts_with("has no text on its pages; "), "{}", error.0);
+    let image = "q 500 0 0 700 50 50 cm BI /W 1 /H 1 /CS /G /BPC 8 ID \u{1} EI Q\n".to_string();
+    let error = read(&pdf(std::slice::from_ref(&image), "")).expect_err("nothing to read");
     assert_eq!(
         error.0,
         "has no text layer (page images only): run text recognition on it first"
     );
-    let image = "q 500 0 0 700 50 50 cm BI /W 1 /H 1 /CS /G /BPC 8 ID \u{1} EI Q\n".to_string();
     let m = read(&pdf(&[content(&[at(50.0, 700.0, "Seen.")]), image], "")).expect("the sample is a PDF");
     assert_eq!(
         m.remarks,

@@ -1,0 +1,247 @@
+//! *Unnamed* numbers: a number right before an interval or a spread that has a name is what the
+//! interval or spread belongs to: `was lower by 2.46 (95% CI 1.21 to 3.72)`, `came 8.7 times
+//! (SD = 3.34)`. What it is called may stand earlier in the sentence: `the odds ratio for wet beds was 1.5
+//! (95% CI 1.1–2.0)`.
+
+use super::Scan;
+use super::grammar::Class;
+use super::items::Item;
+use super::tokens::Kind;
+use super::values::{Company, Value};
+use crate::numbers::Comparator;
+
+/// How many tokens before a number its name is looked for.
+const NAME_WITHIN: usize = 16;
+
+impl Scan<'_> {
+    /// A number at token `at` whose interval or spread follows.
+    pub(super) fn unnamed(&self, at: usize) -> Option<(Vec<Item>, usize)> {
+        let (value, from) = self.with_sign(at)?;
+        let mut next = value.next;
+        let percent = self.mark(next) == Some("%");
+        if percent {
+            next += 1;
+        } else if self.unit_word(next) {
+            next += 1;
+        }
+        let bracket = matches!(self.mark(next), Some("(" | "["));
+        if !bracket && !matches!(self.mark(next), Some("," | ";")) || self.counts_something(from) {
+            return None;
+        }
+        let follows = next + 1;
+        let (symbol, class) = if let Some(low) = self.interval_after(follows) {
+            match low {
+                "IQR_low" if !percent => ("Mdn", Class::Descriptive),
+                "CI_low" | "CrI_low" if percent => ("percent", Class::Other),
+                "CI_low" | "CrI_low" => self.name_before(from).unwrap_or(("est", Class::Estimate)),
+                _ => return None,
+            }
+        } else if bracket && !percent && self.spread_after(follows) {
+            ("M", Class::Descriptive)
+        } else if bracket && !percent && (self.near("medians") || self.medians && !self.names_intervals()) {
+            return self.quartiles(&value, from, next);
+        } else {
+            return None;
+        };
+        let item = self.lone(symbol, class, &value, from);
+        Some((vec![item], value.next))
+    }
+
+    /// The block speaks of other intervals or ranges, or is a cell, which its own head names.
+    fn names_intervals(&self) -> bool {
+        self.cell
+            || self.tokens.iter().enumerate().any(|(i, t)| {
+                t.kind == Kind::Word
+                    && self
+                        .grammar
+                        .interval_spellings
+                        .at(self.text, self.tokens, i, |_| true)
+                        .is_some()
+            })
+    }
+
+    fn lone(&self, symbol: &'static str, class: Class, value: &Value, from: usize) -> Item {
+        Item {
+            class,
+            tokens: from..value.next,
+            bytes: value.span.clone(),
+            quantities: vec![self.quantity(symbol, Comparator::Equal, value, false)],
+            more_values: vec![],
+            plural: false,
+            alone: true,
+            plain: true,
+        }
+    }
+
+    /// The number at token `at` with the sign before it: its value and first token.
+    fn with_sign(&self, at: usize) -> Option<(Value, usize)> {
+        let before = |i: usize| at >= i && self.mark(at - i).is_some();
+        let from = if before(1) && matches!(self.mark(at - 1), Some("-" | "+" | "–")) {
+            let opens = self.tokens[at - 1].spaced || before(2);
+            if !opens {
+                return None;
+            }
+            at - 1
+        } else {
+            at
+        };
+        // The end of a range, of a fraction or of a compound.
+        if from == at
+            && at > 0
+            && !self.tokens[at].spaced
+            && !matches!(self.mark(at - 1), Some("(" | "[" | "="))
+        {
+            return None;
+        }
+        let value = self.value(from, Company::Single)?;
+        Some((value, from))
+    }
+
+    fn unit_word(&self, at: usize) -> bool {
+        self.word(at).is_some_and(|w| self.grammar.units.contains(w))
+    }
+
+    /// The number that begins at token `from` counts a table, a week or the like.
+    fn counts_something(&self, from: usize) -> bool {
+        let mut i = from;
+        while i > 0 && self.mark(i - 1) == Some(".") {
+            i -= 1;
+        }
+        i > 0
+            && self
+                .word(i - 1)
+                .is_some_and(|w| self.grammar.labels.contains(w.to_lowercase().as_str()))
+    }
+
+    /// What an interval whose level or name stands at token `at` calls its lower end.
+    fn interval_after(&self, at: usize) -> Option<&'static str> {
+        let mut name = at;
+        if self.tokens.get(at)?.kind == Kind::Number {
+            name += 1;
+            if self.mark(name) == Some("%") {
+                name += 1;
+            }
+        }
+        // `95% bootstrap CI`
+        for i in name..name + 3 {
+            self.word(i)?;
+            if let Some((item, _)) = self.interval(i) {
+                return item
+                    .quantities
+                    .iter()
+                    .map(|q| q.symbol)
+                    .find(|s| s.ends_with("_low"));
+            }
+        }
+        None
+    }
+
+    /// `SD = 3.34` or `SE 0.4` at token `at`.
+    fn spread_after(&self, at: usize) -> bool {
+        self.assignment(at)
+            .is_some_and(|(item, _)| matches!(item.quantities[0].symbol, "SD" | "SE"))
+    }
+
+    /// A name written out, or a ratio, in the same sentence before token `from`, no number between.
+    fn name_before(&self, from: usize) -> Option<(&'static str, Class)> {
+        let told = self.mark(from.wrapping_sub(1)) == Some(":")
+            || self
+                .word(from.wrapping_sub(1))
+                .is_some_and(|w| matches!(w, "was" | "were" | "is" | "of" | "to" | "being" | "by"));
+        for i in (from.saturating_sub(NAME_WITHIN)..from).rev() {
+            let token = self.tokens[i];
+            if matches!(token.kind, Kind::Number | Kind::Dotted)
+                || matches!(self.mark(i), Some("." | ";" | "?" | "="))
+            {
+                return None;
+            }
+            if token.kind != Kind::Word {
+                continue;
+            }
+            if let Some(found) = self.grammar.spellings.at(self.text, self.tokens, i, |_| true) {
+                let symbol = &self.grammar.symbols[found.spelling.meaning];
+                let named = match symbol.class {
+                    Class::Ratio => true,
+                    Class::Estimate | Class::Effect | Class::Descriptive | Class::Other => {
+                        told && (found.spelling.words || token.text(self.text).len() > 2)
+                    }
+                    _ => false,
+                };
+                if named && found.next <= from {
+                    return Some((symbol.name, symbol.class));
+                }
+            }
+        }
+        None
+    }
+
+    /// `74 (43–106)` where quartiles are spoken of.
+    fn quartiles(&self, value: &Value, from: usize, open: usize) -> Option<(Vec<Item>, usize)> {
+        let (low, high, behind) = self.two_ends(open)?;
+        // Nothing else in the bracket: `55 (5.9%, 95% CI …)` is another thing.
+        let tight = behind > high.next && matches!(self.mark(behind - 1), Some(")" | "]"));
+        if !tight || self.mark(low.next) == Some("%") {
+            return None;
+        }
+        let x = value.number.value();
+        let (least, most) = (low.number.value(), high.number.value());
+        if !(least <= x && x <= most && least < most) {
+            return None;
+        }
+        let mut item = self.lone("Mdn", Class::Descriptive, value, from);
+        item.tokens.end = behind;
+        item.bytes.end = self.bytes(open, behind).end;
+        item.quantities
+            .push(self.quantity("IQR_low", Comparator::Equal, &low, false));
+        item.quantities
+            .push(self.quantity("IQR_high", Comparator::Equal, &high, false));
+        Some((vec![item], behind))
+    }
+
+    /// `4.6 ± 0.8 × 10⁻³`: the power belongs to the mean, too.
+    pub(super) fn shared_power(&self, mut item: Item, followers: &[Item]) -> Item {
+        let (Some(head), Some(spread)) = (
+            item.quantities.first_mut(),
+            followers.first().and_then(|f| f.quantities.first()),
+        ) else {
+            return item;
+        };
+        let between = &self.text[head.span.end.min(spread.span.start)..spread.span.start];
+        let factor = spread
+            .printed
+            .find(['×', 'x', 'X', '*', '∙'])
+            .map(|end| spread.printed[..end].trim_end());
+        let (Some(factor), "±") = (factor, between.trim()) else {
+            return item;
+        };
+        if head.printed.contains("10") && head.printed.contains(['×', 'x', 'X', '*', '∙']) {
+            return item;
+        }
+        let decimals = factor
+            .find(['.', '·'])
+            .map_or(0, |point| factor[point..].chars().count() as i32 - 1);
+        head.number.place += spread.number.place + decimals;
+        head.interval = head.comparator.interval(&head.number, false);
+        item
+    }
+
+    /// Whether the number at token `at` may be a count of things that are named behind it:
+    /// `266 gardeners (88.1%)`, but not `8 weeks (40%)` or `nine of 302 gardeners (3%)`.
+    pub(super) fn may_count(&self, at: usize) -> bool {
+        let bracket = (at + 2..at + 5).find(|i| matches!(self.mark(*i), Some("(" | "[")));
+        let Some(bracket) = bracket else { return false };
+        if !(at + 1..bracket).all(|i| self.word(i).is_some())
+            || self.mark(bracket + 2) != Some("%")
+            || self.unit_word(at + 1)
+            || self.counts_something(at)
+        {
+            return false;
+        }
+        // `of 302 gardeners` is the whole, unless it is `a total of`; so is `the 302 gardeners`.
+        at < 2
+            || self.word(at - 1) != Some("the") && self.word(at - 1) != Some("of")
+            || self
+                .word(at - 2)
+                .is_some_and(|w| matches!(w, "total" | "number" | "sum" | "sample"))
+    }
+}
