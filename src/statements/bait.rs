@@ -9,8 +9,8 @@ use crate::numbers::Comparator;
 use std::ops::Range;
 
 /// Levels that thresholds and legends are printed with.
-const LEVELS: [f64; 10] = [
-    0.1, 0.05, 0.025, 0.02, 0.01, 0.005, 0.001, 0.0005, 0.0001, 0.00001,
+const LEVELS: [f64; 12] = [
+    0.1, 0.05, 0.025, 0.02, 0.01, 0.005, 0.001, 0.0005, 0.0001, 0.00001, 5e-8, 1e-8,
 ];
 
 impl Scan<'_> {

@@ -80,6 +80,7 @@ impl Scan<'_> {
             .squared_behind(at)
             .or_else(|| self.grammar.spellings.at(self.text, self.tokens, at, |_| true))
             .or_else(|| self.labelled(at))?;
+        let labelled = has_label(&self.text[self.bytes(at, at + 1)]);
         if !self.begins_word(at) {
             return None;
         }
@@ -275,7 +276,7 @@ impl Scan<'_> {
             more_values,
             plural: found.spelling.plural || respectively && has_more,
             alone: symbol.alone || symbol.class == Class::Ratio && is_ratio,
-            plain: words || with_arguments,
+            plain: words || with_arguments || labelled,
         };
         Some((item, next))
     }
