@@ -188,7 +188,7 @@ impl Scan<'_> {
             }
             next += 1;
         }
-        if !symbol.units && !with_arguments && self.unit(next) {
+        if !symbol.units && !with_arguments && (self.unit(next) || self.shares_a_unit(at, next)) {
             return None;
         }
         if symbol.class == Class::Size
@@ -223,11 +223,17 @@ impl Scan<'_> {
             next = upper.next;
         }
         // `df = 2, 45` behind F.
-        let paired_off = matches!(symbol.class, Class::Statistic | Class::P) || symbol.name == "M";
+        let paired_off =
+            matches!(symbol.class, Class::Statistic | Class::P | Class::Size) || symbol.name == "M";
         let respectively = paired_off && !found.spelling.plural && self.respectively(next);
         if upper.is_none() && (found.spelling.plural || symbol.name == "df" || respectively) {
             let mut behind = next;
-            while let Some((further, after)) = self.next_in_list(behind) {
+            let listed = if symbol.whole {
+                Company::Whole
+            } else {
+                Company::List
+            };
+            while let Some((further, after)) = self.next_in_list(behind, listed) {
                 more_values.push(self.quantity(name, comparator, &further, symbol.whole));
                 behind = after;
                 if symbol.name == "df" {
@@ -594,14 +600,14 @@ impl Scan<'_> {
     /// A list goes on at token `at` that the sentence deals out with `respectively`.
     fn respectively(&self, at: usize) -> bool {
         const WITHIN: usize = 40;
-        self.next_in_list(at).is_some()
+        self.next_in_list(at, Company::List).is_some()
             && (at..self.tokens.len().min(at + WITHIN))
                 .take_while(|i| self.mark(*i) != Some("."))
                 .any(|i| self.word(i) == Some("respectively"))
     }
 
     /// A further number of a list at token `at`: `, .31`, ` and .759`, `, and .2`, `/ .3`, `or`, `&`.
-    fn next_in_list(&self, at: usize) -> Option<(Value, usize)> {
+    fn next_in_list(&self, at: usize, company: Company) -> Option<(Value, usize)> {
         let mut i = at;
         if matches!(self.mark(i), Some("," | ";" | "/" | "&")) {
             i += 1;
@@ -615,13 +621,13 @@ impl Scan<'_> {
         if i == at {
             return None;
         }
-        let value = self.value(i, Company::List)?;
+        let value = self.value(i, company)?;
         let next = value.next;
         Some((value, next))
     }
 
     /// A unit stands at token `at`.
-    fn unit(&self, at: usize) -> bool {
+    pub(super) fn unit(&self, at: usize) -> bool {
         let Some(shown) = self.shown(at) else { return false };
         if self.tokens[at].kind == Kind::Mark && matches!(shown, "°") {
             return true;

@@ -76,7 +76,8 @@ impl Scan<'_> {
 
     /// `ts(38) = 2.1 and 3.4` are two items; a list of p stays one until its tests are known.
     fn one_by_one(&self, mut item: Item) -> Vec<Item> {
-        if item.more_values.is_empty() || item.class != Class::Statistic && item.class != Class::Descriptive {
+        let dealt_out = matches!(item.class, Class::Statistic | Class::Descriptive | Class::Size);
+        if item.more_values.is_empty() || !dealt_out {
             return vec![item];
         }
         if item.quantities[0].symbol != "M" && item.class == Class::Descriptive {

@@ -6,10 +6,11 @@ use super::Scan;
 use super::grammar::Class;
 use super::spellings::Found;
 use super::tokens::Kind;
+use super::values::Company;
 use crate::numbers::Comparator;
 
 /// Most tokens between a name and the `was` before its number.
-const PASSED: usize = 10;
+const PASSED: usize = 14;
 
 /// Words behind which another thought begins, so that the number no longer belongs to the name.
 const TURNS: [&str; 18] = [
@@ -215,6 +216,28 @@ impl Scan<'_> {
                     _ => return false,
                 },
                 _ => return false,
+            }
+        }
+        false
+    }
+
+    /// `r = .75, r = 1.75 and r = 3.25 μm`: one unit for a list. Symbol at token `at`, its value up to
+    /// token `next`.
+    pub(super) fn shares_a_unit(&self, at: usize, mut next: usize) -> bool {
+        const LONGEST: usize = 6;
+        for _ in 0..LONGEST {
+            let from = next;
+            next += usize::from(self.mark(next) == Some(","));
+            next += usize::from(matches!(self.word(next), Some("and" | "or")));
+            if next == from || self.shown(next) != self.shown(at) || self.mark(next + 1) != Some("=") {
+                return false;
+            }
+            let Some(value) = self.value(next + 2, Company::Single) else {
+                return false;
+            };
+            next = value.next;
+            if self.unit(next) {
+                return true;
             }
         }
         false
