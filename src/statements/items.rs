@@ -674,7 +674,7 @@ impl Scan<'_> {
 
     /// A form without comparator at token `at`.
     fn form(&self, at: usize) -> Option<(Vec<Item>, usize)> {
-        if !self.begins_word(at) && !(at > 0 && self.tokens[at - 1].kind == Kind::Mark) {
+        if !(self.begins_word(at) || at > 0 && self.tokens[at - 1].kind == Kind::Mark) {
             return None;
         }
         // `1.2-3/4 (5%)` and `12–34 (5%)`: the number is the end of something else.
@@ -689,11 +689,11 @@ impl Scan<'_> {
         }
         // All forms go on with a mark or one of few words; look before trying each.
         let behind = self.shown(at + 1)?;
-        if !matches!(
+        let promising = matches!(
             behind,
             "/" | "(" | "[" | "%" | "," | "of" | "out" | "df" | "d" | "degrees" | "degree" | "and"
-        ) && !self.may_count(at)
-        {
+        );
+        if !promising && !self.may_count(at) {
             return None;
         }
         for form in &self.grammar.forms {

@@ -92,7 +92,9 @@ impl Scan<'_> {
         );
         let never = matches!(class, Class::Size | Class::Df | Class::Estimate)
             || matches!(first, "was" | "were" | "is" | "are")
-            || class == Class::P && first != "for";
+            || class == Class::P && first != "for"
+            // `by means of …`, `medians of both …`
+            || class == Class::Descriptive && at > 0 && self.word(at - 1).is_some_and(|w| w.ends_with('s'));
         if never {
             return None;
         }

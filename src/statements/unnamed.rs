@@ -16,12 +16,13 @@ const NAME_WITHIN: usize = 16;
 impl Scan<'_> {
     /// A number at token `at` whose interval or spread follows.
     pub(super) fn unnamed(&self, at: usize) -> Option<(Vec<Item>, usize)> {
+        if !self.something_follows(at) {
+            return None;
+        }
         let (value, from) = self.with_sign(at)?;
         let mut next = value.next;
         let percent = self.mark(next) == Some("%");
-        if percent {
-            next += 1;
-        } else if self.unit_word(next) {
+        if percent || self.unit_word(next) {
             next += 1;
         }
         let bracket = matches!(self.mark(next), Some("(" | "["));
@@ -45,6 +46,22 @@ impl Scan<'_> {
         };
         let item = self.lone(symbol, class, &value, from);
         Some((vec![item], value.next))
+    }
+
+    /// A quick look: a bracket, or a comma and then a name or a percentage, stands close behind.
+    fn something_follows(&self, at: usize) -> bool {
+        const WITHIN: usize = 6;
+        (at + 1..self.tokens.len().min(at + WITHIN)).any(|i| match self.mark(i) {
+            Some("(" | "[") => true,
+            Some("," | ";") => match self.tokens.get(i + 1).map(|t| t.kind) {
+                Some(Kind::Number) => self.mark(i + 2) == Some("%") || self.word(i + 2).is_some(),
+                Some(Kind::Word) => self
+                    .shown(i + 1)
+                    .is_some_and(|w| w.starts_with(|c: char| c.is_ascii_uppercase())),
+                _ => false,
+            },
+            _ => false,
+        })
     }
 
     /// The block speaks of other intervals or ranges, or is a cell, which its own head names.

@@ -56,10 +56,7 @@ impl Scan<'_> {
             shown.truncate(e);
         } else {
             // Groups of thousands and decimal commas.
-            loop {
-                let (Some(mark), Some(digits)) = (self.tokens.get(i), self.tokens.get(i + 1)) else {
-                    break;
-                };
+            while let (Some(mark), Some(digits)) = (self.tokens.get(i), self.tokens.get(i + 1)) {
                 let part = digits.text(self.text);
                 let tight = !mark.spaced
                     && !digits.spaced
@@ -165,6 +162,12 @@ impl Scan<'_> {
             "twenty",
         ];
         let word = self.word(at)?;
+        // Most words are none of these.
+        if !(3..=9).contains(&word.len())
+            || !word.starts_with(['o', 't', 'f', 's', 'e', 'n', 'O', 'T', 'F', 'S', 'E', 'N'])
+        {
+            return None;
+        }
         let index = WORDS.iter().position(|w| w.eq_ignore_ascii_case(word))?;
         let token = self.tokens[at];
         Some(Value {

@@ -91,7 +91,13 @@ impl<'a> Reading<'a> {
             return self.close_block_in(inside);
         }
         let part = match inside.part {
-            Some(part) => part,
+            // A heading that is marked itself (`<h1 id=references>`) speaks for what follows it.
+            Some(part) => {
+                if self.context.part.is_none() {
+                    self.parts.enter(part);
+                }
+                part
+            }
             None => self.parts.heading(level, self.b.open_text().trim()),
         };
         self.b.part(part);
@@ -270,7 +276,8 @@ impl<'a> Reading<'a> {
     pub(super) fn describe_group(&mut self) {
         let Some(group) = self.groups.pop() else { return };
         let tables = group.first_table..self.b.table_count();
-        for table in tables {
+        // A figure with more tables than this is no figure, but a page without end tags.
+        for table in tables.take(100) {
             self.b
                 .describe_table(table, group.label.as_deref(), &group.captions, &group.notes);
         }

@@ -16,6 +16,7 @@ use super::Unreadable;
 use super::headings::Parts;
 use crate::manuscript::{BlockKind, Builder, Format, Manuscript, Part};
 use elements::{Element, element};
+use formulas::Ahead;
 use marks::Marks;
 use tokens::{Start, Token, Tokens, decode};
 
@@ -101,8 +102,8 @@ struct Reading<'a> {
     row_due: bool,
     /// A formula has just been read, in a form that others may follow.
     formula_read: bool,
-    /// Position of the next script, as far as it has been looked for.
-    next_script: usize,
+    next_script: Ahead,
+    next_math: Ahead,
     /// Line of the file (from 1) and the position up to which lines are counted.
     line: u32,
     counted: usize,
@@ -138,7 +139,8 @@ impl<'a> Reading<'a> {
             waiting_caption: None,
             row_due: false,
             formula_read: false,
-            next_script: 0,
+            next_script: Ahead::of(b"<script"),
+            next_math: Ahead::of(b"<math"),
             line: 1,
             counted: 0,
             formula_pictures: 0,

@@ -297,3 +297,9 @@ fn anything_ends() {
         assert!(m.text.starts_with("start"), "{piece}");
     }
 }
+
+#[test]
+fn a_heading_that_is_marked_itself_speaks_for_what_follows() {
+    let m = read("<h1 id=references>References</h1><p>Reed, p = .5</p>").expect("it is readable");
+    assert_eq!(m.blocks.last().map(|b| b.part), Some(Part::References));
+}

@@ -49,6 +49,8 @@ struct Context {
     joined: bool,
     /// Inside the head of a table.
     head: bool,
+    /// Inside a group of notes at the end of the article.
+    note_group: bool,
 }
 
 struct Frame {
@@ -123,6 +125,9 @@ struct Reading<'a> {
     article_seen: bool,
     letters: usize,
     formula_pictures: usize,
+    /// Labels of tables that are pictures, the first few of them, and how many there are.
+    table_pictures: Vec<String>,
+    table_picture_count: usize,
     root_closed: bool,
 }
 
@@ -139,6 +144,7 @@ impl<'a> Reading<'a> {
                 front: false,
                 joined: false,
                 head: false,
+                note_group: false,
             },
             frames: Vec::new(),
             sink: Sink::Block,
@@ -157,6 +163,8 @@ impl<'a> Reading<'a> {
             article_seen: false,
             letters: 0,
             formula_pictures: 0,
+            table_pictures: Vec::new(),
+            table_picture_count: 0,
             root_closed: false,
         }
     }
@@ -171,6 +179,17 @@ impl<'a> Reading<'a> {
         if self.letters > 0 {
             self.b
                 .remark("letters about the article that stand in the same file were not read");
+        }
+        match self.table_picture_count {
+            0 => {}
+            1 => self.b.remark(format!(
+                "{} is stored as a picture and was not read",
+                self.table_pictures.concat()
+            )),
+            n => self.b.remark(format!(
+                "{n} tables are stored as pictures and were not read: {}",
+                self.table_pictures.join(", ")
+            )),
         }
         match self.formula_pictures {
             0 => {}
@@ -351,6 +370,7 @@ impl<'a> Reading<'a> {
             Tag::Back => frame.note = self.enter_division(Part::Back),
             Tag::BackMatter | Tag::NoteGroup => {
                 frame.note = self.enter_division(Part::Back);
+                self.context.note_group = tag == Tag::NoteGroup;
                 self.context.level = self.context.level.saturating_add(1);
             }
             Tag::Appendix => {

@@ -290,10 +290,14 @@ impl Math {
         let Some(inside) = self.text.get(at + 1..) else {
             return;
         };
-        let simple = inside
-            .chars()
-            .all(|c| c.is_alphanumeric() || matches!(c, '.' | PERHAPS_BRACKET | '\u{300}'..='\u{36f}' | '|'));
-        let wrapped = inside.starts_with('(') && inside.ends_with(')') && inside.matches('(').count() == 1;
+        // Anything this long is compound, and need not be gone through at every level around it.
+        let short = inside.len() < 200;
+        let simple = short
+            && inside.chars().all(|c| {
+                c.is_alphanumeric() || matches!(c, '.' | PERHAPS_BRACKET | '\u{300}'..='\u{36f}' | '|')
+            });
+        let wrapped =
+            short && inside.starts_with('(') && inside.ends_with(')') && inside.matches('(').count() == 1;
         if !simple && !wrapped && self.text[at..].starts_with(PERHAPS_BRACKET) {
             self.text.replace_range(at..at + 1, "(");
             self.text.push(')');

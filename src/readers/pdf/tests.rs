@@ -270,7 +270,7 @@ fn damaged_files_have_one_reason() {
 
 #[test]
 fn forms_that_draw_each_other_without_end_are_given_up() {
-    let bytes = include_bytes!("../../../tests/fixtures/pdf/nested-forms.pdf");
+    let bytes = include_bytes!("../../../fixtures/broken/nested-forms.pdf");
     let start = std::time::Instant::now();
     let limits = Limits {
         time: Duration::from_secs(3),
@@ -289,10 +289,10 @@ fn forms_that_draw_each_other_without_end_are_given_up() {
 
 #[test]
 fn files_locked_without_a_password_open_and_others_say_so() {
-    let open = include_bytes!("../../../tests/fixtures/pdf/owner-password.pdf");
+    let open = include_bytes!("../../../fixtures/broken/owner-password.pdf");
     let m = read(open).expect("opens without a password");
     assert_eq!(texts(&m), ["Watered more often, p = .023."]);
-    let locked = include_bytes!("../../../tests/fixtures/pdf/user-password.pdf");
+    let locked = include_bytes!("../../../fixtures/broken/user-password.pdf");
     let error = read(locked).expect_err("needs a password");
     assert!(error.0.starts_with("is encrypted; "), "{}", error.0);
 }
