@@ -43,6 +43,9 @@ pub struct Symbol {
     pub below: Option<(f64, &'static str)>,
     pub several: Option<&'static str>,
     pub sure: Option<(f64, f64)>,
+    /// Letters of the symbol that a label may be run together with.
+    pub labelled: Vec<char>,
+    pub zero: bool,
     pub beside: Option<[&'static str; 3]>,
 }
 
@@ -127,6 +130,10 @@ struct RawSymbol {
     below: Option<(f64, String)>,
     several: Option<String>,
     sure: Option<(f64, f64)>,
+    #[serde(default)]
+    labelled: Vec<char>,
+    #[serde(default = "yes")]
+    zero: bool,
     beside: Option<[String; 3]>,
 }
 
@@ -284,6 +291,8 @@ impl Grammar {
                 below: raw.below.as_ref().map(|(v, s)| (*v, names.get(s))),
                 sure: raw.sure,
                 several: raw.several.as_ref().map(|s| names.get(s)),
+                labelled: raw.labelled.clone(),
+                zero: raw.zero,
                 beside: raw
                     .beside
                     .as_ref()

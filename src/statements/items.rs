@@ -2,6 +2,7 @@
 //! a number (`t(28) = 2.20`), an interval (`95% CI [0.1, 1.5]`), or a form without a comparator.
 
 use super::grammar::{Class, Symbol};
+use super::names::has_label;
 use super::spellings::Found;
 use super::tokens::{Kind, on_the_line};
 use super::values::{Company, Value};
@@ -36,7 +37,10 @@ impl Scan<'_> {
         while at < self.tokens.len() {
             let token = self.tokens[at];
             let found = match token.kind {
-                Kind::Word if !self.grammar.may_begin(token.text(self.text)) => {
+                Kind::Word
+                    if !self.grammar.may_begin(token.text(self.text))
+                        && !has_label(token.text(self.text)) =>
+                {
                     self.number_word(at).and_then(|_| self.form(at))
                 }
                 Kind::Word => self
@@ -72,7 +76,11 @@ impl Scan<'_> {
 
     /// `symbol arguments comparator number` at token `at`.
     pub(super) fn assignment(&self, at: usize) -> Option<(Item, usize)> {
-        let found = self.grammar.spellings.at(self.text, self.tokens, at, |_| true)?;
+        let found = self
+            .squared_behind(at)
+            .or_else(|| self.grammar.spellings.at(self.text, self.tokens, at, |_| true))
+            .or_else(|| self.labelled(at))?;
+        let labelled = has_label(&self.text[self.bytes(at, at + 1)]);
         if !self.begins_word(at) {
             return None;
         }
@@ -88,13 +96,24 @@ impl Scan<'_> {
             next = behind;
         }
         let wordy = words || symbol.bare || with_arguments || symbol.class == Class::P;
-        let compared = self.grammar.comparator(self.text, self.tokens, next, wordy);
-        // `The mean age of the sample at baseline was 74.4 years`
-        let compared = compared.filter(|(_, behind)| !words || self.word(*behind).is_none());
-        let phrased = (compared.is_none() && words && matches!(symbol.name, "M" | "Mdn"))
-            .then(|| self.phrase(next))
-            .flatten();
-        let (comparator, value_at) = match compared.or(phrased) {
+        let compared = self
+            .grammar
+            .comparator(self.text, self.tokens, next, wordy)
+            .filter(|(_, behind)| {
+                // `mean of the` is no comparator yet.
+                let on = self.word(next).is_some() && self.word(*behind).is_some();
+                !on || self.not_significant(*behind).is_some()
+            })
+            .or_else(|| {
+                let passes = words || matches!(symbol.class, Class::P | Class::Ratio);
+                passes.then(|| self.passing(symbol.class, next))?
+            })
+            .or_else(|| {
+                // `Estimate: 0.81`
+                let long = symbol.class == Class::Estimate && self.word(at).is_some_and(|w| w.len() > 2);
+                (long && self.mark(next) == Some(":")).then_some((Comparator::Equal, next + 1))
+            });
+        let (comparator, value_at) = match compared {
             Some((comparator, behind)) => {
                 // `p-value was < .001`: the sign decides.
                 match self.grammar.comparator(self.text, self.tokens, behind, false) {
@@ -154,7 +173,9 @@ impl Scan<'_> {
         };
         let value = self.value(value_at, company)?;
         let plain = words || !matches!(symbol.class, Class::Ratio | Class::Descriptive | Class::Df);
-        if compared.is_none() && !self.stands_by(value_at, plain) {
+        if compared.is_none() && !self.stands_by(value_at, plain)
+            || self.is_no_size(symbol, compared.map(|c| c.0), &value)
+        {
             return None;
         }
         // `the Spearman correlation of 14,737 pairs`
@@ -172,7 +193,7 @@ impl Scan<'_> {
             }
             next += 1;
         }
-        if !symbol.units && !with_arguments && self.unit(next) {
+        if !symbol.units && !with_arguments && (self.unit(next) || self.shares_a_unit(at, next)) {
             return None;
         }
         if symbol.class == Class::Size
@@ -215,11 +236,17 @@ impl Scan<'_> {
             next = upper.next;
         }
         // `df = 2, 45` behind F.
-        let paired_off = matches!(symbol.class, Class::Statistic | Class::P) || symbol.name == "M";
+        let paired_off =
+            matches!(symbol.class, Class::Statistic | Class::P | Class::Size) || symbol.name == "M";
         let respectively = paired_off && !found.spelling.plural && self.respectively(next);
         if upper.is_none() && (found.spelling.plural || symbol.name == "df" || respectively) {
             let mut behind = next;
-            while let Some((further, after)) = self.next_in_list(behind) {
+            let listed = if symbol.whole {
+                Company::Whole
+            } else {
+                Company::List
+            };
+            while let Some((further, after)) = self.next_in_list(behind, listed) {
                 more_values.push(self.quantity(name, comparator, &further, symbol.whole));
                 behind = after;
                 if symbol.name == "df" {
@@ -236,7 +263,7 @@ impl Scan<'_> {
         {
             name = several;
         }
-        let class = if name == "level" {
+        let class = if matches!(name, "level" | "time") {
             Class::Bait
         } else {
             symbol.class
@@ -272,7 +299,7 @@ impl Scan<'_> {
             more_values,
             plural: found.spelling.plural || respectively && has_more,
             alone: symbol.alone || sure,
-            plain: words || with_arguments,
+            plain: words || with_arguments || labelled,
         };
         Some((item, next))
     }
@@ -294,7 +321,7 @@ impl Scan<'_> {
     }
 
     /// A number that stands by itself right behind a symbol: not the start of a range, a date, or a unit.
-    pub(super) fn stands_by(&self, at: usize, words: bool) -> bool {
+    fn stands_by(&self, at: usize, words: bool) -> bool {
         let signed = matches!(self.mark(at), Some("-" | "+"));
         let number = if signed { at + 1 } else { at };
         // `mean 2014`, `median (12)`: written-out symbols need a decimal point or a bracket behind.
@@ -329,7 +356,7 @@ impl Scan<'_> {
             Kind::Mark if self.shown(at - 1) == Some("-") && at > 1 && !self.tokens[at - 1].spaced => !self
                 .word(at - 2)
                 .is_some_and(|w| w.len() > 1 && w.bytes().all(|b| b.is_ascii_uppercase())),
-            Kind::Mark => !matches!(self.shown(at - 1), Some("@" | "#" | "$" | "\\")),
+            Kind::Mark => !matches!(self.shown(at - 1), Some("@" | "#" | "$" | "\\" | "^")),
             Kind::Raised => true,
             _ => false,
         }
@@ -344,7 +371,7 @@ impl Scan<'_> {
         }
         if let Some((start, end)) = found.rest {
             let span = start as usize..end as usize;
-            if let Some(number) = Decimal::read(&self.text[span.clone()], false, 0) {
+            if let Some(number) = Decimal::read(&on_the_line(&self.text[span.clone()]), false, 0) {
                 let value = Value {
                     number,
                     span,
@@ -536,12 +563,12 @@ impl Scan<'_> {
         let close = (at + 1..self.tokens.len().min(at + 8)).find(|i| self.mark(*i) == Some(")"))?;
         let wordy = (at + 1..close).all(|i| {
             self.word(i).is_some() || matches!(self.mark(i), Some("-" | "–" | "'" | "," | "/")) || {
-                // `1-tailed`, `2-sided`.
+                // `1-tailed`, `2-sided`, `2-t`.
                 self.tokens[i].kind == Kind::Number
                     && self.mark(i + 1) == Some("-")
                     && self
                         .word(i + 2)
-                        .is_some_and(|w| w.starts_with("tail") || w.starts_with("side"))
+                        .is_some_and(|w| w.starts_with("tail") || w.starts_with("side") || w == "t")
             }
         });
         // The brackets of `M (SD) = …` are no remark, but a second symbol.
@@ -590,14 +617,14 @@ impl Scan<'_> {
     /// A list goes on at token `at` that the sentence deals out with `respectively`.
     fn respectively(&self, at: usize) -> bool {
         const WITHIN: usize = 40;
-        self.next_in_list(at).is_some()
+        self.next_in_list(at, Company::List).is_some()
             && (at..self.tokens.len().min(at + WITHIN))
                 .take_while(|i| self.mark(*i) != Some("."))
                 .any(|i| self.word(i) == Some("respectively"))
     }
 
     /// A further number of a list at token `at`: `, .31`, ` and .759`, `, and .2`, `/ .3`, `or`, `&`.
-    fn next_in_list(&self, at: usize) -> Option<(Value, usize)> {
+    fn next_in_list(&self, at: usize, company: Company) -> Option<(Value, usize)> {
         let mut i = at;
         if matches!(self.mark(i), Some("," | ";" | "/" | "&")) {
             i += 1;
@@ -611,13 +638,13 @@ impl Scan<'_> {
         if i == at {
             return None;
         }
-        let value = self.value(i, Company::List)?;
+        let value = self.value(i, company)?;
         let next = value.next;
         Some((value, next))
     }
 
     /// A unit stands at token `at`.
-    fn unit(&self, at: usize) -> bool {
+    pub(super) fn unit(&self, at: usize) -> bool {
         let Some(shown) = self.shown(at) else { return false };
         if self.tokens[at].kind == Kind::Mark && matches!(shown, "°") {
             return true;

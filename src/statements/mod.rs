@@ -8,6 +8,7 @@ mod forms;
 mod grammar;
 mod items;
 mod join;
+mod names;
 mod pairs;
 mod sentences;
 mod spellings;

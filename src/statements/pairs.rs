@@ -52,6 +52,9 @@ impl Scan<'_> {
                 level = Some(value);
             }
         }
+        if names.low != "range_low" {
+            next = self.behind_interval_name(next);
+        }
         // `CI = [`, `CI: `, `CI, `, `CI of `, `CI (`, `CI for the difference [`
         for _ in 0..3 {
             match self.shown(next) {
@@ -140,7 +143,7 @@ impl Scan<'_> {
                 return None;
             }
         }
-        let low = self.value(i, Company::List)?;
+        let low = self.end_of_interval(i, true)?;
         i = self.skip_unit(low.next);
         let separator = self.shown(i)?;
         let spaced = self.tokens[i].spaced;
@@ -155,7 +158,7 @@ impl Scan<'_> {
         if separator == "and" && !open && !spaced {
             return None;
         }
-        let high = self.value(i, Company::List)?;
+        let high = self.end_of_interval(i, false)?;
         let mut next = self.skip_unit(high.next);
         // The interval's own bracket closes; what else stands in it stays outside.
         if open && matches!(self.mark(next), Some(")" | "]" | "}")) {
@@ -167,6 +170,22 @@ impl Scan<'_> {
             }
         }
         Some((low, high, next))
+    }
+
+    /// One end of an interval at token `at`: a comma in it separates, unless what stands behind shows
+    /// that it groups thousands (`698–1,196`, `1,200 to 1,500`).
+    fn end_of_interval(&self, at: usize, low: bool) -> Option<Value> {
+        let listed = self.value(at, Company::List)?;
+        let Some(grouped) = self.value(at, Company::Sole).filter(|g| g.next > listed.next) else {
+            return Some(listed);
+        };
+        let spaced = self.tokens.get(grouped.next + 1).is_some_and(|t| t.spaced);
+        let groups = match self.shown(grouped.next) {
+            Some("–" | "—" | "-" | "to" | "and" | ";") => low,
+            Some(",") => !low || spaced,
+            _ => !low,
+        };
+        Some(if groups { grouped } else { listed })
     }
 
     /// Percent signs, degrees and short units behind the end of an interval.
@@ -236,7 +255,7 @@ impl Scan<'_> {
     }
 
     /// `(35.3%)` behind a number of cases.
-    fn bracketed_percent(&self, at: usize) -> Option<Item> {
+    pub(super) fn bracketed_percent(&self, at: usize) -> Option<Item> {
         let value = self.value(at + 1, Company::Single)?;
         let next = value.next;
         if self.mark(next) != Some("%") || !matches!(self.mark(next + 1), Some(")" | "]" | "," | ";")) {
@@ -305,7 +324,7 @@ impl Scan<'_> {
 
     /// `3.71 ± 0.94` without a symbol before it.
     pub(super) fn mean_and_spread(&self, at: usize) -> Option<(Vec<Item>, usize)> {
-        if self.mark(at + 1) != Some("±") {
+        if !(at + 1..at + 8).any(|i| self.mark(i) == Some("±")) {
             return None;
         }
         let from = if at > 0 && self.mark(at - 1) == Some("-") && self.tokens[at - 1].spaced {
@@ -315,7 +334,7 @@ impl Scan<'_> {
         };
         let value = self.value(from, Company::Single)?;
         let next = value.next;
-        if next != at + 1 {
+        if self.mark(next) != Some("±") {
             return None;
         }
         let mean = Item {

@@ -14,28 +14,6 @@ use crate::numbers::Comparator;
 const NAME_WITHIN: usize = 16;
 
 impl Scan<'_> {
-    /// Words from token `at` on that lead to a number: `age of the sample at baseline was`. Gives the
-    /// comparator and the token of the number.
-    pub(super) fn phrase(&self, at: usize) -> Option<(Comparator, usize)> {
-        const WITHIN: usize = 10;
-        // `by means of …`, `medians of both …`
-        if self.word(at - 1).is_none_or(|w| w.ends_with('s')) {
-            return None;
-        }
-        for i in at..at + WITHIN {
-            let joined = self.mark(i) == Some("-") && !self.tokens[i].spaced;
-            let word = self.word(i);
-            if !joined && word.is_none_or(|w| matches!(w, "and" | "or" | "but" | "that" | "which")) {
-                return None;
-            }
-            if matches!(word, Some("was" | "were" | "is" | "are")) {
-                let (comparator, behind) = self.grammar.comparator(self.text, self.tokens, i, true)?;
-                return self.stands_by(behind, true).then_some((comparator, behind));
-            }
-        }
-        None
-    }
-
     /// A number at token `at` whose interval or spread follows.
     pub(super) fn unnamed(&self, at: usize) -> Option<(Vec<Item>, usize)> {
         if !self.something_follows(at) {
