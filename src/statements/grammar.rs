@@ -42,6 +42,7 @@ pub struct Symbol {
     pub above: Option<(f64, &'static str)>,
     pub below: Option<(f64, &'static str)>,
     pub several: Option<&'static str>,
+    pub argued: Option<&'static str>,
     pub beside: Option<[&'static str; 3]>,
 }
 
@@ -121,6 +122,7 @@ struct RawSymbol {
     above: Option<(f64, String)>,
     below: Option<(f64, String)>,
     several: Option<String>,
+    argued: Option<String>,
     beside: Option<[String; 3]>,
 }
 
@@ -275,6 +277,7 @@ impl Grammar {
                 above: raw.above.as_ref().map(|(v, s)| (*v, names.get(s))),
                 below: raw.below.as_ref().map(|(v, s)| (*v, names.get(s))),
                 several: raw.several.as_ref().map(|s| names.get(s)),
+                argued: raw.argued.as_ref().map(|s| names.get(s)),
                 beside: raw
                     .beside
                     .as_ref()

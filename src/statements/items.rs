@@ -40,7 +40,8 @@ impl Scan<'_> {
                     .interval(at)
                     .or_else(|| self.paired(at))
                     .or_else(|| self.assignment(at))
-                    .map(|(item, next)| (vec![item], next)),
+                    .map(|(item, next)| (vec![item], next))
+                    .or_else(|| self.spelled_out(at).and_then(|_| self.form(at))),
                 Kind::Number => self
                     .form(at)
                     .or_else(|| self.mean_and_spread(at))
@@ -68,11 +69,23 @@ impl Scan<'_> {
 
     /// `symbol arguments comparator number` at token `at`.
     pub(super) fn assignment(&self, at: usize) -> Option<(Item, usize)> {
-        let found = self.grammar.spellings.at(self.text, self.tokens, at, |_| true)?;
+        // `f₂,₄₅`: the lowered digits are two df, and no `f₂`.
+        let lowered = |i: usize| {
+            self.tokens
+                .get(i)
+                .is_some_and(|t| t.kind == Kind::Lowered && !t.spaced)
+        };
+        let pair = lowered(at + 1) && self.mark(at + 2) == Some(",") && lowered(at + 3);
+        let found = self.grammar.spellings.at(self.text, self.tokens, at, |s| {
+            !pair || self.grammar.symbols[s.meaning].arguments.len() > 1
+        })?;
         if !self.begins_word(at) {
             return None;
         }
         let symbol = &self.grammar.symbols[found.spelling.meaning];
+        if self.factor(at, found.next, symbol.class) {
+            return None;
+        }
         let words = found.spelling.words;
         let (mut arguments, mut next) = self.arguments(&found);
         let with_arguments = !arguments.is_empty();
@@ -85,6 +98,9 @@ impl Scan<'_> {
         }
         let wordy = words || symbol.bare || symbol.class == Class::P;
         let compared = self.grammar.comparator(self.text, self.tokens, next, wordy);
+        let things = self
+            .behind_things(symbol.name, next)
+            .filter(|_| words && compared.is_none());
         let (comparator, value_at) = match compared {
             Some((comparator, behind)) => {
                 // `p-value was < .001`: the sign decides.
@@ -93,6 +109,11 @@ impl Scan<'_> {
                     _ => (comparator, behind),
                 }
             }
+            // `(SD ± 3.1)`
+            None if matches!(symbol.name, "SD" | "SE") && self.mark(next) == Some("±") => {
+                (Comparator::Equal, next + 1)
+            }
+            None if things.is_some() => (Comparator::Equal, things?),
             None if words || symbol.bare => {
                 let skipped = matches!(self.mark(next), Some("," | ":"));
                 // `SD118` is a name.
@@ -145,7 +166,7 @@ impl Scan<'_> {
         };
         let value = self.value(value_at, company)?;
         let plain = words || !matches!(symbol.class, Class::Ratio | Class::Descriptive | Class::Df);
-        if compared.is_none() && !self.stands_by(value_at, plain) {
+        if compared.is_none() && things.is_none() && !self.stands_by(value_at, plain) {
             return None;
         }
         let mut next = value.next;
@@ -176,6 +197,9 @@ impl Scan<'_> {
                 .get(next + 1)
                 .is_some_and(|t| t.kind == Kind::Lowered && !t.spaced);
         if self.mark(next + runs_on) == Some("…") || multiplied {
+            return None;
+        }
+        if self.calculates(symbol.class, &value) {
             return None;
         }
         // No size has decimals.
@@ -214,19 +238,29 @@ impl Scan<'_> {
         {
             name = several;
         }
-        let class = if name == "level" {
-            Class::Bait
-        } else {
-            symbol.class
+        // `f(2, 45)` is an F.
+        let argued = symbol.argued.filter(|_| with_arguments);
+        name = argued.unwrap_or(name);
+        let class = match argued {
+            Some(_) => Class::Statistic,
+            None if name == "level" => Class::Bait,
+            None => symbol.class,
         };
         let mut first = self.quantity(name, comparator, &value, symbol.whole);
         if let Some(upper) = &upper {
             first.span.end = upper.span.end;
             first.printed = on_the_line(&self.text[first.span.clone()]);
-            first.interval = first.interval.hull(upper.number.rounding());
+            first.interval = first
+                .interval
+                .hull(comparator.interval(&upper.number, symbol.whole));
         }
         // `OR 1.80`; a whole number may be a heart rate or a rate of breaths.
         let is_ratio = !first.number.is_whole() && first.number.value() < 20.0;
+        // `r² = 0.98`; a bound on it may be a rule.
+        let is_share = symbol.name == "R2"
+            && comparator == Comparator::Equal
+            && !first.number.is_whole()
+            && (0.0..1.0).contains(&first.number.value());
         let has_more = !more_values.is_empty();
         let mut quantities = vec![first];
         quantities.append(&mut arguments);
@@ -245,8 +279,8 @@ impl Scan<'_> {
             quantities,
             more_values,
             plural: found.spelling.plural || respectively && has_more,
-            alone: symbol.alone || symbol.class == Class::Ratio && is_ratio,
-            plain: words || with_arguments,
+            alone: symbol.alone || symbol.class == Class::Ratio && is_ratio || is_share,
+            plain: words || with_arguments && argued.is_none(),
         };
         Some((item, next))
     }
@@ -255,7 +289,7 @@ impl Scan<'_> {
     fn range_end(&self, symbol: &Symbol, comparator: Comparator, at: usize) -> Option<Value> {
         let ranged = matches!(
             symbol.class,
-            Class::Statistic | Class::P | Class::Effect | Class::Estimate | Class::Ratio
+            Class::Statistic | Class::P | Class::Effect | Class::Estimate | Class::Ratio | Class::Size
         );
         let dash = self.mark(at) == Some("–")
             || self.mark(at) == Some("-") && !self.tokens[at].spaced
@@ -503,7 +537,7 @@ impl Scan<'_> {
     }
 
     /// A short remark in brackets without numbers, at token `at`: the token behind it.
-    fn remark(&self, at: usize) -> Option<usize> {
+    pub(super) fn remark(&self, at: usize) -> Option<usize> {
         if self.mark(at) != Some("(") {
             return None;
         }
@@ -652,11 +686,12 @@ impl Scan<'_> {
             return None;
         }
         // All forms go on with a mark or one of few words; look before trying each.
-        let behind = self.shown(at + 1)?;
+        let last = self.spelled_out(at).map_or(at, |v| v.next - 1);
+        let behind = self.shown(last + 1)?;
         if !matches!(
             behind,
             "/" | "(" | "[" | "%" | "," | "of" | "out" | "df" | "d" | "degrees" | "degree" | "and"
-        ) && !self.may_count(at)
+        ) && !self.may_count(at, last)
         {
             return None;
         }

@@ -150,7 +150,7 @@ impl Scan<'_> {
                     && !gap.lists
                     && counted
                     && !draft.only(Other)
-                    && (!again || symbol == "n" && !draft.only(Size))
+                    && (!again || symbol == "n" && !draft.only(Size) && !draft.has_class(P))
             }
             Interval if symbol.starts_with("range") || item.quantities[0].symbol.starts_with("IQR") => {
                 draft.has_class(Descriptive) && gap.within(2)
@@ -294,7 +294,9 @@ impl Scan<'_> {
                         && self
                             .word(i + 2)
                             .is_some_and(|w| w.starts_with("tail") || w.starts_with("side"));
-                    gap.broken |= !compound;
+                    // `cells/mm3`, `CD4`
+                    let named = i > from && !token.spaced && self.tokens[i - 1].kind == Kind::Word;
+                    gap.broken |= !compound && !named;
                 }
                 Kind::Mark => match shown {
                     "(" | "[" => depth += 1,

@@ -5,11 +5,13 @@
 mod bait;
 mod find;
 mod forms;
+mod formulas;
 mod grammar;
 mod items;
 mod join;
 mod pairs;
 mod sentences;
+mod spelled;
 mod spellings;
 mod tokens;
 mod unnamed;

@@ -13,6 +13,9 @@ use crate::numbers::Comparator;
 /// How many tokens before a number its name is looked for.
 const NAME_WITHIN: usize = 16;
 
+/// How many words may say of what a mean is: `the mean length of the dry beds was 3.1`.
+const THINGS: usize = 5;
+
 impl Scan<'_> {
     /// A number at token `at` whose interval or spread follows.
     pub(super) fn unnamed(&self, at: usize) -> Option<(Vec<Item>, usize)> {
@@ -45,6 +48,86 @@ impl Scan<'_> {
         };
         let item = self.lone(symbol, class, &value, from);
         Some((vec![item], value.next))
+    }
+
+    /// The token of the number that follows `mean` and what it is a mean of, at token `at`:
+    /// `mean length of beds was 3.1`, `mean length 25 cm`.
+    pub(super) fn behind_things(&self, symbol: &str, at: usize) -> Option<usize> {
+        if !matches!(symbol, "M" | "Mdn") {
+            return None;
+        }
+        let mut i = at;
+        for _ in 0..THINGS {
+            let word = self.word(i)?;
+            // Means of these are other quantities.
+            if matches!(
+                word,
+                "rank"
+                    | "ranks"
+                    | "difference"
+                    | "differences"
+                    | "change"
+                    | "changes"
+                    | "square"
+                    | "squared"
+                    | "error"
+                    | "and"
+                    | "or"
+                    | "that"
+                    | "was"
+                    | "were"
+                    | "is"
+                    | "are"
+            ) {
+                return None;
+            }
+            // `mean depth in 2014`, `was more than 0.1`: the number says something else.
+            let leads_away = matches!(
+                word,
+                "to" | "than"
+                    | "from"
+                    | "for"
+                    | "with"
+                    | "by"
+                    | "in"
+                    | "at"
+                    | "over"
+                    | "under"
+                    | "about"
+                    | "after"
+            );
+            i += 1;
+            // `CD4`, `long-term`, `(all beds)`
+            if self
+                .tokens
+                .get(i)
+                .is_some_and(|t| t.kind == Kind::Number && !t.spaced)
+            {
+                i += 1;
+            }
+            while self.mark(i) == Some("-") && self.word(i + 1).is_some() && !self.tokens[i].spaced {
+                i += 2;
+            }
+            if let Some(behind) = self.remark(i) {
+                i = behind;
+            }
+            let said = self.mark(i) == Some("=")
+                || self
+                    .word(i)
+                    .is_some_and(|w| matches!(w, "was" | "were" | "is" | "are" | "of"));
+            let number = if said { i + 1 } else { i };
+            let Some(token) = self.tokens.get(number).filter(|t| t.kind == Kind::Number) else {
+                continue;
+            };
+            if leads_away && !said {
+                return None;
+            }
+            let decimals = token.text(self.text).contains(['.', '·']);
+            let measured = self.unit_word(number + 1) || self.mark(number + 1) == Some("±");
+            let plainly = said && matches!(self.shown(i), Some("=" | "was" | "were"));
+            return (token.spaced && (decimals || measured || plainly)).then_some(number);
+        }
+        None
     }
 
     fn lone(&self, symbol: &'static str, class: Class, value: &Value, from: usize) -> Item {
@@ -84,8 +167,10 @@ impl Scan<'_> {
         Some((value, from))
     }
 
-    fn unit_word(&self, at: usize) -> bool {
-        self.word(at).is_some_and(|w| self.grammar.units.contains(w))
+    pub(super) fn unit_word(&self, at: usize) -> bool {
+        // `y` is no unit where it may be Spanish.
+        self.word(at)
+            .is_some_and(|w| self.grammar.units.contains(w) || matches!(w, "y" | "mo" | "wk"))
     }
 
     /// The number that begins at token `from` counts a table, a week or the like.
@@ -135,8 +220,17 @@ impl Scan<'_> {
             || self
                 .word(from.wrapping_sub(1))
                 .is_some_and(|w| matches!(w, "was" | "were" | "is" | "of" | "to" | "being" | "by"));
-        for i in (from.saturating_sub(NAME_WITHIN)..from).rev() {
+        let mut i = from;
+        let mut steps = 0;
+        while i > 0 && steps < NAME_WITHIN {
+            i -= 1;
+            steps += 1;
             let token = self.tokens[i];
+            // `1.46 (CI 1.06–2.02) and 1.38 (CI …`: the name serves both.
+            if let Some(number) = self.estimate_before(i) {
+                i = number;
+                continue;
+            }
             if matches!(token.kind, Kind::Number | Kind::Dotted)
                 || matches!(self.mark(i), Some("." | ";" | "?" | "="))
             {
@@ -162,6 +256,20 @@ impl Scan<'_> {
         None
     }
 
+    /// The number with an interval in brackets whose closing bracket is token `at`.
+    fn estimate_before(&self, at: usize) -> Option<usize> {
+        const LONGEST: usize = 14;
+        if !matches!(self.mark(at), Some(")" | "]")) {
+            return None;
+        }
+        let open = (at.saturating_sub(LONGEST)..at)
+            .rev()
+            .find(|i| matches!(self.mark(*i), Some("(" | "[" | ")" | "]")))?;
+        let number = open.checked_sub(1)?;
+        let interval = matches!(self.mark(open), Some("(" | "[")) && self.interval_after(open + 1).is_some();
+        (interval && self.tokens[number].kind == Kind::Number).then_some(number)
+    }
+
     /// `74 (43–106)` where quartiles are spoken of.
     fn quartiles(&self, value: &Value, from: usize, open: usize) -> Option<(Vec<Item>, usize)> {
         let (low, high, behind) = self.two_ends(open)?;
@@ -185,14 +293,14 @@ impl Scan<'_> {
         Some((vec![item], behind))
     }
 
-    /// Whether the number at token `at` may be a count of things that are named behind it:
+    /// Whether the number at tokens `at..=last` may be a count of things that are named behind it:
     /// `266 gardeners (88.1%)`, but not `8 weeks (40%)` or `nine of 302 gardeners (3%)`.
-    pub(super) fn may_count(&self, at: usize) -> bool {
-        let bracket = (at + 2..at + 5).find(|i| matches!(self.mark(*i), Some("(" | "[")));
+    pub(super) fn may_count(&self, at: usize, last: usize) -> bool {
+        let bracket = (last + 2..last + 5).find(|i| matches!(self.mark(*i), Some("(" | "[")));
         let Some(bracket) = bracket else { return false };
-        if !(at + 1..bracket).all(|i| self.word(i).is_some())
+        if !(last + 1..bracket).all(|i| self.word(i).is_some())
             || self.mark(bracket + 2) != Some("%")
-            || self.unit_word(at + 1)
+            || self.unit_word(last + 1)
             || self.counts_something(at)
         {
             return false;

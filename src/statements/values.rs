@@ -43,6 +43,9 @@ impl Scan<'_> {
             i += 1;
         }
         let first = self.tokens.get(i)?;
+        if first.kind == Kind::Word && company == Company::Whole && i == at {
+            return self.spelled_out(at);
+        }
         if first.kind != Kind::Number {
             return None;
         }
