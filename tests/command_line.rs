@@ -285,7 +285,7 @@ fn places_in_json_count_characters_of_the_text_as_read() {
 #[test]
 fn a_reader_that_has_seen_enough_ends_it_quietly() {
     let s = Scratch::new();
-    s.file("long.txt", CONFLICTS.repeat(3000));
+    s.file("long.txt", CONFLICTS.repeat(400));
     let mut child = s
         .command(&["check", "long.txt", "long.txt", "long.txt", "--show", "all"])
         .stdin(Stdio::null())

@@ -6,6 +6,9 @@ use std::cell::{Cell, RefCell};
 use std::panic::{self, AssertUnwindSafe};
 use std::sync::Once;
 
+/// Characters of a message that are kept.
+const LONGEST: usize = 60;
+
 thread_local! {
     static GUARDED: Cell<bool> = const { Cell::new(false) };
     static SAID: RefCell<String> = const { RefCell::new(String::new()) };
@@ -35,7 +38,14 @@ fn keep_guarded_panics_quiet() {
             return usual(info);
         }
         let message = info.payload_as_str().unwrap_or("unknown");
-        let first_line = message.lines().next().unwrap_or_default();
+        // A message may quote the manuscript, which is nobody's business: only its beginning is kept.
+        let first_line: String = message
+            .lines()
+            .next()
+            .unwrap_or_default()
+            .chars()
+            .take(LONGEST)
+            .collect();
         let place = info.location().map(|l| {
             // The file alone: the folders belong to whoever built the program.
             let file = l.file().rsplit(['/', '\\']).next().unwrap_or_default();

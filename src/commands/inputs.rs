@@ -15,11 +15,16 @@ const EXTENSIONS: [&str; 14] = [
 /// Folders within folders beyond this are not looked through.
 const DEEPEST: usize = 64;
 
+/// One thing to read.
 pub enum Input {
+    /// A file by its path.
     File(PathBuf),
-    StandardInput,
+    /// A document on standard input.
+    Piped,
+    /// A statement on the command line.
     Typed(String),
-    TypedToStandardInput,
+    /// A statement on standard input.
+    PipedText,
     /// A folder that gives no files, with the reason.
     Nothing(PathBuf, Unreadable),
 }
@@ -29,16 +34,16 @@ impl Input {
     pub fn name(&self) -> String {
         match self {
             Input::File(path) | Input::Nothing(path, _) => path.display().to_string(),
-            Input::StandardInput | Input::Typed(_) | Input::TypedToStandardInput => "-".into(),
+            Input::Piped | Input::Typed(_) | Input::PipedText => "-".into(),
         }
     }
 
     pub fn read(&self) -> Result<Manuscript, Unreadable> {
         match self {
             Input::File(path) => readers::read_file(path),
-            Input::StandardInput => readers::read_bytes(&standard_input()?, Path::new("")),
+            Input::Piped => readers::read_bytes(&standard_input()?, Path::new("")),
             Input::Typed(text) => typed(text),
-            Input::TypedToStandardInput => typed(&readers::decode::text(&standard_input()?)?),
+            Input::PipedText => typed(&readers::decode::text(&standard_input()?)?),
             Input::Nothing(_, reason) => Err(reason.clone()),
         }
     }
@@ -76,7 +81,7 @@ pub fn expand(named: &[PathBuf]) -> Vec<Input> {
     let mut inputs = Vec::new();
     for path in named {
         if path.as_os_str() == "-" {
-            inputs.push(Input::StandardInput);
+            inputs.push(Input::Piped);
         } else if path.is_dir() {
             let mut found = Vec::new();
             look_through(path, 0, &mut found);

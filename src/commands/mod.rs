@@ -202,6 +202,7 @@ impl Showing {
                 width: width(),
                 bold: to_terminal && bold_is_wanted(),
                 typed,
+                several,
             }),
         }
     }

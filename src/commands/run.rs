@@ -146,7 +146,7 @@ fn put_in_order(
 /// The name of an input in a message to a person.
 fn spoken(input: &Input) -> String {
     match input {
-        Input::StandardInput | Input::TypedToStandardInput => "standard input".into(),
+        Input::Piped | Input::PipedText => "standard input".into(),
         Input::Typed(_) => "the typed text".into(),
         _ => input.name(),
     }

@@ -19,7 +19,7 @@ pub struct Try {
 impl Try {
     pub(super) fn run(self) -> Result<Status, Refused> {
         let input = match self.text.as_str() {
-            "-" => Input::TypedToStandardInput,
+            "-" => Input::PipedText,
             text => Input::Typed(text.to_string()),
         };
         run::all(Work {

@@ -232,6 +232,11 @@ pub fn stated_alpha(manuscript: &Manuscript, grammar: &Grammar) -> Option<f64> {
     let mut stated: Option<f64> = None;
     for block in manuscript.blocks.iter().filter(|b| speaks(b)) {
         let text = manuscript.block_text(block);
+        // A level is printed as .05, .01, .1 …; most paragraphs hold nothing like it.
+        let level = |part: &str| memchr::memmem::find(text.as_bytes(), part.as_bytes()).is_some();
+        if ![".0", ".1", ",0", "·0"].into_iter().any(level) {
+            continue;
+        }
         for found in expressions.iter().flat_map(|e| e.captures_iter(text)) {
             let value = found
                 .get(1)

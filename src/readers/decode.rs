@@ -7,7 +7,7 @@ use encoding_rs::{Encoding, UTF_8, UTF_16BE, UTF_16LE, WINDOWS_1252};
 use std::borrow::Cow;
 
 /// Bytes looked at, at either end, to tell writing from other data.
-const SAMPLE: usize = 64 * 1024;
+const SAMPLE: usize = 8 * 1024;
 
 /// Text of a file: UTF-8, UTF-16, UTF-32, the encoding that a web page or LaTeX source declares,
 /// or Windows-1252.

@@ -8,7 +8,7 @@ use std::io::{Cursor, Read};
 use std::path::Path;
 
 /// How much of a text file is looked at.
-const HEAD: usize = 256 * 1024;
+const HEAD: usize = 32 * 1024;
 
 /// The format of a document.
 ///

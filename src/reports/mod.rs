@@ -88,6 +88,8 @@ pub struct Tally {
     pub with_conflicts: usize,
     /// Inputs in which not a single statement was found.
     pub without_statements: usize,
+    /// Inputs in which something could not be decided.
+    pub with_open: usize,
 }
 
 impl Tally {
@@ -100,6 +102,7 @@ impl Tally {
         self.read += 1;
         self.with_reversals += usize::from(counts.reverses > 0);
         self.with_conflicts += usize::from(counts.reverses + counts.conflicts > 0);
+        self.with_open += usize::from(counts.open > 0);
         self.without_statements += usize::from(counts.statements == 0);
     }
 }

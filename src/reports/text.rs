@@ -20,6 +20,11 @@ const CAUTIONS: &str = "Every finding is a question, not an accusation. Look at 
     If a question remains, follow the procedure of your journal or institution. Nothing here diagnoses \
     misconduct.";
 
+/// A repair that begins with one of these changes the comparator.
+const COMPARATORS: [char; 6] = ['=', '<', '≤', '>', '≥', '≈'];
+
+const OPEN_HINT: &str = "With --show open you also see what could not be decided, and why.";
+
 /// Results as text, for a terminal or a file.
 pub struct Text {
     pub show: Show,
@@ -29,6 +34,8 @@ pub struct Text {
     pub bold: bool,
     /// The text was typed by hand: it has no name, and a place in it would say nothing.
     pub typed: bool,
+    /// More than one input is shown: what can be said once for all is said at the end.
+    pub several: bool,
 }
 
 impl Report for Text {
@@ -50,8 +57,14 @@ impl Report for Text {
         }
         let mut page = Page::default();
         page.line("");
-        if tally.read + tally.unreadable > 1 {
+        if self.several {
             page.lines(paragraph(&self.all_together(tally), self.width));
+            if tally.with_open > 0 && !self.show.includes(Verdict::Open) {
+                page.lines(paragraph(OPEN_HINT, self.width));
+            }
+            if tally.without_statements > 0 {
+                page.line("tieout check --format text-only FILE shows a text as it was read.");
+            }
             page.line("");
         }
         page.lines(paragraph(CAUTIONS, self.width));
@@ -95,7 +108,7 @@ impl Text {
         let mut page = Page::default();
         let counts = document.counts();
         if !self.typed {
-            page.line(&self.header(name, &counts));
+            page.line(&self.header(name, document, &counts));
             page.line("");
         }
         for remark in &document.manuscript.remarks {
@@ -110,20 +123,24 @@ impl Text {
             self.finding(&mut page, document, finding);
             page.line("");
         }
-        for sentence in self.summary(name, document, &counts) {
+        for sentence in self.summary(document, &counts) {
             page.lines(paragraph(&sentence, self.width));
+        }
+        if !self.several {
+            self.hints(&mut page, name, &counts);
         }
         page.text
     }
 
     /// The name and, at the right, what matters most.
-    fn header(&self, name: &str, counts: &Counts) -> String {
+    fn header(&self, name: &str, document: &Document, counts: &Counts) -> String {
         let name = match name {
             "-" => "standard input".to_string(),
             name => harmless(name),
         };
         let verdicts = match (counts.reverses, counts.conflicts) {
             (0, 0) if counts.statements == 0 => "no statements".to_string(),
+            (0, 0) if document.findings.is_empty() => "nothing checked".to_string(),
             (0, 0) => "no conflicts".to_string(),
             (0, conflicts) => verb(conflicts, Verdict::Conflicts),
             (reverses, 0) => verb(reverses, Verdict::Reverses),
@@ -164,11 +181,16 @@ impl Text {
         self.row(page, "assumes:", &finding.assumes.join("; "));
         for (i, repair) in finding.repairs.iter().take(MOST_REPAIRS).enumerate() {
             let slip = repair.slip.map(|s| format!(" ({s})")).unwrap_or_default();
+            let is = if repair.to.starts_with(COMPARATORS) {
+                ""
+            } else {
+                "= "
+            };
             let label = if i == 0 { "would agree if:" } else { "" };
             self.row(
                 page,
                 label,
-                &format!("{} = {}{slip}", symbol(repair.symbol), repair.to),
+                &format!("{} {is}{}{slip}", symbol(repair.symbol), repair.to),
             );
         }
         if finding.repairs.len() > MOST_REPAIRS {
@@ -250,20 +272,31 @@ impl Text {
         page.hanging(&" ".repeat(INDENT), lines);
     }
 
-    /// The counts in a sentence, and what else there is to know when nothing is shown.
-    fn summary(&self, name: &str, document: &Document, counts: &Counts) -> Vec<String> {
-        if counts.statements == 0 {
-            let hint = match (self.typed, name) {
-                (true, _) => "Write it as a paper would, e.g. t(28) = 2.20, p = .036.".to_string(),
-                (false, "-") => "With --format text-only you see the text as it was read.".to_string(),
-                (false, name) => format!(
-                    "tieout check --format text-only {} shows the text as it was read.",
+    /// What can be done next, in lines that can be copied.
+    fn hints(&self, page: &mut Page, name: &str, counts: &Counts) {
+        if counts.open > 0 && !self.show.includes(Verdict::Open) {
+            page.lines(paragraph(OPEN_HINT, self.width));
+        }
+        match (counts.statements, name) {
+            (1.., _) => {}
+            (0, _) if self.typed => {
+                page.line("Write it as a paper would, e.g. t(28) = 2.20, p = .036.");
+            }
+            (0, "-") => page.line("With --format text-only you see the text as it was read."),
+            (0, name) => {
+                page.line("This shows the text as it was read:");
+                page.line(&format!(
+                    "    tieout check --format text-only {}",
                     shell_word(&harmless(name))
-                ),
-            };
-            return vec![format!(
-                "No statements were found: nothing here looks like a reported result. {hint}"
-            )];
+                ));
+            }
+        }
+    }
+
+    /// The counts in a sentence, and what was checked if nothing conflicts.
+    fn summary(&self, document: &Document, counts: &Counts) -> Vec<String> {
+        if counts.statements == 0 {
+            return vec!["No statements were found: nothing here looks like a reported result.".into()];
         }
         let statements = count(counts.statements, "statement", "statements");
         let numbers = count(counts.quantities, "number", "numbers");
@@ -294,9 +327,6 @@ impl Text {
         let mut sentences = vec![sentence];
         if clean {
             sentences.push(format!("Checked: {}.", relations(&document.findings).join(", ")));
-        }
-        if counts.open > 0 && !self.show.includes(Verdict::Open) {
-            sentences.push("With --show open you also see what could not be decided, and why.".into());
         }
         sentences
     }

@@ -11,6 +11,7 @@ const PLAIN: Text = Text {
     width: 72,
     bold: false,
     typed: false,
+    several: false,
 };
 
 /// A page with a reversal, a conflict, an open and an agreeing finding, the least serious first.
@@ -227,8 +228,8 @@ fn nothing_found_is_said_plainly() {
 ── my draft.txt ─────────────────────────────────────── no statements ──
 
 No statements were found: nothing here looks like a reported result.
-tieout check --format text-only 'my draft.txt' shows the text as it was
-read.
+This shows the text as it was read:
+    tieout check --format text-only 'my draft.txt'
 "
     );
 }
@@ -266,13 +267,60 @@ fn the_cautions_come_once_at_the_end() {
     assert!(one.starts_with("\nEvery finding is a question"), "{one}");
     tally.add(None);
     tally.add(Some(Counts::default()));
-    insta::assert_snapshot!(PLAIN.closing(&tally));
+    let several = Text {
+        several: true,
+        ..PLAIN
+    };
+    insta::assert_snapshot!(several.closing(&tally));
     assert_eq!(
         PLAIN.closing(&Tally {
             unreadable: 1,
             ..Tally::default()
         }),
         ""
+    );
+}
+
+#[test]
+fn hints_are_given_once_for_several_inputs() {
+    let several = Text {
+        several: true,
+        ..PLAIN
+    };
+    let shown = several.entry(&one_of_each()) + &several.entry(&samples::entry("a.txt", "Beds.", Vec::new()));
+    assert!(
+        !shown.contains("--show open") && !shown.contains("text-only"),
+        "{shown}"
+    );
+}
+
+#[test]
+fn statements_without_any_check_are_not_called_free_of_conflicts() {
+    let mut entry = one_of_each();
+    if let Ok(document) = &mut entry.outcome {
+        document.findings.clear();
+    }
+    assert_eq!(
+        PLAIN.entry(&entry),
+        "\
+── drafts/diary.md ────────────────────────────────── nothing checked ──
+
+4 statements with 12 numbers read, but no relation ties these numbers
+together, so nothing was checked.
+"
+    );
+}
+
+#[test]
+fn a_repair_may_turn_the_comparator_round() {
+    let mut entry = samples::conflict();
+    if let Ok(document) = &mut entry.outcome {
+        document.findings[0].repairs[0].to = "> .001".into();
+    }
+    let shown = PLAIN.entry(&entry);
+    assert!(
+        shown.contains("would agree if:  p > .001 (two digits swapped)\n"),
+        "{shown}"
     );
 }
 

@@ -70,10 +70,11 @@ pub fn follows(finding: &Finding, name: &str, range: [f64; 2], quantity: Option<
     }
 }
 
-/// Both ends with `decimals` or as many more as are needed to show two significant digits and to
-/// satisfy `apart`, moved outward.
+/// Both ends with `decimals`, unless that is far too many, or as many more as are needed to show two
+/// significant digits and to satisfy `apart`, moved outward.
 fn ends(range: Interval, decimals: usize, like: &str, apart: impl Fn(Interval) -> bool) -> (String, String) {
     const MOST_DECIMALS: usize = 6;
+    const PLENTY: usize = 4;
     let size = [range.low, range.high]
         .into_iter()
         .filter(|v| v.is_finite() && *v != 0.0)
@@ -85,7 +86,8 @@ fn ends(range: Interval, decimals: usize, like: &str, apart: impl Fn(Interval) -
     if needed > MOST_DECIMALS as i64 || size >= 1e9 {
         return (powers(range.low, false), powers(range.high, true));
     }
-    let mut decimals = decimals.max(needed.max(0) as usize);
+    let needed = needed.max(0) as usize;
+    let mut decimals = decimals.min(PLENTY.max(needed + 2)).max(needed);
     loop {
         let shown = Interval {
             low: toward(range.low, decimals, false),
@@ -126,9 +128,9 @@ fn single(value: f64, printed: &Quantity) -> String {
     manner(shown(decimals), &printed.printed)
 }
 
-/// Very small and very large values, at two significant digits moved outward.
+/// Very small and very large values, at three significant digits moved outward.
 fn powers(value: f64, up: bool) -> String {
-    let shown = format!("{value:.1e}");
+    let shown = format!("{value:.2e}");
     let read: f64 = shown.parse().unwrap_or(value);
     if value == 0.0 || !value.is_finite() {
         return "0".into();
@@ -137,12 +139,12 @@ fn powers(value: f64, up: bool) -> String {
         return shown;
     }
     let (digits, exponent) = shown.split_once('e').unwrap_or((&shown, "0"));
-    let tenths = digits.parse::<f64>().unwrap_or_default() * 10.0 + if up { 1.0 } else { -1.0 };
+    let hundredths = digits.parse::<f64>().unwrap_or_default() * 100.0 + if up { 1.0 } else { -1.0 };
     let exponent: i32 = exponent.parse().unwrap_or_default();
-    let moved: f64 = format!("{}e{}", tenths.round(), exponent - 1)
+    let moved: f64 = format!("{}e{}", hundredths.round(), exponent - 2)
         .parse()
         .unwrap_or(value);
-    format!("{moved:.1e}")
+    format!("{moved:.2e}")
 }
 
 /// In the manner of the text: `.036` where it leaves out the zero. No minus before a zero.
@@ -193,12 +195,17 @@ mod tests {
     #[test]
     fn very_small_ranges_are_powers_of_ten() {
         assert_eq!(
-            shown(Verdict::Conflicts, "=", ".03", [3.11e-9, 3.39e-9]),
-            "p = 3.1e-9 to 3.4e-9"
+            shown(Verdict::Conflicts, "=", ".03", [3.1102e-9, 3.3949e-9]),
+            "p = 3.11e-9 to 3.40e-9"
+        );
+        // However finely a number is printed, what follows from the others is not known that well.
+        assert_eq!(
+            shown(Verdict::Conflicts, "=", "0.0000034", [0.009_899_4, 0.009_946_9]),
+            "p = 0.009899 to 0.009947"
         );
         assert_eq!(
-            shown(Verdict::Conflicts, "=", ".03", [0.0, 9.96e-12]),
-            "p = 0 to 1.0e-11"
+            shown(Verdict::Conflicts, "=", ".03", [0.0, 9.996e-12]),
+            "p = 0 to 1.00e-11"
         );
     }
 

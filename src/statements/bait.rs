@@ -44,7 +44,8 @@ impl Scan<'_> {
         let equal_level = only_p && lonely && LEVELS.contains(&first.quantities[0].number.value());
         if only_p && (level || equal_level) {
             let sentence = sentences::around(self.text, block, &bytes);
-            if level && self.legend(&bytes, block) {
+            let any_p = draft.items.iter().any(|i| i.class == Class::P);
+            if level && any_p && self.legend(&bytes, block) {
                 return false;
             }
             // Up to the end of the sentence for `if …` and the like, the part before decides.

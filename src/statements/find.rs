@@ -4,12 +4,15 @@ use super::grammar::{Class, Grammar};
 use super::tokens::{self, Token};
 use super::{Quantity, Scan, Statement, sentences, values};
 use crate::manuscript::{Block, BlockKind, Manuscript, Part};
+use aho_corasick::AhoCorasick;
 use std::ops::Range;
+use std::sync::OnceLock;
 
 /// Finds the statements of the abstract and the body.
 pub fn find(manuscript: &Manuscript, grammar: &Grammar, alpha: f64) -> Vec<Statement> {
     let text = manuscript.text.as_str();
     let commas = values::writes_decimal_commas(text);
+    let medians = grammar.medians.is_match(text);
     let mut tokens: Vec<Token> = Vec::new();
     let mut statements = Vec::new();
     for (index, block) in manuscript.blocks.iter().enumerate() {
@@ -24,6 +27,8 @@ pub fn find(manuscript: &Manuscript, grammar: &Grammar, alpha: f64) -> Vec<State
             grammar,
             commas,
             alpha,
+            medians,
+            cell: block.kind == BlockKind::Cell,
             words: Default::default(),
         };
         scan.statements(index, &block.range, &mut statements);
@@ -38,21 +43,24 @@ fn holds_results(block: &Block) -> bool {
     matches!(block.part, Part::Abstract | Part::Body) && block.kind != BlockKind::Quote
 }
 
-/// A quick look: without a digit and one of these marks or words there is no result. (`n.s.` needs
-/// no digit, but then stands beside a p.)
+/// A quick look: where none of these marks and words stands there is no result.
 fn may_hold_results(bytes: &[u8]) -> bool {
-    memchr::memchr3(b'=', b'<', b'>', bytes).is_some()
-        || memchr::memchr2(b'%', 0xc2, bytes).is_some()
-        || memchr::memchr2(0xe2, b':', bytes).is_some()
-        || bytes
-            .windows(2)
-            .any(|w| matches!(w, b"CI" | b"SD" | b"SE" | b"OR" | b"RR" | b"HR"))
-        || bytes.windows(4).any(|w| {
-            matches!(
-                w,
-                b"mean" | b"medi" | b"valu" | b"rati" | b"risk" | b"n.s." | b"Mean" | b"Medi"
-            )
-        })
+    static SIGNS: OnceLock<AhoCorasick> = OnceLock::new();
+    if memchr::memchr3(b'=', b'<', b'>', bytes).is_some()
+        || memchr::memchr3(b'%', b':', 0xc2, bytes).is_some()
+    {
+        return true;
+    }
+    // 0xe2 begins ≤, ≥ and ≈, 0xc2 the ±.
+    let signs = SIGNS.get_or_init(|| {
+        let words = [
+            "\u{2264}", "\u{2265}", "\u{2248}", "\u{226a}", "\u{226b}", "CI", "SD", "SE", "OR", "RR", "HR",
+            "ean", "edian", "alue", "atio", "isk", "n.s.", "evia", "rror", "IQR", "egree", "d.f.", "df",
+        ];
+        // A handful of short words always compiles.
+        AhoCorasick::new(words).unwrap_or_else(|why| unreachable!("{why}"))
+    });
+    signs.is_match(bytes)
 }
 
 impl Scan<'_> {

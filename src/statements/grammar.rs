@@ -5,7 +5,7 @@ use super::forms::Form;
 use super::spellings::{Spelling, Spellings};
 use super::tokens::Token;
 use crate::numbers::Comparator;
-use aho_corasick::{AhoCorasick, MatchKind};
+use aho_corasick::{AhoCorasick, AhoCorasickKind, MatchKind};
 use regex::{Regex, RegexBuilder};
 use serde::Deserialize;
 use std::collections::{HashMap, HashSet};
@@ -76,6 +76,7 @@ pub struct Grammar {
     pub labels: HashSet<String>,
     pub thresholds: Regex,
     pub plans: Regex,
+    pub medians: Regex,
     words: AhoCorasick,
     word_meanings: Vec<&'static str>,
     pub patterns: Vec<(&'static str, Vec<Regex>)>,
@@ -96,6 +97,7 @@ struct File {
     labels: Vec<String>,
     thresholds: Vec<String>,
     plans: Vec<String>,
+    medians: Vec<String>,
 }
 
 #[derive(Deserialize)]
@@ -233,6 +235,7 @@ impl Grammar {
             all.labels.extend(file.labels);
             all.thresholds.extend(file.thresholds);
             all.plans.extend(file.plans);
+            all.medians.extend(file.medians);
         }
         let mut names = Names::default();
         let mut symbols: Vec<Symbol> = Vec::new();
@@ -323,6 +326,8 @@ impl Grammar {
         let words = AhoCorasick::builder()
             .ascii_case_insensitive(true)
             .match_kind(MatchKind::LeftmostLongest)
+            // The words are few, and every manuscript is searched for them from end to end.
+            .kind(Some(AhoCorasickKind::DFA))
             .build(words)
             .map_err(|e| format!("words: {e}"))?;
         let mut patterns = Vec::new();
@@ -330,7 +335,7 @@ impl Grammar {
             let compiled: Result<Vec<Regex>, String> = raw
                 .expressions
                 .iter()
-                .map(|e| Regex::new(e).map_err(|e| format!("pattern: {e}")))
+                .map(|e| Regex::new(&ascii_boundaries(e)).map_err(|e| format!("pattern: {e}")))
                 .collect();
             patterns.push((names.get(&raw.meaning), compiled?));
         }
@@ -348,6 +353,7 @@ impl Grammar {
             labels: all.labels.into_iter().collect(),
             thresholds: either(&all.thresholds)?,
             plans: either(&all.plans)?,
+            medians: either(&all.medians)?,
             words,
             word_meanings,
             patterns,
@@ -357,6 +363,11 @@ impl Grammar {
     /// The index of a symbol that the program itself needs to name.
     pub fn symbol(&self, name: &str) -> Option<usize> {
         self.symbols.iter().position(|s| s.name == name)
+    }
+
+    /// Whether a symbol or the name of an interval may begin with this word.
+    pub fn may_begin(&self, word: &str) -> bool {
+        self.spellings.may_begin(word) || self.interval_spellings.may_begin(word)
     }
 
     /// The comparator at token `at`, and the token behind it. Word comparators only where `words`.
@@ -390,6 +401,12 @@ impl Grammar {
     }
 }
 
+/// Word boundaries between ASCII letters only: the expressions' words are English, and this lets the
+/// fastest engine search texts with other letters, too.
+fn ascii_boundaries(expression: &str) -> String {
+    expression.replace(r"\b", r"(?-u:\b)")
+}
+
 /// One expression for all; matches nothing when there are none.
 fn either(expressions: &[String]) -> Result<Regex, String> {
     let all = if expressions.is_empty() {
@@ -397,7 +414,7 @@ fn either(expressions: &[String]) -> Result<Regex, String> {
     } else {
         expressions.join("|")
     };
-    RegexBuilder::new(&all)
+    RegexBuilder::new(&ascii_boundaries(&all))
         .case_insensitive(true)
         .build()
         .map_err(|e| format!("bait: {e}"))

@@ -36,6 +36,9 @@ impl Scan<'_> {
         while at < self.tokens.len() {
             let token = self.tokens[at];
             let found = match token.kind {
+                Kind::Word if !self.grammar.may_begin(token.text(self.text)) => {
+                    self.spelled_out(at).and_then(|_| self.form(at))
+                }
                 Kind::Word => self
                     .interval(at)
                     .or_else(|| self.paired(at))
@@ -55,7 +58,7 @@ impl Scan<'_> {
                 Some((found, next)) => {
                     for item in found {
                         let follower = self.follower(&item);
-                        items.push(item);
+                        items.push(self.shared_power(item, &follower));
                         items.extend(follower);
                     }
                     let end = items.last().map_or(next, |i| i.tokens.end);
@@ -96,12 +99,16 @@ impl Scan<'_> {
         if let Some(behind) = self.remark(next).or_else(|| self.abbreviation(next, symbol.name)) {
             next = behind;
         }
-        let wordy = words || symbol.bare || symbol.class == Class::P;
+        let wordy = words || symbol.bare || with_arguments || symbol.class == Class::P;
         let compared = self.grammar.comparator(self.text, self.tokens, next, wordy);
-        let things = self
-            .behind_things(symbol.name, next)
-            .filter(|_| words && compared.is_none());
-        let (comparator, value_at) = match compared {
+        // `The mean age of the sample at baseline was 74.4 years`
+        let compared = compared.filter(|(_, behind)| !words || self.word(*behind).is_none());
+        let described = compared.is_none() && words && matches!(symbol.name, "M" | "Mdn");
+        let phrased = described.then(|| self.phrase(next)).flatten();
+        let things = (described && phrased.is_none())
+            .then(|| self.behind_things(next))
+            .flatten();
+        let (comparator, value_at) = match compared.or(phrased) {
             Some((comparator, behind)) => {
                 // `p-value was < .001`: the sign decides.
                 match self.grammar.comparator(self.text, self.tokens, behind, false) {
@@ -302,7 +309,7 @@ impl Scan<'_> {
     }
 
     /// A number that stands by itself right behind a symbol: not the start of a range, a date, or a unit.
-    fn stands_by(&self, at: usize, words: bool) -> bool {
+    pub(super) fn stands_by(&self, at: usize, words: bool) -> bool {
         let signed = matches!(self.mark(at), Some("-" | "+"));
         let number = if signed { at + 1 } else { at };
         // `mean 2014`, `median (12)`: written-out symbols need a decimal point or a bracket behind.
@@ -672,7 +679,7 @@ impl Scan<'_> {
 
     /// A form without comparator at token `at`.
     fn form(&self, at: usize) -> Option<(Vec<Item>, usize)> {
-        if !self.begins_word(at) && !(at > 0 && self.tokens[at - 1].kind == Kind::Mark) {
+        if !(self.begins_word(at) || at > 0 && self.tokens[at - 1].kind == Kind::Mark) {
             return None;
         }
         // `1.2-3/4 (5%)` and `12–34 (5%)`: the number is the end of something else.
@@ -688,11 +695,11 @@ impl Scan<'_> {
         // All forms go on with a mark or one of few words; look before trying each.
         let last = self.spelled_out(at).map_or(at, |v| v.next - 1);
         let behind = self.shown(last + 1)?;
-        if !matches!(
+        let promising = matches!(
             behind,
             "/" | "(" | "[" | "%" | "," | "of" | "out" | "df" | "d" | "degrees" | "degree" | "and"
-        ) && !self.may_count(at, last)
-        {
+        );
+        if !promising && !self.may_count(at, last) {
             return None;
         }
         for form in &self.grammar.forms {

@@ -68,6 +68,10 @@ pub(crate) struct Scan<'a> {
     commas: bool,
     /// The level of significance, which `n.s.` refers to.
     alpha: f64,
+    /// The manuscript says that it gives medians with quartiles.
+    medians: bool,
+    /// The block is a cell of a table.
+    cell: bool,
     /// The meanings of the words that matter in this block, looked for when first asked for.
     words: OnceCell<HashSet<&'static str>>,
 }

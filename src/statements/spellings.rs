@@ -3,6 +3,7 @@
 
 use super::tokens::{self, Kind, Token};
 use std::collections::HashMap;
+use std::hash::{BuildHasherDefault, Hasher};
 
 /// A piece of a spelling.
 #[derive(Debug)]
@@ -27,7 +28,40 @@ pub struct Spelling {
 /// Spellings by their first piece, the longest first.
 #[derive(Debug, Default)]
 pub struct Spellings {
-    by_head: HashMap<u64, Vec<Spelling>>,
+    by_head: HashMap<u64, Vec<Spelling>, BuildHasherDefault<AlreadyHashed>>,
+    /// For each first byte in lower case, the lengths that first pieces beginning with it have, as bits:
+    /// most words of a text are told by this alone.
+    lengths: Lengths,
+}
+
+/// See [`Spellings::may_begin`].
+#[derive(Debug)]
+struct Lengths([u32; 256]);
+
+impl Default for Lengths {
+    fn default() -> Lengths {
+        Lengths([0; 256])
+    }
+}
+
+/// The keys are hashes; hashing them again would be most of the work of a look-up.
+#[derive(Default)]
+pub struct AlreadyHashed(u64);
+
+impl Hasher for AlreadyHashed {
+    fn finish(&self) -> u64 {
+        self.0
+    }
+
+    fn write(&mut self, bytes: &[u8]) {
+        for b in bytes {
+            self.0 = self.0.rotate_left(8) ^ u64::from(*b);
+        }
+    }
+
+    fn write_u64(&mut self, key: u64) {
+        self.0 = key;
+    }
 }
 
 impl Spelling {
@@ -68,6 +102,16 @@ impl Spellings {
         let Some(first) = spelling.pieces.first() else {
             return Err(format!("a spelling is empty: {text:?}"));
         };
+        // Words that fold to another length in other capitals are rare; all lengths nearby are let through.
+        let length = first.text.len().min(30);
+        for near in length.saturating_sub(1)..=length + 1 {
+            let exact = first.text.is_ascii() && near != length;
+            if !exact {
+                for byte in first_bytes(&first.text) {
+                    self.lengths.0[byte as usize] |= 1 << near.min(31);
+                }
+            }
+        }
         self.by_head.entry(head(&first.text)).or_default().push(spelling);
         Ok(())
     }
@@ -85,6 +129,12 @@ impl Spellings {
         self
     }
 
+    /// Whether a spelling may begin with this word; false for nearly all others.
+    pub fn may_begin(&self, word: &str) -> bool {
+        let byte = word.as_bytes().first().map_or(0, u8::to_ascii_lowercase);
+        self.lengths.0[byte as usize] & (1 << word.len().min(31)) != 0
+    }
+
     /// The longest spelling that stands at token `at` and that `allow` accepts.
     pub fn at(
         &self,
@@ -93,7 +143,11 @@ impl Spellings {
         at: usize,
         allow: impl Fn(&Spelling) -> bool,
     ) -> Option<Found<'_>> {
-        let list = self.by_head.get(&head(tokens.get(at)?.text(text)))?;
+        let first = tokens.get(at)?.text(text);
+        if !self.may_begin(first) {
+            return None;
+        }
+        let list = self.by_head.get(&head(first))?;
         list.iter()
             .filter(|s| allow(s))
             .find_map(|s| s.matches(text, tokens, at))
@@ -170,6 +224,19 @@ fn same_letters(shown: &str, lower: &str) -> bool {
     } else {
         shown.chars().flat_map(char::to_lowercase).eq(lower.chars())
     }
+}
+
+/// The bytes that a text may begin with in any capitals, in lower case if ASCII.
+fn first_bytes(text: &str) -> Vec<u8> {
+    let Some(first) = text.chars().next() else {
+        return Vec::new();
+    };
+    let mut bytes = Vec::new();
+    let mut buffer = [0; 4];
+    for c in first.to_lowercase().chain(first.to_uppercase()).chain([first]) {
+        bytes.push(c.encode_utf8(&mut buffer).as_bytes()[0].to_ascii_lowercase());
+    }
+    bytes
 }
 
 /// A key that is the same for all capitalisations of a text.

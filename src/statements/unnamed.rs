@@ -17,14 +17,37 @@ const NAME_WITHIN: usize = 16;
 const THINGS: usize = 5;
 
 impl Scan<'_> {
+    /// Words from token `at` on that lead to a number: `age of the sample at baseline was`. Gives the
+    /// comparator and the token of the number.
+    pub(super) fn phrase(&self, at: usize) -> Option<(Comparator, usize)> {
+        const WITHIN: usize = 10;
+        // `by means of …`, `medians of both …`
+        if self.word(at - 1).is_none_or(|w| w.ends_with('s')) {
+            return None;
+        }
+        for i in at..at + WITHIN {
+            let joined = self.mark(i) == Some("-") && !self.tokens[i].spaced;
+            let word = self.word(i);
+            if !joined && word.is_none_or(|w| matches!(w, "and" | "or" | "but" | "that" | "which")) {
+                return None;
+            }
+            if matches!(word, Some("was" | "were" | "is" | "are")) {
+                let (comparator, behind) = self.grammar.comparator(self.text, self.tokens, i, true)?;
+                return self.stands_by(behind, true).then_some((comparator, behind));
+            }
+        }
+        None
+    }
+
     /// A number at token `at` whose interval or spread follows.
     pub(super) fn unnamed(&self, at: usize) -> Option<(Vec<Item>, usize)> {
+        if !self.something_follows(at) {
+            return None;
+        }
         let (value, from) = self.with_sign(at)?;
         let mut next = value.next;
         let percent = self.mark(next) == Some("%");
-        if percent {
-            next += 1;
-        } else if self.unit_word(next) {
+        if percent || self.unit_word(next) {
             next += 1;
         }
         let bracket = matches!(self.mark(next), Some("(" | "["));
@@ -41,7 +64,7 @@ impl Scan<'_> {
             }
         } else if bracket && !percent && self.spread_after(follows) {
             ("M", Class::Descriptive)
-        } else if bracket && !percent && self.near("medians") {
+        } else if bracket && !percent && (self.near("medians") || self.medians && !self.names_intervals()) {
             return self.quartiles(&value, from, next);
         } else {
             return None;
@@ -52,8 +75,8 @@ impl Scan<'_> {
 
     /// The token of the number that follows `mean` and what it is a mean of, at token `at`:
     /// `mean length of beds was 3.1`, `mean length 25 cm`.
-    pub(super) fn behind_things(&self, symbol: &str, at: usize) -> Option<usize> {
-        if !matches!(symbol, "M" | "Mdn") {
+    pub(super) fn behind_things(&self, at: usize) -> Option<usize> {
+        if self.word(at - 1).is_none_or(|w| w.ends_with('s')) {
             return None;
         }
         let mut i = at;
@@ -128,6 +151,35 @@ impl Scan<'_> {
             return (token.spaced && (decimals || measured || plainly)).then_some(number);
         }
         None
+    }
+
+    /// A quick look: a bracket, or a comma and then a name or a percentage, stands close behind.
+    fn something_follows(&self, at: usize) -> bool {
+        const WITHIN: usize = 6;
+        (at + 1..self.tokens.len().min(at + WITHIN)).any(|i| match self.mark(i) {
+            Some("(" | "[") => true,
+            Some("," | ";") => match self.tokens.get(i + 1).map(|t| t.kind) {
+                Some(Kind::Number) => self.mark(i + 2) == Some("%") || self.word(i + 2).is_some(),
+                Some(Kind::Word) => self
+                    .shown(i + 1)
+                    .is_some_and(|w| w.starts_with(|c: char| c.is_ascii_uppercase())),
+                _ => false,
+            },
+            _ => false,
+        })
+    }
+
+    /// The block speaks of other intervals or ranges, or is a cell, which its own head names.
+    fn names_intervals(&self) -> bool {
+        self.cell
+            || self.tokens.iter().enumerate().any(|(i, t)| {
+                t.kind == Kind::Word
+                    && self
+                        .grammar
+                        .interval_spellings
+                        .at(self.text, self.tokens, i, |_| true)
+                        .is_some()
+            })
     }
 
     fn lone(&self, symbol: &'static str, class: Class, value: &Value, from: usize) -> Item {
@@ -291,6 +343,33 @@ impl Scan<'_> {
         item.quantities
             .push(self.quantity("IQR_high", Comparator::Equal, &high, false));
         Some((vec![item], behind))
+    }
+
+    /// `4.6 ± 0.8 × 10⁻³`: the power belongs to the mean, too.
+    pub(super) fn shared_power(&self, mut item: Item, followers: &[Item]) -> Item {
+        let (Some(head), Some(spread)) = (
+            item.quantities.first_mut(),
+            followers.first().and_then(|f| f.quantities.first()),
+        ) else {
+            return item;
+        };
+        let between = &self.text[head.span.end.min(spread.span.start)..spread.span.start];
+        let factor = spread
+            .printed
+            .find(['×', 'x', 'X', '*', '∙'])
+            .map(|end| spread.printed[..end].trim_end());
+        let (Some(factor), "±") = (factor, between.trim()) else {
+            return item;
+        };
+        if head.printed.contains("10") && head.printed.contains(['×', 'x', 'X', '*', '∙']) {
+            return item;
+        }
+        let decimals = factor
+            .find(['.', '·'])
+            .map_or(0, |point| factor[point..].chars().count() as i32 - 1);
+        head.number.place += spread.number.place + decimals;
+        head.interval = head.comparator.interval(&head.number, false);
+        item
     }
 
     /// Whether the number at tokens `at..=last` may be a count of things that are named behind it:

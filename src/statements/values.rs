@@ -59,10 +59,7 @@ impl Scan<'_> {
             shown.truncate(e);
         } else {
             // Groups of thousands and decimal commas.
-            loop {
-                let (Some(mark), Some(digits)) = (self.tokens.get(i), self.tokens.get(i + 1)) else {
-                    break;
-                };
+            while let (Some(mark), Some(digits)) = (self.tokens.get(i), self.tokens.get(i + 1)) {
                 let part = digits.text(self.text);
                 let tight = !mark.spaced
                     && !digits.spaced
@@ -295,6 +292,8 @@ mod tests {
             grammar: Grammar::built_in(),
             commas,
             alpha: 0.05,
+            medians: false,
+            cell: false,
             words: Default::default(),
         };
         scan.value(0, company)

@@ -9,9 +9,11 @@
 mod print;
 mod studies;
 mod tails;
+mod texts;
 
 use print::{Rounding, fixed};
 use studies::{Random, Result, STUDIES};
+use texts::TEXTS;
 use tieout::judge::{Document, Options, Verdict};
 use tieout::manuscript::{BlockKind, Builder, Format};
 use tieout::statements::Grammar;
@@ -24,18 +26,18 @@ fn examine(text: &str) -> Document {
 }
 
 /// The choices of one author.
-struct Style {
-    decimals: usize,
+pub struct Style {
+    pub decimals: usize,
     p_decimals: usize,
-    rounding: Rounding,
+    pub rounding: Rounding,
     leading_zero: bool,
     bounds: bool,
-    comma: bool,
+    pub comma: bool,
     brackets: (&'static str, &'static str),
-    equals: &'static str,
+    pub equals: &'static str,
     p_symbol: &'static str,
     minus: &'static str,
-    separator: &'static str,
+    pub separator: &'static str,
 }
 
 impl Style {
@@ -43,19 +45,19 @@ impl Style {
         Style {
             decimals: r.whole(1, 3),
             p_decimals: r.whole(2, 4),
-            rounding: *r.pick(&[Rounding::HalfUp, Rounding::HalfEven, Rounding::HalfDown]),
+            rounding: r.pick(&[Rounding::Up, Rounding::Even, Rounding::Down]),
             leading_zero: r.unit() < 0.5,
             bounds: r.unit() < 0.3,
             comma: r.unit() < 0.15,
-            brackets: *r.pick(&[("(", ")"), ("[", "]"), (" (", ")")]),
-            equals: *r.pick(&[" = ", "=", " \u{2009}=\u{2009}", "\u{a0}= "]),
-            p_symbol: *r.pick(&["p", "P", "𝑝", "p-value"]),
-            minus: *r.pick(&["-", "−", "–", "− "]),
-            separator: *r.pick(&[", ", "; ", ", "]),
+            brackets: r.pick(&[("(", ")"), ("[", "]"), (" (", ")")]),
+            equals: r.pick(&[" = ", "=", " \u{2009}=\u{2009}", "\u{a0}= "]),
+            p_symbol: r.pick(&["p", "P", "𝑝", "p-value"]),
+            minus: r.pick(&["-", "−", "–", "− "]),
+            separator: r.pick(&[", ", "; ", ", "]),
         }
     }
 
-    fn number(&self, value: f64, decimals: usize) -> String {
+    pub fn number(&self, value: f64, decimals: usize) -> String {
         let mut text = fixed(value, decimals, self.rounding);
         if self.comma {
             text = text.replace('.', ",");
@@ -63,7 +65,7 @@ impl Style {
         text.replace('-', self.minus)
     }
 
-    fn bounded(&self, value: f64, decimals: usize) -> String {
+    pub fn bounded(&self, value: f64, decimals: usize) -> String {
         let text = self.number(value, decimals);
         if self.leading_zero || self.comma {
             text
@@ -72,7 +74,7 @@ impl Style {
         }
     }
 
-    fn p(&self, p: f64) -> String {
+    pub fn p(&self, p: f64) -> String {
         let space = if self.equals.len() > 1 { " " } else { "" };
         if self.bounds {
             for level in [0.001, 0.01, 0.05] {
@@ -276,4 +278,33 @@ fn a_p_that_no_reading_allows_is_always_a_conflict() {
         );
     }
     println!("{planted} planted p-values, all found");
+}
+
+#[test]
+fn intervals_ratios_ratings_and_shares_of_real_data_are_never_a_conflict() {
+    let mut r = Random(3);
+    let mut agreed = 0;
+    for case in 0..CASES {
+        let style = Style::random(&mut r);
+        let statement = r.pick(&TEXTS)(&mut r, &style);
+        let text = sentence(&mut r, &statement);
+        let document = examine(&text);
+        for finding in &document.findings {
+            assert!(
+                finding.verdict < Verdict::Conflicts,
+                "case {case}: {text}\n{}: {}",
+                finding.relation,
+                finding.says
+            );
+        }
+        assert!(
+            !document.statements.is_empty(),
+            "case {case} was not read: {text}"
+        );
+        agreed += usize::from(document.findings.iter().any(|f| f.verdict == Verdict::Agrees));
+    }
+    println!(
+        "{agreed} of {CASES} statements with intervals, ratios, ratings and shares agree; none is a conflict"
+    );
+    assert!(agreed > CASES * 7 / 10, "{agreed}");
 }

@@ -1,11 +1,11 @@
 //! Printing numbers as authors and their programs do.
 
-/// How a tie is rounded.
+/// Where a number half-way between two printed ones goes.
 #[derive(Clone, Copy, Debug)]
 pub enum Rounding {
-    HalfUp,
-    HalfEven,
-    HalfDown,
+    Up,
+    Even,
+    Down,
 }
 
 /// `value` with so many decimals. Ties are recognised in the decimal digits that the value shows
@@ -17,9 +17,9 @@ pub fn fixed(value: f64, decimals: usize, rounding: Rounding) -> String {
     let digits: String = kept.chars().filter(char::is_ascii_digit).collect();
     let mut whole: u128 = digits.parse().expect("digits only");
     let up = match rounding {
-        Rounding::HalfUp => rest.as_bytes()[0] >= b'5',
-        Rounding::HalfEven if tie => whole % 2 == 1,
-        Rounding::HalfDown if tie => false,
+        Rounding::Up => rest.as_bytes()[0] >= b'5',
+        Rounding::Even if tie => whole % 2 == 1,
+        Rounding::Down if tie => false,
         _ => rest.as_bytes()[0] >= b'5',
     };
     whole += u128::from(up);
@@ -34,11 +34,11 @@ pub fn fixed(value: f64, decimals: usize, rounding: Rounding) -> String {
 
 #[test]
 fn ties_go_where_they_should() {
-    assert_eq!(fixed(3.125, 2, Rounding::HalfUp), "3.13");
-    assert_eq!(fixed(3.125, 2, Rounding::HalfEven), "3.12");
-    assert_eq!(fixed(3.135, 2, Rounding::HalfEven), "3.14");
-    assert_eq!(fixed(3.135, 2, Rounding::HalfDown), "3.13");
-    assert_eq!(fixed(-0.0004, 2, Rounding::HalfUp), "0.00");
-    assert_eq!(fixed(9.996, 2, Rounding::HalfUp), "10.00");
-    assert_eq!(fixed(17.5, 0, Rounding::HalfEven), "18");
+    assert_eq!(fixed(3.125, 2, Rounding::Up), "3.13");
+    assert_eq!(fixed(3.125, 2, Rounding::Even), "3.12");
+    assert_eq!(fixed(3.135, 2, Rounding::Even), "3.14");
+    assert_eq!(fixed(3.135, 2, Rounding::Down), "3.13");
+    assert_eq!(fixed(-0.0004, 2, Rounding::Up), "0.00");
+    assert_eq!(fixed(9.996, 2, Rounding::Up), "10.00");
+    assert_eq!(fixed(17.5, 0, Rounding::Even), "18");
 }

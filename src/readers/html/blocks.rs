@@ -91,7 +91,13 @@ impl<'a> Reading<'a> {
             return self.close_block_in(inside);
         }
         let part = match inside.part {
-            Some(part) => part,
+            // A heading that is marked itself (`<h1 id=references>`) speaks for what follows it.
+            Some(part) => {
+                if self.context.part.is_none() {
+                    self.parts.enter(part);
+                }
+                part
+            }
             None => self.parts.heading(level, self.b.open_text().trim()),
         };
         self.b.part(part);
@@ -137,11 +143,9 @@ impl<'a> Reading<'a> {
 
     /// Whether preformatted text is program code or its output rather than part of the paper.
     pub(super) fn is_program(&self, start: &Start<'_>) -> bool {
-        const LOOK_AHEAD: usize = 1 << 16;
-        let rest = self.tokens.rest().as_bytes();
-        let rest = &rest[..rest.len().min(LOOK_AHEAD)];
-        let content = &rest[..memchr::memmem::find(rest, b"</pre").unwrap_or(rest.len())];
-        memchr::memmem::find(content, b"<code").is_some()
+        let content = self.tokens.rest().trim_start();
+        let tag = content.as_bytes().get(..5).unwrap_or_default();
+        tag.eq_ignore_ascii_case(b"<code")
             || start
                 .raw("class")
                 .is_some_and(|c| c.to_ascii_lowercase().contains("code"))
@@ -272,7 +276,8 @@ impl<'a> Reading<'a> {
     pub(super) fn describe_group(&mut self) {
         let Some(group) = self.groups.pop() else { return };
         let tables = group.first_table..self.b.table_count();
-        for table in tables {
+        // A figure with more tables than this is no figure, but a page without end tags.
+        for table in tables.take(100) {
             self.b
                 .describe_table(table, group.label.as_deref(), &group.captions, &group.notes);
         }

@@ -62,28 +62,31 @@ impl<'a> Reading<'a> {
         } else {
             &MARKS[..3]
         };
-        let mut rest = text;
         let mut found = false;
-        // A mark without its other half is not looked for again.
-        let mut hopeless = [false; 4];
+        let mut from = 0;
+        // Where each mark stands next; a mark without its other half is not looked for again.
+        let mut next: Vec<Option<usize>> = marks.iter().map(|m| text.find(m.0)).collect();
         loop {
-            let next = (0..marks.len())
-                .filter(|i| !hopeless[*i])
-                .filter_map(|i| Some((rest.find(marks[i].0)?, i)))
-                .min();
-            let Some((at, i)) = next else { break };
+            for (at, mark) in next.iter_mut().zip(marks) {
+                if at.is_some_and(|at| at < from) {
+                    *at = text[from..].find(mark.0).map(|at| from + at);
+                }
+            }
+            let first = (0..marks.len()).filter_map(|i| Some((next[i]?, i))).min();
+            let Some((at, i)) = first else { break };
             let (open, close) = marks[i];
-            let inside = &rest[at + open.len()..];
+            let inside = &text[at + open.len()..];
             match inside.find(close) {
                 Some(length) => {
-                    self.text(&rest[..at]);
+                    self.text(&text[from..at]);
                     self.push_tex(&inside[..length]);
-                    rest = &inside[length + close.len()..];
+                    from = at + open.len() + length + close.len();
                     found = true;
                 }
-                None => hopeless[i] = true,
+                None => next[i] = None,
             }
         }
+        let rest = &text[from..];
         if self.context.formula && !found && rest.contains('\\') {
             self.push_tex(rest);
         } else {
@@ -137,7 +140,7 @@ impl<'a> Reading<'a> {
                 .get(..100.min(rest.len()))
                 .unwrap_or(rest)
                 .contains("katex-mathml");
-            self.context.unhide = !for_reading;
+            self.context.twofold = for_reading;
             return;
         }
         self.formula_read = false;
@@ -149,18 +152,40 @@ impl<'a> Reading<'a> {
             return;
         }
         let here = self.tokens.position();
-        if self.next_script < here {
-            let found = memchr::memmem::find(rest.as_bytes(), b"<script");
-            self.next_script = found.map_or(self.source.len(), |at| here + at);
-        }
-        let to = self.next_script.min(here + LOOK_AHEAD).min(self.source.len());
-        let between = &self.source.as_bytes()[here..to];
-        let script = &self.source.as_bytes()[to..];
-        let source_follows = script.starts_with(b"<script")
-            && memchr::memmem::find(&script[..script.len().min(80)], b"math/").is_some();
-        if source_follows || memchr::memmem::find(between, b"<math").is_some() {
+        let script = self.next_script.from(self.source, here);
+        let math = self.next_math.from(self.source, here);
+        let follows = &self.source.as_bytes()[script..];
+        let follows = &follows[..follows.len().min(80)];
+        let source_follows = script - here < LOOK_AHEAD && memchr::memmem::find(follows, b"math/").is_some();
+        if source_follows || (math < script && math - here < LOOK_AHEAD) {
             self.context.silent = true;
             self.context.math_in_silence = true;
+        }
+    }
+}
+
+/// Where something comes next in the file, remembered until it has been passed.
+pub(super) struct Ahead {
+    what: &'static [u8],
+    at: Option<usize>,
+}
+
+impl Ahead {
+    pub(super) fn of(what: &'static [u8]) -> Ahead {
+        Ahead { what, at: None }
+    }
+
+    /// Its position from `here` on; the end of the file if it does not come again. `here` must
+    /// not go back.
+    fn from(&mut self, source: &str, here: usize) -> usize {
+        match self.at {
+            Some(at) if at >= here => at,
+            _ => {
+                let found = memchr::memmem::find(&source.as_bytes()[here..], self.what);
+                let at = found.map_or(source.len(), |at| here + at);
+                self.at = Some(at);
+                at
+            }
         }
     }
 }
@@ -170,7 +195,7 @@ impl<'a> Reading<'a> {
 fn mathml<'t>(tokens: &mut Tokens<'t>) -> (Math, Option<Token<'t>>) {
     let mut math = Math::new();
     let mut open: Vec<&str> = Vec::new();
-    while let Some(token) = tokens.next() {
+    for token in tokens.by_ref() {
         match token {
             Token::Text(raw) => math.text(&decode(raw)),
             Token::Literal(text) => math.text(text),

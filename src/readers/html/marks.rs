@@ -8,7 +8,7 @@ use crate::manuscript::Part;
 pub(super) struct Marks {
     /// Not seen on the page.
     pub hidden: bool,
-    /// Kept from screen readers, which usually means that it is there in another form.
+    /// Kept from screen readers, but seen.
     pub aria_hidden: bool,
     /// A form of a formula that is hidden, but meant for reading.
     pub math_in_silence: bool,

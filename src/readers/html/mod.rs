@@ -16,6 +16,7 @@ use super::Unreadable;
 use super::headings::Parts;
 use crate::manuscript::{BlockKind, Builder, Format, Manuscript, Part};
 use elements::{Element, element};
+use formulas::Ahead;
 use marks::Marks;
 use tokens::{Start, Token, Tokens, decode};
 
@@ -44,8 +45,8 @@ struct Context {
     silent: bool,
     /// A formula may be read in here even so: it is the form of it meant for reading.
     math_in_silence: bool,
-    /// What is hidden from screen readers only is the only form there is.
-    unhide: bool,
+    /// In a formula whose form for reading stands beside the one kept from screen readers.
+    twofold: bool,
     /// Inside a formula, where `$` and `\(` are marks of TeX.
     formula: bool,
     /// Blocks become text of the block around them.
@@ -101,8 +102,8 @@ struct Reading<'a> {
     row_due: bool,
     /// A formula has just been read, in a form that others may follow.
     formula_read: bool,
-    /// Position of the next script, as far as it has been looked for.
-    next_script: usize,
+    next_script: Ahead,
+    next_math: Ahead,
     /// Line of the file (from 1) and the position up to which lines are counted.
     line: u32,
     counted: usize,
@@ -121,7 +122,7 @@ impl<'a> Reading<'a> {
                 part: None,
                 silent: false,
                 math_in_silence: false,
-                unhide: false,
+                twofold: false,
                 formula: false,
                 joined: false,
                 preformatted: false,
@@ -138,7 +139,8 @@ impl<'a> Reading<'a> {
             waiting_caption: None,
             row_due: false,
             formula_read: false,
-            next_script: 0,
+            next_script: Ahead::of(b"<script"),
+            next_math: Ahead::of(b"<math"),
             line: 1,
             counted: 0,
             formula_pictures: 0,
@@ -172,10 +174,10 @@ impl<'a> Reading<'a> {
         if self.context.silent {
             return;
         }
-        if raw.bytes().all(|b| b.is_ascii_whitespace()) {
-            if !self.context.preformatted || raw.bytes().filter(|b| *b == b'\n').count() < 2 {
-                return self.text(raw);
-            }
+        let breaks = |raw: &str| raw.bytes().filter(|b| *b == b'\n').count();
+        let blank = raw.bytes().all(|b| b.is_ascii_whitespace());
+        if blank && !(self.context.preformatted && breaks(raw) > 1) {
+            return self.text(raw);
         }
         let begins = raw.as_ptr() as usize - self.source.as_ptr() as usize;
         let line = self.line_at(begins);
@@ -187,8 +189,7 @@ impl<'a> Reading<'a> {
             self.b.line(line);
             return self.text(&decode(raw));
         }
-        let mut count = 0;
-        for part in raw.split_inclusive('\n') {
+        for (count, part) in (0..).zip(raw.split_inclusive('\n')) {
             let blank = part.trim().is_empty();
             if self.context.preformatted && blank && !self.context.joined {
                 self.close_block();
@@ -197,7 +198,6 @@ impl<'a> Reading<'a> {
                 self.b.line(line + count);
             }
             self.text(&decode(part));
-            count += 1;
         }
     }
 
@@ -249,7 +249,7 @@ impl<'a> Reading<'a> {
             own: false,
         };
         let hidden =
-            element == Element::Hidden || marks.hidden || (marks.aria_hidden && !self.context.unhide);
+            element == Element::Hidden || marks.hidden || (marks.aria_hidden && self.context.twofold);
         if hidden {
             self.context.silent = true;
             self.context.math_in_silence = false;

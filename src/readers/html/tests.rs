@@ -81,13 +81,13 @@ fn the_title_of_the_file_serves_where_no_title_is_shown() {
 fn what_is_not_seen_is_not_read() {
     assert_eq!(
         text(
-            "<p>a<span hidden>b</span><span style='color:red; display: none'>c</span><span aria-hidden=true>d</span>\
+            "<p>a<span hidden>b</span><span style='color:red; display: none'>c</span><span aria-hidden=true>(seen)</span>\
              <template>e</template><noscript>f</noscript><button>g</button><select><option>h</select><textarea><p>i</textarea>\
              <svg><text>j</text></svg> <code>p &lt;- .05</code>k<span class='sr-only'>l</span></p>\
              <div style='visibility:hidden'><p>m<div>n</div></div>\
              <pre class='r'><code>t = 2</code></pre><pre>kept\nlines\n\nmore</pre><div hidden><table><tr><td>o</table></div>z"
         ),
-        "a k\n\nkept lines\n\nmore\n\nz\n"
+        "a(seen) k\n\nkept lines\n\nmore\n\nz\n"
     );
 }
 
@@ -296,4 +296,10 @@ fn anything_ends() {
         let m = page(&format!("start {long} end"));
         assert!(m.text.starts_with("start"), "{piece}");
     }
+}
+
+#[test]
+fn a_heading_that_is_marked_itself_speaks_for_what_follows() {
+    let m = read("<h1 id=references>References</h1><p>Reed, p = .5</p>").expect("it is readable");
+    assert_eq!(m.blocks.last().map(|b| b.part), Some(Part::References));
 }

@@ -238,8 +238,7 @@ impl<'a> Reading<'a> {
         let about_authors = attribute(e, "fn-type").is_some_and(|t| tags::is_about_authors(&t));
         if self.context.part == Part::Back {
             // The notes of an article often stand at its end: they belong to its text.
-            let in_group = self.frames.iter().any(|f| f.tag == Tag::NoteGroup);
-            if in_group && !about_authors {
+            if self.context.note_group && !about_authors {
                 self.context.part = Part::Body;
             }
         } else if about_authors && self.context.part == Part::Body && self.wraps.is_empty() {
@@ -300,13 +299,18 @@ impl<'a> Reading<'a> {
         let Some(wrap) = self.wraps.pop() else { return };
         let tables = wrap.first_table..self.b.table_count();
         if tables.is_empty() && wrap.picture {
+            const NAMED_AT_MOST: usize = 12;
+            self.table_picture_count += 1;
             let name = if wrap.label.is_empty() {
                 "a table"
             } else {
                 &wrap.label
             };
-            self.b
-                .remark(format!("{name} is stored as a picture and was not read"));
+            match self.table_pictures.len() {
+                NAMED_AT_MOST => self.table_pictures.push("…".into()),
+                few if few < NAMED_AT_MOST => self.table_pictures.push(name.into()),
+                _ => {}
+            }
         }
         for table in tables {
             self.b

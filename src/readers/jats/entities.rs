@@ -6,6 +6,7 @@
 
 use crate::manuscript::Builder;
 use std::borrow::Cow;
+use std::collections::HashMap;
 
 /// At most this much text is taken from declared entities.
 const LARGEST_EXPANSION: usize = 1 << 20;
@@ -15,7 +16,7 @@ const MOST_DECLARATIONS: usize = 10_000;
 
 #[derive(Default)]
 pub(super) struct Declared<'a> {
-    entities: Vec<(&'a str, Cow<'a, str>)>,
+    entities: HashMap<&'a str, Cow<'a, str>>,
     spent: usize,
     unknown: Vec<String>,
 }
@@ -45,7 +46,8 @@ impl<'a> Declared<'a> {
             // Everything up to the closing quote belongs to this declaration.
             rest = &value[1 + text.len()..];
             if let Some(text) = plain(text) {
-                self.entities.push((name, text));
+                // The first declaration of a name holds.
+                self.entities.entry(name).or_insert(text);
             }
         }
     }
@@ -55,7 +57,7 @@ impl<'a> Declared<'a> {
         if self.entities.is_empty() {
             return None;
         }
-        let text = self.entities.iter().find(|e| e.0 == name)?.1.clone();
+        let text = self.entities.get(name)?.clone();
         self.spent += text.len();
         (self.spent <= LARGEST_EXPANSION).then_some(text)
     }

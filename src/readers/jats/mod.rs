@@ -7,6 +7,7 @@
 mod blocks;
 mod entities;
 mod tags;
+mod trouble;
 
 use super::Unreadable;
 use super::mathml::Math;
@@ -16,6 +17,7 @@ use entities::Declared;
 use quick_xml::Reader;
 use quick_xml::events::{BytesStart, Event};
 use tags::Tag;
+use trouble::{Trouble, last_open, not_well_formed};
 
 /// Elements nested deeper than this make a file unreadable.
 const DEEPEST: usize = 1000;
@@ -47,6 +49,8 @@ struct Context {
     joined: bool,
     /// Inside the head of a table.
     head: bool,
+    /// Inside a group of notes at the end of the article.
+    note_group: bool,
 }
 
 struct Frame {
@@ -121,6 +125,9 @@ struct Reading<'a> {
     article_seen: bool,
     letters: usize,
     formula_pictures: usize,
+    /// Labels of tables that are pictures, the first few of them, and how many there are.
+    table_pictures: Vec<String>,
+    table_picture_count: usize,
     root_closed: bool,
 }
 
@@ -137,6 +144,7 @@ impl<'a> Reading<'a> {
                 front: false,
                 joined: false,
                 head: false,
+                note_group: false,
             },
             frames: Vec::new(),
             sink: Sink::Block,
@@ -155,6 +163,8 @@ impl<'a> Reading<'a> {
             article_seen: false,
             letters: 0,
             formula_pictures: 0,
+            table_pictures: Vec::new(),
+            table_picture_count: 0,
             root_closed: false,
         }
     }
@@ -169,6 +179,17 @@ impl<'a> Reading<'a> {
         if self.letters > 0 {
             self.b
                 .remark("letters about the article that stand in the same file were not read");
+        }
+        match self.table_picture_count {
+            0 => {}
+            1 => self.b.remark(format!(
+                "{} is stored as a picture and was not read",
+                self.table_pictures.concat()
+            )),
+            n => self.b.remark(format!(
+                "{n} tables are stored as pictures and were not read: {}",
+                self.table_pictures.join(", ")
+            )),
         }
         match self.formula_pictures {
             0 => {}
@@ -349,6 +370,7 @@ impl<'a> Reading<'a> {
             Tag::Back => frame.note = self.enter_division(Part::Back),
             Tag::BackMatter | Tag::NoteGroup => {
                 frame.note = self.enter_division(Part::Back);
+                self.context.note_group = tag == Tag::NoteGroup;
                 self.context.level = self.context.level.saturating_add(1);
             }
             Tag::Appendix => {
@@ -477,6 +499,8 @@ impl<'a> Reading<'a> {
                     self.flush_shift();
                     self.b.close();
                     self.flush_put_off()?;
+                    // The title names no section: text before the first heading stands in none.
+                    self.b.return_to_section(None);
                 }
             }
             Tag::Abstract
@@ -564,42 +588,6 @@ impl<'a> Reading<'a> {
         }
         Ok(())
     }
-}
-
-/// The name of the innermost element still open at the end of a file cut short.
-fn last_open(source: &str) -> String {
-    let mut reader = Reader::from_str(source);
-    let mut open = Vec::new();
-    loop {
-        match reader.read_event() {
-            Ok(Event::Start(e)) => open.push(e.name().as_ref().to_string()),
-            Ok(Event::End(_)) => {
-                open.pop();
-            }
-            Ok(Event::Eof) | Err(_) => return open.pop().unwrap_or_default(),
-            Ok(_) => {}
-        }
-    }
-}
-
-/// What can go wrong between two events.
-enum Trouble {
-    Xml(quick_xml::Error),
-    Told(Unreadable),
-}
-
-impl From<quick_xml::Error> for Trouble {
-    fn from(error: quick_xml::Error) -> Trouble {
-        Trouble::Xml(error)
-    }
-}
-
-fn not_well_formed(source: &str, at: usize, reason: &str) -> Unreadable {
-    let before = &source.as_bytes()[..at.min(source.len())];
-    let line = 1 + memchr::memchr_iter(b'\n', before).count();
-    Unreadable::new(format!(
-        "is not well-formed XML near line {line}: {reason}; download or export it again"
-    ))
 }
 
 #[cfg(test)]

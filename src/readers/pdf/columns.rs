@@ -119,7 +119,7 @@ fn best_gutter(whole: &Region) -> Option<Gutter> {
         }
         i += same;
     }
-    candidates.sort_by(|a, b| b.0.cmp(&a.0));
+    candidates.sort_by_key(|c| std::cmp::Reverse(c.0));
     candidates
         .iter()
         .take(6)

@@ -28,7 +28,7 @@ pub fn compose(b: &mut Builder, blocks: &[Block], body: Body, sheets: &[Sheet]) 
         };
         let kind = depth.map_or_else(|| roles::kind(block, body, height), BlockKind::Heading);
         state.enter(index, block, kind);
-        b.part(state.part_of(kind));
+        b.part(state.part_of(block, kind));
         b.open(kind);
         write(b, block);
         b.close();
@@ -43,6 +43,8 @@ struct State {
     abstract_at: Option<usize>,
     /// Where the references are interrupted by tables and figures at the end of the manuscript.
     float_page: Option<u32>,
+    /// Whether the references number their entries with raised digits, once the first is known.
+    entries_raised: Option<bool>,
 }
 
 impl State {
@@ -78,11 +80,20 @@ impl State {
             title,
             abstract_at,
             float_page: None,
+            entries_raised: None,
         }
     }
 
     /// The part that a block belongs to; a title is front matter wherever the rest begins.
-    fn part_of(&self, kind: BlockKind) -> Part {
+    fn part_of(&mut self, block: &Block, kind: BlockKind) -> Part {
+        if self.part == Part::References && !matches!(kind, BlockKind::Heading(_)) {
+            let raised = roles::begins_raised(block);
+            let entries_raised = *self.entries_raised.get_or_insert(raised);
+            // Not numbered like the entries: a footnote to the text above the references on this page.
+            if kind == BlockKind::Footnote && raised && !entries_raised {
+                return Part::Body;
+            }
+        }
         if self.float_page.is_some()
             && self.part == Part::References
             && !matches!(kind, BlockKind::Heading(_))

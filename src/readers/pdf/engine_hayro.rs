@@ -25,6 +25,8 @@ pub struct Limits {
     pub pages: usize,
     /// Glyphs, paths, images and clips on one page.
     pub calls_per_page: u64,
+    /// Glyphs on one page; a full page of small print has about ten thousand.
+    pub glyphs_per_page: usize,
     /// Forms drawn for one page, those drawn by forms included.
     pub forms_per_page: u64,
     pub time: Duration,
@@ -35,6 +37,7 @@ impl Default for Limits {
         Limits {
             pages: 2000,
             calls_per_page: 2_000_000,
+            glyphs_per_page: 100_000,
             forms_per_page: 100_000,
             time: Duration::from_secs(60),
         }
@@ -66,7 +69,7 @@ pub fn glyphs(bytes: Vec<u8>, limits: Limits) -> Result<Glyphs, Refusal> {
         ..InterpreterSettings::default()
     };
     let end = Instant::now() + limits.time;
-    let mut taker = Taker::new(limits.calls_per_page, end);
+    let mut taker = Taker::new(limits, end);
     let all = pdf.pages();
     let mut cache = InterpreterCache::new();
     let mut forms = Forms::default();
@@ -111,19 +114,19 @@ struct Taker {
     out: Glyphs,
     page: PageGlyphs,
     calls: u64,
-    allowed: u64,
+    limits: Limits,
     end: Instant,
     fonts: HashMap<u128, u16>,
     shapes: HashMap<GlyphIdentifier, u32>,
 }
 
 impl Taker {
-    fn new(allowed: u64, end: Instant) -> Taker {
+    fn new(limits: Limits, end: Instant) -> Taker {
         Taker {
             out: Glyphs::default(),
             page: PageGlyphs::default(),
             calls: 0,
-            allowed,
+            limits,
             end,
             fonts: HashMap::new(),
             shapes: HashMap::new(),
@@ -147,7 +150,10 @@ impl Taker {
     fn count(&mut self, calls: u64) {
         self.calls += calls;
         let late = self.calls % 4096 < calls && Instant::now() > self.end;
-        if self.calls > self.allowed || late {
+        if self.calls > self.limits.calls_per_page
+            || self.page.glyphs.len() > self.limits.glyphs_per_page
+            || late
+        {
             // Unlike `panic!` this prints nothing.
             resume_unwind(Box::new(Enough));
         }

@@ -149,3 +149,42 @@ pub mod worker {
     #[cfg(not(unix))]
     fn limit() {}
 }
+
+#[cfg(test)]
+mod tests {
+    use super::super::sample::{at, content, pdf};
+    use super::*;
+
+    /// The worker is an executable that unit tests can't build; they use the one they are told of.
+    #[test]
+    fn the_second_engine_answers_from_a_process_of_its_own() {
+        let Some(worker) = std::env::var_os(EXECUTABLE) else {
+            eprintln!("skipped: {EXECUTABLE} names no executable");
+            return;
+        };
+        let pages = [
+            content(&[at(50.0, 700.0, "Watered more often, p = .023.")]),
+            content(&[at(50.0, 700.0, "And on the next page.")]),
+        ];
+        let good = pages_with(worker.clone().into(), &pdf(&pages, "")).expect("a whole file is read");
+        assert_eq!(good.len(), 2, "{good:?}");
+        assert!(good[0].contains("p = .023") && good[1].contains("next page"));
+        assert_eq!(pages_with(worker.into(), b"%PDF-1.4 nothing behind it"), None);
+    }
+
+    #[test]
+    fn a_worker_that_does_not_end_is_killed() {
+        let Ok(mut child) = Command::new("sleep").arg("60").spawn() else {
+            eprintln!("skipped: no program to wait for");
+            return;
+        };
+        let start = Instant::now();
+        assert!(!wait(&mut child, Duration::from_millis(50)));
+        assert!(start.elapsed() < Duration::from_secs(20));
+    }
+
+    #[test]
+    fn a_missing_executable_is_no_panic() {
+        assert_eq!(pages_with("no/such/executable".into(), b"%PDF-1.4"), None);
+    }
+}

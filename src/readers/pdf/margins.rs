@@ -56,6 +56,13 @@ pub fn drop_running_lines(pages: &[&PageGlyphs], pieces: &mut [Vec<Piece>]) {
     for (i, c) in candidates.iter().enumerate() {
         by_text.entry(&c.text).or_default().push(i);
     }
+    // Page numbers go up with the pages.
+    let mut by_offset: HashMap<i64, Vec<usize>> = HashMap::new();
+    for (i, c) in candidates.iter().enumerate() {
+        if let Some(n) = c.number {
+            by_offset.entry(n as i64 - c.page as i64).or_default().push(i);
+        }
+    }
     let enough = if pages.len() <= 4 { 2 } else { 3 };
     let mut drop: Vec<(usize, usize)> = Vec::new();
     for c in &candidates {
@@ -69,12 +76,10 @@ pub fn drop_running_lines(pages: &[&PageGlyphs], pieces: &mut [Vec<Piece>]) {
         let edge = on.len() >= 2 && c.outermost && c.text.chars().count() >= 8;
         let repeated = (on.len() >= enough || edge) && c.text.chars().any(|t| t.is_alphabetic());
         let counts_up = c.number.is_some_and(|n| {
-            candidates.iter().any(|o| {
-                (o.y - c.y).abs() < WANDER
-                    && o.page != c.page
-                    && o.number
-                        .is_some_and(|m| m as i64 - n as i64 == o.page as i64 - c.page as i64)
-            })
+            by_offset[&(n as i64 - c.page as i64)]
+                .iter()
+                .map(|i| &candidates[*i])
+                .any(|o| o.page != c.page && (o.y - c.y).abs() < WANDER)
         });
         // A bare number at the very edge of the page is its number even when there is only one page.
         let lone = pages.len() <= 2 && c.number == Some(c.page as u32 + 1) && c.outermost;
@@ -138,7 +143,8 @@ pub fn drop_line_numbers(page: &PageGlyphs, pieces: &mut Vec<Piece>) {
                 .flatten()
         })
         .collect();
-    if numbers.len() < 4 {
+    // No page has that many lines; it is a table of numbers then.
+    if !(4..=400).contains(&numbers.len()) {
         return;
     }
     let mut drop: Vec<usize> = Vec::new();

@@ -41,10 +41,15 @@ pub fn read(bytes: &[u8]) -> Result<Manuscript, Unreadable> {
 
 fn read_within(bytes: &[u8], limits: Limits) -> Result<Manuscript, Unreadable> {
     let owned = bytes.to_vec();
+    let cut_off = is_cut_off(bytes);
     // The engine looks at the clock itself; the guard's patience is for where it can't.
     let patience = limits.time + Duration::from_secs(5);
-    match guard::run(patience, move || engine_hayro::glyphs(owned, limits)) {
-        Ok(Ok(glyphs)) if !glyphs.pages.is_empty() => manuscript(glyphs, bytes),
+    let done = guard::run(patience, move || {
+        let glyphs = engine_hayro::glyphs(owned, limits)?;
+        Ok((!glyphs.pages.is_empty()).then(|| manuscript(&glyphs, cut_off)))
+    });
+    match done {
+        Ok(Ok(Some(result))) => result,
         Ok(Err(Refusal::Locked)) => Err(Unreadable::new(
             "is encrypted; save a copy without a password and read that",
         )),
@@ -58,7 +63,7 @@ fn read_within(bytes: &[u8], limits: Limits) -> Result<Manuscript, Unreadable> {
         Err(guard::Mishap::NoThread) => Err(Unreadable::new(
             "cannot be read now: the system gives no thread; try again",
         )),
-        Ok(Ok(_)) | Ok(Err(Refusal::Damaged)) | Err(guard::Mishap::Panicked) => second_try(bytes),
+        Ok(Ok(None)) | Ok(Err(Refusal::Damaged)) | Err(guard::Mishap::Panicked) => second_try(bytes),
     }
 }
 
@@ -110,7 +115,7 @@ fn no_text() -> Unreadable {
     Unreadable::new("has no text layer (page images only): run text recognition on it first")
 }
 
-fn manuscript(glyphs: Glyphs, bytes: &[u8]) -> Result<Manuscript, Unreadable> {
+fn manuscript(glyphs: &Glyphs, cut_off: bool) -> Result<Manuscript, Unreadable> {
     let with_text = |p: &PageGlyphs| p.glyphs.iter().any(|g| !g.meaning.is_space());
     if !glyphs.pages.iter().any(with_text) {
         if glyphs.pages.iter().any(|p| p.cut_short) {
@@ -118,14 +123,18 @@ fn manuscript(glyphs: Glyphs, bytes: &[u8]) -> Result<Manuscript, Unreadable> {
                 "asks for endless drawing and shows no text before that; print it to a new PDF and read that",
             ));
         }
-        if is_cut_off(bytes) {
+        if cut_off {
             return Err(Unreadable::new(
                 "is cut off before its end and no text can be found; get the complete file",
             ));
         }
-        return Err(no_text());
+        return Err(if glyphs.pages.iter().any(|p| p.image) {
+            no_text()
+        } else {
+            Unreadable::new("has no text on its pages; if they show any, run text recognition on it first")
+        });
     }
-    let columns = read_columns(&glyphs);
+    let columns = read_columns(glyphs);
     let body = Body::of(&columns);
     let blocks = paragraphs::blocks(&columns, body);
     let blocks = paragraphs::join(blocks, body, |block| {
@@ -146,13 +155,13 @@ fn manuscript(glyphs: Glyphs, bytes: &[u8]) -> Result<Manuscript, Unreadable> {
         })
         .collect();
     let mut b = Builder::new(Format::Pdf);
-    remarks(&mut b, &glyphs, bytes);
+    remarks(&mut b, glyphs, cut_off);
     compose::compose(&mut b, &blocks, body, &sheets);
     Ok(b.finish())
 }
 
 /// What the person should know about the reading.
-fn remarks(b: &mut Builder, glyphs: &Glyphs, bytes: &[u8]) {
+fn remarks(b: &mut Builder, glyphs: &Glyphs, cut_off: bool) {
     let numbers = |which: &dyn Fn(&PageGlyphs) -> bool| {
         let hits: Vec<u32> = glyphs
             .pages
@@ -177,7 +186,7 @@ fn remarks(b: &mut Builder, glyphs: &Glyphs, bytes: &[u8]) {
             glyphs.left_out
         ));
     }
-    if is_cut_off(bytes) {
+    if cut_off {
         b.remark("the file is cut off before its end; pages may be missing");
     }
     let mut unknown = Vec::new();

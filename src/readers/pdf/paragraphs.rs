@@ -261,7 +261,7 @@ impl Measure {
             return Seam::Apart;
         }
         if line.bold != last.bold
-            && !(lower && !ended)
+            && (!lower || ended)
             && line
                 .words
                 .iter()
@@ -317,8 +317,12 @@ impl Measure {
         }
         if indent < 0.0 {
             // Back from an indented first line, or the end of a hanging or quoted paragraph.
-            let first_line = block.lines.len() == 1;
-            return if first_line && !(short && ended) || (!ended && !short) || lower {
+            let goes_on = if block.lines.len() == 1 {
+                !short || !ended
+            } else {
+                !short && !ended
+            };
+            return if goes_on || lower {
                 Seam::None
             } else {
                 Seam::Paragraph

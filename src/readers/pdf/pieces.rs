@@ -157,8 +157,8 @@ fn follows(last: &Glyph, base: &Glyph, g: &Glyph) -> bool {
     if level && shift < 0.75 * size {
         return (-0.3 * size..0.4 * size).contains(&gap);
     }
-    // Raised without being made smaller.
-    !small && shift < 0.45 * size && (-0.1 * size..0.25 * size).contains(&gap)
+    // Raised or lowered without being made smaller, as in TeX's own name.
+    !small && shift < 0.45 * size && (-0.25 * size..0.3 * size).contains(&gap)
 }
 
 /// Glyphs drawn twice, a little apart, to look bold.

@@ -207,6 +207,12 @@ pub fn is_caption(block: &Block, body: Body) -> bool {
         || { !sentence && text.chars().count() < 160 && !text.trim_end().ends_with(',') }
 }
 
+/// Begins with raised digits or a raised mark, as footnotes and some lists of references do.
+pub fn begins_raised(block: &Block) -> bool {
+    let first = block.first().words.first();
+    first.is_some_and(|w| matches!(w.parts.first(), Some((super::lines::Shift::Raised, _))))
+}
+
 /// The kind of a block that is no heading.
 pub fn kind(block: &Block, body: Body, page_height: f32) -> BlockKind {
     if is_caption(block, body) {
@@ -217,12 +223,14 @@ pub fn kind(block: &Block, body: Body, page_height: f32) -> BlockKind {
         return BlockKind::TableNote;
     }
     let first = block.first();
+    let raised = begins_raised(block);
     let marked = first.words.first().is_some_and(|w| {
-        matches!(w.parts.first(), Some((super::lines::Shift::Raised, _)))
+        raised
             || w.text().starts_with(['*', '†', '‡', '§', '¹', '²', '³'])
             || w.text().chars().next().is_some_and(|c| c.is_ascii_digit())
     });
-    if !block.row && block.size() < 0.93 * body.size && marked && first.baseline > 0.5 * page_height {
+    let smaller = block.size() < 0.93 * body.size && marked;
+    if !block.row && (smaller || raised) && first.baseline > 0.5 * page_height {
         return BlockKind::Footnote;
     }
     if !block.row
@@ -261,8 +269,10 @@ pub fn heading(block: &Block, body: Body) -> Option<u8> {
         || (text.ends_with('.') && known.is_none() && depth.is_none() && !bold);
     let stands_out = size > 1.07 || (bold && size > 0.9);
     let sentence = text.ends_with('.') && count > 90;
+    let running = !bold && size < 1.2 && known.is_none() && text.split(' ').count() > 12;
     if ends_open
         || sentence
+        || running
         || !text
             .chars()
             .next()

@@ -231,11 +231,13 @@ fn what_is_cropped_away_is_not_read() {
 #[test]
 fn pages_without_text_are_named() {
     let error = read(&pdf(&[String::new()], "")).expect_err("nothing to read");
+    assert!(error.0.starts_with("has no text on its pages; "), "{}", error.0);
+    let image = "q 500 0 0 700 50 50 cm BI /W 1 /H 1 /CS /G /BPC 8 ID \u{1} EI Q\n".to_string();
+    let error = read(&pdf(std::slice::from_ref(&image), "")).expect_err("nothing to read");
     assert_eq!(
         error.0,
         "has no text layer (page images only): run text recognition on it first"
     );
-    let image = "q 500 0 0 700 50 50 cm BI /W 1 /H 1 /CS /G /BPC 8 ID \u{1} EI Q\n".to_string();
     let m = read(&pdf(&[content(&[at(50.0, 700.0, "Seen.")]), image], "")).expect("the sample is a PDF");
     assert_eq!(
         m.remarks,
@@ -268,7 +270,7 @@ fn damaged_files_have_one_reason() {
 
 #[test]
 fn forms_that_draw_each_other_without_end_are_given_up() {
-    let bytes = include_bytes!("../../../tests/fixtures/pdf/nested-forms.pdf");
+    let bytes = include_bytes!("../../../fixtures/broken/nested-forms.pdf");
     let start = std::time::Instant::now();
     let limits = Limits {
         time: Duration::from_secs(3),
@@ -287,10 +289,10 @@ fn forms_that_draw_each_other_without_end_are_given_up() {
 
 #[test]
 fn files_locked_without_a_password_open_and_others_say_so() {
-    let open = include_bytes!("../../../tests/fixtures/pdf/owner-password.pdf");
+    let open = include_bytes!("../../../fixtures/broken/owner-password.pdf");
     let m = read(open).expect("opens without a password");
     assert_eq!(texts(&m), ["Watered more often, p = .023."]);
-    let locked = include_bytes!("../../../tests/fixtures/pdf/user-password.pdf");
+    let locked = include_bytes!("../../../fixtures/broken/user-password.pdf");
     let error = read(locked).expect_err("needs a password");
     assert!(error.0.starts_with("is encrypted; "), "{}", error.0);
 }
