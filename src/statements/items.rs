@@ -206,6 +206,11 @@ impl Scan<'_> {
         if self.mark(next + runs_on) == Some("…") || multiplied {
             return None;
         }
+        // A correlation of 14,737 is between that many things.
+        let many = value.number.is_whole() && value.number.value() > 1.0;
+        if many && matches!(symbol.name, "r" | "rho" | "tau") {
+            return None;
+        }
         if self.calculates(symbol.class, &value) {
             return None;
         }
