@@ -55,7 +55,8 @@ fn may_hold_results(bytes: &[u8]) -> bool {
     let signs = SIGNS.get_or_init(|| {
         let words = [
             "\u{2264}", "\u{2265}", "\u{2248}", "\u{226a}", "\u{226b}", "CI", "SD", "SE", "OR", "RR", "HR",
-            "ean", "edian", "verage", "ange", "alue", "atio", "isk", "n.s.", "evia", "rror", "IQR", "egree", "d.f.", "df",
+            "ean", "edian", "verage", "ange", "alue", "atio", "isk", "n.s.", "evia", "rror", "IQR", "egree",
+            "d.f.", "df",
         ];
         // A handful of short words always compiles.
         AhoCorasick::new(words).unwrap_or_else(|why| unreachable!("{why}"))

@@ -13,6 +13,9 @@ use crate::numbers::Comparator;
 /// How many tokens before a number its name is looked for.
 const NAME_WITHIN: usize = 16;
 
+/// How many estimates before a number its name may serve, too.
+const NAME_SERVES: usize = 6;
+
 /// How many words may say of what a mean is: `the mean length of the dry beds was 3.1`.
 const THINGS: usize = 5;
 
@@ -64,6 +67,11 @@ impl Scan<'_> {
             }
         } else if bracket && !percent && self.spread_after(follows) {
             ("M", Class::Descriptive)
+        } else if let Some(ratio) = (bracket && !percent)
+            .then(|| self.ratio_with_ends(&value, from))
+            .flatten()
+        {
+            ratio
         } else if bracket && !percent && (self.near("medians") || self.medians && !self.names_intervals()) {
             return self.quartiles(&value, from, next);
         } else {
@@ -274,13 +282,22 @@ impl Scan<'_> {
                 .is_some_and(|w| matches!(w, "was" | "were" | "is" | "of" | "to" | "being" | "by"));
         let mut i = from;
         let mut steps = 0;
+        let mut shared = 0;
         while i > 0 && steps < NAME_WITHIN {
             i -= 1;
             steps += 1;
             let token = self.tokens[i];
-            // `1.46 (CI 1.06–2.02) and 1.38 (CI …`: the name serves both.
-            if let Some(number) = self.estimate_before(i) {
-                i = number;
+            // `1.46 (CI 1.06–2.02) and 1.38 (CI …`: the name serves both. What else stands in brackets
+            // is passed over.
+            if let Some((start, estimate)) = self.bracket_before(i) {
+                i = start;
+                if estimate {
+                    shared += 1;
+                    steps = 0;
+                    if shared > NAME_SERVES {
+                        return None;
+                    }
+                }
                 continue;
             }
             if matches!(token.kind, Kind::Number | Kind::Dotted)
@@ -308,18 +325,33 @@ impl Scan<'_> {
         None
     }
 
-    /// The number with an interval in brackets whose closing bracket is token `at`.
-    fn estimate_before(&self, at: usize) -> Option<usize> {
+    /// `and 1.57 (1.08–2.30)` behind another ratio and its interval, or behind the name of a ratio.
+    fn ratio_with_ends(&self, value: &Value, from: usize) -> Option<(&'static str, Class)> {
+        let shown = &self.text[value.span.clone()];
+        if !shown.contains(['.', '·']) || value.number.value() <= 0.0 {
+            return None;
+        }
+        let (low, high, _) = self.two_ends(value.next)?;
+        let inside = (low.number.value()..=high.number.value()).contains(&value.number.value());
+        self.name_before(from)
+            .filter(|(_, class)| inside && *class == Class::Ratio)
+    }
+
+    /// Where the bracket that closes at token `at` begins, or the estimate before it if it holds the
+    /// estimate's interval; whether it does.
+    fn bracket_before(&self, at: usize) -> Option<(usize, bool)> {
         const LONGEST: usize = 14;
         if !matches!(self.mark(at), Some(")" | "]")) {
             return None;
         }
         let open = (at.saturating_sub(LONGEST)..at)
             .rev()
-            .find(|i| matches!(self.mark(*i), Some("(" | "[" | ")" | "]")))?;
+            .find(|i| matches!(self.mark(*i), Some("(" | "[" | ")" | "]")))
+            .filter(|i| matches!(self.mark(*i), Some("(" | "[")))?;
         let number = open.checked_sub(1)?;
-        let interval = matches!(self.mark(open), Some("(" | "[")) && self.interval_after(open + 1).is_some();
-        (interval && self.tokens[number].kind == Kind::Number).then_some(number)
+        let estimate = self.tokens[number].kind == Kind::Number
+            && (self.interval_after(open + 1).is_some() || self.two_ends(open).is_some());
+        Some(if estimate { (number, true) } else { (open, false) })
     }
 
     /// `74 (43–106)` where quartiles are spoken of.
