@@ -172,8 +172,10 @@ impl Scan<'_> {
             Company::Single
         };
         let value = self.value(value_at, company)?;
+        // `Bayes factor 16` can be nothing else.
+        let named = words && symbol.name == "BF10";
         let plain = words || !matches!(symbol.class, Class::Ratio | Class::Descriptive | Class::Df);
-        if compared.is_none() && things.is_none() && !self.stands_by(value_at, plain) {
+        if compared.is_none() && things.is_none() && !named && !self.stands_by(value_at, plain) {
             return None;
         }
         let mut next = value.next;

@@ -156,7 +156,11 @@ impl Scan<'_> {
                 draft.has_class(Descriptive) && gap.within(2)
             }
             Interval => {
-                (draft.has_test() || draft.has_class(Descriptive) || draft.has_class(Other)) && gap.within(5)
+                // `0.944 slugs per bed per square metre and year (95% CI …`
+                let lone =
+                    draft.items.len() == 1 && self.mark(item.tokens.start.wrapping_sub(1)) == Some("(");
+                (draft.has_test() || draft.has_class(Descriptive) || draft.has_class(Other))
+                    && gap.within(if lone { 8 } else { 5 })
             }
             Effect => !again && (draft.has_test() && gap.within(6) || gap.within(0)) && !draft.only(Size),
             Statistic if again => false,

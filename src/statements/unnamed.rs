@@ -105,6 +105,8 @@ impl Scan<'_> {
                     | "and"
                     | "or"
                     | "that"
+                    | "increases"
+                    | "increased"
                     | "was"
                     | "were"
                     | "is"
@@ -404,6 +406,14 @@ impl Scan<'_> {
         item
     }
 
+    /// What is counted rather than measured, though it stands among the units.
+    fn countable(&self, at: usize) -> bool {
+        matches!(
+            self.word(at),
+            Some("individuals" | "cells" | "units" | "generations")
+        )
+    }
+
     /// Whether the number at tokens `at..=last` may be a count of things that are named behind it:
     /// `266 gardeners (88.1%)`, but not `8 weeks (40%)` or `nine of 302 gardeners (3%)`.
     pub(super) fn may_count(&self, at: usize, last: usize) -> bool {
@@ -411,9 +421,15 @@ impl Scan<'_> {
         let Some(bracket) = bracket else { return false };
         if !(last + 1..bracket).all(|i| self.word(i).is_some())
             || self.mark(bracket + 2) != Some("%")
-            || self.unit_word(last + 1)
+            || self.unit_word(last + 1) && !self.countable(last + 1)
             || self.counts_something(at)
         {
+            return false;
+        }
+        // `in only one bed (17.1%)`: the share is of something else.
+        let one = self.word(at).is_some_and(|w| w.eq_ignore_ascii_case("one"));
+        let before = |i: usize| at.checked_sub(i).and_then(|i| self.word(i));
+        if one && before(1) == Some("only") && before(2) == Some("in") {
             return false;
         }
         // `of 302 gardeners` is the whole, unless it is `a total of`; so is `the 302 gardeners`.
