@@ -49,7 +49,10 @@ impl TailLaw {
     /// p at one point, for a statistic turned so that p falls with it. Unknown becomes `otherwise`,
     /// the end that makes the range widest.
     fn at(&self, turned: f64, df: f64, otherwise: f64) -> f64 {
-        let p = (self.tail)(turned.abs().min(self.largest), df).unwrap_or(otherwise);
+        let known = (self.tail)(turned.abs().min(self.largest), df);
+        // On the far side of 0 the one-sided p falls where the two-sided one rises.
+        let far = self.side != Side::Both && turned < 0.0;
+        let p = known.unwrap_or(if far { 1.0 - otherwise } else { otherwise });
         match self.side {
             Side::Both => p,
             _ if turned >= 0.0 => 0.5 * p,

@@ -1,14 +1,16 @@
 //! *Bait*: what looks like a result and is none: thresholds, legends, plans, coordinates, quotations.
 
-use super::grammar::Class;
+use super::grammar::{Class, Symbol};
 use super::join::Draft;
+use super::tokens::Kind;
+use super::values::Value;
 use super::{Scan, sentences};
 use crate::numbers::Comparator;
 use std::ops::Range;
 
 /// Levels that thresholds and legends are printed with.
-const LEVELS: [f64; 10] = [
-    0.1, 0.05, 0.025, 0.02, 0.01, 0.005, 0.001, 0.0005, 0.0001, 0.00001,
+const LEVELS: [f64; 12] = [
+    0.1, 0.05, 0.025, 0.02, 0.01, 0.005, 0.001, 0.0005, 0.0001, 0.00001, 5e-8, 1e-8,
 ];
 
 impl Scan<'_> {
@@ -50,11 +52,13 @@ impl Scan<'_> {
         if draft.items.iter().all(|i| !i.alone && !i.plain) && !supported && !whole {
             return false;
         }
-        let only_p = draft.items.iter().all(|i| {
-            // `P < 0.10 and I² > 50%` is a threshold, too.
-            let bound = i.class == Class::Other && i.quantities[0].comparator != Comparator::Equal;
-            i.class == Class::P || i.class == Class::Size || bound
-        });
+        let holds_p = draft.items.iter().any(|i| i.class == Class::P);
+        let only_p = holds_p
+            && draft.items.iter().all(|i| {
+                // `P < 0.10 and I² > 50%` is a threshold, too.
+                let bound = i.class == Class::Other && i.quantities[0].comparator != Comparator::Equal;
+                i.class == Class::P || i.class == Class::Size || bound
+            });
         let level = draft.items.iter().all(|i| {
             i.class != Class::P
                 || matches!(i.quantities[0].comparator, Comparator::Below | Comparator::AtMost)
@@ -92,6 +96,46 @@ impl Scan<'_> {
     /// The range is most of its block.
     fn mostly(&self, bytes: &Range<usize>, block: &Range<usize>) -> bool {
         (bytes.end - bytes.start) * 2 > block.end - block.start
+    }
+
+    /// What stands behind a comparator and yet is no value of such a symbol: times of day and
+    /// proportions (`median 08:35`, `1:3`), the start of a run (`n = 1, 2, …`), `100-fold`, and bounds
+    /// and powers that no p can have (`p ≥ 0`, `p = 10`).
+    pub(super) fn is_no_size(&self, symbol: &Symbol, comparator: Option<Comparator>, value: &Value) -> bool {
+        let class = symbol.class;
+        let next = value.next;
+        let tight = |i: usize| self.tokens.get(i).is_some_and(|t| !t.spaced);
+        let proportion = self.mark(next) == Some(":")
+            && tight(next)
+            && tight(next + 1)
+            && self.tokens[next + 1].kind == Kind::Number;
+        let compound = self.mark(next) == Some("-")
+            && tight(next)
+            && tight(next + 1)
+            && self.word(next + 1).is_some()
+            && matches!(class, Class::Descriptive | Class::Estimate | Class::Ratio);
+        let number = value.number.value();
+        let no_p = class == Class::P
+            && value.number.is_whole()
+            && (number > 1.0
+                || matches!(comparator, Some(Comparator::AtLeast | Comparator::Above)) && number == 0.0
+                || matches!(comparator, Some(Comparator::AtMost | Comparator::Below)) && number == 1.0);
+        // `correlation of 14,737 genes`, `SD were 0.85 ± 0.16`
+        let no_correlation =
+            matches!(symbol.name, "r" | "rho" | "tau") && value.number.is_whole() && number.abs() > 1.0;
+        // `FMNH PR 2512`
+        let number_of_a_plate =
+            class == Class::Ratio && comparator.is_none() && value.number.is_whole() && number >= 1000.0;
+        let no_spread = matches!(symbol.name, "SD" | "SE") && self.mark(next) == Some("±");
+        let start = !symbol.zero && value.number.is_whole() && number == 0.0;
+        proportion
+            || compound
+            || no_p
+            || start
+            || number_of_a_plate
+            || no_correlation
+            || no_spread
+            || self.runs_on(next)
     }
 
     /// `*p < .05`, `** P < 0.01`, `a: p < .05`, `† = p < .1`: the explanation of a mark.

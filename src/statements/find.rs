@@ -55,8 +55,9 @@ fn may_hold_results(bytes: &[u8]) -> bool {
     let signs = SIGNS.get_or_init(|| {
         let words = [
             "\u{2264}", "\u{2265}", "\u{2248}", "\u{226a}", "\u{226b}", "CI", "SD", "SE", "OR", "RR", "HR",
-            "ean", "edian", "verage", "ange", "alue", "atio", "isk", "n.s.", "evia", "rror", "IQR", "egree",
-            "d.f.", "df",
+            "ean", "edian", "verag", "ange", "alue", "atio", "isk", "n.s.", "evia", "rror", "IQR", "egree",
+            "d.f.", "df", "lpha", "appa", "oeff", "out of", " of 1", " of 2", " of 3", " of 4", " of 5",
+            " of 6", " of 7", " of 8", " of 9",
         ];
         // A handful of short words always compiles.
         AhoCorasick::new(words).unwrap_or_else(|why| unreachable!("{why}"))
@@ -71,10 +72,10 @@ impl Scan<'_> {
         if items.is_empty() {
             return;
         }
-        let supported = items
-            .iter()
-            .any(|i| i.class == Class::P || i.class == Class::Statistic && i.plain)
-            || tests_are_named(&self.text[range.clone()]);
+        let supported = items.iter().any(|i| {
+            let spread = i.class == Class::Descriptive && matches!(i.quantities[0].symbol, "SD" | "SE");
+            i.class == Class::P || i.class == Class::Statistic && i.plain || spread
+        }) || tests_are_named(&self.text[range.clone()]);
         for draft in self.join(items) {
             if !self.is_result(&draft, range, supported) {
                 continue;

@@ -43,6 +43,10 @@ pub struct Symbol {
     pub below: Option<(f64, &'static str)>,
     pub several: Option<&'static str>,
     pub argued: Option<&'static str>,
+    pub sure: Option<(f64, f64)>,
+    /// Letters of the symbol that a label may be run together with.
+    pub labelled: Vec<char>,
+    pub zero: bool,
     pub beside: Option<[&'static str; 3]>,
 }
 
@@ -74,6 +78,7 @@ pub struct Grammar {
     pub replicates: HashSet<String>,
     pub before: HashSet<String>,
     pub labels: HashSet<String>,
+    pub resampling: HashSet<String>,
     pub thresholds: Regex,
     pub plans: Regex,
     pub medians: Regex,
@@ -95,6 +100,7 @@ struct File {
     replicates: Vec<String>,
     before: Vec<String>,
     labels: Vec<String>,
+    resampling: Vec<String>,
     thresholds: Vec<String>,
     plans: Vec<String>,
     medians: Vec<String>,
@@ -125,6 +131,11 @@ struct RawSymbol {
     below: Option<(f64, String)>,
     several: Option<String>,
     argued: Option<String>,
+    sure: Option<(f64, f64)>,
+    #[serde(default)]
+    labelled: Vec<char>,
+    #[serde(default = "yes")]
+    zero: bool,
     beside: Option<[String; 3]>,
 }
 
@@ -233,6 +244,7 @@ impl Grammar {
             all.replicates.extend(file.replicates);
             all.before.extend(file.before);
             all.labels.extend(file.labels);
+            all.resampling.extend(file.resampling);
             all.thresholds.extend(file.thresholds);
             all.plans.extend(file.plans);
             all.medians.extend(file.medians);
@@ -279,8 +291,11 @@ impl Grammar {
                 units: raw.units,
                 above: raw.above.as_ref().map(|(v, s)| (*v, names.get(s))),
                 below: raw.below.as_ref().map(|(v, s)| (*v, names.get(s))),
+                sure: raw.sure,
                 several: raw.several.as_ref().map(|s| names.get(s)),
                 argued: raw.argued.as_ref().map(|s| names.get(s)),
+                labelled: raw.labelled.clone(),
+                zero: raw.zero,
                 beside: raw
                     .beside
                     .as_ref()
@@ -351,6 +366,7 @@ impl Grammar {
             replicates: all.replicates.into_iter().collect(),
             before: all.before.into_iter().collect(),
             labels: all.labels.into_iter().collect(),
+            resampling: all.resampling.into_iter().collect(),
             thresholds: either(&all.thresholds)?,
             plans: either(&all.plans)?,
             medians: either(&all.medians)?,

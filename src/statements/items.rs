@@ -2,7 +2,8 @@
 //! a number (`t(28) = 2.20`), an interval (`95% CI [0.1, 1.5]`), or a form without a comparator.
 
 use super::grammar::{Class, Symbol};
-use super::spellings::Found;
+use super::names::has_label;
+use super::spellings::{Found, Spelling};
 use super::tokens::{Kind, on_the_line};
 use super::values::{Company, Value};
 use super::{Quantity, Scan};
@@ -36,7 +37,10 @@ impl Scan<'_> {
         while at < self.tokens.len() {
             let token = self.tokens[at];
             let found = match token.kind {
-                Kind::Word if !self.grammar.may_begin(token.text(self.text)) => {
+                Kind::Word
+                    if !self.grammar.may_begin(token.text(self.text))
+                        && !has_label(token.text(self.text)) =>
+                {
                     self.spelled_out(at).and_then(|_| self.form(at))
                 }
                 Kind::Word => self
@@ -79,9 +83,12 @@ impl Scan<'_> {
                 .is_some_and(|t| t.kind == Kind::Lowered && !t.spaced)
         };
         let pair = lowered(at + 1) && self.mark(at + 2) == Some(",") && lowered(at + 3);
-        let found = self.grammar.spellings.at(self.text, self.tokens, at, |s| {
-            !pair || self.grammar.symbols[s.meaning].arguments.len() > 1
-        })?;
+        let takes_two = |s: &Spelling| !pair || self.grammar.symbols[s.meaning].arguments.len() > 1;
+        let found = self
+            .squared_behind(at)
+            .or_else(|| self.grammar.spellings.at(self.text, self.tokens, at, takes_two))
+            .or_else(|| self.labelled(at))?;
+        let labelled = has_label(&self.text[self.bytes(at, at + 1)]);
         if !self.begins_word(at) {
             return None;
         }
@@ -100,15 +107,28 @@ impl Scan<'_> {
             next = behind;
         }
         let wordy = words || symbol.bare || with_arguments || symbol.class == Class::P;
-        let compared = self.grammar.comparator(self.text, self.tokens, next, wordy);
-        // `The mean age of the sample at baseline was 74.4 years`
-        let compared = compared.filter(|(_, behind)| !words || self.word(*behind).is_none());
-        let described = compared.is_none() && words && matches!(symbol.name, "M" | "Mdn");
-        let phrased = described.then(|| self.phrase(next)).flatten();
-        let things = (described && phrased.is_none())
+        let compared = self
+            .grammar
+            .comparator(self.text, self.tokens, next, wordy)
+            .filter(|(_, behind)| {
+                // `mean of the` is no comparator yet.
+                let on = self.word(next).is_some() && self.word(*behind).is_some();
+                !on || self.not_significant(*behind).is_some()
+            })
+            .or_else(|| {
+                let passes = words || matches!(symbol.class, Class::P | Class::Ratio);
+                passes.then(|| self.passing(symbol.class, next))?
+            })
+            .or_else(|| {
+                // `Estimate: 0.81`
+                let long = symbol.class == Class::Estimate && self.word(at).is_some_and(|w| w.len() > 2);
+                (long && self.mark(next) == Some(":")).then_some((Comparator::Equal, next + 1))
+            });
+        // `mean length 25 cm`
+        let things = (compared.is_none() && words && matches!(symbol.name, "M" | "Mdn"))
             .then(|| self.behind_things(next))
             .flatten();
-        let (comparator, value_at) = match compared.or(phrased) {
+        let (comparator, value_at) = match compared {
             Some((comparator, behind)) => {
                 // `p-value was < .001`: the sign decides.
                 match self.grammar.comparator(self.text, self.tokens, behind, false) {
@@ -175,7 +195,14 @@ impl Scan<'_> {
         // `Bayes factor 16` can be nothing else.
         let named = words && symbol.name == "BF10";
         let plain = words || !matches!(symbol.class, Class::Ratio | Class::Descriptive | Class::Df);
-        if compared.is_none() && things.is_none() && !named && !self.stands_by(value_at, plain) {
+        if compared.is_none() && things.is_none() && !named && !self.stands_by(value_at, plain)
+            || self.is_no_size(symbol, compared.map(|c| c.0), &value)
+        {
+            return None;
+        }
+        // `the Spearman correlation of 14,737 pairs`
+        let told = compared.is_some() && value_at > 0 && self.word(value_at - 1).is_some();
+        if told && symbol.class == Class::Statistic && !self.stands_by(value_at, true) {
             return None;
         }
         let mut next = value.next;
@@ -188,13 +215,21 @@ impl Scan<'_> {
             }
             next += 1;
         }
-        if !symbol.units && !with_arguments && self.unit(next) {
+        if !symbol.units && !with_arguments && (self.unit(next) || self.shares_a_unit(at, next)) {
             return None;
         }
         if symbol.class == Class::Size
             && self
                 .word(next + usize::from(self.word(next) == Some("independent")))
                 .is_some_and(|w| self.grammar.replicates.contains(w))
+        {
+            return None;
+        }
+        // `Bootstrap values (n = 1000)`
+        if symbol.class == Class::Size
+            && (at.saturating_sub(4)..at)
+                .filter_map(|i| self.word(i))
+                .any(|w| self.grammar.resampling.contains(w.to_lowercase().as_str()))
         {
             return None;
         }
@@ -206,11 +241,6 @@ impl Scan<'_> {
                 .get(next + 1)
                 .is_some_and(|t| t.kind == Kind::Lowered && !t.spaced);
         if self.mark(next + runs_on) == Some("…") || multiplied {
-            return None;
-        }
-        // A correlation of 14,737 is between that many things.
-        let many = value.number.is_whole() && value.number.value() > 1.0;
-        if many && matches!(symbol.name, "r" | "rho" | "tau") {
             return None;
         }
         if self.calculates(symbol.class, &value) {
@@ -231,11 +261,17 @@ impl Scan<'_> {
             next = upper.next;
         }
         // `df = 2, 45` behind F.
-        let paired_off = matches!(symbol.class, Class::Statistic | Class::P) || symbol.name == "M";
+        let paired_off =
+            matches!(symbol.class, Class::Statistic | Class::P | Class::Size) || symbol.name == "M";
         let respectively = paired_off && !found.spelling.plural && self.respectively(next);
         if upper.is_none() && (found.spelling.plural || symbol.name == "df" || respectively) {
             let mut behind = next;
-            while let Some((further, after)) = self.next_in_list(behind) {
+            let listed = if symbol.whole {
+                Company::Whole
+            } else {
+                Company::List
+            };
+            while let Some((further, after)) = self.next_in_list(behind, listed) {
                 more_values.push(self.quantity(name, comparator, &further, symbol.whole));
                 behind = after;
                 if symbol.name == "df" {
@@ -257,7 +293,7 @@ impl Scan<'_> {
         name = argued.unwrap_or(name);
         let class = match argued {
             Some(_) => Class::Statistic,
-            None if name == "level" => Class::Bait,
+            None if matches!(name, "level" | "time") => Class::Bait,
             None => symbol.class,
         };
         let mut first = self.quantity(name, comparator, &value, symbol.whole);
@@ -268,13 +304,12 @@ impl Scan<'_> {
                 .interval
                 .hull(comparator.interval(&upper.number, symbol.whole));
         }
-        // `OR 1.80`; a whole number may be a heart rate or a rate of breaths.
-        let is_ratio = !first.number.is_whole() && first.number.value() < 20.0;
-        // `r² = 0.98`; a bound on it may be a rule.
-        let is_share = symbol.name == "R2"
-            && comparator == Comparator::Equal
-            && !first.number.is_whole()
-            && (0.0..1.0).contains(&first.number.value());
+        // `OR 1.80`, `r² = 0.48`; a whole number may be a heart rate or a rate of breaths.
+        let sure = symbol.sure.is_some_and(|(low, high)| {
+            comparator == Comparator::Equal
+                && !first.number.is_whole()
+                && (low..=high).contains(&first.number.value())
+        });
         let has_more = !more_values.is_empty();
         let mut quantities = vec![first];
         quantities.append(&mut arguments);
@@ -293,8 +328,8 @@ impl Scan<'_> {
             quantities,
             more_values,
             plural: found.spelling.plural || respectively && has_more,
-            alone: symbol.alone || symbol.class == Class::Ratio && is_ratio || is_share,
-            plain: words || with_arguments && argued.is_none(),
+            alone: symbol.alone || sure,
+            plain: words || with_arguments && argued.is_none() || labelled,
         };
         Some((item, next))
     }
@@ -316,7 +351,7 @@ impl Scan<'_> {
     }
 
     /// A number that stands by itself right behind a symbol: not the start of a range, a date, or a unit.
-    pub(super) fn stands_by(&self, at: usize, words: bool) -> bool {
+    fn stands_by(&self, at: usize, words: bool) -> bool {
         let signed = matches!(self.mark(at), Some("-" | "+"));
         let number = if signed { at + 1 } else { at };
         // `mean 2014`, `median (12)`: written-out symbols need a decimal point or a bracket behind.
@@ -351,7 +386,7 @@ impl Scan<'_> {
             Kind::Mark if self.shown(at - 1) == Some("-") && at > 1 && !self.tokens[at - 1].spaced => !self
                 .word(at - 2)
                 .is_some_and(|w| w.len() > 1 && w.bytes().all(|b| b.is_ascii_uppercase())),
-            Kind::Mark => !matches!(self.shown(at - 1), Some("@" | "#" | "$" | "\\")),
+            Kind::Mark => !matches!(self.shown(at - 1), Some("@" | "#" | "$" | "\\" | "^")),
             Kind::Raised => true,
             _ => false,
         }
@@ -366,7 +401,7 @@ impl Scan<'_> {
         }
         if let Some((start, end)) = found.rest {
             let span = start as usize..end as usize;
-            if let Some(number) = Decimal::read(&self.text[span.clone()], false, 0) {
+            if let Some(number) = Decimal::read(&on_the_line(&self.text[span.clone()]), false, 0) {
                 let value = Value {
                     number,
                     span,
@@ -558,12 +593,12 @@ impl Scan<'_> {
         let close = (at + 1..self.tokens.len().min(at + 8)).find(|i| self.mark(*i) == Some(")"))?;
         let wordy = (at + 1..close).all(|i| {
             self.word(i).is_some() || matches!(self.mark(i), Some("-" | "–" | "'" | "," | "/")) || {
-                // `1-tailed`, `2-sided`.
+                // `1-tailed`, `2-sided`, `2-t`.
                 self.tokens[i].kind == Kind::Number
                     && self.mark(i + 1) == Some("-")
                     && self
                         .word(i + 2)
-                        .is_some_and(|w| w.starts_with("tail") || w.starts_with("side"))
+                        .is_some_and(|w| w.starts_with("tail") || w.starts_with("side") || w == "t")
             }
         });
         // The brackets of `M (SD) = …` are no remark, but a second symbol.
@@ -612,14 +647,14 @@ impl Scan<'_> {
     /// A list goes on at token `at` that the sentence deals out with `respectively`.
     fn respectively(&self, at: usize) -> bool {
         const WITHIN: usize = 40;
-        self.next_in_list(at).is_some()
+        self.next_in_list(at, Company::List).is_some()
             && (at..self.tokens.len().min(at + WITHIN))
                 .take_while(|i| self.mark(*i) != Some("."))
                 .any(|i| self.word(i) == Some("respectively"))
     }
 
     /// A further number of a list at token `at`: `, .31`, ` and .759`, `, and .2`, `/ .3`, `or`, `&`.
-    fn next_in_list(&self, at: usize) -> Option<(Value, usize)> {
+    fn next_in_list(&self, at: usize, company: Company) -> Option<(Value, usize)> {
         let mut i = at;
         if matches!(self.mark(i), Some("," | ";" | "/" | "&")) {
             i += 1;
@@ -633,13 +668,13 @@ impl Scan<'_> {
         if i == at {
             return None;
         }
-        let value = self.value(i, Company::List)?;
+        let value = self.value(i, company)?;
         let next = value.next;
         Some((value, next))
     }
 
     /// A unit stands at token `at`.
-    fn unit(&self, at: usize) -> bool {
+    pub(super) fn unit(&self, at: usize) -> bool {
         let Some(shown) = self.shown(at) else { return false };
         if self.tokens[at].kind == Kind::Mark && matches!(shown, "°") {
             return true;

@@ -20,6 +20,8 @@ struct Gap {
     broken: bool,
     /// Words such as `versus` or `than`, behind which another result begins.
     turns: bool,
+    /// It ends in a word and a colon, which name what comes: `; weeding: α = .87`.
+    labels: bool,
     /// `; and`: a list goes on.
     lists: bool,
 }
@@ -74,7 +76,8 @@ impl Scan<'_> {
 
     /// `ts(38) = 2.1 and 3.4` are two items; a list of p stays one until its tests are known.
     fn one_by_one(&self, mut item: Item) -> Vec<Item> {
-        if item.more_values.is_empty() || item.class != Class::Statistic && item.class != Class::Descriptive {
+        let dealt_out = matches!(item.class, Class::Statistic | Class::Descriptive | Class::Size);
+        if item.more_values.is_empty() || !dealt_out {
             return vec![item];
         }
         if item.quantities[0].symbol != "M" && item.class == Class::Descriptive {
@@ -211,7 +214,7 @@ impl Scan<'_> {
                 draft.has_class(Size) && gap.within(0)
             }
             Other if symbol == "count" || symbol == "percent" => false,
-            Other => !again && gap.within(1) && !draft.has("count"),
+            Other => !again && gap.within(1) && !draft.has("count") && !gap.labels,
             Bait => gap.within(1),
         }
     }
@@ -261,11 +264,13 @@ impl Scan<'_> {
             bytes: 0,
             broken: false,
             turns: false,
+            labels: false,
             lists: false,
         };
         if to <= from {
             return gap;
         }
+        gap.labels = to >= from + 2 && self.mark(to - 1) == Some(":") && self.word(to - 2).is_some();
         gap.bytes = (self.tokens[to - 1].end - self.tokens[from].start) as usize;
         let mut depth = 0i32;
         let mut closed = false;

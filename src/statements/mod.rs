@@ -9,6 +9,7 @@ mod formulas;
 mod grammar;
 mod items;
 mod join;
+mod names;
 mod pairs;
 mod sentences;
 mod spelled;

@@ -52,6 +52,9 @@ impl Scan<'_> {
                 level = Some(value);
             }
         }
+        if names.low != "range_low" {
+            next = self.behind_interval_name(next);
+        }
         // `CI = [`, `CI: `, `CI, `, `CI of `, `CI (`, `CI for the difference [`
         for _ in 0..3 {
             match self.shown(next) {
@@ -128,6 +131,12 @@ impl Scan<'_> {
         matches!(self.shown(at), Some("," | ";" | "-" | "–" | "to" | "and"))
     }
 
+    /// A dash or `to` stands at token `at`, and a number behind it.
+    fn range_goes_on(&self, at: usize) -> bool {
+        matches!(self.shown(at), Some("–" | "-" | "to"))
+            && self.tokens.get(at + 1).is_some_and(|t| t.kind == Kind::Number)
+    }
+
     /// Two numbers with something between that makes them the ends of an interval, in brackets or
     /// not: both, and the token behind (behind a closing bracket if there is one).
     pub(super) fn two_ends(&self, at: usize) -> Option<(Value, Value, usize)> {
@@ -140,21 +149,18 @@ impl Scan<'_> {
                 return None;
             }
         }
-        let mut low = self.value(i, Company::List)?;
         // `18,6–73,1`: a comma on each side can only be a decimal mark.
-        let mut company = Company::List;
-        if self.mark(low.next) == Some(",")
-            && let Some(comma) = self.value(i, Company::Single)
-            && comma.next > low.next
-            && matches!(self.shown(comma.next), Some("–" | "-" | "to"))
-            && self
-                .tokens
-                .get(comma.next + 1)
-                .is_some_and(|t| t.kind == Kind::Number)
-        {
-            low = comma;
-            company = Company::Single;
-        }
+        let comma = self
+            .value(i, Company::Single)
+            .filter(|v| self.mark(i + 1) == Some(",") && v.next == i + 3 && self.range_goes_on(v.next));
+        let (low, high) = match comma {
+            Some(low) => {
+                let high = self.value(low.next + 1, Company::Single);
+                (Some(low), high)
+            }
+            None => (self.end_of_interval(i, true), None),
+        };
+        let low = low?;
         i = self.skip_unit(low.next);
         let separator = self.shown(i)?;
         let spaced = self.tokens[i].spaced;
@@ -169,7 +175,7 @@ impl Scan<'_> {
         if separator == "and" && !open && !spaced {
             return None;
         }
-        let high = self.value(i, company)?;
+        let high = high.or_else(|| self.end_of_interval(i, false))?;
         let mut next = self.skip_unit(high.next);
         // The interval's own bracket closes; what else stands in it stays outside.
         if open && matches!(self.mark(next), Some(")" | "]" | "}")) {
@@ -181,6 +187,22 @@ impl Scan<'_> {
             }
         }
         Some((low, high, next))
+    }
+
+    /// One end of an interval at token `at`: a comma in it separates, unless what stands behind shows
+    /// that it groups thousands (`698–1,196`, `1,200 to 1,500`).
+    fn end_of_interval(&self, at: usize, low: bool) -> Option<Value> {
+        let listed = self.value(at, Company::List)?;
+        let Some(grouped) = self.value(at, Company::Sole).filter(|g| g.next > listed.next) else {
+            return Some(listed);
+        };
+        let spaced = self.tokens.get(grouped.next + 1).is_some_and(|t| t.spaced);
+        let groups = match self.shown(grouped.next) {
+            Some("–" | "—" | "-" | "to" | "and" | ";") => low,
+            Some(",") => !low || spaced,
+            _ => !low,
+        };
+        Some(if groups { grouped } else { listed })
     }
 
     /// Percent signs, degrees and short units behind the end of an interval.
@@ -247,7 +269,7 @@ impl Scan<'_> {
     }
 
     /// `(35.3%)` behind a number of cases.
-    fn bracketed_percent(&self, at: usize) -> Option<Item> {
+    pub(super) fn bracketed_percent(&self, at: usize) -> Option<Item> {
         let value = self.value(at + 1, Company::Single)?;
         let next = value.next;
         if self.mark(next) != Some("%") || !matches!(self.mark(next + 1), Some(")" | "]" | "," | ";")) {
@@ -371,14 +393,7 @@ impl Scan<'_> {
 
     /// `3.71 ± 0.94` without a symbol before it.
     pub(super) fn mean_and_spread(&self, at: usize) -> Option<(Vec<Item>, usize)> {
-        // `32.5° ± 9.2°`
-        let sign = at
-            + if matches!(self.mark(at + 1), Some("°" | "%")) {
-                2
-            } else {
-                1
-            };
-        if self.mark(sign) != Some("±") {
+        if !(at + 1..at + 8).any(|i| self.mark(i) == Some("±")) {
             return None;
         }
         let from = if at > 0 && self.mark(at - 1) == Some("-") && self.tokens[at - 1].spaced {
@@ -388,7 +403,10 @@ impl Scan<'_> {
         };
         let value = self.value(from, Company::Single)?;
         let next = value.next;
-        if next != at + 1 {
+        // `32.5° ± 9.2°`
+        let unit = matches!(self.mark(next), Some("°" | "%"));
+        let sign = if unit { next + 1 } else { next };
+        if self.mark(sign) != Some("±") {
             return None;
         }
         let mean = Item {

@@ -129,6 +129,14 @@ impl Spellings {
         self
     }
 
+    /// The spelling that is this one piece and nothing else.
+    pub fn only(&self, piece: &str) -> Option<&Spelling> {
+        self.by_head
+            .get(&head(piece))?
+            .iter()
+            .find(|s| s.exact && s.pieces.len() == 1 && s.pieces[0].text == piece)
+    }
+
     /// Whether a spelling may begin with this word; false for nearly all others.
     pub fn may_begin(&self, word: &str) -> bool {
         let byte = word.as_bytes().first().map_or(0, u8::to_ascii_lowercase);

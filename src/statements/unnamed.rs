@@ -20,28 +20,6 @@ const NAME_SERVES: usize = 6;
 const THINGS: usize = 5;
 
 impl Scan<'_> {
-    /// Words from token `at` on that lead to a number: `age of the sample at baseline was`. Gives the
-    /// comparator and the token of the number.
-    pub(super) fn phrase(&self, at: usize) -> Option<(Comparator, usize)> {
-        const WITHIN: usize = 10;
-        // `by means of …`, `medians of both …`
-        if self.word(at - 1).is_none_or(|w| w.ends_with('s')) {
-            return None;
-        }
-        for i in at..at + WITHIN {
-            let joined = self.mark(i) == Some("-") && !self.tokens[i].spaced;
-            let word = self.word(i);
-            if !joined && word.is_none_or(|w| matches!(w, "and" | "or" | "but" | "that" | "which")) {
-                return None;
-            }
-            if matches!(word, Some("was" | "were" | "is" | "are")) {
-                let (comparator, behind) = self.grammar.comparator(self.text, self.tokens, i, true)?;
-                return self.stands_by(behind, true).then_some((comparator, behind));
-            }
-        }
-        None
-    }
-
     /// A number at token `at` whose interval or spread follows.
     pub(super) fn unnamed(&self, at: usize) -> Option<(Vec<Item>, usize)> {
         if !self.something_follows(at) {
@@ -72,7 +50,10 @@ impl Scan<'_> {
             .flatten()
         {
             ratio
-        } else if bracket && !percent && (self.near("medians") || self.medians && !self.names_intervals()) {
+        } else if bracket
+            && !percent
+            && (self.near("medians") || self.medians && !self.names_intervals() || self.after_spread(from))
+        {
             return self.quartiles(&value, from, next);
         } else {
             return None;
@@ -156,7 +137,8 @@ impl Scan<'_> {
                 return None;
             }
             let decimals = token.text(self.text).contains(['.', '·']);
-            let measured = self.unit_word(number + 1) || self.mark(number + 1) == Some("±");
+            let times = matches!(self.word(number + 1), Some("times" | "fold"));
+            let measured = self.unit_word(number + 1) && !times || self.mark(number + 1) == Some("±");
             let plainly = said && matches!(self.shown(i), Some("=" | "was" | "were"));
             return (token.spaced && (decimals || measured || plainly)).then_some(number);
         }
@@ -177,6 +159,16 @@ impl Scan<'_> {
             },
             _ => false,
         })
+    }
+
+    /// `62 ± 12 57 (43–84)`: the median of a cell that gives both, in a manuscript that says so.
+    fn after_spread(&self, from: usize) -> bool {
+        // Stars and daggers of the table's notes may stand between.
+        let before = (0..from).rev().find(|i| {
+            !matches!(self.mark(*i), Some("*" | "†" | "‡" | "#" | "&" | "§"))
+                && self.tokens[*i].kind != Kind::Raised
+        });
+        self.medians && before.is_some_and(|i| i > 0 && self.mark(i - 1) == Some("±"))
     }
 
     /// The block speaks of other intervals or ranges, or is a cell, which its own head names.
@@ -438,5 +430,34 @@ impl Scan<'_> {
             || self
                 .word(at - 2)
                 .is_some_and(|w| matches!(w, "total" | "number" | "sum" | "sample"))
+    }
+}
+
+#[cfg(test)]
+mod tests {
+    use crate::manuscript::{BlockKind, Builder, Format};
+    use crate::statements::{Grammar, find};
+
+    #[test]
+    fn quartiles_are_read_where_the_manuscript_announces_them() {
+        let read = |announced: &str| {
+            let mut builder = Builder::new(Format::Text);
+            for text in [
+                announced,
+                "Watering took 35 ± 6 min, 33 (28–40) in the east, see Figures 3 (5–9).",
+            ] {
+                builder.open(BlockKind::Paragraph);
+                builder.text(text);
+            }
+            let manuscript = builder.finish();
+            let found = find(&manuscript, Grammar::built_in(), 0.05);
+            let symbols = found.iter().flat_map(|s| s.quantities.iter().map(|q| q.symbol));
+            symbols.collect::<Vec<_>>()
+        };
+        assert_eq!(
+            read("We give means ± SEM and medians (1st quartile–3rd quartile)."),
+            ["M", "spread", "Mdn", "IQR_low", "IQR_high"]
+        );
+        assert_eq!(read("We give means ± SEM and medians."), ["M", "spread"]);
     }
 }

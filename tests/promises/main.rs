@@ -113,10 +113,10 @@ impl Style {
                 }
             })
             .collect();
-        let list = if self.comma { "; " } else { *r.pick(&[", ", ","]) };
+        let list = if self.comma { "; " } else { r.pick(&[", ", ","]) };
         let (open, close) = self.brackets;
         let symbol = match result.symbol {
-            "χ2" => *r.pick(&["χ2", "χ²", "X2", "chi-square"]),
+            "χ2" => r.pick(&["χ2", "χ²", "X2", "chi-square"]),
             other => other,
         };
         if df.is_empty() {

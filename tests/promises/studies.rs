@@ -34,8 +34,8 @@ impl Random {
         (0..n).map(|_| mean + sd * self.normal()).collect()
     }
 
-    pub fn pick<'a, T>(&mut self, of: &'a [T]) -> &'a T {
-        &of[self.whole(0, of.len() - 1)]
+    pub fn pick<T: Copy>(&mut self, of: &[T]) -> T {
+        of[self.whole(0, of.len() - 1)]
     }
 }
 

@@ -263,7 +263,8 @@ impl<'a> Reading<'a> {
         }
         self.context.formula |= marks.formula;
         if element.is_block() {
-            if marks.part.is_some() {
+            // A heading may be called like its section, but does not contain it.
+            if marks.part.is_some() && !matches!(element, Element::Heading(_)) {
                 self.context.part = marks.part;
             }
             self.context.notes |= marks.notes;

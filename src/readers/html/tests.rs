@@ -223,7 +223,7 @@ fn parts_are_known_by_heading_or_mark() {
          <h2>1. Results</h2><p>B.</p><h2>Acknowledgements</h2><p>C.</p><h2>Appendix A</h2><p>D.</p>\
          <div id=refs class='references csl-bib-body'><div>Reed, p = .01</div></div>\
          <section class=footnotes role=doc-endnotes><hr><ol><li id=fn1><p>E, p = .02.\
-         <a href=# class=footnote-back role=doc-backlink>↩</a></p></li></ol></section><h2>Literature cited</h2><p>F",
+         <a href=# class=footnote-back role=doc-backlink>↩</a></p></li></ol></section><h2 id=references>Literature cited</h2><p>F",
     );
     let of = |needle: &str| {
         let block = m.blocks.iter().find(|b| m.block_text(b).contains(needle));

@@ -40,6 +40,12 @@ impl<'a> Reading<'a> {
             // The indentation between a term and its definition.
             return;
         }
+        if self.space_due {
+            self.space_due = false;
+            if !raw.starts_with([',', '.', ';', ':', ')', ']']) {
+                self.b.text(" ");
+            }
+        }
         if self.in_citation && is_number_list(raw) && glued(self.last) {
             // Citation numbers without brackets are raised on the page.
             self.b.superscript(raw);
@@ -99,6 +105,7 @@ impl<'a> Reading<'a> {
             self.b.open(kind);
         }
         self.last = b' ';
+        self.space_due = false;
         self.write_label();
     }
 
@@ -339,6 +346,9 @@ impl<'a> Reading<'a> {
         };
         let mut shifted = std::mem::take(&mut self.shifted);
         if !self.context.silent && (self.b.is_open() || !is_blank(&shifted)) {
+            if std::mem::take(&mut self.space_due) {
+                self.b.text(" ");
+            }
             if !self.b.is_open() {
                 // The block must not find the text that it is opened for.
                 self.open_block(self.context.kind);
@@ -412,6 +422,9 @@ impl<'a> Reading<'a> {
         self.flush_shift();
         if !self.b.is_open() {
             self.open_block(self.context.kind);
+        }
+        if std::mem::take(&mut self.space_due) {
+            self.b.text(" ");
         }
         math.finish(&mut self.b);
         self.last = b'x';

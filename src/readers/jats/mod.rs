@@ -120,6 +120,8 @@ struct Reading<'a> {
     nesting: u8,
     /// Last byte of the text written last.
     last: u8,
+    /// A displayed formula has ended: a space follows, unless punctuation does.
+    space_due: bool,
     in_citation: bool,
     declared: Declared<'a>,
     article_seen: bool,
@@ -158,6 +160,7 @@ impl<'a> Reading<'a> {
             put_off: Vec::new(),
             nesting: 0,
             last: b' ',
+            space_due: false,
             in_citation: false,
             declared: Declared::default(),
             article_seen: false,
@@ -571,7 +574,7 @@ impl<'a> Reading<'a> {
                     self.close_block();
                     self.flush_put_off()?;
                 } else {
-                    self.text(" ");
+                    self.space_due = true;
                 }
             }
             Tag::InlineFormula | Tag::Alternatives => self.close_formula(),

@@ -138,9 +138,9 @@ fn a_sentence_is_not_torn_by_what_stands_in_it() {
             "<p>Watering<fn><label>a</label><p>In litres.</p></fn> differed, <italic>t</italic>(28) \
              <disp-formula><label>(1)</label><mml:math><mml:mo>=</mml:mo><mml:mn>2.20</mml:mn></mml:math></disp-formula>, \
              <table-wrap><label>Table 1</label><caption><p>Plots</p></caption><table><tr><td>1</td></tr></table></table-wrap>\
-             <italic>p</italic> = .036.</p><p>Next.</p>"
+             <italic>p</italic> = .036.<disp-formula><mml:math><mml:mi>d</mml:mi></mml:math></disp-formula>so</p><p>Next.</p>"
         ),
-        "Watering differed, t(28) = 2.20 , p = .036.\n\nᵃ In litres.\n\nTable 1. Plots\n\n1\n\nNext.\n"
+        "Watering differed, t(28) = 2.20, p = .036. d so\n\nᵃ In litres.\n\nTable 1. Plots\n\n1\n\nNext.\n"
     );
 }
 

@@ -159,8 +159,10 @@ impl Math {
             Kind::Fraction | Kind::SquareRoot => self.bracket(frame.child),
             Kind::Root if frame.children > 1 => self.text.push(')'),
             Kind::Fenced => self.text.push_str(&frame.close),
-            Kind::Under if frame.children > 1 => self.end_limit(frame.child, '_'),
-            Kind::Over | Kind::UnderOver if frame.children > 1 => self.end_limit(frame.child, '^'),
+            Kind::Under if frame.children > 1 => self.end_limit(frame.start, frame.child, '_'),
+            Kind::Over | Kind::UnderOver if frame.children > 1 => {
+                self.end_limit(frame.start, frame.child, '^')
+            }
             _ => {}
         }
         self.shift(frame.outside);
@@ -235,6 +237,7 @@ impl Math {
         frame.children += 1;
         let kind = frame.kind;
         let previous = frame.child;
+        let start = frame.start;
         // Within a power, scripts are part of the power: it must not fall into pieces.
         let power = self.shift == Shift::Raised && index > 0;
         match kind {
@@ -259,7 +262,7 @@ impl Math {
                 }
                 return;
             }
-            Kind::UnderOver if index == 2 => self.end_limit(previous, '_'),
+            Kind::UnderOver if index == 2 => self.end_limit(start, previous, '_'),
             // The mark for a bracket under the root was set when the root began.
             Kind::SquareRoot => return,
             Kind::Fenced if index > 0 => {
@@ -306,7 +309,7 @@ impl Math {
 
     /// What stands above or below a letter or sign: an accent joins the letter, a limit is put in
     /// brackets behind it.
-    fn end_limit(&mut self, at: usize, mark: char) {
+    fn end_limit(&mut self, start: usize, at: usize, mark: char) {
         let limit = self.text[at..].trim().to_string();
         let accent = match limit.as_str() {
             "¯" | "‾" | "ˉ" | "-" | "−" | "―" | "–" | "\u{305}" | "\u{304}" => Some('\u{304}'),
@@ -322,11 +325,15 @@ impl Math {
         );
         self.cut(at);
         match accent {
-            Some(accent) if self.text.ends_with(char::is_alphabetic) => {
+            Some(accent) if at > start && self.text.ends_with(char::is_alphabetic) => {
                 let letter = self.text.pop().unwrap_or_default();
                 match unicode_normalization::char::compose(letter, accent) {
                     Some(one) => self.text.push(one),
                     None => self.text.extend([letter, accent]),
+                }
+                // The text before the limit may have become longer.
+                for run in self.runs.iter_mut().rev().take_while(|r| r.0 >= at) {
+                    run.0 = self.text.len();
                 }
             }
             None if !drawn => {

@@ -108,6 +108,16 @@ fn accents_join_their_letter() {
     assert_eq!(line("<mover><mi>x</mi><mo>¯</mo></mover>"), "x\u{304}");
     assert_eq!(line("<mover><mi>y</mi><mo>^</mo></mover>"), "ŷ");
     assert_eq!(
+        line(
+            "<mi>t</mi><mover><mrow/><mo>˙</mo></mover><msup><mover><mi>t</mi><mo>˙</mo></mover><mi>n</mi></msup>"
+        ),
+        "tṫ^n"
+    );
+    assert_eq!(
+        line("<msup><mi>x</mi><mover><mi>t</mi><mo>˙</mo></mover></msup><mi>y</mi>"),
+        "x^ṫy"
+    );
+    assert_eq!(
         line("<mover><mi>β</mi><mo>^</mo></mover><mo>=</mo><mn>.2</mn>"),
         "β\u{302} = .2"
     );
@@ -159,4 +169,52 @@ fn any_nesting_ends() {
     let deep = format!("{}<mi>x</mi>{}", "<msup>".repeat(2000), "</msup>".repeat(2000));
     assert_eq!(line(&deep), "");
     assert_eq!(line("<mrow><msup><mi>x"), "x");
+}
+
+#[test]
+fn formulas_of_any_shape_are_read() {
+    const NAMES: [&str; 20] = [
+        "mrow",
+        "mi",
+        "mn",
+        "mo",
+        "mtext",
+        "msup",
+        "msub",
+        "msubsup",
+        "mfrac",
+        "msqrt",
+        "mroot",
+        "mover",
+        "munder",
+        "munderover",
+        "mfenced",
+        "mmultiscripts",
+        "mprescripts",
+        "mtable",
+        "semantics",
+        "annotation",
+    ];
+    const TEXTS: [&str; 12] = ["x", "ẋ", "t", "˙", "¯", "^", "2", "=", "log", "(", "−", "η"];
+    let mut state = 7u64;
+    let mut random = |below: usize| {
+        // Knuth's MMIX generator; its high bits are the good ones.
+        state = state
+            .wrapping_mul(6364136223846793005)
+            .wrapping_add(1442695040888963407);
+        (state >> 33) as usize % below
+    };
+    for _ in 0..20_000 {
+        let mut math = Math::new();
+        for _ in 0..random(60) {
+            match random(5) {
+                0 | 1 => math.start(NAMES[random(NAMES.len())], |_| None),
+                2 => math.end(),
+                _ => math.text(TEXTS[random(TEXTS.len())]),
+            }
+        }
+        let mut b = Builder::new(Format::Html);
+        math.finish(&mut b);
+        assert!(!b.finish().text.contains(PERHAPS_BRACKET));
+    }
 }
