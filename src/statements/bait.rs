@@ -28,8 +28,27 @@ impl Scan<'_> {
         if lonely && first.class == Class::Df {
             return false;
         }
+        // Letters that stand for a rank test only where ranks are spoken of: `entropy (H = 0.82)`.
+        let ranks = matches!(first.quantities[0].symbol, "H" | "W" | "U" | "Q");
+        if lonely
+            && ranks
+            && !first.plain
+            && !ranks_are_named(&self.text[block.clone()])
+            && !self.mostly(&bytes, block)
+        {
+            return false;
+        }
+        // `a range of 2–20 mg` describes what was set; a result has it in brackets or behind a comma.
+        if lonely && first.quantities[0].symbol == "range_low" {
+            let before = self.text[block.start..bytes.start].trim_end();
+            let what = &self.text[bytes.clone()];
+            let said = ["range of", "range from", "ranges of", "range between"];
+            if said.iter().any(|s| what.starts_with(s)) && !before.ends_with(['(', '[', ',', ';', ':']) {
+                return false;
+            }
+        }
         // Nearly the whole block is this: somebody typed just the result.
-        let whole = (bytes.end - bytes.start) * 2 > block.end - block.start;
+        let whole = self.mostly(&bytes, block);
         if draft.items.iter().all(|i| !i.alone && !i.plain) && !supported && !whole {
             return false;
         }
@@ -72,6 +91,11 @@ impl Scan<'_> {
             }
         }
         true
+    }
+
+    /// The range is most of its block.
+    fn mostly(&self, bytes: &Range<usize>, block: &Range<usize>) -> bool {
+        (bytes.end - bytes.start) * 2 > block.end - block.start
     }
 
     /// What stands behind a comparator and yet is no value of such a symbol: times of day and
@@ -142,4 +166,14 @@ impl Scan<'_> {
             && !self.text[open + 1..].starts_with(' ');
         opens && close - open < 200
     }
+}
+
+/// Words for tests whose statistics are H, W, U or Q.
+fn ranks_are_named(text: &str) -> bool {
+    const WORDS: [&str; 10] = [
+        "rusk", "ilcox", "Mann", "mann", "hapiro", "endall", "ochran", "eterogen", "riedman", "rank",
+    ];
+    WORDS
+        .iter()
+        .any(|w| memchr::memmem::find(text.as_bytes(), w.as_bytes()).is_some())
 }

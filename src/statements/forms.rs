@@ -90,10 +90,7 @@ impl Form {
                 } else {
                     Company::Single
                 };
-                let value = match *symbol {
-                    "count" => scan.value(at, company).or_else(|| scan.number_word(at)),
-                    _ => scan.value(at, company),
-                }?;
+                let value = scan.value(at, company)?;
                 let next = value.next;
                 slots.push((symbol, value));
                 let done = self.from(scan, element + 1, next, slots);

@@ -42,6 +42,7 @@ pub struct Symbol {
     pub above: Option<(f64, &'static str)>,
     pub below: Option<(f64, &'static str)>,
     pub several: Option<&'static str>,
+    pub argued: Option<&'static str>,
     pub sure: Option<(f64, f64)>,
     /// Letters of the symbol that a label may be run together with.
     pub labelled: Vec<char>,
@@ -129,6 +130,7 @@ struct RawSymbol {
     above: Option<(f64, String)>,
     below: Option<(f64, String)>,
     several: Option<String>,
+    argued: Option<String>,
     sure: Option<(f64, f64)>,
     #[serde(default)]
     labelled: Vec<char>,
@@ -291,6 +293,7 @@ impl Grammar {
                 below: raw.below.as_ref().map(|(v, s)| (*v, names.get(s))),
                 sure: raw.sure,
                 several: raw.several.as_ref().map(|s| names.get(s)),
+                argued: raw.argued.as_ref().map(|s| names.get(s)),
                 labelled: raw.labelled.clone(),
                 zero: raw.zero,
                 beside: raw

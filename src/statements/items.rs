@@ -3,7 +3,7 @@
 
 use super::grammar::{Class, Symbol};
 use super::names::has_label;
-use super::spellings::Found;
+use super::spellings::{Found, Spelling};
 use super::tokens::{Kind, on_the_line};
 use super::values::{Company, Value};
 use super::{Quantity, Scan};
@@ -41,14 +41,14 @@ impl Scan<'_> {
                     if !self.grammar.may_begin(token.text(self.text))
                         && !has_label(token.text(self.text)) =>
                 {
-                    self.number_word(at).and_then(|_| self.form(at))
+                    self.spelled_out(at).and_then(|_| self.form(at))
                 }
                 Kind::Word => self
                     .interval(at)
                     .or_else(|| self.paired(at))
                     .or_else(|| self.assignment(at))
                     .map(|(item, next)| (vec![item], next))
-                    .or_else(|| self.number_word(at).and_then(|_| self.form(at))),
+                    .or_else(|| self.spelled_out(at).and_then(|_| self.form(at))),
                 Kind::Number => self
                     .form(at)
                     .or_else(|| self.mean_and_spread(at))
@@ -76,15 +76,26 @@ impl Scan<'_> {
 
     /// `symbol arguments comparator number` at token `at`.
     pub(super) fn assignment(&self, at: usize) -> Option<(Item, usize)> {
+        // `f₂,₄₅`: the lowered digits are two df, and no `f₂`.
+        let lowered = |i: usize| {
+            self.tokens
+                .get(i)
+                .is_some_and(|t| t.kind == Kind::Lowered && !t.spaced)
+        };
+        let pair = lowered(at + 1) && self.mark(at + 2) == Some(",") && lowered(at + 3);
+        let takes_two = |s: &Spelling| !pair || self.grammar.symbols[s.meaning].arguments.len() > 1;
         let found = self
             .squared_behind(at)
-            .or_else(|| self.grammar.spellings.at(self.text, self.tokens, at, |_| true))
+            .or_else(|| self.grammar.spellings.at(self.text, self.tokens, at, takes_two))
             .or_else(|| self.labelled(at))?;
         let labelled = has_label(&self.text[self.bytes(at, at + 1)]);
         if !self.begins_word(at) {
             return None;
         }
         let symbol = &self.grammar.symbols[found.spelling.meaning];
+        if self.factor(at, found.next, symbol.class) {
+            return None;
+        }
         let words = found.spelling.words;
         let (mut arguments, mut next) = self.arguments(&found);
         let with_arguments = !arguments.is_empty();
@@ -113,6 +124,10 @@ impl Scan<'_> {
                 let long = symbol.class == Class::Estimate && self.word(at).is_some_and(|w| w.len() > 2);
                 (long && self.mark(next) == Some(":")).then_some((Comparator::Equal, next + 1))
             });
+        // `mean length 25 cm`
+        let things = (compared.is_none() && words && matches!(symbol.name, "M" | "Mdn"))
+            .then(|| self.behind_things(next))
+            .flatten();
         let (comparator, value_at) = match compared {
             Some((comparator, behind)) => {
                 // `p-value was < .001`: the sign decides.
@@ -121,6 +136,11 @@ impl Scan<'_> {
                     _ => (comparator, behind),
                 }
             }
+            // `(SD ± 3.1)`
+            None if matches!(symbol.name, "SD" | "SE") && self.mark(next) == Some("±") => {
+                (Comparator::Equal, next + 1)
+            }
+            None if things.is_some() => (Comparator::Equal, things?),
             None if words || symbol.bare => {
                 let skipped = matches!(self.mark(next), Some("," | ":"));
                 // `SD118` is a name.
@@ -172,8 +192,10 @@ impl Scan<'_> {
             Company::Single
         };
         let value = self.value(value_at, company)?;
+        // `Bayes factor 16` can be nothing else.
+        let named = words && symbol.name == "BF10";
         let plain = words || !matches!(symbol.class, Class::Ratio | Class::Descriptive | Class::Df);
-        if compared.is_none() && !self.stands_by(value_at, plain)
+        if compared.is_none() && things.is_none() && !named && !self.stands_by(value_at, plain)
             || self.is_no_size(symbol, compared.map(|c| c.0), &value)
         {
             return None;
@@ -221,6 +243,9 @@ impl Scan<'_> {
         if self.mark(next + runs_on) == Some("…") || multiplied {
             return None;
         }
+        if self.calculates(symbol.class, &value) {
+            return None;
+        }
         // No size has decimals.
         if symbol.whole && !value.number.is_whole() {
             return None;
@@ -263,16 +288,21 @@ impl Scan<'_> {
         {
             name = several;
         }
-        let class = if matches!(name, "level" | "time") {
-            Class::Bait
-        } else {
-            symbol.class
+        // `f(2, 45)` is an F.
+        let argued = symbol.argued.filter(|_| with_arguments);
+        name = argued.unwrap_or(name);
+        let class = match argued {
+            Some(_) => Class::Statistic,
+            None if matches!(name, "level" | "time") => Class::Bait,
+            None => symbol.class,
         };
         let mut first = self.quantity(name, comparator, &value, symbol.whole);
         if let Some(upper) = &upper {
             first.span.end = upper.span.end;
             first.printed = on_the_line(&self.text[first.span.clone()]);
-            first.interval = first.interval.hull(upper.number.rounding());
+            first.interval = first
+                .interval
+                .hull(comparator.interval(&upper.number, symbol.whole));
         }
         // `OR 1.80`, `r² = 0.48`; a whole number may be a heart rate or a rate of breaths.
         let sure = symbol.sure.is_some_and(|(low, high)| {
@@ -299,7 +329,7 @@ impl Scan<'_> {
             more_values,
             plural: found.spelling.plural || respectively && has_more,
             alone: symbol.alone || sure,
-            plain: words || with_arguments || labelled,
+            plain: words || with_arguments && argued.is_none() || labelled,
         };
         Some((item, next))
     }
@@ -308,7 +338,7 @@ impl Scan<'_> {
     fn range_end(&self, symbol: &Symbol, comparator: Comparator, at: usize) -> Option<Value> {
         let ranged = matches!(
             symbol.class,
-            Class::Statistic | Class::P | Class::Effect | Class::Estimate | Class::Ratio
+            Class::Statistic | Class::P | Class::Effect | Class::Estimate | Class::Ratio | Class::Size
         );
         let dash = self.mark(at) == Some("–")
             || self.mark(at) == Some("-") && !self.tokens[at].spaced
@@ -556,7 +586,7 @@ impl Scan<'_> {
     }
 
     /// A short remark in brackets without numbers, at token `at`: the token behind it.
-    fn remark(&self, at: usize) -> Option<usize> {
+    pub(super) fn remark(&self, at: usize) -> Option<usize> {
         if self.mark(at) != Some("(") {
             return None;
         }
@@ -705,12 +735,13 @@ impl Scan<'_> {
             return None;
         }
         // All forms go on with a mark or one of few words; look before trying each.
-        let behind = self.shown(at + 1)?;
+        let last = self.spelled_out(at).map_or(at, |v| v.next - 1);
+        let behind = self.shown(last + 1)?;
         let promising = matches!(
             behind,
             "/" | "(" | "[" | "%" | "," | "of" | "out" | "df" | "d" | "degrees" | "degree" | "and"
         );
-        if !promising && !self.may_count(at) {
+        if !promising && !self.may_count(at, last) {
             return None;
         }
         for form in &self.grammar.forms {

@@ -153,13 +153,17 @@ impl Scan<'_> {
                     && !gap.lists
                     && counted
                     && !draft.only(Other)
-                    && (!again || symbol == "n" && !draft.only(Size))
+                    && (!again || symbol == "n" && !draft.only(Size) && !draft.has_class(P))
             }
             Interval if symbol.starts_with("range") || item.quantities[0].symbol.starts_with("IQR") => {
                 draft.has_class(Descriptive) && gap.within(2)
             }
             Interval => {
-                (draft.has_test() || draft.has_class(Descriptive) || draft.has_class(Other)) && gap.within(5)
+                // `0.944 slugs per bed per square metre and year (95% CI …`
+                let lone =
+                    draft.items.len() == 1 && self.mark(item.tokens.start.wrapping_sub(1)) == Some("(");
+                (draft.has_test() || draft.has_class(Descriptive) || draft.has_class(Other))
+                    && gap.within(if lone { 8 } else { 5 })
             }
             Effect => !again && (draft.has_test() && gap.within(6) || gap.within(0)) && !draft.only(Size),
             Statistic if again => false,
@@ -299,7 +303,9 @@ impl Scan<'_> {
                         && self
                             .word(i + 2)
                             .is_some_and(|w| w.starts_with("tail") || w.starts_with("side"));
-                    gap.broken |= !compound;
+                    // `cells/mm3`, `CD4`
+                    let named = i > from && !token.spaced && self.tokens[i - 1].kind == Kind::Word;
+                    gap.broken |= !compound && !named;
                 }
                 Kind::Mark => match shown {
                     "(" | "[" => depth += 1,

@@ -5,12 +5,14 @@
 mod bait;
 mod find;
 mod forms;
+mod formulas;
 mod grammar;
 mod items;
 mod join;
 mod names;
 mod pairs;
 mod sentences;
+mod spelled;
 mod spellings;
 mod tokens;
 mod unnamed;

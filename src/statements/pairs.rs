@@ -1,11 +1,11 @@
 //! *Pairs*: intervals (`95% CI [0.1, 1.5]`), means with their spread (`3.71 ± 0.94`,
 //! `mean (SD) 3.4 (1.1)`), ratios with the ends of their interval in brackets (`OR = 1.52 (1.10–2.11)`).
 
-use super::Scan;
 use super::grammar::Class;
 use super::items::Item;
 use super::tokens::Kind;
 use super::values::{Company, Value};
+use super::{Scan, sentences};
 use crate::numbers::Comparator;
 
 /// Most tokens between a level and the word for its interval: `95% bias-corrected bootstrap CI`.
@@ -131,6 +131,12 @@ impl Scan<'_> {
         matches!(self.shown(at), Some("," | ";" | "-" | "–" | "to" | "and"))
     }
 
+    /// A dash or `to` stands at token `at`, and a number behind it.
+    fn range_goes_on(&self, at: usize) -> bool {
+        matches!(self.shown(at), Some("–" | "-" | "to"))
+            && self.tokens.get(at + 1).is_some_and(|t| t.kind == Kind::Number)
+    }
+
     /// Two numbers with something between that makes them the ends of an interval, in brackets or
     /// not: both, and the token behind (behind a closing bracket if there is one).
     pub(super) fn two_ends(&self, at: usize) -> Option<(Value, Value, usize)> {
@@ -143,7 +149,18 @@ impl Scan<'_> {
                 return None;
             }
         }
-        let low = self.end_of_interval(i, true)?;
+        // `18,6–73,1`: a comma on each side can only be a decimal mark.
+        let comma = self
+            .value(i, Company::Single)
+            .filter(|v| self.mark(i + 1) == Some(",") && v.next == i + 3 && self.range_goes_on(v.next));
+        let (low, high) = match comma {
+            Some(low) => {
+                let high = self.value(low.next + 1, Company::Single);
+                (Some(low), high)
+            }
+            None => (self.end_of_interval(i, true), None),
+        };
+        let low = low?;
         i = self.skip_unit(low.next);
         let separator = self.shown(i)?;
         let spaced = self.tokens[i].spaced;
@@ -158,7 +175,7 @@ impl Scan<'_> {
         if separator == "and" && !open && !spaced {
             return None;
         }
-        let high = self.end_of_interval(i, false)?;
+        let high = high.or_else(|| self.end_of_interval(i, false))?;
         let mut next = self.skip_unit(high.next);
         // The interval's own bracket closes; what else stands in it stays outside.
         if open && matches!(self.mark(next), Some(")" | "]" | "}")) {
@@ -207,10 +224,7 @@ impl Scan<'_> {
         let at = item.tokens.end;
         let head = &item.quantities[0];
         if self.mark(at) == Some("±") {
-            return self
-                .spread_named(at + 1, self.spread_symbol().unwrap_or("spread"))
-                .into_iter()
-                .collect();
+            return self.spread_behind(at + 1).into_iter().collect();
         }
         let listed = item.class == Class::Size && matches!(self.mark(at), Some("," | ";"));
         if !matches!(self.mark(at), Some("(" | "[")) && !listed || item.plural {
@@ -271,6 +285,61 @@ impl Scan<'_> {
             alone: true,
             plain: true,
         })
+    }
+
+    /// `0.94` behind `±` at token `at`; what it is may stand behind it: `0.94 (SD)`, `0.94° SE`.
+    fn spread_behind(&self, at: usize) -> Option<Item> {
+        let value = self.value(at, Company::Single)?;
+        if value.number.digits < 0 {
+            return None;
+        }
+        let mut next = value.next;
+        if matches!(self.mark(next), Some("%" | "°")) || self.unit_word(next) {
+            next += 1;
+        }
+        let bracket = matches!(self.mark(next), Some("(" | "["));
+        let told = self
+            .grammar
+            .spellings
+            .at(self.text, self.tokens, next + usize::from(bracket), |_| true)
+            .filter(|found| match self.tokens.get(found.next) {
+                Some(_) if bracket => matches!(self.mark(found.next), Some(")" | "]")),
+                Some(t) => t.kind != Kind::Number && !matches!(self.mark(found.next), Some("=" | ":" | "(")),
+                None => true,
+            })
+            .map(|found| self.grammar.symbols[found.spelling.meaning].name)
+            .filter(|name| matches!(*name, "SD" | "SE"));
+        let symbol = told
+            .or_else(|| self.spread_symbol())
+            .or_else(|| self.spread_before(value.span.start))
+            .unwrap_or("spread");
+        Some(Item {
+            class: Class::Descriptive,
+            tokens: at..value.next,
+            bytes: value.span.clone(),
+            quantities: vec![self.quantity(symbol, Comparator::Equal, &value, false)],
+            more_values: vec![],
+            plural: false,
+            alone: false,
+            plain: true,
+        })
+    }
+
+    /// Where a block speaks of several spreads: the last one named in the sentence before this byte.
+    fn spread_before(&self, byte: usize) -> Option<&'static str> {
+        if !self.near("spread-sd") || !self.near("spread-se") {
+            return None;
+        }
+        let block = self.tokens.first()?.start as usize..self.tokens.last()?.end as usize;
+        let start = sentences::around(self.text, &block, &(byte..byte)).start;
+        self.grammar
+            .words_in(&self.text[start..byte])
+            .filter_map(|(meaning, _)| match meaning {
+                "spread-sd" => Some("SD"),
+                "spread-se" => Some("SE"),
+                _ => None,
+            })
+            .last()
     }
 
     fn spread_named(&self, at: usize, symbol: &'static str) -> Option<Item> {
@@ -334,12 +403,15 @@ impl Scan<'_> {
         };
         let value = self.value(from, Company::Single)?;
         let next = value.next;
-        if self.mark(next) != Some("±") {
+        // `32.5° ± 9.2°`
+        let unit = matches!(self.mark(next), Some("°" | "%"));
+        let sign = if unit { next + 1 } else { next };
+        if self.mark(sign) != Some("±") {
             return None;
         }
         let mean = Item {
             class: Class::Descriptive,
-            tokens: from..next,
+            tokens: from..sign,
             bytes: value.span.clone(),
             quantities: vec![self.quantity("M", Comparator::Equal, &value, false)],
             more_values: vec![],

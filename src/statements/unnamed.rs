@@ -13,6 +13,12 @@ use crate::numbers::Comparator;
 /// How many tokens before a number its name is looked for.
 const NAME_WITHIN: usize = 16;
 
+/// How many estimates before a number its name may serve, too.
+const NAME_SERVES: usize = 6;
+
+/// How many words may say of what a mean is: `the mean length of the dry beds was 3.1`.
+const THINGS: usize = 5;
+
 impl Scan<'_> {
     /// A number at token `at` whose interval or spread follows.
     pub(super) fn unnamed(&self, at: usize) -> Option<(Vec<Item>, usize)> {
@@ -39,6 +45,11 @@ impl Scan<'_> {
             }
         } else if bracket && !percent && self.spread_after(follows) {
             ("M", Class::Descriptive)
+        } else if let Some(ratio) = (bracket && !percent)
+            .then(|| self.ratio_with_ends(&value, from))
+            .flatten()
+        {
+            ratio
         } else if bracket
             && !percent
             && (self.near("medians") || self.medians && !self.names_intervals() || self.after_spread(from))
@@ -49,6 +60,89 @@ impl Scan<'_> {
         };
         let item = self.lone(symbol, class, &value, from);
         Some((vec![item], value.next))
+    }
+
+    /// The token of the number that follows `mean` and what it is a mean of, at token `at`:
+    /// `mean length of beds was 3.1`, `mean length 25 cm`.
+    pub(super) fn behind_things(&self, at: usize) -> Option<usize> {
+        if self.word(at - 1).is_none_or(|w| w.ends_with('s')) {
+            return None;
+        }
+        let mut i = at;
+        for _ in 0..THINGS {
+            let word = self.word(i)?;
+            // Means of these are other quantities.
+            if matches!(
+                word,
+                "rank"
+                    | "ranks"
+                    | "difference"
+                    | "differences"
+                    | "change"
+                    | "changes"
+                    | "square"
+                    | "squared"
+                    | "error"
+                    | "and"
+                    | "or"
+                    | "that"
+                    | "increases"
+                    | "increased"
+                    | "was"
+                    | "were"
+                    | "is"
+                    | "are"
+            ) {
+                return None;
+            }
+            // `mean depth in 2014`, `was more than 0.1`: the number says something else.
+            let leads_away = matches!(
+                word,
+                "to" | "than"
+                    | "from"
+                    | "for"
+                    | "with"
+                    | "by"
+                    | "in"
+                    | "at"
+                    | "over"
+                    | "under"
+                    | "about"
+                    | "after"
+            );
+            i += 1;
+            // `CD4`, `long-term`, `(all beds)`
+            if self
+                .tokens
+                .get(i)
+                .is_some_and(|t| t.kind == Kind::Number && !t.spaced)
+            {
+                i += 1;
+            }
+            while self.mark(i) == Some("-") && self.word(i + 1).is_some() && !self.tokens[i].spaced {
+                i += 2;
+            }
+            if let Some(behind) = self.remark(i) {
+                i = behind;
+            }
+            let said = self.mark(i) == Some("=")
+                || self
+                    .word(i)
+                    .is_some_and(|w| matches!(w, "was" | "were" | "is" | "are" | "of"));
+            let number = if said { i + 1 } else { i };
+            let Some(token) = self.tokens.get(number).filter(|t| t.kind == Kind::Number) else {
+                continue;
+            };
+            if leads_away && !said {
+                return None;
+            }
+            let decimals = token.text(self.text).contains(['.', '·']);
+            let times = matches!(self.word(number + 1), Some("times" | "fold"));
+            let measured = self.unit_word(number + 1) && !times || self.mark(number + 1) == Some("±");
+            let plainly = said && matches!(self.shown(i), Some("=" | "was" | "were"));
+            return (token.spaced && (decimals || measured || plainly)).then_some(number);
+        }
+        None
     }
 
     /// A quick look: a bracket, or a comma and then a name or a percentage, stands close behind.
@@ -127,8 +221,10 @@ impl Scan<'_> {
         Some((value, from))
     }
 
-    fn unit_word(&self, at: usize) -> bool {
-        self.word(at).is_some_and(|w| self.grammar.units.contains(w))
+    pub(super) fn unit_word(&self, at: usize) -> bool {
+        // `y` is no unit where it may be Spanish.
+        self.word(at)
+            .is_some_and(|w| self.grammar.units.contains(w) || matches!(w, "y" | "mo" | "wk"))
     }
 
     /// The number that begins at token `from` counts a table, a week or the like.
@@ -178,8 +274,26 @@ impl Scan<'_> {
             || self
                 .word(from.wrapping_sub(1))
                 .is_some_and(|w| matches!(w, "was" | "were" | "is" | "of" | "to" | "being" | "by"));
-        for i in (from.saturating_sub(NAME_WITHIN)..from).rev() {
+        let mut i = from;
+        let mut steps = 0;
+        let mut shared = 0;
+        while i > 0 && steps < NAME_WITHIN {
+            i -= 1;
+            steps += 1;
             let token = self.tokens[i];
+            // `1.46 (CI 1.06–2.02) and 1.38 (CI …`: the name serves both. What else stands in brackets
+            // is passed over.
+            if let Some((start, estimate)) = self.bracket_before(i) {
+                i = start;
+                if estimate {
+                    shared += 1;
+                    steps = 0;
+                    if shared > NAME_SERVES {
+                        return None;
+                    }
+                }
+                continue;
+            }
             if matches!(token.kind, Kind::Number | Kind::Dotted)
                 || matches!(self.mark(i), Some("." | ";" | "?" | "="))
             {
@@ -203,6 +317,35 @@ impl Scan<'_> {
             }
         }
         None
+    }
+
+    /// `and 1.57 (1.08–2.30)` behind another ratio and its interval, or behind the name of a ratio.
+    fn ratio_with_ends(&self, value: &Value, from: usize) -> Option<(&'static str, Class)> {
+        let shown = &self.text[value.span.clone()];
+        if !shown.contains(['.', '·']) || value.number.value() <= 0.0 {
+            return None;
+        }
+        let (low, high, _) = self.two_ends(value.next)?;
+        let inside = (low.number.value()..=high.number.value()).contains(&value.number.value());
+        self.name_before(from)
+            .filter(|(_, class)| inside && *class == Class::Ratio)
+    }
+
+    /// Where the bracket that closes at token `at` begins, or the estimate before it if it holds the
+    /// estimate's interval; whether it does.
+    fn bracket_before(&self, at: usize) -> Option<(usize, bool)> {
+        const LONGEST: usize = 14;
+        if !matches!(self.mark(at), Some(")" | "]")) {
+            return None;
+        }
+        let open = (at.saturating_sub(LONGEST)..at)
+            .rev()
+            .find(|i| matches!(self.mark(*i), Some("(" | "[" | ")" | "]")))
+            .filter(|i| matches!(self.mark(*i), Some("(" | "[")))?;
+        let number = open.checked_sub(1)?;
+        let estimate = self.tokens[number].kind == Kind::Number
+            && (self.interval_after(open + 1).is_some() || self.two_ends(open).is_some());
+        Some(if estimate { (number, true) } else { (open, false) })
     }
 
     /// `74 (43–106)` where quartiles are spoken of.
@@ -255,16 +398,30 @@ impl Scan<'_> {
         item
     }
 
-    /// Whether the number at token `at` may be a count of things that are named behind it:
+    /// What is counted rather than measured, though it stands among the units.
+    fn countable(&self, at: usize) -> bool {
+        matches!(
+            self.word(at),
+            Some("individuals" | "cells" | "units" | "generations")
+        )
+    }
+
+    /// Whether the number at tokens `at..=last` may be a count of things that are named behind it:
     /// `266 gardeners (88.1%)`, but not `8 weeks (40%)` or `nine of 302 gardeners (3%)`.
-    pub(super) fn may_count(&self, at: usize) -> bool {
-        let bracket = (at + 2..at + 5).find(|i| matches!(self.mark(*i), Some("(" | "[")));
+    pub(super) fn may_count(&self, at: usize, last: usize) -> bool {
+        let bracket = (last + 2..last + 5).find(|i| matches!(self.mark(*i), Some("(" | "[")));
         let Some(bracket) = bracket else { return false };
-        if !(at + 1..bracket).all(|i| self.word(i).is_some())
+        if !(last + 1..bracket).all(|i| self.word(i).is_some())
             || self.mark(bracket + 2) != Some("%")
-            || self.unit_word(at + 1)
+            || self.unit_word(last + 1) && !self.countable(last + 1)
             || self.counts_something(at)
         {
+            return false;
+        }
+        // `in only one bed (17.1%)`: the share is of something else.
+        let one = self.word(at).is_some_and(|w| w.eq_ignore_ascii_case("one"));
+        let before = |i: usize| at.checked_sub(i).and_then(|i| self.word(i));
+        if one && before(1) == Some("only") && before(2) == Some("in") {
             return false;
         }
         // `of 302 gardeners` is the whole, unless it is `a total of`; so is `the 302 gardeners`.

@@ -43,6 +43,9 @@ impl Scan<'_> {
             i += 1;
         }
         let first = self.tokens.get(i)?;
+        if first.kind == Kind::Word && company == Company::Whole && i == at {
+            return self.spelled_out(at);
+        }
         if first.kind != Kind::Number {
             return None;
         }
@@ -134,50 +137,6 @@ impl Scan<'_> {
             number: Decimal::read(&shown, negative, exponent)?,
             span: start..end,
             next: i,
-        })
-    }
-
-    /// `nine` at token `at`.
-    pub fn number_word(&self, at: usize) -> Option<Value> {
-        const WORDS: [&str; 20] = [
-            "one",
-            "two",
-            "three",
-            "four",
-            "five",
-            "six",
-            "seven",
-            "eight",
-            "nine",
-            "ten",
-            "eleven",
-            "twelve",
-            "thirteen",
-            "fourteen",
-            "fifteen",
-            "sixteen",
-            "seventeen",
-            "eighteen",
-            "nineteen",
-            "twenty",
-        ];
-        let word = self.word(at)?;
-        // Most words are none of these.
-        if !(3..=9).contains(&word.len())
-            || !word.starts_with(['o', 't', 'f', 's', 'e', 'n', 'O', 'T', 'F', 'S', 'E', 'N'])
-        {
-            return None;
-        }
-        let index = WORDS.iter().position(|w| w.eq_ignore_ascii_case(word))?;
-        let token = self.tokens[at];
-        Some(Value {
-            number: Decimal {
-                digits: index as i64 + 1,
-                place: 0,
-                negative: false,
-            },
-            span: token.start as usize..token.end as usize,
-            next: at + 1,
         })
     }
 
