@@ -2,7 +2,7 @@
 //! it into tables that the engine looks things up in.
 
 use super::forms::Form;
-use super::spellings::{Spelling, Spellings};
+use super::spellings::{Beginnings, Spelling, Spellings};
 use super::tokens::Token;
 use crate::numbers::Comparator;
 use aho_corasick::{AhoCorasick, AhoCorasickKind, MatchKind};
@@ -69,6 +69,7 @@ pub struct IntervalNames {
 pub struct Grammar {
     pub symbols: Vec<Symbol>,
     pub spellings: Spellings,
+    beginnings: Beginnings,
     pub intervals: Vec<IntervalNames>,
     pub interval_spellings: Spellings,
     comparators: Vec<Comparator>,
@@ -354,7 +355,12 @@ impl Grammar {
                 .collect();
             patterns.push((names.get(&raw.meaning), compiled?));
         }
+        let mut beginnings = Beginnings::default();
+        beginnings.join(spellings.beginnings());
+        beginnings.join(interval_spellings.beginnings());
+        super::spelled::WORDS.iter().for_each(|w| beginnings.add(w));
         Ok(Grammar {
+            beginnings,
             symbols,
             spellings: spellings.sorted(),
             intervals,
@@ -381,9 +387,9 @@ impl Grammar {
         self.symbols.iter().position(|s| s.name == name)
     }
 
-    /// Whether a symbol or the name of an interval may begin with this word.
+    /// Whether a symbol, the name of an interval or a number in words may begin with this word.
     pub fn may_begin(&self, word: &str) -> bool {
-        self.spellings.may_begin(word) || self.interval_spellings.may_begin(word)
+        self.beginnings.may_be(word)
     }
 
     /// The comparator at token `at`, and the token behind it. Word comparators only where `words`.

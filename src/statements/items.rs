@@ -37,11 +37,12 @@ impl Scan<'_> {
         while at < self.tokens.len() {
             let token = self.tokens[at];
             let found = match token.kind {
-                Kind::Word
-                    if !self.grammar.may_begin(token.text(self.text))
-                        && !has_label(token.text(self.text)) =>
-                {
-                    self.spelled_out(at).and_then(|_| self.form(at))
+                Kind::Word if !self.grammar.may_begin(token.text(self.text)) => {
+                    if has_label(token.text(self.text)) {
+                        self.assignment(at).map(|(item, next)| (vec![item], next))
+                    } else {
+                        None
+                    }
                 }
                 Kind::Word => self
                     .interval(at)

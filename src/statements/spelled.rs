@@ -4,7 +4,8 @@ use super::Scan;
 use super::values::Value;
 use crate::numbers::Decimal;
 
-const ONES: [&str; 20] = [
+/// Zero to nineteen, then the tens from twenty.
+pub(super) const WORDS: [&str; 28] = [
     "zero",
     "one",
     "two",
@@ -25,28 +26,29 @@ const ONES: [&str; 20] = [
     "seventeen",
     "eighteen",
     "nineteen",
-];
-const TENS: [&str; 8] = [
-    "twenty", "thirty", "forty", "fifty", "sixty", "seventy", "eighty", "ninety",
+    "twenty",
+    "thirty",
+    "forty",
+    "fifty",
+    "sixty",
+    "seventy",
+    "eighty",
+    "ninety",
 ];
 
 impl Scan<'_> {
     /// The number written out at token `at`.
     pub(super) fn spelled_out(&self, at: usize) -> Option<Value> {
-        let one = |i: usize| {
+        let known = |i: usize| {
             let word = self.word(i)?;
-            ONES.iter().position(|o| o.eq_ignore_ascii_case(word))
+            WORDS.iter().position(|w| w.eq_ignore_ascii_case(word))
         };
-        let word = self.word(at)?;
-        // Nearly every word goes out here.
-        if !(3..=9).contains(&word.len()) {
-            return None;
-        }
-        let (number, next) = if let Some(ones) = one(at) {
-            (ones, at + 1)
+        let first = known(at)?;
+        let (number, next) = if first < 20 {
+            (first, at + 1)
         } else {
-            let tens = 10 * (2 + TENS.iter().position(|t| t.eq_ignore_ascii_case(word))?);
-            match one(at + 2).filter(|o| (1..10).contains(o)) {
+            let tens = 10 * (first - 18);
+            match known(at + 2).filter(|ones| (1..10).contains(ones)) {
                 Some(ones) if matches!(self.mark(at + 1), Some("-" | "–")) => (tens + ones, at + 3),
                 _ => (tens, at + 1),
             }

@@ -29,18 +29,67 @@ pub struct Spelling {
 #[derive(Debug, Default)]
 pub struct Spellings {
     by_head: HashMap<u64, Vec<Spelling>, BuildHasherDefault<AlreadyHashed>>,
-    /// For each first byte in lower case, the lengths that first pieces beginning with it have, as bits:
-    /// most words of a text are told by this alone.
-    lengths: Lengths,
+    beginnings: Beginnings,
 }
 
-/// See [`Spellings::may_begin`].
+/// Which words something may begin with: a test that is false for nearly all other words, and costs
+/// next to nothing for most of them.
 #[derive(Debug)]
-struct Lengths([u32; 256]);
+pub struct Beginnings {
+    /// For each first byte in lower case, the lengths that words beginning with it have, as bits.
+    lengths: [u32; 256],
+    /// One bit for each hash of a word, by its lowest bits.
+    hashes: [u64; 256],
+}
 
-impl Default for Lengths {
-    fn default() -> Lengths {
-        Lengths([0; 256])
+impl Default for Beginnings {
+    fn default() -> Beginnings {
+        Beginnings {
+            lengths: [0; 256],
+            hashes: [0; 256],
+        }
+    }
+}
+
+impl Beginnings {
+    /// Lets a word through, in any capitals.
+    pub fn add(&mut self, word: &str) {
+        // Few letters have another length in other capitals; all lengths nearby are let through.
+        let length = word.len().min(30);
+        let near = if word.is_ascii() {
+            length..=length
+        } else {
+            length.saturating_sub(1)..=length + 1
+        };
+        for byte in first_bytes(word) {
+            for length in near.clone() {
+                self.lengths[byte as usize] |= 1 << length;
+            }
+        }
+        let hash = head(word);
+        self.hashes[(hash >> 6) as usize % 256] |= 1 << (hash % 64);
+    }
+
+    /// Lets through what another lets through.
+    pub fn join(&mut self, other: &Beginnings) {
+        self.lengths
+            .iter_mut()
+            .zip(&other.lengths)
+            .for_each(|(a, b)| *a |= b);
+        self.hashes
+            .iter_mut()
+            .zip(&other.hashes)
+            .for_each(|(a, b)| *a |= b);
+    }
+
+    /// Whether a word may be one of those that were added.
+    pub fn may_be(&self, word: &str) -> bool {
+        let byte = word.as_bytes().first().map_or(0, u8::to_ascii_lowercase);
+        if self.lengths[byte as usize] & (1 << word.len().min(31)) == 0 {
+            return false;
+        }
+        let hash = head(word);
+        self.hashes[(hash >> 6) as usize % 256] & (1 << (hash % 64)) != 0
     }
 }
 
@@ -102,16 +151,7 @@ impl Spellings {
         let Some(first) = spelling.pieces.first() else {
             return Err(format!("a spelling is empty: {text:?}"));
         };
-        // Words that fold to another length in other capitals are rare; all lengths nearby are let through.
-        let length = first.text.len().min(30);
-        for near in length.saturating_sub(1)..=length + 1 {
-            let exact = first.text.is_ascii() && near != length;
-            if !exact {
-                for byte in first_bytes(&first.text) {
-                    self.lengths.0[byte as usize] |= 1 << near.min(31);
-                }
-            }
-        }
+        self.beginnings.add(&first.text);
         self.by_head.entry(head(&first.text)).or_default().push(spelling);
         Ok(())
     }
@@ -137,10 +177,9 @@ impl Spellings {
             .find(|s| s.exact && s.pieces.len() == 1 && s.pieces[0].text == piece)
     }
 
-    /// Whether a spelling may begin with this word; false for nearly all others.
-    pub fn may_begin(&self, word: &str) -> bool {
-        let byte = word.as_bytes().first().map_or(0, u8::to_ascii_lowercase);
-        self.lengths.0[byte as usize] & (1 << word.len().min(31)) != 0
+    /// Which words a spelling may begin with.
+    pub fn beginnings(&self) -> &Beginnings {
+        &self.beginnings
     }
 
     /// The longest spelling that stands at token `at` and that `allow` accepts.
@@ -152,7 +191,7 @@ impl Spellings {
         allow: impl Fn(&Spelling) -> bool,
     ) -> Option<Found<'_>> {
         let first = tokens.get(at)?.text(text);
-        if !self.may_begin(first) {
+        if !self.beginnings.may_be(first) {
             return None;
         }
         let list = self.by_head.get(&head(first))?;
