@@ -237,7 +237,7 @@ pub fn stated_alpha(manuscript: &Manuscript, grammar: &Grammar) -> Option<f64> {
         if ![".0", ".1", ",0", "·0"].into_iter().any(level) {
             continue;
         }
-        for found in expressions.iter().flat_map(|e| e.captures_iter(text)) {
+        for found in expressions.iter().flat_map(|e| e.captures_all(text)) {
             let value = found
                 .get(1)
                 .and_then(|g| g.as_str().replace([',', '·'], ".").parse().ok());

@@ -1,12 +1,12 @@
 //! A *grammar* says how people write results. It is data, from `grammars/*.toml`; this file turns
 //! it into tables that the engine looks things up in.
 
+use super::expressions::Expression;
 use super::forms::Form;
 use super::spellings::{Beginnings, Spelling, Spellings};
 use super::tokens::Token;
 use crate::numbers::Comparator;
 use aho_corasick::{AhoCorasick, AhoCorasickKind, MatchKind};
-use regex::{Regex, RegexBuilder};
 use serde::Deserialize;
 use std::collections::{HashMap, HashSet};
 use std::path::PathBuf;
@@ -80,12 +80,12 @@ pub struct Grammar {
     pub before: HashSet<String>,
     pub labels: HashSet<String>,
     pub resampling: HashSet<String>,
-    pub thresholds: Regex,
-    pub plans: Regex,
-    pub medians: Regex,
+    pub thresholds: Expression,
+    pub plans: Expression,
+    pub medians: Expression,
     words: AhoCorasick,
     word_meanings: Vec<&'static str>,
-    pub patterns: Vec<(&'static str, Vec<Regex>)>,
+    pub patterns: Vec<(&'static str, Vec<Expression>)>,
 }
 
 #[derive(Deserialize, Default)]
@@ -231,6 +231,7 @@ impl Grammar {
     }
 
     fn compile(more: &[(&str, &str)]) -> Result<Grammar, String> {
+        let check = !more.is_empty();
         let mut all = File::default();
         for (name, text) in BUILT_IN.iter().chain(more) {
             let file: File = toml::from_str(text)
@@ -348,10 +349,10 @@ impl Grammar {
             .map_err(|e| format!("words: {e}"))?;
         let mut patterns = Vec::new();
         for raw in &all.pattern {
-            let compiled: Result<Vec<Regex>, String> = raw
+            let compiled: Result<Vec<Expression>, String> = raw
                 .expressions
                 .iter()
-                .map(|e| Regex::new(&ascii_boundaries(e)).map_err(|e| format!("pattern: {e}")))
+                .map(|e| Expression::new(std::slice::from_ref(e), check))
                 .collect();
             patterns.push((names.get(&raw.meaning), compiled?));
         }
@@ -373,9 +374,9 @@ impl Grammar {
             before: all.before.into_iter().collect(),
             labels: all.labels.into_iter().collect(),
             resampling: all.resampling.into_iter().collect(),
-            thresholds: either(&all.thresholds)?,
-            plans: either(&all.plans)?,
-            medians: either(&all.medians)?,
+            thresholds: either(&all.thresholds, check)?,
+            plans: either(&all.plans, check)?,
+            medians: either(&all.medians, check)?,
             words,
             word_meanings,
             patterns,
@@ -423,23 +424,10 @@ impl Grammar {
     }
 }
 
-/// Word boundaries between ASCII letters only: the expressions' words are English, and this lets the
-/// fastest engine search texts with other letters, too.
-fn ascii_boundaries(expression: &str) -> String {
-    expression.replace(r"\b", r"(?-u:\b)")
-}
-
-/// One expression for all; matches nothing when there are none.
-fn either(expressions: &[String]) -> Result<Regex, String> {
-    let all = if expressions.is_empty() {
-        "[^\\s\\S]".to_string()
-    } else {
-        expressions.join("|")
-    };
-    RegexBuilder::new(&ascii_boundaries(&all))
-        .case_insensitive(true)
-        .build()
-        .map_err(|e| format!("bait: {e}"))
+/// One expression for all, in any capitals.
+fn either(expressions: &[String], check: bool) -> Result<Expression, String> {
+    let folded: Vec<String> = expressions.iter().map(|e| format!("(?i:{e})")).collect();
+    Expression::new(&folded, check)
 }
 
 /// Names live as long as the program: there are a few dozen, and they are compared everywhere.

@@ -3,6 +3,7 @@
 //! it knows neither file formats nor what makes numbers agree.
 
 mod bait;
+mod expressions;
 mod find;
 mod forms;
 mod formulas;
