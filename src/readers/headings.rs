@@ -40,7 +40,7 @@ const REFERENCES: &[&str] = &[
     "referencias bibliográficas", "bibliografía", "références", "références bibliographiques",
     "bibliographie", "referências", "referências bibliográficas", "bibliografia",
     "riferimenti bibliografici", "referenties", "literatuur", "literatuurlijst", "piśmiennictwo",
-    "literatura",
+    "literatura", "computational details and references",
 ];
 #[rustfmt::skip]
 const BACK: &[&str] = &[
@@ -48,7 +48,7 @@ const BACK: &[&str] = &[
     "funding", "funding statement", "funding information", "financial support", "financial disclosure",
     "author note", "author notes", "authors note", "authors' note", "author's note", "author contributions",
     "author contribution", "authors' contributions", "authors contributions", "author contribution statement",
-    "credit authorship contribution statement", "contributions", "contributors", "author information",
+    "credit authorship contribution statement", "credit author statement", "contributions", "contributors", "author information",
     "conflict of interest", "conflicts of interest", "conflict of interest statement",
     "declaration of conflicting interests", "declaration of interest", "declaration of interests",
     "declaration of competing interest", "declaration of competing interests", "competing interests",
@@ -66,7 +66,7 @@ const BACK: &[&str] = &[
 ];
 #[rustfmt::skip]
 const FRONT: &[&str] = &[
-    "keywords", "key words", "contents", "table of contents", "highlights", "list of abbreviations",
+    "keywords", "key words", "index terms", "contents", "table of contents", "highlights", "list of abbreviations",
     "abbreviations", "inhaltsverzeichnis", "inhalt", "schlüsselwörter", "índice", "palabras clave",
     "table des matières", "mots-clés", "sumário", "palavras-chave", "indice", "parole chiave",
     "inhoudsopgave", "spis treści", "słowa kluczowe",
@@ -103,7 +103,7 @@ const MINOR: &[&str] = &[
     "sample size", "sampling", "power analysis", "outcomes", "outcome measures", "data analysis",
     "data analyses", "statistical analysis", "statistical analyses", "statistics", "analysis",
     "analysis plan", "analytic strategy", "analytical strategy", "preregistration", "pre-registration",
-    "exclusions", "manipulation check", "manipulation checks", "preliminary analyses", "preliminary analysis",
+    "experiment", "exclusions", "manipulation check", "manipulation checks", "preliminary analyses", "preliminary analysis",
     "descriptive statistics", "main analyses", "main analysis", "primary analysis", "primary analyses",
     "primary outcome", "secondary outcomes", "secondary analyses", "exploratory analyses",
     "exploratory analysis", "additional analyses", "supplementary analyses", "sensitivity analysis",
@@ -134,8 +134,16 @@ const NUMBERED: &[&str] = &[
     "anexo", "badanie", "eksperyment",
 ];
 
-/// The title in lower case, without its number, final punctuation and letter spacing:
-/// `2.1. METHODS:` and `M E T H O D S` are both `methods`.
+/// What the first word of a title says that stands behind the text, even behind the references.
+#[rustfmt::skip]
+const APPENDED: &[&str] = &[
+    "appendix", "appendices", "supplement", "supplements", "supplementary", "supplemental", "anhang",
+    "supporting information", "online resource", "tables", "figures", "figure captions", "figure legends",
+    "list of tables", "list of figures",
+];
+
+/// The title in lower case, without its number (or a line number from the margin before it), final
+/// punctuation and letter spacing: `2.1. METHODS:`, `205 Methods` and `M E T H O D S` are all `methods`.
 pub fn plain(title: &str) -> String {
     let mut words: Vec<String> = title
         .split_whitespace()
@@ -144,8 +152,11 @@ pub fn plain(title: &str) -> String {
     if words.len() > 3 && words.iter().all(|w| w.chars().count() == 1) {
         words = vec![words.concat()];
     }
-    if words.len() > 1 && is_section_number(&words[0]) {
-        words.remove(0);
+    // A number of the line, taken in from the margin, may stand before that of the section.
+    for _ in 0..2 {
+        if words.len() > 1 && is_section_number(&words[0]) {
+            words.remove(0);
+        }
     }
     let joined = words.join(" ");
     let bare = joined.trim_matches(|c: char| {
@@ -176,6 +187,18 @@ pub fn known(title: &str) -> Option<Known> {
     }
     let plain = plain(title);
     let name = plain.as_str();
+    // `205References`: a line number of the margin stuck to the word.
+    by_name(name).or_else(|| {
+        let word = name.trim_start_matches(|c: char| c.is_ascii_digit());
+        if word.len() < name.len() {
+            by_name(word)
+        } else {
+            None
+        }
+    })
+}
+
+fn by_name(name: &str) -> Option<Known> {
     let part = |part, level| Some(Known { part, level });
     if ABSTRACT.contains(&name) {
         return part(Part::Abstract, 1);
@@ -204,6 +227,18 @@ pub fn is_study(title: &str) -> bool {
     let name = plain(title);
     let appended = ["appendix", "supplement", "anhang", "annexe", "anexo"];
     title.len() <= 200 && is_numbered(&name) && !appended.iter().any(|a| name.starts_with(a))
+}
+
+/// Whether a title names an appendix, a supplement, or the tables and figures behind the text:
+/// `Appendix B Diary form`, `Supplementary Methods`.
+pub fn is_appended(title: &str) -> bool {
+    title.len() <= 200 && {
+        let name = plain(title);
+        APPENDED.iter().any(|word| {
+            name.strip_prefix(word)
+                .is_some_and(|rest| !rest.starts_with(char::is_alphabetic))
+        })
+    }
 }
 
 /// `study 2`, `experiment 1b`, `appendix a`, alone, or followed by a short title after a colon or
@@ -252,12 +287,17 @@ pub fn is_keyword_line(text: &str) -> bool {
 }
 
 /// The part of a paragraph that carries its own title in its first words: `Abstract. We …`,
-/// `Funding: None.`
-fn run_in(text: &str) -> Option<Part> {
+/// `ABSTRACT We …`, `Funding: None.`
+pub fn run_in(text: &str) -> Option<Part> {
+    let first = text.split_whitespace().next()?;
+    let shouted = first.len() > 3 && first.chars().all(char::is_uppercase) && text.len() > first.len() + 40;
+    if shouted && known(first).is_some_and(|k| k.part == Part::Abstract) {
+        return Some(Part::Abstract);
+    }
     let end = text
         .char_indices()
         .take(60)
-        .find(|(_, c)| matches!(c, '.' | ':' | '—' | '–'))?
+        .find(|(at, c)| matches!(c, '.' | ':' | '—' | '–') || text[*at..].starts_with(" - "))?
         .0;
     if end + 2 > text.trim_end().len() {
         return None;
@@ -315,7 +355,7 @@ impl Parts {
         let opens = known.map_or(Part::Body, |k| k.part);
         let stays = match (self.part, opens) {
             (Part::Abstract, Part::Body) => self.stays_in_abstract(level, title, known),
-            (Part::References, Part::Body) => known.is_none() && level > self.level,
+            (Part::References, Part::Body) => known.is_none() && !is_appended(title) && level > self.level,
             (Part::Back, Part::Body) => level > self.level,
             _ => false,
         };
@@ -331,7 +371,8 @@ impl Parts {
 
     /// A structured abstract has no text before its first title, and no title twice.
     fn stays_in_abstract(&mut self, level: u8, title: &str, known: Option<Known>) -> bool {
-        if level < self.level {
+        // The titles inside an abstract have no numbers.
+        if level < self.level || title.trim_start().starts_with(|c: char| c.is_ascii_digit()) {
             return false;
         }
         let name = plain(title);
@@ -385,6 +426,9 @@ mod tests {
             ("Literaturverzeichnis", Part::References, 1),
             ("Acknowledgments", Part::Back, 1),
             ("Authors’ contributions", Part::Back, 1),
+            ("205 References", Part::References, 1),
+            ("205References", Part::References, 1),
+            ("118 3. Results", Part::Body, 1),
             ("Appendix A", Part::Body, 1),
             ("Table of Contents", Part::Front, 1),
         ] {
@@ -409,6 +453,9 @@ mod tests {
         assert_eq!(parts.heading(3, "Appendix B"), Part::Body);
         parts.heading(1, "References");
         assert_eq!(parts.heading(1, "Plot maps"), Part::Body);
+        parts.heading(1, "References");
+        assert_eq!(parts.heading(2, "Appendix B Diary form"), Part::Body);
+        assert!(is_appended("Supplementary Methods") && !is_appended("Figuresque beds"));
     }
 
     #[test]
@@ -421,6 +468,8 @@ mod tests {
         }
         assert_eq!(parts.heading(1, "Background"), Part::Body);
         assert_eq!(parts.heading(1, "Methods"), Part::Body);
+        parts.enter(Part::Abstract);
+        assert_eq!(parts.heading(1, "1. Introduction"), Part::Body);
     }
 
     #[test]
@@ -446,6 +495,13 @@ mod tests {
             parts.paragraph("Abstract: We asked 40 gardeners."),
             Part::Abstract
         );
+        for text in [
+            "Abstract—We asked them.",
+            "ABSTRACT We asked 40 gardeners to keep a diary of water.",
+        ] {
+            assert_eq!(run_in(text), Some(Part::Abstract), "{text}");
+        }
+        assert_eq!(run_in("Abstract thinking helps: it does."), None);
         assert_eq!(
             parts.paragraph("Funding. None of the plots was paid."),
             Part::Back

@@ -3,8 +3,9 @@
 
 use super::lines::{Shift, Word};
 use super::paragraphs::{Block, Body};
-use super::roles::{self, Named};
+use super::roles;
 use crate::manuscript::{BlockKind, Builder, Part};
+use crate::readers::headings::{self, Parts};
 
 /// What the composer knows of a page.
 #[derive(Clone, Copy, Debug)]
@@ -27,16 +28,16 @@ pub fn compose(b: &mut Builder, blocks: &[Block], body: Body, sheets: &[Sheet]) 
             roles::heading(block, body)
         };
         let kind = depth.map_or_else(|| roles::kind(block, body, height), BlockKind::Heading);
-        state.enter(index, block, kind);
-        b.part(state.part_of(block, kind));
+        b.part(state.part(index, block, kind));
         b.open(kind);
         write(b, block);
         b.close();
     }
 }
 
+/// Follows the parts, as [`Parts`] does for every format, with what only the look of pages tells.
 struct State {
-    part: Part,
+    parts: Parts,
     /// Block that is the title.
     title: Option<usize>,
     /// Block that begins the abstract.
@@ -52,11 +53,14 @@ impl State {
         let early = |b: &&Block| b.first().page <= blocks[0].first().page + 2;
         let abstract_at = blocks.iter().take_while(early).position(|b| {
             let text = b.text();
-            roles::named(&text) == Some(Named::Abstract) || roles::run_in(&text) == Some(Named::Abstract)
+            let named = headings::known(&text).map(|k| k.part);
+            named == Some(Part::Abstract) || headings::run_in(&text) == Some(Part::Abstract)
         });
-        let intro_at = blocks
-            .iter()
-            .position(|b| roles::named(&b.text()).is_some_and(|n| n == Named::Main) && !b.row);
+        let intro_at = blocks.iter().position(|b| {
+            let text = b.text();
+            let begins = |k: headings::Known| k.part == Part::Body && k.level == 1;
+            !b.row && headings::known(&text).is_some_and(begins) && !headings::is_appended(&text)
+        });
         let first_page = blocks.first().map_or(1, |b| b.first().page);
         let title = blocks
             .iter()
@@ -70,13 +74,12 @@ impl State {
             .map(|(i, _)| i);
         // An abstract after the introduction is no abstract.
         let abstract_at = abstract_at.filter(|a| intro_at.is_none_or(|i| *a < i));
-        let part = if abstract_at.is_some() {
-            Part::Front
-        } else {
-            Part::Body
-        };
+        let mut parts = Parts::new();
+        if abstract_at.is_some() {
+            parts.enter(Part::Front);
+        }
         State {
-            part,
+            parts,
             title,
             abstract_at,
             float_page: None,
@@ -84,79 +87,74 @@ impl State {
         }
     }
 
-    /// The part that a block belongs to; a title is front matter wherever the rest begins.
-    fn part_of(&mut self, block: &Block, kind: BlockKind) -> Part {
-        if self.part == Part::References && !matches!(kind, BlockKind::Heading(_)) {
-            let raised = roles::begins_raised(block);
-            let entries_raised = *self.entries_raised.get_or_insert(raised);
-            // Not numbered like the entries: a footnote to the text above the references on this page.
-            if kind == BlockKind::Footnote && raised && !entries_raised {
-                return Part::Body;
-            }
-        }
-        if self.float_page.is_some()
-            && self.part == Part::References
-            && !matches!(kind, BlockKind::Heading(_))
-        {
-            return Part::Body;
-        }
-        self.part
-    }
-
-    fn enter(&mut self, index: usize, block: &Block, kind: BlockKind) {
-        if self.title == Some(index) && self.part == Part::Body {
+    /// The part that the next block belongs to.
+    fn part(&mut self, index: usize, block: &Block, kind: BlockKind) -> Part {
+        let part = self.parts.current();
+        if self.title == Some(index) && part == Part::Body {
             // Without an abstract to end the front matter only the title is surely front matter.
-            return;
+            return part;
         }
         let page = block.first().page;
         if self.float_page.is_some_and(|p| p != page) {
             self.float_page = None;
         }
-        if self.part == Part::References && matches!(kind, BlockKind::Caption) {
+        if part == Part::References && kind == BlockKind::Caption {
             self.float_page = Some(page);
         }
-        if self.abstract_at == Some(index) {
-            self.part = Part::Abstract;
-            return;
-        }
         let text = block.text();
-        if self.part == Part::Abstract && roles::run_in(&text) == Some(Named::Keywords) {
-            self.part = Part::Front;
-            return;
+        if self.abstract_at == Some(index) {
+            self.parts.enter(Part::Abstract);
+        } else if let BlockKind::Heading(depth) = kind {
+            return self.heading(index, depth, &text);
         }
-        let BlockKind::Heading(depth) = kind else {
-            // A paper whose introduction has no heading: running text on a later page is the body.
-            if self.part == Part::Front
-                && self.abstract_at.is_some_and(|a| index > a)
-                && block.text().len() > 250
-            {
-                self.part = Part::Body;
+        let begun = self.abstract_at.is_none_or(|a| index > a);
+        match self.parts.current() {
+            Part::References => self.among_references(block, kind),
+            Part::Abstract if begun && headings::is_keyword_line(&text) => {
+                self.parts.enter(Part::Front);
+                Part::Front
             }
-            return;
-        };
-        self.part = match (self.part, roles::named(&text)) {
-            (_, Some(Named::References)) => Part::References,
-            (_, Some(Named::Appendix)) => Part::Body,
-            (Part::References, Some(Named::Back)) => Part::Back,
-            (_, Some(Named::Back)) => Part::Back,
-            (Part::Abstract, Some(Named::Keywords)) => Part::Front,
-            // Structured abstracts have headings of their own, often the same names.
-            (Part::Abstract, Some(Named::Main)) if !ends_abstract(&text) => Part::Abstract,
-            (Part::Front, None) if self.abstract_at.is_none_or(|a| index < a) => Part::Front,
-            (Part::References, None) => Part::References,
-            (Part::References, Some(_)) => Part::Body,
-            (Part::Back, None) if depth > 1 => Part::Back,
-            (part @ Part::Back, Some(Named::Abstract | Named::Keywords)) => part,
-            _ => Part::Body,
-        };
+            // A paper whose introduction has no heading: running text on a later page is the body.
+            Part::Front if begun && text.len() > 250 => {
+                self.parts.enter(Part::Body);
+                Part::Body
+            }
+            _ if matches!(kind, BlockKind::Paragraph) => self.parts.paragraph(&text),
+            part => part,
+        }
     }
-}
 
-fn ends_abstract(heading: &str) -> bool {
-    let lower = heading.to_lowercase();
-    lower.contains("introduction")
-        || lower.contains("einleitung")
-        || heading.starts_with(|c: char| c.is_ascii_digit())
+    fn heading(&mut self, index: usize, depth: u8, title: &str) -> Part {
+        let known = headings::known(title);
+        let part = self.parts.current();
+        let before_abstract = self.abstract_at.is_some_and(|a| index < a);
+        if part == Part::Abstract && headings::is_keyword_line(title) {
+            self.parts.enter(Part::Front);
+            return Part::Front;
+        }
+        match part {
+            // Names of authors, journals and the like, set large.
+            Part::Front if known.is_none() && before_abstract => part,
+            Part::References if known.is_none() && !headings::is_appended(title) => part,
+            // Depths are guessed from the type, which is less sure than a name.
+            _ => self
+                .parts
+                .heading(known.map_or(depth, |k| depth.min(k.level)), title),
+        }
+    }
+
+    /// What stands among the references without belonging to them.
+    fn among_references(&mut self, block: &Block, kind: BlockKind) -> Part {
+        let raised = roles::begins_raised(block);
+        let entries_raised = *self.entries_raised.get_or_insert(raised);
+        // Not numbered like the entries: a footnote to the text above the references on this page.
+        let note = kind == BlockKind::Footnote && raised && !entries_raised;
+        if note || self.float_page.is_some() {
+            Part::Body
+        } else {
+            Part::References
+        }
+    }
 }
 
 /// Writes the lines of a block, marking where each stands.

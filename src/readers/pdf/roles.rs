@@ -1,24 +1,10 @@
-//! What a block is (heading, caption, note, paragraph …) and which part of the manuscript it
-//! belongs to.
+//! What a block is: heading, caption, note, paragraph …
 
 use super::paragraphs::{Block, Body, is_marker};
-use crate::manuscript::BlockKind;
+use crate::manuscript::{BlockKind, Part};
+use crate::readers::headings;
 use regex::Regex;
 use std::sync::LazyLock;
-
-/// A section that starts under a name everybody uses.
-#[derive(Clone, Copy, PartialEq, Eq, Debug)]
-pub enum Named {
-    Abstract,
-    Keywords,
-    /// Introduction, Methods, Results, Discussion …
-    Main,
-    /// Acknowledgements, funding, interests, contributions, data.
-    Back,
-    References,
-    /// Appendix, supplement.
-    Appendix,
-}
 
 fn pattern(text: &str) -> Regex {
     // The patterns are constants, and a test compiles them all.
@@ -34,151 +20,6 @@ static CAPTION: LazyLock<Regex> = LazyLock::new(|| {
     )
 });
 static NOTE: LazyLock<Regex> = LazyLock::new(|| pattern(r"^(?:Notes?\s*[.:]|NOTES?\s*[.:]|Anmerkung)"));
-
-/// The well-known section that a heading's text names.
-pub fn named(text: &str) -> Option<Named> {
-    let text = text.trim();
-    if text.len() > 80 {
-        return None;
-    }
-    let text = NUMBERING.replace(text, "");
-    let mut name = text
-        .trim_matches(|c: char| matches!(c, '.' | ':' | '*' | '—' | '–' | '-') || c.is_whitespace())
-        .to_lowercase();
-    if name.split(' ').count() > 3 && name.split(' ').all(|w| w.chars().count() == 1) {
-        // Letter-spaced, as in `A B S T R A C T`.
-        name.retain(|c| c != ' ');
-    }
-    Some(match name.as_str() {
-        "abstract" | "summary" | "zusammenfassung" | "résumé" | "resumen" | "resumo" | "abstrakt" => {
-            Named::Abstract
-        }
-        "keywords" | "key words" | "index terms" | "schlüsselwörter" => Named::Keywords,
-        "introduction"
-        | "background"
-        | "method"
-        | "methods"
-        | "materials and methods"
-        | "material and methods"
-        | "methods and materials"
-        | "patients and methods"
-        | "participants"
-        | "procedure"
-        | "measures"
-        | "materials"
-        | "design"
-        | "data analysis"
-        | "statistical analysis"
-        | "statistical analyses"
-        | "results"
-        | "findings"
-        | "discussion"
-        | "general discussion"
-        | "results and discussion"
-        | "conclusion"
-        | "conclusions"
-        | "limitations"
-        | "einleitung"
-        | "methode"
-        | "methoden"
-        | "ergebnisse"
-        | "diskussion"
-        | "résultats"
-        | "resultados"
-        | "métodos"
-        | "discusión"
-        | "discussão"
-        | "experiment"
-        | "study 1"
-        | "study 2"
-        | "study 3"
-        | "study 4"
-        | "experiment 1"
-        | "experiment 2"
-        | "experiment 3" => Named::Main,
-        "acknowledgements"
-        | "acknowledgments"
-        | "acknowledgement"
-        | "acknowledgment"
-        | "funding"
-        | "author contributions"
-        | "authors' contributions"
-        | "authors’ contributions"
-        | "credit author statement"
-        | "conflict of interest"
-        | "conflicts of interest"
-        | "competing interests"
-        | "declaration of interest"
-        | "declaration of interests"
-        | "declaration of competing interest"
-        | "disclosure"
-        | "disclosures"
-        | "disclosure statement"
-        | "conflict of interest statement"
-        | "declaration of conflicting interests"
-        | "data availability"
-        | "data availability statement"
-        | "availability of data and materials"
-        | "ethics statement"
-        | "ethical approval"
-        | "funding information"
-        | "financial support"
-        | "author note"
-        | "danksagung"
-        | "abbreviations"
-        | "orcid" => Named::Back,
-        "references"
-        | "reference"
-        | "bibliography"
-        | "literature cited"
-        | "literature"
-        | "works cited"
-        | "reference list"
-        | "references cited"
-        | "cited literature"
-        | "references and notes"
-        | "literatur"
-        | "literaturverzeichnis"
-        | "références"
-        | "bibliographie"
-        | "referencias"
-        | "referências"
-        | "bibliografía"
-        | "bibliografia"
-        | "piśmiennictwo"
-        | "computational details and references" => Named::References,
-        n if n.starts_with("appendix")
-            || n.starts_with("supplement")
-            || n.starts_with("supporting information")
-            || n == "appendices"
-            || n.starts_with("online resource")
-            || n == "tables"
-            || n == "figures"
-            || n == "figure captions"
-            || n == "figure legends"
-            || n.starts_with("anhang") =>
-        {
-            Named::Appendix
-        }
-        _ => return None,
-    })
-}
-
-/// A run-in start such as `Abstract—We` or `Keywords: soil`: the name and where the rest begins.
-pub fn run_in(text: &str) -> Option<Named> {
-    let head: String = text.chars().take(24).collect();
-    let lower = head.to_lowercase();
-    let after = |name: &str| {
-        lower.strip_prefix(name).is_some_and(|rest| {
-            let rest = rest.trim_start();
-            rest.starts_with(['.', ':', '—', '–', '-']) || head.starts_with(&name.to_uppercase())
-        })
-    };
-    if after("abstract") || after("summary") {
-        return Some(Named::Abstract);
-    }
-    (after("keywords") || after("key words") || after("index terms")).then_some(Named::Keywords)
-}
 
 /// Begins like the caption of a figure or table.
 pub fn is_caption(block: &Block, body: Body) -> bool {
@@ -257,7 +98,7 @@ pub fn heading(block: &Block, body: Body) -> Option<u8> {
     if letters * 2 < count {
         return None;
     }
-    let known = named(&text);
+    let known = headings::known(&text);
     let depth = NUMBERING.find(&text).map(|m| {
         let number = m.as_str().trim().trim_end_matches('.');
         number.split('.').count().min(6) as u8
@@ -280,15 +121,15 @@ pub fn heading(block: &Block, body: Body) -> Option<u8> {
     {
         return None;
     }
-    let is_heading = known.is_some()
+    let is_heading = known.is_some_and(|k| k.level == 1 || block.apart)
         || (block.apart && (stands_out || (shouting && block.lines.len() <= 2 && size > 0.9 && count < 80)));
     if !is_heading {
         return None;
     }
     Some(match (depth, known) {
         (Some(depth), _) => depth,
-        (None, Some(Named::Main)) if size < 1.03 && !bold && !shouting => 2,
-        (None, Some(_)) => 1,
+        (None, Some(k)) if k.part == Part::Body && size < 1.03 && !bold && !shouting => 2,
+        (None, Some(k)) => k.level,
         (None, None) if size > 1.25 || shouting && bold => 1,
         (None, None) => 2,
     })
@@ -299,20 +140,9 @@ mod tests {
     use super::*;
 
     #[test]
-    fn known_sections_under_all_their_names() {
-        for (text, name) in [
-            ("3. Results", Some(Named::Main)),
-            ("REFERENCES", Some(Named::References)),
-            ("A B S T R A C T", Some(Named::Abstract)),
-            ("Literatur", Some(Named::References)),
-            ("Appendix A: Diary form", Some(Named::Appendix)),
-            ("IV. DISCUSSION", Some(Named::Main)),
-            ("Gardeners and their diaries", None),
-        ] {
-            assert_eq!(named(text), name, "{text}");
-        }
-        assert_eq!(run_in("Abstract—We asked"), Some(Named::Abstract));
-        assert_eq!(run_in("Abstract thinking helps"), None);
+    fn captions_and_notes_by_their_first_words() {
         assert!(CAPTION.is_match("Fig. 3. Water") && NOTE.is_match("Note. SD in brackets"));
+        assert!(!CAPTION.is_match("Figures show") && !NOTE.is_match("Noted above"));
+        assert!(NUMBERING.is_match("2.1 Participants"));
     }
 }
