@@ -39,7 +39,8 @@ impl Scan<'_> {
         };
         let word = self.word(at)?;
         // Nearly every word goes out here.
-        if !(3..=9).contains(&word.len()) {
+        let starts = |c: u8| b"otfsenz".contains(&c.to_ascii_lowercase());
+        if !(3..=9).contains(&word.len()) || !starts(word.as_bytes()[0]) {
             return None;
         }
         let (number, next) = if let Some(ones) = one(at) {
