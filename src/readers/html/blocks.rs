@@ -93,7 +93,7 @@ impl<'a> Reading<'a> {
         let part = match inside.part {
             // A heading that is marked itself (`<h1 id=references>`) speaks for what follows it.
             Some(part) => {
-                if self.context.part.is_none() {
+                if self.context.part.is_none() && part != Part::Front {
                     self.parts.enter(part);
                 }
                 part
