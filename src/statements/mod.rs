@@ -2,6 +2,7 @@
 //! `t(28) = 2.20, p = .036`. This room turns the text of blocks into statements by the grammars;
 //! it knows neither file formats nor what makes numbers agree.
 
+mod arguments;
 mod bait;
 mod expressions;
 mod find;
@@ -15,6 +16,7 @@ mod pairs;
 mod sentences;
 mod spelled;
 mod spellings;
+mod surroundings;
 mod tokens;
 mod unnamed;
 mod values;
