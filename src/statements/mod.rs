@@ -13,6 +13,7 @@ mod items;
 mod join;
 mod names;
 mod pairs;
+mod print;
 mod sentences;
 mod spelled;
 mod spellings;
@@ -23,6 +24,7 @@ mod values;
 
 pub use find::find;
 pub use grammar::Grammar;
+pub use print::in_print;
 
 use crate::numbers::{Comparator, Decimal, Interval};
 use std::cell::OnceCell;
