@@ -4,9 +4,9 @@ use proptest::prelude::*;
 use std::path::Path;
 use tieout::readers::read_bytes;
 
-const TEXT: &str = include_str!("text_formats/diary.txt");
-const MARKDOWN: &str = include_str!("text_formats/diary.md");
-const LATEX: &str = include_str!("text_formats/diary.tex");
+const TEXT: &str = include_str!("../fixtures/diary/diary.txt");
+const MARKDOWN: &str = include_str!("../fixtures/diary/diary.md");
+const LATEX: &str = include_str!("../fixtures/diary/diary.tex");
 const NAMES: [&str; 4] = ["diary.txt", "diary.md", "diary.tex", "diary"];
 
 /// Every block must lie inside the text, on character borders, and have a place.

@@ -3,6 +3,7 @@
 use super::tables::{self, Tabular};
 use super::walk::{Float, Walker};
 use crate::manuscript::{BlockKind, Part};
+use crate::readers::headings::known;
 
 /// Environments that hold a formula.
 const FORMULAS: &[&str] = &[
@@ -202,31 +203,9 @@ impl Walker<'_> {
                     }
                 }
             }
-            "abstract" => {
-                self.end_paragraph();
-                self.parts.enter(Part::Abstract);
-            }
-            "keyword" | "keywords" => {
-                self.end_paragraph();
-                self.parts.enter(Part::Front);
-            }
-            "thebibliography" | "CSLReferences" | "references" => {
-                self.end_paragraph();
-                if self.parts.current() != Part::References {
-                    self.b.part(self.parts.heading(1, "References"));
-                    self.parts.enter(Part::References);
-                    if bare == "thebibliography" {
-                        self.b.heading(1, "References");
-                    }
-                }
-            }
             "appendices" | "appendix" => {
                 self.end_paragraph();
                 self.parts.enter(Part::Body);
-            }
-            "acknowledgements" | "acknowledgments" | "acks" | "acknowledgement" => {
-                self.end_paragraph();
-                self.parts.enter(Part::Back);
             }
             "quote" | "quotation" | "displayquote" | "verse" | "quoting" => {
                 self.end_paragraph();
@@ -244,7 +223,18 @@ impl Walker<'_> {
                 };
                 self.kinds.push((bare.to_string(), kind));
             }
-            _ => self.end_paragraph(),
+            _ => {
+                self.end_paragraph();
+                if let Some(part) = part_of(bare)
+                    && part != self.parts.current()
+                {
+                    self.parts.enter(part);
+                    if bare == "thebibliography" {
+                        self.b.part(part);
+                        self.b.heading(1, "References");
+                    }
+                }
+            }
         }
         self.skip(end, environment_settings(bare))
     }
@@ -264,10 +254,7 @@ impl Walker<'_> {
         }
         self.end_paragraph();
         match name {
-            "abstract" | "thebibliography" | "CSLReferences" | "acknowledgements" | "acknowledgments"
-            | "acks" | "acknowledgement" | "keyword" | "keywords" | "references" => {
-                self.parts.enter(Part::Body)
-            }
+            _ if part_of(name).is_some() => self.parts.enter(Part::Body),
             "table" | "sidewaystable" | "wraptable" | "figure" | "SCfigure" | "wrapfigure"
             | "sidewaysfigure" | "SCtable" | "margintable" | "marginfigure" | "talltblr" => self.end_float(),
             "threeparttable" | "ThreePartTable" if self.floats.last().is_some_and(|f| f.own) => {
@@ -494,6 +481,16 @@ impl Float {
             notes: Vec::new(),
             tables: Vec::new(),
         }
+    }
+}
+
+/// The part that an environment holds: one of the usual names, or that of a section.
+fn part_of(environment: &str) -> Option<Part> {
+    match environment {
+        "thebibliography" | "CSLReferences" => Some(Part::References),
+        "acks" => Some(Part::Back),
+        "keyword" => Some(Part::Front),
+        name => known(name).map(|k| k.part).filter(|p| *p != Part::Body),
     }
 }
 

@@ -4,6 +4,7 @@
 mod blocks;
 mod entities;
 mod inline;
+mod lines;
 mod links;
 mod tables;
 mod tags;
@@ -31,8 +32,8 @@ pub fn read(source: &str) -> Result<Manuscript, Unreadable> {
     let mut reader = Reader {
         b: Builder::new(Format::Markdown),
         parts: Parts::new(),
-        references: blocks::references(&lines),
-        defined: blocks::notes(&lines),
+        references: lines::references(&lines),
+        defined: lines::notes(&lines),
         read_notes: HashMap::new(),
         lines,
         at: 0,

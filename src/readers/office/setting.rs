@@ -4,6 +4,7 @@ use super::flow::Role;
 use super::line::{Look, Shift};
 use super::symbols::Font;
 use crate::manuscript::Part;
+use crate::readers::headings::known;
 
 /// How text is set, where that is said; unsaid properties come from the style below.
 #[derive(Clone, Copy, Debug, Default)]
@@ -82,12 +83,11 @@ pub fn by_name(name: &str) -> (Option<Role>, Option<Part>) {
             Some(Part::Front)
         }
         "title" => Some(Part::Front),
-        "abstract" => Some(Part::Abstract),
-        "bibliography" | "references" | "reference" | "endnote bibliography" | "bibliography 1" => {
-            Some(Part::References)
-        }
-        "acknowledgements" | "acknowledgments" | "acknowledgement" => Some(Part::Back),
-        _ => None,
+        "endnote bibliography" | "bibliography 1" => Some(Part::References),
+        // Many styles are named after the section that they are for.
+        name => known(name)
+            .map(|k| k.part)
+            .filter(|p| matches!(p, Part::Abstract | Part::Back | Part::References)),
     };
     (role, part)
 }
