@@ -4,6 +4,7 @@
 pub mod decode;
 pub mod detect;
 pub mod docx;
+pub mod entities;
 pub mod headings;
 pub mod html;
 pub mod jats;

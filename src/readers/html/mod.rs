@@ -7,7 +7,6 @@
 
 mod blocks;
 mod elements;
-pub mod entities;
 mod formulas;
 mod marks;
 mod tokens;

@@ -1,7 +1,7 @@
 //! Blocks, tables, formulas and raised text of a JATS file: what the events lead to.
 
 use super::*;
-use crate::readers::headings;
+use crate::readers::{entities, headings};
 
 impl<'a> Reading<'a> {
     /// Text at the place reached.
@@ -59,16 +59,8 @@ impl<'a> Reading<'a> {
 
     /// A character or entity reference.
     pub(super) fn entity(&mut self, name: &str) {
-        let simple = match name {
-            "amp" => "&",
-            "lt" => "<",
-            "gt" => ">",
-            "quot" => "\"",
-            "apos" => "'",
-            _ => "",
-        };
-        if !simple.is_empty() {
-            return self.text(simple);
+        if let Some(text) = entities::predefined(name) {
+            return self.text(text);
         }
         if let Some(number) = name.strip_prefix('#') {
             if let Some(c) = entities::numbered(number) {
@@ -78,7 +70,7 @@ impl<'a> Reading<'a> {
         }
         if let Some(text) = self.declared.text(name) {
             self.text(&text);
-        } else if let Some(text) = crate::readers::html::entities::named(name) {
+        } else if let Some(text) = entities::named(name) {
             self.text(text);
         } else {
             self.declared.unknown(name);

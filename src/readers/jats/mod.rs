@@ -5,7 +5,7 @@
 //! Reference lists, metadata and letters about the article are left out.
 
 mod blocks;
-mod entities;
+mod declared;
 mod tags;
 mod trouble;
 
@@ -13,7 +13,7 @@ use super::Unreadable;
 use super::mathml::Math;
 use crate::manuscript::{BlockKind, Builder, CellShape, Format, Manuscript, Part};
 use blocks::local_is;
-use entities::Declared;
+use declared::Declared;
 use quick_xml::Reader;
 use quick_xml::events::{BytesStart, Event};
 use tags::Tag;
