@@ -13,7 +13,7 @@ mod tokens;
 
 use super::Unreadable;
 use super::headings::Parts;
-use crate::manuscript::{BlockKind, Builder, Format, Manuscript, Part};
+use crate::manuscript::{BlockKind, Builder, Description, Format, Manuscript, Part};
 use elements::{Element, element};
 use formulas::Ahead;
 use marks::Marks;
@@ -77,9 +77,7 @@ struct Open<'a> {
 #[derive(Default)]
 struct Group {
     first_table: usize,
-    captions: Vec<usize>,
-    notes: Vec<usize>,
-    label: Option<String>,
+    about: Description,
     /// The table has ended, though not its element: what follows are notes.
     ended: bool,
 }

@@ -11,7 +11,7 @@ mod trouble;
 
 use super::Unreadable;
 use super::mathml::Math;
-use crate::manuscript::{BlockKind, Builder, CellShape, Format, Manuscript, Part};
+use crate::manuscript::{BlockKind, Builder, CellShape, Description, Format, Manuscript, Part};
 use blocks::local_is;
 use declared::Declared;
 use quick_xml::Reader;
@@ -71,10 +71,8 @@ struct Formula {
 
 #[derive(Default)]
 struct TableWrap {
-    label: String,
+    about: Description,
     first_table: usize,
-    captions: Vec<usize>,
-    notes: Vec<usize>,
     picture: bool,
 }
 
