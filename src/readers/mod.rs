@@ -18,6 +18,8 @@ pub mod pdf;
 pub mod plain;
 pub mod tex_math;
 mod tex_symbols;
+#[cfg(test)]
+mod trial;
 
 use crate::manuscript::{Format, Manuscript};
 use std::fmt;

@@ -9,17 +9,20 @@ use crate::readers::office::symbols;
 use crate::readers::office::tree::Element;
 use std::collections::HashMap;
 
+/// Whether a style is one of paragraphs (or else of text), and its name.
+type Key = (bool, String);
+
 /// All styles of a file, by family and name.
 #[derive(Default)]
 pub struct Styles {
-    styles: HashMap<(bool, String), Style>,
+    styles: HashMap<Key, Style>,
 }
 
 impl Styles {
     /// Reads the roots of `styles.xml` and `content.xml`.
     pub fn read(common: Element<'_>, document: Element<'_>) -> Styles {
         let mut fonts = HashMap::new();
-        let mut raw: HashMap<(bool, String), (Style, Option<(bool, String)>)> = HashMap::new();
+        let mut raw: HashMap<Key, (Style, Option<Key>)> = HashMap::new();
         for root in [common, document] {
             for face in root.child("font-face-decls").iter().flat_map(Element::children) {
                 if let (Some(name), Some(family)) = (face.attribute("name"), face.attribute("font-family")) {
