@@ -9,7 +9,7 @@ mod builder;
 mod characters;
 mod place;
 
-pub use builder::{Builder, CellShape};
+pub use builder::{Builder, CellShape, Description};
 pub use place::Place;
 
 use std::ops::Range;

@@ -4,6 +4,7 @@
 pub mod decode;
 pub mod detect;
 pub mod docx;
+pub mod entities;
 pub mod headings;
 pub mod html;
 pub mod jats;
@@ -17,6 +18,8 @@ pub mod pdf;
 pub mod plain;
 pub mod tex_math;
 mod tex_symbols;
+#[cfg(test)]
+mod trial;
 
 use crate::manuscript::{Format, Manuscript};
 use std::fmt;

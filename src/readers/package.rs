@@ -183,29 +183,10 @@ fn text(bytes: Vec<u8>) -> Result<String, Unreadable> {
     }
 }
 
-/// Small packages for the tests of the readers.
-#[cfg(test)]
-pub mod testing {
-    use std::io::{Cursor, Write};
-    use zip::ZipWriter;
-    use zip::write::SimpleFileOptions;
-
-    /// A package with these parts.
-    pub fn package(parts: &[(&str, &str)]) -> Vec<u8> {
-        let mut zip = ZipWriter::new(Cursor::new(Vec::new()));
-        for (name, text) in parts {
-            // Writing into memory cannot fail.
-            zip.start_file(*name, SimpleFileOptions::default()).unwrap();
-            zip.write_all(text.as_bytes()).unwrap();
-        }
-        zip.finish().unwrap().into_inner()
-    }
-}
-
 #[cfg(test)]
 mod tests {
-    use super::testing::package;
     use super::*;
+    use crate::readers::trial::package;
 
     fn refusal(bytes: &[u8], part: &str) -> String {
         match Package::open(bytes, "Word file").and_then(|mut p| p.part(part)) {

@@ -330,21 +330,23 @@ pub(super) fn corners(values: &[Interval], f: impl Fn(&[f64]) -> f64) -> Option<
     range.map(|r| r.widen(1e-12))
 }
 
+/// All parts but the first, each within its domain; none if one lies outside.
+pub(super) fn within(values: &[Interval], domains: &[Interval]) -> Option<Vec<Interval>> {
+    values
+        .iter()
+        .zip(domains)
+        .skip(1)
+        .map(|(v, d)| v.meet(*d))
+        .collect()
+}
+
 /// The law that the first part is a function of the others which is monotone in each of them.
 pub(super) fn formula(
     domains: Vec<Interval>,
     f: impl Fn(&[f64]) -> f64 + Send + Sync + 'static,
 ) -> ByRange<impl Fn(&[Interval]) -> Option<Interval> + Send + Sync> {
     let natural = domains.clone();
-    let range = move |values: &[Interval]| {
-        let inside: Option<Vec<Interval>> = values
-            .iter()
-            .zip(&natural)
-            .skip(1)
-            .map(|(v, d)| v.meet(*d))
-            .collect();
-        corners(&inside?, &f)
-    };
+    let range = move |values: &[Interval]| corners(&within(values, &natural)?, &f);
     ByRange { range, domains }
 }
 
@@ -356,13 +358,7 @@ pub(super) fn between(
 ) -> ByRange<impl Fn(&[Interval]) -> Option<Interval> + Send + Sync> {
     let natural = domains.clone();
     let range = move |values: &[Interval]| {
-        let inside: Option<Vec<Interval>> = values
-            .iter()
-            .zip(&natural)
-            .skip(1)
-            .map(|(v, d)| v.meet(*d))
-            .collect();
-        let inside = inside?;
+        let inside = within(values, &natural)?;
         let (low, high) = (corners(&inside, &low)?.low, corners(&inside, &high)?.high);
         (low <= high).then_some(Interval { low, high })
     };

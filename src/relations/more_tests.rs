@@ -1,7 +1,7 @@
 //! Effect sizes, intervals, granularity and ranges, tried on printed numbers.
 
 use super::tests::{
-    Outcome, agrees, conflicts, mention, open, outcome, outcomes, quantities, solutions_hold,
+    Outcome, agrees, case, conflicts, mention, open, outcome, outcomes, quantities, solutions_hold,
 };
 use super::*;
 
@@ -217,12 +217,7 @@ fn means_of_whole_answers() {
     // 193/56 = 3.446.
     assert!(matches!(grim("M 3.45 SD 1.22 n 28", &two), Outcome::Agrees(_)));
     let given = quantities("M 3.45 n 28");
-    let case = Case {
-        quantities: &given,
-        mentions: &scale,
-        alpha: 0.05,
-        one_sided: false,
-    };
+    let case = case(&given, &scale);
     let tie = &mean_granularity::ties(&case)[0];
     let values = [given[0].interval, given[1].interval];
     let nearest = tie.variants[0].law.solve(0, &values);

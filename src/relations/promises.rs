@@ -1,7 +1,7 @@
 //! The two promises, tried on simulated results: whatever is computed from true values and printed by
 //! any usual rounding never conflicts, and what no rounding explains always does.
 
-use super::tests::{Outcome, judge, quantities};
+use super::tests::{Outcome, case, judge, mention, outcomes, quantities};
 use super::*;
 use proptest::prelude::*;
 use statrs::distribution::{ChiSquared, ContinuousCDF, FisherSnedecor, Normal, StudentsT};
@@ -19,20 +19,9 @@ fn print(value: f64, decimals: usize, way: u8) -> String {
     if value < 0.0 { format!("-{text}") } else { text }
 }
 
-/// How the only tie of a relation comes out; None if it does not apply.
+/// How the first tie of a relation comes out; None if it does not apply.
 fn verdict(relation: &str, text: &str) -> Option<Outcome> {
-    let quantities = quantities(text);
-    let case = Case {
-        quantities: &quantities,
-        mentions: &[],
-        alpha: 0.05,
-        one_sided: false,
-    };
-    let relation = REGISTRY
-        .iter()
-        .find(|r| r.name == relation)
-        .expect("it is in the registry");
-    (relation.ties)(&case).first().map(|tie| judge(tie, &quantities))
+    outcomes(relation, text, &[]).into_iter().next()
 }
 
 fn agrees(relation: &str, text: &str) -> Result<(), TestCaseError> {
@@ -149,9 +138,9 @@ proptest! {
         let p = f_p(f, epsilon * a, epsilon * b);
         let text = format!("F {f:.2} df1 {df1} df2 {} p {p:.3}", df1 * (subjects - 1));
         let given = quantities(&text);
-        let mentions = [super::tests::mention("sphericity", "Greenhouse–Geisser", Reach::Document, &[])];
-        let case = Case { quantities: &given, mentions: &mentions, alpha: 0.05, one_sided: false };
-        let out = judge(&p_from_f::ties(&case)[0], &given);
+        let mentions = [mention("sphericity", "Greenhouse–Geisser", Reach::Document, &[])];
+        let statement = case(&given, &mentions);
+        let out = judge(&p_from_f::ties(&statement)[0], &given);
         prop_assert!(matches!(out, Outcome::Agrees(_)), "{text}: {out:?}");
     }
 
@@ -226,9 +215,9 @@ proptest! {
         let mean = f64::from(total) / n as f64;
         let text = format!("M {} SD 1.2 n {n}", print(mean, decimals, way));
         let given = quantities(&text);
-        let mentions = [super::tests::mention("scale", "7-point", Reach::Sentence, &[7.0])];
-        let case = Case { quantities: &given, mentions: &mentions, alpha: 0.05, one_sided: false };
-        let out = judge(&mean_granularity::ties(&case)[0], &given);
+        let mentions = [mention("scale", "7-point", Reach::Sentence, &[7.0])];
+        let statement = case(&given, &mentions);
+        let out = judge(&mean_granularity::ties(&statement)[0], &given);
         prop_assert!(out != Outcome::Conflicts, "{text}");
         // And every printed mean that no total rounds to is a conflict: by trying all totals.
         let printed = given[0].interval;
@@ -240,8 +229,8 @@ proptest! {
             let exact = s as f64 / n as f64;
             (exact - given[0].number.value()).abs() <= 0.005 + 1e-9
         });
-        let case = Case { quantities: &given, mentions: &mentions, alpha: 0.05, one_sided: false };
-        let out = judge(&mean_granularity::ties(&case)[0], &given);
+        let statement = case(&given, &mentions);
+        let out = judge(&mean_granularity::ties(&statement)[0], &given);
         prop_assert_eq!(matches!(out, Outcome::Agrees(_)), possible, "{} {:?}", shifted, printed);
     }
 
@@ -369,11 +358,11 @@ proptest! {
         }).collect();
         let reaches = [Reach::Sentence, Reach::Paragraph, Reach::Section, Reach::Document];
         let mentions: Vec<Mention> = meanings.iter().map(|(m, reach, number)| {
-            super::tests::mention(MEANINGS[*m], "words", reaches[usize::from(*reach)], &[number.floor()])
+            mention(MEANINGS[*m], "words", reaches[usize::from(*reach)], &[number.floor()])
         }).collect();
-        let case = Case { quantities: &given, mentions: &mentions, alpha: 0.05, one_sided: false };
+        let statement = case(&given, &mentions);
         for relation in REGISTRY {
-            for tie in (relation.ties)(&case) {
+            for tie in (relation.ties)(&statement) {
                 prop_assert!(tie.open.is_some() == tie.variants.is_empty(), "{}", relation.name);
                 let values: Vec<Interval> = tie.parts.iter().map(|i| given[*i].interval).collect();
                 for variant in &tie.variants {

@@ -50,6 +50,23 @@ pub(super) fn mention(meaning: &'static str, words: &str, reach: Reach, numbers:
     }
 }
 
+/// A statement as the judge hands it to a relation.
+pub(super) fn case<'a>(quantities: &'a [Quantity], mentions: &'a [Mention]) -> Case<'a> {
+    Case {
+        quantities,
+        mentions,
+        alpha: 0.05,
+        one_sided: false,
+    }
+}
+
+fn named(relation: &str) -> &'static Relation {
+    REGISTRY
+        .iter()
+        .find(|r| r.name == relation)
+        .expect("it is in the registry")
+}
+
 /// How a tie comes out.
 #[derive(Clone, Debug, PartialEq)]
 pub(super) enum Outcome {
@@ -79,17 +96,8 @@ pub(super) fn judge(tie: &Tie, quantities: &[Quantity]) -> Outcome {
 /// Every tie of one relation in a statement, with its outcome.
 pub(super) fn outcomes(relation: &str, text: &str, mentions: &[Mention]) -> Vec<Outcome> {
     let quantities = quantities(text);
-    let case = Case {
-        quantities: &quantities,
-        mentions,
-        alpha: 0.05,
-        one_sided: false,
-    };
-    let relation = REGISTRY
-        .iter()
-        .find(|r| r.name == relation)
-        .expect("it is in the registry");
-    (relation.ties)(&case)
+    let case = case(&quantities, mentions);
+    (named(relation).ties)(&case)
         .iter()
         .map(|tie| judge(tie, &quantities))
         .collect()
@@ -130,17 +138,8 @@ pub(super) fn open(relation: &str, text: &str) {
 /// satisfy the law, and values found there do satisfy it.
 pub(super) fn solutions_hold(relation: &str, text: &str) {
     let quantities = quantities(text);
-    let case = Case {
-        quantities: &quantities,
-        mentions: &[],
-        alpha: 0.05,
-        one_sided: false,
-    };
-    let relation = REGISTRY
-        .iter()
-        .find(|r| r.name == relation)
-        .expect("it is in the registry");
-    for tie in (relation.ties)(&case) {
+    let case = case(&quantities, &[]);
+    for tie in (named(relation).ties)(&case) {
         let values: Vec<Interval> = tie.parts.iter().map(|i| quantities[*i].interval).collect();
         for variant in &tie.variants {
             let held = variant.law.holds(&values);
@@ -250,12 +249,7 @@ fn comparators_and_zeros() {
     agrees("p-from-t", "t 5.20 df 28 p .000");
     conflicts("p-from-t", "t 2.20 df 28 p .000");
     let given = quantities("t 5.20 df 28 p .000");
-    let case = Case {
-        quantities: &given,
-        mentions: &[],
-        alpha: 0.05,
-        one_sided: false,
-    };
+    let case = case(&given, &[]);
     let tie = &(REGISTRY[0].ties)(&case)[0];
     assert_eq!(tie.remarks, ["p = .000 is read as p < .0005"]);
 }

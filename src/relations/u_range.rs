@@ -13,7 +13,7 @@
 //! Example: with n1 = 20 and n2 = 25, U = 143 gives |z| = 2.44, so z = −2.44 agrees; U = 1143 conflicts,
 //! because n1·n2 = 500.
 
-use super::laws::{ByRange, COUNTS, POSITIVE, Sizes, corners};
+use super::laws::{ByRange, COUNTS, POSITIVE, Sizes, corners, within};
 use super::{Case, Law, Tie, Variant};
 use crate::numbers::{Interval, Set};
 
@@ -75,13 +75,7 @@ fn law(low: End, high: End) -> impl Law {
     let domains = vec![POSITIVE, POSITIVE, COUNTS, COUNTS];
     let natural = domains.clone();
     let range = move |values: &[Interval]| {
-        let inside: Option<Vec<Interval>> = values
-            .iter()
-            .zip(&natural)
-            .skip(1)
-            .map(|(v, d)| v.meet(*d))
-            .collect();
-        let inside = inside?;
+        let inside = within(values, &natural)?;
         let (mut low, high) = (corners(&inside, low)?.low, corners(&inside, high)?.high);
         // The distance from the middle falls and rises; if the middle can be met, z can be 0.
         let middle = inside[1].times(inside[2]).times(Interval::point(0.5));

@@ -19,7 +19,7 @@
 mod settle;
 mod tables;
 
-pub use tables::CellShape;
+pub use tables::{CellShape, Description};
 
 use super::characters::{self, Read};
 use super::{Block, BlockKind, Format, Manuscript, Mark, Part, STRIDE, Section, Table};

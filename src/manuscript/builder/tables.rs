@@ -21,6 +21,26 @@ impl Default for CellShape {
     }
 }
 
+/// What stands around a table and describes it: its label, and its captions and notes by the indexes
+/// of their blocks (see [`Builder::next_block`]).
+#[derive(Clone, Debug, Default)]
+pub struct Description {
+    pub label: Option<String>,
+    pub captions: Vec<usize>,
+    pub notes: Vec<usize>,
+}
+
+impl Description {
+    /// Takes in a block if its kind describes tables.
+    pub fn add(&mut self, kind: BlockKind, block: usize) {
+        match kind {
+            BlockKind::Caption => self.captions.push(block),
+            BlockKind::TableNote => self.notes.push(block),
+            _ => {}
+        }
+    }
+}
+
 /// Spans beyond this are taken for a mistake in the file, not for a table this large.
 const LARGEST_SPAN: u32 = 1000;
 
@@ -154,6 +174,11 @@ impl Builder {
     /// The number of tables opened so far.
     pub fn table_count(&self) -> usize {
         self.tables.len()
+    }
+
+    /// Describes a table already opened by what was found around it.
+    pub fn describe(&mut self, table: usize, about: &Description) {
+        self.describe_table(table, about.label.as_deref(), &about.captions, &about.notes);
     }
 
     /// Describes a table already opened: its label and the indexes of its caption and note blocks.

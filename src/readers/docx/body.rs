@@ -2,7 +2,7 @@
 
 use super::fields::{Fields, Holds, holds};
 use super::omml;
-use super::styles::{self, Style, Styles};
+use super::styles::{self, Styles};
 use super::{symbol_element, table};
 use crate::manuscript::{Builder, Part};
 use crate::readers::office::flow::{Item, Paragraph, Role, lines};
@@ -155,7 +155,7 @@ impl<'s, 't> Walker<'s, 't> {
         let properties = p.child("pPr");
         let style_id = properties.and_then(|e| e.child("pStyle")).and_then(|s| s.val());
         let below = self.styles.get(style_id.as_deref());
-        let direct = properties.map(Style::of).unwrap_or_default();
+        let direct = properties.map(styles::paragraph).unwrap_or_default();
         let mark_deleted = properties
             .and_then(|e| e.child("rPr"))
             .is_some_and(|r| r.child("del").is_some() || r.child("moveFrom").is_some());

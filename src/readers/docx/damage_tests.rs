@@ -2,7 +2,7 @@
 
 use super::read;
 use super::tests::{RAISED, file, p, r, set, styled, tc, text};
-use crate::readers::package::testing::package;
+use crate::readers::trial::{Random, nested, package};
 
 /// A file with something of everything, for the tests below.
 fn rich() -> String {
@@ -114,14 +114,7 @@ fn deep_nesting_is_no_danger() {
         "mc:AlternateContent><mc:Choice",
     ] {
         let depth = 990 / name.split("><").count();
-        let close: String = name.rsplit("><").map(|n| format!("</{n}>")).collect();
-        let body = format!(
-            "{}{}{}",
-            format!("<{name}>").repeat(depth),
-            p("deep"),
-            close.repeat(depth)
-        );
-        assert_eq!(text(&body), "deep\n", "{name}");
+        assert_eq!(text(&nested(name, depth, &p("deep"))), "deep\n", "{name}");
     }
     for name in [
         "m:f><m:num",
@@ -131,12 +124,7 @@ fn deep_nesting_is_no_danger() {
         "m:limUpp><m:lim",
         "m:m><m:mr",
     ] {
-        let close: String = name.rsplit("><").map(|n| format!("</{n}>")).collect();
-        let formula = format!(
-            "{}<m:r><m:t>x</m:t></m:r>{}",
-            format!("<{name}>").repeat(480),
-            close.repeat(480)
-        );
+        let formula = nested(name, 480, "<m:r><m:t>x</m:t></m:r>");
         assert!(
             text(&format!("<w:p><m:oMath>{formula}</m:oMath></w:p>")).contains('x'),
             "{name}"
@@ -144,16 +132,4 @@ fn deep_nesting_is_no_danger() {
     }
     let refused = read(&file(&"<w:ins>".repeat(2000), &[])).expect_err("too deep");
     assert!(refused.0.contains("nested more than 1000 deep"), "{refused}");
-}
-
-/// Numbers that look random and are the same every time (Marsaglia's xorshift).
-struct Random(u64);
-
-impl Random {
-    fn below(&mut self, limit: usize) -> usize {
-        self.0 ^= self.0 << 13;
-        self.0 ^= self.0 >> 7;
-        self.0 ^= self.0 << 17;
-        (self.0 % limit.max(1) as u64) as usize
-    }
 }

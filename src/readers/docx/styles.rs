@@ -1,9 +1,9 @@
 //! The styles of a Word file, as far as they say what a paragraph is and how its text is set.
 
-use crate::manuscript::Part;
 use crate::readers::office::flow::Role;
 use crate::readers::office::line::Shift;
 use crate::readers::office::setting::{Setting, by_name};
+use crate::readers::office::style::{Style, inherited};
 use crate::readers::office::symbols;
 use crate::readers::office::tree::Element;
 use std::collections::HashMap;
@@ -40,51 +40,27 @@ pub fn is_on(switch: Element<'_>) -> bool {
     !matches!(switch.val().as_deref(), Some("0" | "false" | "off" | "none"))
 }
 
-/// One style, with everything it inherits.
-#[derive(Clone, Copy, Debug, Default)]
-pub struct Style {
-    pub role: Option<Role>,
-    pub part: Option<Part>,
-    pub listed: Option<bool>,
-    pub centred: Option<bool>,
-    pub page_before: Option<bool>,
-    pub setting: Setting,
-}
-
-impl Style {
-    fn over(self, below: Style) -> Style {
-        Style {
-            role: self.role.or(below.role),
-            part: self.part.or(below.part),
-            listed: self.listed.or(below.listed),
-            centred: self.centred.or(below.centred),
-            page_before: self.page_before.or(below.page_before),
-            setting: self.setting.over(below.setting),
-        }
-    }
-
-    /// The direct properties in a paragraph-properties element.
-    pub fn of(properties: Element<'_>) -> Style {
-        let mut style = Style::default();
-        for p in properties.children() {
-            match p.name() {
-                // Level 9 is the standard's word for body text.
-                "outlineLvl" => {
-                    style.role = match p.number("val") {
-                        Some(level @ 0..=8) => Some(Role::Heading(level as u8 + 1)),
-                        _ => None,
-                    };
-                }
-                "numPr" => {
-                    style.listed = p.child("numId").map(|id| id.number("val") != Some(0));
-                }
-                "jc" => style.centred = Some(p.val().as_deref() == Some("center")),
-                "pageBreakBefore" => style.page_before = Some(is_on(p)),
-                _ => {}
+/// The direct properties in a paragraph-properties element.
+pub fn paragraph(properties: Element<'_>) -> Style {
+    let mut style = Style::default();
+    for p in properties.children() {
+        match p.name() {
+            // Level 9 is the standard's word for body text.
+            "outlineLvl" => {
+                style.role = match p.number("val") {
+                    Some(level @ 0..=8) => Some(Role::Heading(level as u8 + 1)),
+                    _ => None,
+                };
             }
+            "numPr" => {
+                style.listed = p.child("numId").map(|id| id.number("val") != Some(0));
+            }
+            "jc" => style.centred = Some(p.val().as_deref() == Some("center")),
+            "pageBreakBefore" => style.page_before = Some(is_on(p)),
+            _ => {}
         }
-        style
     }
+    style
 }
 
 /// All styles of a file by their id.
@@ -95,9 +71,6 @@ pub struct Styles {
     ordinary: Style,
 }
 
-/// Longer chains of styles based on styles are taken for a circle.
-const LONGEST_CHAIN: usize = 30;
-
 impl Styles {
     /// Reads the root of the styles part.
     pub fn read(root: Element<'_>) -> Styles {
@@ -107,7 +80,7 @@ impl Styles {
             let Some(id) = s.attribute("styleId") else {
                 continue;
             };
-            let mut style = s.child("pPr").map(Style::of).unwrap_or_default();
+            let mut style = s.child("pPr").map(paragraph).unwrap_or_default();
             if let Some(properties) = s.child("rPr") {
                 style.setting = setting(properties);
             }
@@ -119,26 +92,15 @@ impl Styles {
             // A name such as `heading 2` says more than the outline level, which it may contradict.
             style.role = role.or(style.role);
             style.part = part;
-            let paragraph = s.attribute("type").as_deref() == Some("paragraph");
-            if paragraph && matches!(s.attribute("default").as_deref(), Some("1" | "true" | "on")) {
+            if s.attribute("type").as_deref() == Some("paragraph")
+                && matches!(s.attribute("default").as_deref(), Some("1" | "true" | "on"))
+            {
                 ordinary = Some(id.to_string());
             }
             let based = s.child("basedOn").and_then(|b| b.val()).map(|b| b.into_owned());
             raw.insert(id.into_owned(), (style, based));
         }
-        let mut styles = HashMap::with_capacity(raw.len());
-        for (id, (style, based)) in &raw {
-            let mut whole = *style;
-            let mut next = based.as_ref();
-            for _ in 0..LONGEST_CHAIN {
-                let Some((below, based)) = next.and_then(|id| raw.get(id)) else {
-                    break;
-                };
-                whole = whole.over(*below);
-                next = based.as_ref();
-            }
-            styles.insert(id.clone(), whole);
-        }
+        let styles = inherited(&raw);
         let ordinary = ordinary
             .and_then(|id| styles.get(&id).copied())
             .unwrap_or_default();
@@ -148,14 +110,7 @@ impl Styles {
     /// The style with this id; a file without that style still says something by the id itself.
     pub fn get(&self, id: Option<&str>) -> Style {
         let Some(id) = id else { return self.ordinary };
-        self.styles.get(id).copied().unwrap_or_else(|| {
-            let (role, part) = by_name(id);
-            Style {
-                role,
-                part,
-                ..Style::default()
-            }
-        })
+        self.styles.get(id).copied().unwrap_or_else(|| Style::named(id))
     }
 }
 

@@ -2,7 +2,7 @@
 
 use super::read;
 use crate::manuscript::{BlockKind, Manuscript, Part};
-use crate::readers::package::testing::package;
+use crate::readers::trial::{blocks, package};
 
 const STYLES: &str = r#"<w:styles>
 <w:style w:type="paragraph" w:styleId="Normal" w:default="1"><w:name w:val="Normal"/></w:style>
@@ -55,14 +55,6 @@ pub(super) fn set(properties: &str, text: &str) -> String {
 
 pub(super) const RAISED: &str = "<w:vertAlign w:val=\"superscript\"/>";
 const LOWERED: &str = "<w:vertAlign w:val=\"subscript\"/>";
-
-/// Kind, part and text of every block.
-fn blocks(m: &Manuscript) -> Vec<(BlockKind, Part, &str)> {
-    m.blocks
-        .iter()
-        .map(|b| (b.kind, b.part, m.block_text(b)))
-        .collect()
-}
 
 #[test]
 fn runs_split_anywhere_are_one_text() {

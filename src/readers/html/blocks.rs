@@ -68,14 +68,11 @@ impl<'a> Reading<'a> {
         }
         self.waiting_caption = None;
         match (kind, self.groups.last_mut()) {
-            (BlockKind::Caption, Some(group)) => {
-                group.captions.push(block);
-                if group.label.is_none() {
-                    group.label = label;
-                }
+            (_, Some(group)) => {
+                group.about.add(kind, block);
+                group.about.label = group.about.label.take().or(label);
             }
             (BlockKind::Caption, None) => self.waiting_caption = Some((block, label)),
-            (BlockKind::TableNote, Some(group)) => group.notes.push(block),
             (BlockKind::TableNote, None) => {
                 if let Some(last) = self.b.table_count().checked_sub(1) {
                     self.b.describe_table(last, None, &[], &[block]);
@@ -177,8 +174,8 @@ impl<'a> Reading<'a> {
             && block + 1 == self.b.next_block()
             && label.is_some()
         {
-            group.captions.push(block);
-            group.label = label;
+            group.about.add(BlockKind::Caption, block);
+            group.about.label = label;
         }
         self.groups.push(group);
         true
@@ -278,8 +275,7 @@ impl<'a> Reading<'a> {
         let tables = group.first_table..self.b.table_count();
         // A figure with more tables than this is no figure, but a page without end tags.
         for table in tables.take(100) {
-            self.b
-                .describe_table(table, group.label.as_deref(), &group.captions, &group.notes);
+            self.b.describe(table, &group.about);
         }
     }
 }

@@ -7,14 +7,13 @@
 
 mod blocks;
 mod elements;
-pub mod entities;
 mod formulas;
 mod marks;
 mod tokens;
 
 use super::Unreadable;
 use super::headings::Parts;
-use crate::manuscript::{BlockKind, Builder, Format, Manuscript, Part};
+use crate::manuscript::{BlockKind, Builder, Description, Format, Manuscript, Part};
 use elements::{Element, element};
 use formulas::Ahead;
 use marks::Marks;
@@ -78,9 +77,7 @@ struct Open<'a> {
 #[derive(Default)]
 struct Group {
     first_table: usize,
-    captions: Vec<usize>,
-    notes: Vec<usize>,
-    label: Option<String>,
+    about: Description,
     /// The table has ended, though not its element: what follows are notes.
     ended: bool,
 }

@@ -1,7 +1,7 @@
 //! Cuts HTML, as it is found, into tags and text. Nothing is refused: a `<` that begins no tag is
 //! text, quotes may be missing, and a comment that never ends runs to the end of the file.
 
-use super::entities;
+use crate::readers::entities;
 use std::borrow::Cow;
 
 /// A piece of the file.

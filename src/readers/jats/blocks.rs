@@ -1,7 +1,7 @@
 //! Blocks, tables, formulas and raised text of a JATS file: what the events lead to.
 
 use super::*;
-use crate::readers::headings;
+use crate::readers::{entities, headings};
 
 impl<'a> Reading<'a> {
     /// Text at the place reached.
@@ -59,16 +59,8 @@ impl<'a> Reading<'a> {
 
     /// A character or entity reference.
     pub(super) fn entity(&mut self, name: &str) {
-        let simple = match name {
-            "amp" => "&",
-            "lt" => "<",
-            "gt" => ">",
-            "quot" => "\"",
-            "apos" => "'",
-            _ => "",
-        };
-        if !simple.is_empty() {
-            return self.text(simple);
+        if let Some(text) = entities::predefined(name) {
+            return self.text(text);
         }
         if let Some(number) = name.strip_prefix('#') {
             if let Some(c) = entities::numbered(number) {
@@ -78,7 +70,7 @@ impl<'a> Reading<'a> {
         }
         if let Some(text) = self.declared.text(name) {
             self.text(&text);
-        } else if let Some(text) = crate::readers::html::entities::named(name) {
+        } else if let Some(text) = entities::named(name) {
             self.text(text);
         } else {
             self.declared.unknown(name);
@@ -121,13 +113,9 @@ impl<'a> Reading<'a> {
         let kind = self.b.open_kind();
         self.b.close();
         if self.b.next_block() > block
-            && let Some(wrap) = self.wraps.last_mut()
+            && let (Some(wrap), Some(kind)) = (self.wraps.last_mut(), kind)
         {
-            match kind {
-                Some(BlockKind::Caption) => wrap.captions.push(block),
-                Some(BlockKind::TableNote) => wrap.notes.push(block),
-                _ => {}
-            }
+            wrap.about.add(kind, block);
         }
     }
 
@@ -209,9 +197,9 @@ impl<'a> Reading<'a> {
         }
         if self.label_of == Tag::TableWrap
             && let Some(wrap) = self.wraps.last_mut()
-            && wrap.label.is_empty()
+            && wrap.about.label.is_none()
         {
-            wrap.label.push_str(bare);
+            wrap.about.label = Some(bare.to_string());
         }
         if self.b.is_open() {
             // A label in running text, as of a reference or a cell.
@@ -308,11 +296,7 @@ impl<'a> Reading<'a> {
         if tables.is_empty() && wrap.picture {
             const NAMED_AT_MOST: usize = 12;
             self.table_picture_count += 1;
-            let name = if wrap.label.is_empty() {
-                "a table"
-            } else {
-                &wrap.label
-            };
+            let name = wrap.about.label.as_deref().unwrap_or("a table");
             match self.table_pictures.len() {
                 NAMED_AT_MOST => self.table_pictures.push("…".into()),
                 few if few < NAMED_AT_MOST => self.table_pictures.push(name.into()),
@@ -320,8 +304,7 @@ impl<'a> Reading<'a> {
             }
         }
         for table in tables {
-            self.b
-                .describe_table(table, Some(&wrap.label), &wrap.captions, &wrap.notes);
+            self.b.describe(table, &wrap.about);
         }
     }
 

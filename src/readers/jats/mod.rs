@@ -5,15 +5,15 @@
 //! Reference lists, metadata and letters about the article are left out.
 
 mod blocks;
-mod entities;
+mod declared;
 mod tags;
 mod trouble;
 
 use super::Unreadable;
 use super::mathml::Math;
-use crate::manuscript::{BlockKind, Builder, CellShape, Format, Manuscript, Part};
+use crate::manuscript::{BlockKind, Builder, CellShape, Description, Format, Manuscript, Part};
 use blocks::local_is;
-use entities::Declared;
+use declared::Declared;
 use quick_xml::Reader;
 use quick_xml::events::{BytesStart, Event};
 use tags::Tag;
@@ -71,10 +71,8 @@ struct Formula {
 
 #[derive(Default)]
 struct TableWrap {
-    label: String,
+    about: Description,
     first_table: usize,
-    captions: Vec<usize>,
-    notes: Vec<usize>,
     picture: bool,
 }
 

@@ -2,7 +2,7 @@
 
 use super::tables::{self, Tabular};
 use super::walk::{Float, Walker};
-use crate::manuscript::{BlockKind, Part};
+use crate::manuscript::{BlockKind, Description, Part};
 use crate::readers::headings::known;
 
 /// Environments that hold a formula.
@@ -271,8 +271,7 @@ impl Walker<'_> {
     fn end_float(&mut self) {
         if let Some(float) = self.floats.pop() {
             for table in float.tables {
-                self.b
-                    .describe_table(table, float.label.as_deref(), &float.captions, &float.notes);
+                self.b.describe(table, &float.about);
             }
         }
     }
@@ -389,9 +388,9 @@ impl Walker<'_> {
             self.end_paragraph();
         }
         if let Some(float) = self.floats.last_mut() {
-            float.captions.push(index);
+            float.about.captions.push(index);
             if label.is_some() {
-                float.label = label;
+                float.about.label = label;
             }
         }
         end
@@ -476,9 +475,7 @@ impl Float {
             is_table,
             own: false,
             bare: false,
-            label: None,
-            captions: Vec::new(),
-            notes: Vec::new(),
+            about: Description::default(),
             tables: Vec::new(),
         }
     }

@@ -1,5 +1,6 @@
 use super::*;
 use crate::manuscript::{BlockKind, Part};
+use crate::readers::trial::into_blocks;
 
 fn manuscript(source: &str) -> Manuscript {
     read(source, None).expect("LaTeX is always read")
@@ -10,11 +11,7 @@ fn text(source: &str) -> String {
 }
 
 fn blocks(source: &str) -> Vec<(BlockKind, Part, String)> {
-    let m = manuscript(source);
-    m.blocks
-        .iter()
-        .map(|b| (b.kind, b.part, m.block_text(b).to_string()))
-        .collect()
+    into_blocks(manuscript(source))
 }
 
 #[test]

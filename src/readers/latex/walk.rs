@@ -6,7 +6,7 @@ use super::accents::accent;
 use super::arguments::{self, Braces, bracket_end, name_at, skip_space};
 use super::expand::{Flat, UNKNOWN};
 use super::tables::Tabular;
-use crate::manuscript::{BlockKind, Builder, Format, Part};
+use crate::manuscript::{BlockKind, Builder, Description, Format, Part};
 use crate::readers::headings::Parts;
 use crate::readers::tex_math::push_math;
 use crate::readers::tex_symbols::symbol;
@@ -56,9 +56,7 @@ pub(super) struct Float {
     pub(super) own: bool,
     /// Made for a tabular that stands in no float.
     pub(super) bare: bool,
-    pub(super) label: Option<String>,
-    pub(super) captions: Vec<usize>,
-    pub(super) notes: Vec<usize>,
+    pub(super) about: Description,
     pub(super) tables: Vec<usize>,
 }
 
@@ -126,7 +124,7 @@ impl<'a> Walker<'a> {
         }
         match self.floats.last() {
             Some(float) if float.is_table && !float.tables.is_empty() => BlockKind::TableNote,
-            Some(float) if !float.captions.is_empty() => BlockKind::TableNote,
+            Some(float) if !float.about.captions.is_empty() => BlockKind::TableNote,
             _ => BlockKind::Paragraph,
         }
     }
@@ -146,7 +144,7 @@ impl<'a> Walker<'a> {
         if kind == BlockKind::TableNote
             && let Some(float) = self.floats.last_mut()
         {
-            float.notes.push(self.b.next_block());
+            float.about.add(kind, self.b.next_block());
         }
     }
 

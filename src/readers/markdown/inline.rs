@@ -1,10 +1,10 @@
 //! *Inline* Markdown: what may stand within a paragraph, heading or cell. Marks that are only
 //! marks go; a `*`, `_`, `<`, `^`, `~` or `$` that is none of Markdown's business stays.
 
-use super::entities::entity;
 use super::links::brackets;
 use super::tags::{Tag, tag};
 use crate::manuscript::Builder;
+use crate::readers::entities::entity;
 use crate::readers::tex_math::{flat as flat_math, push_math};
 use crate::readers::tex_symbols::symbol;
 use std::collections::{HashMap, HashSet};

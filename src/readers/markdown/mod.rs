@@ -2,7 +2,6 @@
 //! what stands inside a block is read by [`inline`].
 
 mod blocks;
-mod entities;
 mod inline;
 mod lines;
 mod links;

@@ -1,4 +1,5 @@
 use super::*;
+use crate::readers::trial::into_blocks;
 use BlockKind::{Caption, Footnote, Heading, ListItem, Paragraph, Quote, TableNote};
 
 fn manuscript(source: &str) -> Manuscript {
@@ -10,11 +11,7 @@ fn text(source: &str) -> String {
 }
 
 fn blocks(source: &str) -> Vec<(BlockKind, Part, String)> {
-    let m = manuscript(source);
-    m.blocks
-        .iter()
-        .map(|b| (b.kind, b.part, m.block_text(b).to_string()))
-        .collect()
+    into_blocks(manuscript(source))
 }
 
 #[test]

@@ -1,52 +1,28 @@
 //! The styles of an OpenDocument file: those a person chose, in `styles.xml`, and those the word
 //! processor made for what was set by hand, in the document itself.
 
-use crate::manuscript::Part;
 use crate::readers::office::flow::Role;
 use crate::readers::office::line::Shift;
-use crate::readers::office::setting::{Setting, by_name};
+use crate::readers::office::setting::Setting;
+use crate::readers::office::style::{Style, inherited};
 use crate::readers::office::symbols;
 use crate::readers::office::tree::Element;
 use std::collections::HashMap;
 
-/// One style, with everything it inherits.
-#[derive(Clone, Copy, Debug, Default)]
-pub struct Style {
-    pub role: Option<Role>,
-    pub part: Option<Part>,
-    pub centred: Option<bool>,
-    pub page_before: Option<bool>,
-    pub page_after: Option<bool>,
-    pub setting: Setting,
-}
-
-impl Style {
-    fn over(self, below: Style) -> Style {
-        Style {
-            role: self.role.or(below.role),
-            part: self.part.or(below.part),
-            centred: self.centred.or(below.centred),
-            page_before: self.page_before.or(below.page_before),
-            page_after: self.page_after.or(below.page_after),
-            setting: self.setting.over(below.setting),
-        }
-    }
-}
+/// Whether a style is one of paragraphs (or else of text), and its name.
+type Key = (bool, String);
 
 /// All styles of a file, by family and name.
 #[derive(Default)]
 pub struct Styles {
-    styles: HashMap<(bool, String), Style>,
+    styles: HashMap<Key, Style>,
 }
-
-/// Longer chains of parents are taken for a circle.
-const LONGEST_CHAIN: usize = 30;
 
 impl Styles {
     /// Reads the roots of `styles.xml` and `content.xml`.
     pub fn read(common: Element<'_>, document: Element<'_>) -> Styles {
         let mut fonts = HashMap::new();
-        let mut raw: HashMap<(bool, String), (Style, Option<String>)> = HashMap::new();
+        let mut raw: HashMap<Key, (Style, Option<Key>)> = HashMap::new();
         for root in [common, document] {
             for face in root.child("font-face-decls").iter().flat_map(Element::children) {
                 if let (Some(name), Some(family)) = (face.attribute("name"), face.attribute("font-family")) {
@@ -70,23 +46,14 @@ impl Styles {
                 .attribute("display-name")
                 .map_or_else(|| decoded(&name), |n| n.into_owned());
             let style = one(s, &shown, &fonts);
-            let parent = s.attribute("parent-style-name").map(|p| p.into_owned());
+            let parent = s
+                .attribute("parent-style-name")
+                .map(|p| (paragraph, p.into_owned()));
             raw.insert((paragraph, name.into_owned()), (style, parent));
         }
-        let mut styles = HashMap::with_capacity(raw.len());
-        for (key, (style, parent)) in &raw {
-            let mut whole = *style;
-            let mut next = parent.clone();
-            for _ in 0..LONGEST_CHAIN {
-                let Some((below, parent)) = next.and_then(|name| raw.get(&(key.0, name))) else {
-                    break;
-                };
-                whole = whole.over(*below);
-                next = parent.clone();
-            }
-            styles.insert(key.clone(), whole);
+        Styles {
+            styles: inherited(&raw),
         }
-        Styles { styles }
     }
 
     /// The paragraph style of this name.
@@ -103,14 +70,7 @@ impl Styles {
         self.styles
             .get(&(paragraph, name.to_string()))
             .copied()
-            .unwrap_or_else(|| {
-                let (role, part) = by_name(&decoded(name));
-                Style {
-                    role,
-                    part,
-                    ..Style::default()
-                }
-            })
+            .unwrap_or_else(|| Style::named(&decoded(name)))
     }
 }
 
@@ -137,12 +97,7 @@ fn decoded(name: &str) -> String {
 }
 
 fn one(s: Element<'_>, name: &str, fonts: &HashMap<String, String>) -> Style {
-    let (role, part) = by_name(name);
-    let mut style = Style {
-        role,
-        part,
-        ..Style::default()
-    };
+    let mut style = Style::named(name);
     if let Some(level @ 1..=9) = s.number("default-outline-level") {
         style.role = style.role.or(Some(Role::Heading(level as u8)));
     }

@@ -2,7 +2,7 @@
 
 use super::read;
 use crate::manuscript::{BlockKind, Manuscript, Part};
-use crate::readers::package::testing::package;
+use crate::readers::trial::{blocks, nested, package};
 
 const COMMON: &str = r#"<office:document-styles><office:styles>
 <style:style style:name="Standard" style:family="paragraph"/>
@@ -43,13 +43,6 @@ fn p(text: &str) -> String {
 
 fn span(style: &str, text: &str) -> String {
     format!("<text:span text:style-name=\"{style}\">{text}</text:span>")
-}
-
-fn blocks(m: &Manuscript) -> Vec<(BlockKind, Part, &str)> {
-    m.blocks
-        .iter()
-        .map(|b| (b.kind, b.part, m.block_text(b)))
-        .collect()
 }
 
 #[test]
@@ -332,28 +325,17 @@ fn deep_nesting_is_no_danger() {
         "table:table><table:table-row><table:table-cell",
     ] {
         let depth = 990 / name.split("><").count();
-        let close: String = name.rsplit("><").map(|n| format!("</{n}>")).collect();
-        let body = format!(
-            "{}{}{}",
-            format!("<{name}>").repeat(depth),
-            p("deep"),
-            close.repeat(depth)
-        );
-        assert_eq!(text(&body), "deep\n", "{name}");
+        assert_eq!(text(&nested(name, depth, &p("deep"))), "deep\n", "{name}");
     }
-    let spans = format!("{}deep{}", "<text:span>".repeat(980), "</text:span>".repeat(980));
-    assert_eq!(text(&p(&spans)), "deep\n");
+    assert_eq!(text(&p(&nested("text:span", 980, "deep"))), "deep\n");
     for (depth, name) in [
         (480, "math:mrow"),
         (970, "math:mrow"),
         (970, "math:msup"),
         (970, "math:mfrac"),
     ] {
-        let formula = format!(
-            "<draw:frame><draw:object><math:math>{}<math:mi>x</math:mi>{}</math:math></draw:object></draw:frame>",
-            format!("<{name}>").repeat(depth),
-            format!("</{name}>").repeat(depth)
-        );
+        let inside = nested(name, depth, "<math:mi>x</math:mi>");
+        let formula = nested("draw:frame><draw:object><math:math", 1, &inside);
         // Beyond 500 the formula reader gives up what is inside.
         assert_eq!(text(&p(&formula)).contains('x'), depth < 500, "{name}");
     }

@@ -5,7 +5,7 @@
 
 use super::labels::{self, Label};
 use super::line::{Line, Page, joined};
-use crate::manuscript::{BlockKind, Builder, CellShape, Part};
+use crate::manuscript::{BlockKind, Builder, CellShape, Description, Part};
 use crate::readers::headings::{self, Parts};
 
 /// What the file says a paragraph is.
@@ -136,9 +136,7 @@ pub fn write(items: &[Item], b: &mut Builder, paged: bool) {
 #[derive(Clone, Default)]
 struct Found {
     table: Option<usize>,
-    label: Option<String>,
-    captions: Vec<usize>,
-    notes: Vec<usize>,
+    about: Description,
 }
 
 struct Writer<'a> {
@@ -175,8 +173,7 @@ impl Writer<'_> {
         }
         for found in &self.found {
             if let Some(table) = found.table {
-                self.b
-                    .describe_table(table, found.label.as_deref(), &found.captions, &found.notes);
+                self.b.describe(table, &found.about);
             }
         }
     }
@@ -263,12 +260,12 @@ impl Writer<'_> {
         }
         match self.ties[at] {
             Tie::CaptionOf(table) => {
-                self.found[table].captions.push(block);
+                self.found[table].about.captions.push(block);
                 if let Some(label) = labels::label(start) {
-                    self.found[table].label.get_or_insert(label.label);
+                    self.found[table].about.label.get_or_insert(label.label);
                 }
             }
-            Tie::NoteOf(table) => self.found[table].notes.push(block),
+            Tie::NoteOf(table) => self.found[table].about.notes.push(block),
             Tie::None => {}
         }
     }
@@ -323,7 +320,7 @@ impl Writer<'_> {
 
     fn table(&mut self, at: usize, rows: &[Vec<Cell>], page: &mut Option<Page>) {
         let inner = inner_label(rows);
-        let part = match inner.is_some() || !self.found[at].captions.is_empty() {
+        let part = match inner.is_some() || !self.found[at].about.captions.is_empty() {
             true => self.float(),
             false => self.parts.current(),
         };
@@ -354,9 +351,9 @@ impl Writer<'_> {
                 }
                 if row.len() == 1 && rows.len() > 1 {
                     if r == 0 && inner.is_some() {
-                        self.found[at].captions.push(block);
+                        self.found[at].about.captions.push(block);
                     } else if r == last && is_note(&cell.line) {
-                        self.found[at].notes.push(block);
+                        self.found[at].about.notes.push(block);
                     }
                 }
             }
@@ -368,7 +365,7 @@ impl Writer<'_> {
         self.b.close_table();
         self.found[at].table = Some(table);
         if let Some(label) = inner {
-            self.found[at].label.get_or_insert(label.label);
+            self.found[at].about.label.get_or_insert(label.label);
         }
     }
 }

@@ -5,5 +5,6 @@ pub mod flow;
 pub mod labels;
 pub mod line;
 pub mod setting;
+pub mod style;
 pub mod symbols;
 pub mod tree;

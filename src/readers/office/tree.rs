@@ -4,6 +4,7 @@
 //! Entities that a document type might define are not expanded, and nesting is limited, so
 //! reading takes time and memory in proportion to the text.
 
+use crate::readers::entities;
 use quick_xml::Reader;
 use quick_xml::events::Event;
 use std::borrow::Cow;
@@ -296,20 +297,11 @@ impl<'t> Element<'t> {
 
 /// The character a reference stands for; entities of the document's own are left out.
 fn referenced(name: &str) -> Option<char> {
-    match name {
-        "lt" => Some('<'),
-        "gt" => Some('>'),
-        "amp" | "" => Some('&'),
-        "quot" => Some('"'),
-        "apos" => Some('\''),
-        _ => {
-            let number = name.strip_prefix('#')?;
-            let code = match number.strip_prefix(['x', 'X']) {
-                Some(hex) => u32::from_str_radix(hex, 16).ok()?,
-                None => number.parse().ok()?,
-            };
-            char::from_u32(code).filter(|c| *c != '\0')
-        }
+    match name.strip_prefix('#') {
+        Some(number) => entities::numbered(number),
+        // An ampersand alone is meant as one.
+        None if name.is_empty() => Some('&'),
+        None => entities::predefined(name)?.chars().next(),
     }
 }
 

@@ -1,12 +1,9 @@
 use super::*;
 use crate::manuscript::Part;
+use crate::readers::trial::into_blocks;
 
 fn blocks(source: &str) -> Vec<(BlockKind, Part, String)> {
-    let m = read(source).expect("plain text is always read");
-    m.blocks
-        .iter()
-        .map(|b| (b.kind, b.part, m.block_text(b).to_string()))
-        .collect()
+    into_blocks(read(source).expect("plain text is always read"))
 }
 
 fn kinds(source: &str) -> Vec<(BlockKind, String)> {

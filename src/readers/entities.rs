@@ -1,10 +1,43 @@
-//! The named characters of HTML (HTML Living Standard, section 13.5), which are also the usual
-//! names in the DTDs of journals.
+//! Character *entities*: `&lt;`, `&minus;`, `&#967;`. The named characters are those of HTML (HTML
+//! Living Standard, section 13.5), which are also the usual names in the DTDs of journals and in
+//! Markdown.
 
 /// The text of a named character, without `&` and `;`.
 pub fn named(name: &str) -> Option<&'static str> {
     let at = NAMED.binary_search_by(|(known, _)| (*known).cmp(name)).ok()?;
     Some(NAMED[at].1)
+}
+
+/// The text of one of the five names that XML itself knows.
+pub fn predefined(name: &str) -> Option<&'static str> {
+    Some(match name {
+        "amp" => "&",
+        "lt" => "<",
+        "gt" => ">",
+        "quot" => "\"",
+        "apos" => "'",
+        _ => return None,
+    })
+}
+
+/// The character of a numeric reference, given without its `#`.
+pub fn numbered(number: &str) -> Option<char> {
+    let code = match number.strip_prefix(['x', 'X']) {
+        Some(hex) => u32::from_str_radix(hex, 16).ok()?,
+        None => number.parse().ok()?,
+    };
+    char::from_u32(code).filter(|c| *c != '\0')
+}
+
+/// The entity at the beginning of `text`, from `&` to `;`: its text and length.
+pub fn entity(text: &str) -> Option<(String, usize)> {
+    let inner = text.strip_prefix('&')?;
+    let end = inner.bytes().take(LONGEST_NAME + 1).position(|b| b == b';')?;
+    let read = match inner[..end].strip_prefix('#') {
+        Some(number) => numbered(number)?.to_string(),
+        None => named(&inner[..end])?.to_string(),
+    };
+    Some((read, end + 2))
 }
 
 /// The longest name at the start of `text` that HTML allows without its `;`: its length and what
@@ -19,6 +52,8 @@ pub fn unterminated(text: &str) -> Option<(usize, &'static str)> {
 }
 
 const LONGEST_UNTERMINATED: usize = 6;
+
+const LONGEST_NAME: usize = 31;
 
 #[rustfmt::skip]
 const UNTERMINATED: &[&str] = &[
@@ -457,7 +492,22 @@ mod tests {
     }
 
     #[test]
+    fn whole_entities() {
+        assert_eq!(entity("&lt; .05"), Some(("<".into(), 4)));
+        assert_eq!(entity("&chi;"), Some(("χ".into(), 5)));
+        assert_eq!(entity("&#8722;&#x3B2;"), Some(("−".into(), 7)));
+        assert_eq!(entity("&#x3B2;"), Some(("β".into(), 7)));
+        for none in ["& more;", "&#xFFFFFFFF;", "&#0;", "&watering;", "&lt"] {
+            assert_eq!(entity(none), None, "{none}");
+        }
+        for name in ["amp", "lt", "gt", "quot", "apos"] {
+            assert_eq!(predefined(name), named(name));
+        }
+    }
+
+    #[test]
     fn tables_are_sorted_and_whole() {
+        assert!(NAMED.iter().all(|(name, _)| name.len() <= LONGEST_NAME));
         assert!(NAMED.is_sorted_by(|a, b| a.0 < b.0));
         assert!(UNTERMINATED.is_sorted());
         assert!(

@@ -2,9 +2,10 @@
 //!
 //! Declared entities are replaced by their text once: an entity inside an entity is not, so that
 //! no file can grow by its declarations. Entities of an external DTD are known by their usual
-//! names (see [`crate::readers::html::entities`]).
+//! names (see [`crate::readers::entities`]).
 
 use crate::manuscript::Builder;
+use crate::readers::entities::{numbered, predefined};
 use std::borrow::Cow;
 use std::collections::HashMap;
 
@@ -94,26 +95,10 @@ fn plain(text: &str) -> Option<Cow<'_, str>> {
         let (name, after) = rest[at + 1..].split_once(';')?;
         match name.strip_prefix('#') {
             Some(number) => out.push(numbered(number)?),
-            None => out.push_str(match name {
-                "amp" => "&",
-                "lt" => "<",
-                "gt" => ">",
-                "quot" => "\"",
-                "apos" => "'",
-                _ => return None,
-            }),
+            None => out.push_str(predefined(name)?),
         }
         rest = after;
     }
     out.push_str(rest);
     Some(Cow::Owned(out))
-}
-
-/// The character of a numeric reference, given without its `#`.
-pub(super) fn numbered(number: &str) -> Option<char> {
-    let code = match number.strip_prefix(['x', 'X']) {
-        Some(hex) => u32::from_str_radix(hex, 16).ok()?,
-        None => number.parse().ok()?,
-    };
-    char::from_u32(code).filter(|c| *c != '\0')
 }
