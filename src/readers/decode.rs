@@ -87,7 +87,7 @@ pub fn xml(bytes: &[u8]) -> Result<Cow<'_, str>, Unreadable> {
 }
 
 /// The beginning of the file as text, damaged characters and all, for recognising its format.
-pub(super) fn head(bytes: &[u8], length: usize) -> Result<String, Unreadable> {
+pub(super) fn head(bytes: &[u8], length: usize) -> Result<Cow<'_, str>, Unreadable> {
     let cut = &bytes[..bytes.len().min(length & !3)];
     let text = match marked(cut) {
         Some(text) => text,
@@ -97,7 +97,7 @@ pub(super) fn head(bytes: &[u8], length: usize) -> Result<String, Unreadable> {
             None => String::from_utf8_lossy(cut),
         },
     };
-    Ok(sound(text)?.into_owned())
+    sound(text)
 }
 
 fn not_text() -> Unreadable {
@@ -157,9 +157,15 @@ fn is_binary(bytes: &[u8]) -> bool {
 
 /// Decoded text, unless it is mostly something else than text.
 fn sound(text: Cow<'_, str>) -> Result<Cow<'_, str>, Unreadable> {
+    let sample = &text[..text.floor_char_boundary(4 * SAMPLE)];
+    // Most files have nothing that begins like an odd character.
+    let suspect = |b: u8| (b < 0x20 && !matches!(b, b'\t'..=b'\r')) || matches!(b, 0x7f | 0xc2 | 0xef);
+    if !sample.bytes().fold(false, |any, b| any | suspect(b)) {
+        return Ok(text);
+    }
     let mut odd = 0usize;
     let mut all = 0usize;
-    for c in text.chars().take(SAMPLE) {
+    for c in sample.chars().take(SAMPLE) {
         all += 1;
         odd += usize::from(
             c == '\u{fffd}' || (c.is_control() && !matches!(c, '\t'..='\r' | '\u{1a}' | '\u{85}')),

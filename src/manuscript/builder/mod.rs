@@ -171,7 +171,8 @@ impl Builder {
         }
         let mut rest = raw;
         while !rest.is_empty() {
-            let plain = rest.bytes().take_while(|b| (0x21..0x7f).contains(b)).count();
+            // Most text is plain words with single spaces, which are taken over in one go.
+            let plain = plain_words(rest.as_bytes(), self.takes_space());
             if plain > 0 {
                 self.text.push_str(&rest[..plain]);
                 rest = &rest[plain..];
@@ -241,9 +242,14 @@ impl Builder {
         }
     }
 
-    fn space(&mut self) {
+    /// Whether a space would stand between words, not after another one or at the beginning.
+    fn takes_space(&self) -> bool {
         let start = self.open.as_ref().map_or(0, |o| o.1);
-        if self.text.len() > start && !self.text.ends_with([' ', '\n']) {
+        self.text.len() > start && !matches!(self.text.as_bytes().last(), Some(b' ' | b'\n'))
+    }
+
+    fn space(&mut self) {
+        if self.takes_space() {
             self.text.push(' ');
         }
     }
@@ -357,6 +363,18 @@ impl Builder {
     }
 }
 
+/// How many bytes at the beginning are printable ASCII with no two spaces in a row.
+fn plain_words(text: &[u8], mut space: bool) -> usize {
+    for (at, byte) in text.iter().enumerate() {
+        match byte {
+            b' ' if space => space = false,
+            0x21..=0x7e => space = true,
+            _ => return at,
+        }
+    }
+    text.len()
+}
+
 #[cfg(test)]
 mod tests {
     use super::*;
@@ -374,6 +392,22 @@ mod tests {
         let at = m.text.find("p =").expect("the text holds it");
         assert_eq!(m.place(&m.blocks[0], at..at + 7).line, Some(8));
         assert_eq!(m.place(&m.blocks[0], 0..3).line, Some(7));
+    }
+
+    #[test]
+    fn white_space_of_any_kind_is_one_space() {
+        let mut b = Builder::new(Format::Text);
+        for text in [
+            " \n two  cans ",
+            " ",
+            "\tof \u{a0} water ",
+            "\u{2009}",
+            "a day",
+            " \n",
+        ] {
+            b.text(text);
+        }
+        assert_eq!(b.finish().text, "two cans of water a day\n");
     }
 
     #[test]

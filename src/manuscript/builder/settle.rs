@@ -7,37 +7,43 @@ pub(super) type Moved = Vec<(usize, usize)>;
 /// The text of a block, settled: an en dash before a number is a minus unless a number stands
 /// before it; a hyphen at a line end joins the two halves of a word.
 pub(super) fn settle(text: &str) -> (String, Moved) {
-    let old: Vec<char> = text.chars().collect();
     let mut new = String::with_capacity(text.len());
     let mut moved: Moved = Vec::new();
-    let mut old_byte = 0;
-    let mut i = 0;
-    while i < old.len() {
-        let c = old[i];
-        let mut taken = 1;
+    let mut taken = 0;
+    // Nothing else than line ends and dashes, whose first byte is E2, depends on its neighbours.
+    for at in memchr::memchr2_iter(b'\n', 0xe2, text.as_bytes()) {
+        let Some(c) = text[at..].chars().next() else { break };
+        let (before, after) = (&text[..at], &text[at + c.len_utf8()..]);
         match c {
-            '–' | '—' if is_minus(&old, i) => new.push('-'),
-            '-' if old.get(i + 1) == Some(&'\n')
-                && i > 0
-                && old[i - 1].is_lowercase()
-                && old.get(i + 2).is_some_and(|n| n.is_lowercase()) =>
-            {
-                taken = 2;
+            '–' | '—' if is_minus(before, c, after) => {
+                new.push_str(&text[taken..at]);
+                new.push('-');
             }
-            // A range or compound broken after its dash keeps the dash, not the break.
-            '\n' if matches!(old.get(i.wrapping_sub(1)), Some('-' | '–' | '/')) => {}
-            '\n' => new.push(' '),
-            c => new.push(c),
+            '\n' => {
+                new.push_str(&text[taken..at]);
+                if joins(before, after) {
+                    new.pop();
+                } else if !before.ends_with(['-', '–', '/']) {
+                    // A range or compound broken after its dash keeps the dash, not the break.
+                    new.push(' ');
+                }
+            }
+            _ => continue,
         }
-        for d in &old[i..i + taken] {
-            old_byte += d.len_utf8();
-        }
-        i += taken;
-        if old_byte != new.len() {
-            moved.push((old_byte, new.len()));
+        taken = at + c.len_utf8();
+        if taken != new.len() {
+            moved.push((taken, new.len()));
         }
     }
+    new.push_str(&text[taken..]);
     (new, moved)
+}
+
+/// Whether the text before a line end breaks off inside a word.
+fn joins(before: &str, after: &str) -> bool {
+    before
+        .strip_suffix('-')
+        .is_some_and(|word| word.ends_with(char::is_lowercase) && after.starts_with(char::is_lowercase))
 }
 
 /// Where a byte of the old text stands in the settled one.
@@ -48,28 +54,24 @@ pub(super) fn carried(at: usize, moved: &Moved) -> usize {
     }
 }
 
-/// Whether the dash at `at` is the sign of the number behind it.
-fn is_minus(text: &[char], at: usize) -> bool {
-    let mut next = at + 1;
+/// Whether a dash between two texts is the sign of the number behind it.
+fn is_minus(before: &str, dash: char, after: &str) -> bool {
     // Some typesetters put a space between sign and number, but only after a comparator or bracket.
-    let spaced = text.get(next) == Some(&' ');
-    if spaced {
-        next += 1;
-    }
-    let number = match text.get(next) {
+    let spaced = after.starts_with(' ');
+    let mut next = after[usize::from(spaced)..].chars();
+    let number = match next.next() {
         Some(c) if c.is_ascii_digit() => true,
-        Some('.') | Some('·') => text.get(next + 1).is_some_and(char::is_ascii_digit),
+        Some('.' | '·') => next.next().is_some_and(|c| c.is_ascii_digit()),
         _ => false,
     };
     if !number {
         return false;
     }
-    let before = text[..at].iter().rev().find(|c| !matches!(c, ' ' | '\n'));
-    let tight = at == 0 || !matches!(text[at - 1], ' ' | '\n');
-    match before {
+    let tight = !before.ends_with([' ', '\n']);
+    match before.trim_end_matches([' ', '\n']).chars().next_back() {
         None => !spaced,
         Some('=' | '<' | '>' | '≤' | '≥' | '≈' | '(' | '[' | '{' | '±') => true,
-        _ if text[at] == '—' || spaced => false,
+        _ if dash == '—' || spaced => false,
         // `−31–12` and `.02 – .03` are ranges; `, –.31` and `to –.31` are signs.
         Some(c) if tight => !(c.is_alphanumeric() || matches!(c, ')' | ']' | '%' | '*' | '.' | '"' | '\'')),
         Some(c) => !c.is_ascii_digit(),
