@@ -17,7 +17,13 @@ struct Hit {
 }
 
 /// Meanings that concern the one result they stand with, if they stand with one.
-const ABOUT_ONE: [&str; 4] = ["adjusted", "adjusted-unnamed", "bonferroni", "one-sided"];
+const ABOUT_ONE: [&str; 5] = [
+    "adjusted",
+    "adjusted-pairs",
+    "adjusted-unnamed",
+    "bonferroni",
+    "one-sided",
+];
 
 /// Bytes of a paragraph, to either side of a statement, that are looked at for a scale or a number
 /// of items: more than any paragraph that a person would write.
@@ -83,7 +89,7 @@ impl<'a> Mentions<'a> {
         // "Corrected for multiple comparisons" means the method that the manuscript names, if it names one.
         let named = hits
             .iter()
-            .any(|h| matches!(h.meaning, "adjusted" | "bonferroni"));
+            .any(|h| matches!(h.meaning, "adjusted" | "adjusted-pairs" | "bonferroni"));
         hits.retain(|h| h.meaning != "adjusted-unnamed" || !named);
         let mut words: Vec<Words> = Vec::new();
         for mut hit in hits {
