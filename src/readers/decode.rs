@@ -94,7 +94,14 @@ pub(super) fn head(bytes: &[u8], length: usize) -> Result<Cow<'_, str>, Unreadab
         None => match unmarked_utf16(cut) {
             Some(encoding) => encoding.decode_without_bom_handling(cut).0,
             None if is_binary(bytes) => return Err(not_text()),
-            None => String::from_utf8_lossy(cut),
+            None => match std::str::from_utf8(cut) {
+                Ok(text) => Cow::Borrowed(text),
+                // Cut off inside a character.
+                Err(error) if error.error_len().is_none() => {
+                    String::from_utf8_lossy(&cut[..error.valid_up_to()])
+                }
+                Err(_) => String::from_utf8_lossy(cut),
+            },
         },
     };
     sound(text)
@@ -126,7 +133,7 @@ fn utf32(bytes: &[u8], value: fn([u8; 4]) -> u32) -> String {
 /// UTF-16 without a mark: in European text every other byte is zero.
 fn unmarked_utf16(bytes: &[u8]) -> Option<&'static Encoding> {
     let sample = &bytes[..bytes.len().min(4096)];
-    if sample.len() < 4 {
+    if sample.len() < 4 || memchr::memchr(0, sample).is_none() {
         return None;
     }
     let zeros = |odd: usize| sample.iter().skip(odd).step_by(2).filter(|b| **b == 0).count();
@@ -146,12 +153,13 @@ fn is_binary(bytes: &[u8]) -> bool {
         &bytes[..bytes.len().min(SAMPLE)],
         &bytes[bytes.len().saturating_sub(SAMPLE)..],
     ];
+    let control = |b: u8| matches!(b, 0..=7 | 0x0e..=0x19 | 0x1b..=0x1f | 0x7f);
     ends.iter().any(|sample| {
-        let controls = sample
-            .iter()
-            .filter(|b| matches!(b, 0..=7 | 0x0e..=0x19 | 0x1b..=0x1f | 0x7f))
-            .count();
-        controls > 2 && controls * 200 > sample.len()
+        // Without a way out of the loop it is fast, and most files have none at all.
+        sample.iter().fold(false, |any, b| any | control(*b)) && {
+            let controls = sample.iter().filter(|b| control(**b)).count();
+            controls > 2 && controls * 200 > sample.len()
+        }
     })
 }
 

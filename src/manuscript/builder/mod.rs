@@ -363,16 +363,26 @@ impl Builder {
     }
 }
 
-/// How many bytes at the beginning are printable ASCII with no two spaces in a row.
-fn plain_words(text: &[u8], mut space: bool) -> usize {
-    for (at, byte) in text.iter().enumerate() {
-        match byte {
-            b' ' if space => space = false,
-            0x21..=0x7e => space = true,
-            _ => return at,
-        }
+/// How many bytes at the beginning are printable ASCII with no two spaces in a row; `space` says
+/// whether one may stand first.
+fn plain_words(text: &[u8], space: bool) -> usize {
+    const STEP: usize = 16;
+    let fits = |before: u8, byte: u8| (0x20..0x7f).contains(&byte) && (byte, before) != (b' ', b' ');
+    match text.first() {
+        Some(first) if fits(if space { b'x' } else { b' ' }, *first) => {}
+        _ => return 0,
     }
-    text.len()
+    let mut at = 1;
+    // A step at a time without a way out in between, which the compiler turns into vectors.
+    while at + STEP <= text.len() {
+        let pairs = text[at - 1..at - 1 + STEP].iter().zip(&text[at..at + STEP]);
+        if !pairs.fold(true, |all, (before, byte)| all & fits(*before, *byte)) {
+            break;
+        }
+        at += STEP;
+    }
+    let rest = text[at - 1..].windows(2);
+    at + rest.take_while(|pair| fits(pair[0], pair[1])).count()
 }
 
 #[cfg(test)]
