@@ -2,14 +2,22 @@
 //! degrees of freedom in `F(1, 52)` and `t₉₆`, and remarks in brackets that are none.
 
 use super::grammar::Symbol;
+use super::lists::List;
 use super::spellings::Found;
 use super::tokens::{Kind, on_the_line};
 use super::values::{Company, Value};
 use super::{Quantity, Scan};
 use crate::numbers::{Comparator, Decimal};
 
+/// Most tokens in the bracket of a symbol.
+const BRACKET: usize = 24;
+
+/// Most tokens in a remark and its brackets.
+const REMARK: usize = 8;
+
 impl Scan<'_> {
-    /// What stands in brackets or lowered right behind a symbol.
+    /// What stands in brackets or lowered right behind a symbol: `(1, 52)`, `₉₆`, `χ217` (a 17 behind `χ2`).
+    /// The quantities, and the token behind them.
     pub(super) fn arguments(&self, found: &Found) -> (Vec<Quantity>, usize) {
         let symbol = &self.grammar.symbols[found.spelling.meaning];
         let none = (Vec::new(), found.next);
@@ -18,44 +26,58 @@ impl Scan<'_> {
         }
         if let Some((start, end)) = found.rest {
             let span = start as usize..end as usize;
-            if let Some(number) = Decimal::read(&on_the_line(&self.text[span.clone()]), false, 0) {
+            let number = Decimal::read(&on_the_line(&self.text[span.clone()]), false, 0);
+            return number.map_or(none, |number| {
                 let value = Value {
                     number,
                     span,
                     next: found.next,
                 };
-                return (vec![self.argument(symbol, 0, &value)], found.next);
-            }
-            return none;
+                (vec![self.argument(symbol, 0, &value)], found.next)
+            });
         }
-        let mut at = found.next;
-        if self.mark(at) == Some("_") {
-            at += 1;
+        let at = found.next + usize::from(self.mark(found.next) == Some("_"));
+        match self.mark(at).and_then(closing) {
+            Some(close) => self.bracketed(symbol, at, close),
+            None => self.lowered(symbol, at),
         }
-        let open = match self.mark(at) {
-            Some(open @ ("(" | "[" | "{")) => Some(open),
-            _ => None,
-        };
-        match open {
-            Some(open) => self.bracketed(symbol, at, open).unwrap_or(none),
-            None => self.lowered(symbol, at).unwrap_or(none),
-        }
+        .unwrap_or(none)
     }
 
-    fn bracketed(&self, symbol: &Symbol, open_at: usize, open: &str) -> Option<(Vec<Quantity>, usize)> {
-        let close = match open {
-            "(" => ")",
-            "[" => "]",
-            _ => "}",
-        };
-        let mut at = open_at + 1;
+    /// `(1, 52)`, `(2, N = 90)`, `[df: 2]`: the bracket opens at token `at`.
+    fn bracketed(&self, symbol: &Symbol, at: usize, close: &str) -> Option<(Vec<Quantity>, usize)> {
         // How many numbers there are decides whether `1,150` is one of them.
-        let end = (at..self.tokens.len().min(at + 24)).find(|i| self.mark(*i) == Some(close))?;
-        let required = symbol.arguments.iter().filter(|a| !a.optional).count();
-        let company = if required == 1 {
-            Company::Sole
-        } else {
-            Company::List
+        let end = (at + 1..self.tokens.len().min(at + 1 + BRACKET)).find(|i| self.mark(*i) == Some(close))?;
+        let (numbers, named) = self.inside_bracket(symbol, at + 1, end)?;
+        if numbers.is_empty() && named.is_empty() {
+            return None;
+        }
+        // `F(2)(45)` and the like are not read; a second bracket is a remark.
+        let next = self.remark(end + 1).unwrap_or(end + 1);
+        let unnamed: Vec<usize> = (0..symbol.arguments.len())
+            .filter(|i| named.iter().all(|q| q.symbol != symbol.arguments[*i].name))
+            .collect();
+        // Where nothing is understood the bracket stays part of the result, its numbers unnamed.
+        let mut quantities: Vec<Quantity> = Vec::new();
+        let enough = numbers.len() >= symbol.required() || !named.is_empty();
+        if numbers.len() <= unnamed.len() && enough {
+            let placed = numbers.iter().zip(&unnamed);
+            quantities.extend(placed.map(|(value, index)| self.argument(symbol, *index, value)));
+        }
+        quantities.extend(named);
+        Some((quantities, next))
+    }
+
+    /// The numbers of a bracket, those without and those with a symbol.
+    fn inside_bracket(
+        &self,
+        symbol: &Symbol,
+        mut at: usize,
+        end: usize,
+    ) -> Option<(Vec<Value>, Vec<Quantity>)> {
+        let company = match symbol.required() {
+            1 => Company::Sole,
+            _ => Company::List,
         };
         let mut numbers = Vec::new();
         let mut named = Vec::new();
@@ -67,45 +89,16 @@ impl Scan<'_> {
             } else if let Some((item, next)) = self.assignment(at).filter(|(_, next)| *next <= end) {
                 named.extend(item.quantities);
                 at = next;
-            } else if matches!(self.mark(at), Some("," | ";" | "/" | ":" | "=" | "~"))
+            } else if matches!(self.mark(at), Some("," | ";" | "/" | ":" | "=" | "~" | "-"))
                 || self.word(at).is_some()
             {
                 // `χ²(df: 2)`, `t(28 df)`, `t(28, two-tailed)`.
-                at += 1;
-            } else if self.mark(at) == Some("-") {
                 at += 1;
             } else {
                 return None;
             }
         }
-        if numbers.is_empty() && named.is_empty() {
-            return None;
-        }
-        let mut next = end + 1;
-        // `F(2)(45)` and the like are not read; a second bracket is a remark.
-        if let Some(behind) = self.remark(next) {
-            next = behind;
-        }
-        let mut quantities: Vec<Quantity> = Vec::new();
-        let most = symbol.arguments.len();
-        let unnamed: Vec<usize> = (0..most)
-            .filter(|i| {
-                named
-                    .iter()
-                    .all(|q: &Quantity| q.symbol != symbol.arguments[*i].name)
-            })
-            .collect();
-        if numbers.len() <= unnamed.len() && (numbers.len() >= required || !named.is_empty()) {
-            for (value, index) in numbers.iter().zip(&unnamed) {
-                quantities.push(self.argument(symbol, *index, value));
-            }
-        }
-        quantities.extend(named);
-        // Nothing understood: the bracket stays part of the result, its numbers unnamed.
-        if quantities.is_empty() && !numbers.is_empty() {
-            return Some((Vec::new(), next));
-        }
-        Some((quantities, next))
+        Some((numbers, named))
     }
 
     /// `F₁,₆₃`, `t96`, `F1,63`: lowered or run together, and then a comparator.
@@ -148,16 +141,12 @@ impl Scan<'_> {
                 _ => break,
             }
         }
-        let compared = self
-            .grammar
-            .comparator(self.text, self.tokens, i, false)
-            .is_some();
-        let required = symbol.arguments.iter().filter(|a| !a.optional).count();
-        (compared && quantities.len() >= required).then_some((quantities, i))
+        let compared = self.comparator(i, false).is_some();
+        (compared && quantities.len() >= symbol.required()).then_some((quantities, i))
     }
 
     /// The number in lowered digits at token `at`.
-    fn lowered_value(&self, at: usize) -> Option<Value> {
+    pub(super) fn lowered_value(&self, at: usize) -> Option<Value> {
         let is_lowered = |i: usize| self.tokens.get(i).filter(|t| t.kind == Kind::Lowered);
         let token = is_lowered(at)?;
         let mut shown = on_the_line(token.text(self.text));
@@ -180,46 +169,49 @@ impl Scan<'_> {
     }
 
     fn argument(&self, symbol: &Symbol, index: usize, value: &Value) -> Quantity {
-        self.quantity(symbol.arguments[index].name, Comparator::Equal, value, true)
+        self.quantity(symbol.arguments[index].name, Comparator::Equal, value)
     }
 
-    /// A short remark in brackets without numbers, at token `at`: the token behind it.
+    /// What stands in brackets behind a symbol and only speaks of it, at token `at`: the token behind.
+    pub(super) fn aside(&self, at: usize, name: &str) -> Option<usize> {
+        self.remark(at).or_else(|| self.abbreviation(at, name))
+    }
+
+    /// A short remark in brackets without numbers: `(two-tailed)`, `(all beds)`.
     pub(super) fn remark(&self, at: usize) -> Option<usize> {
         if self.mark(at) != Some("(") {
             return None;
         }
-        let close = (at + 1..self.tokens.len().min(at + 8)).find(|i| self.mark(*i) == Some(")"))?;
+        let close = (at + 1..self.tokens.len().min(at + REMARK)).find(|i| self.mark(*i) == Some(")"))?;
         let wordy = (at + 1..close).all(|i| {
-            self.word(i).is_some() || matches!(self.mark(i), Some("-" | "–" | "'" | "," | "/")) || {
-                // `1-tailed`, `2-sided`, `2-t`.
-                self.tokens[i].kind == Kind::Number
-                    && self.mark(i + 1) == Some("-")
-                    && self
-                        .word(i + 2)
-                        .is_some_and(|w| w.starts_with("tail") || w.starts_with("side") || w == "t")
-            }
+            self.word(i).is_some()
+                || matches!(self.mark(i), Some("-" | "–" | "'" | "," | "/"))
+                || self.sided(i)
         });
         // The brackets of `M (SD) = …` are no remark, but a second symbol.
-        let pair = self
-            .grammar
-            .spellings
-            .at(self.text, self.tokens, at + 1, |_| true)
-            .is_some_and(|f| f.next == close);
+        let pair = self.symbol(at + 1).is_some_and(|(_, behind)| behind == close);
         (wordy && close > at + 1 && !pair).then_some(close + 1)
     }
 
-    /// `[SD]`, `(aOR)` at token `at`, another spelling of the symbol before it: the token behind.
+    /// `[SD]`, `(aOR)`: another spelling of the symbol before it.
     pub(super) fn abbreviation(&self, at: usize, name: &str) -> Option<usize> {
-        let close = match self.mark(at)? {
-            "(" => ")",
-            "[" => "]",
-            _ => return None,
-        };
-        let found = self
-            .grammar
-            .spellings
-            .at(self.text, self.tokens, at + 1, |_| true)?;
-        let same = self.grammar.symbols[found.spelling.meaning].name == name;
-        (same && self.mark(found.next) == Some(close)).then_some(found.next + 1)
+        let close = closing(self.mark(at)?).filter(|close| *close != "}")?;
+        let (symbol, behind) = self.symbol(at + 1)?;
+        (symbol.name == name && self.mark(behind) == Some(close)).then_some(behind + 1)
+    }
+
+    /// The number at token `at` is part of a word: `1-tailed`, `2-sided`.
+    pub(super) fn sided(&self, at: usize) -> bool {
+        self.tokens[at].kind == Kind::Number && self.mark(at + 1) == Some("-") && self.is(at + 2, List::Sided)
+    }
+}
+
+/// The bracket that closes one that opens.
+pub(super) fn closing(open: &str) -> Option<&'static str> {
+    match open {
+        "(" => Some(")"),
+        "[" => Some("]"),
+        "{" => Some("}"),
+        _ => None,
     }
 }

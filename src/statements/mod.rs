@@ -3,18 +3,25 @@
 //! it knows neither file formats nor what makes numbers agree.
 
 mod arguments;
+mod assignment;
 mod bait;
+mod between;
+mod compile;
+mod doubts;
 mod expressions;
 mod find;
 mod forms;
 mod formulas;
 mod grammar;
+mod intervals;
 mod items;
 mod join;
+mod lists;
 mod names;
 mod pairs;
 mod print;
 mod sentences;
+mod several;
 mod spelled;
 mod spellings;
 mod surroundings;

@@ -169,12 +169,16 @@ impl Spellings {
         self
     }
 
-    /// The spelling that is this one piece and nothing else.
-    pub fn only(&self, piece: &str) -> Option<&Spelling> {
-        self.by_head
-            .get(&head(piece))?
-            .iter()
-            .find(|s| s.exact && s.pieces.len() == 1 && s.pieces[0].text == piece)
+    /// The spelling, capitals included, that consists of these pieces and nothing else.
+    pub fn only(&self, pieces: &[&str]) -> Option<&Spelling> {
+        let same = |s: &&Spelling| {
+            s.exact
+                && s.pieces
+                    .iter()
+                    .map(|p| p.text.as_str())
+                    .eq(pieces.iter().copied())
+        };
+        self.by_head.get(&head(pieces.first()?))?.iter().find(same)
     }
 
     /// Which words a spelling may begin with.

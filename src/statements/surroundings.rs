@@ -3,40 +3,50 @@
 
 use super::Scan;
 use super::grammar::Class;
+use super::lists::{List, Phrase};
 use super::tokens::Kind;
+use super::values::Company;
 
 impl Scan<'_> {
     /// `n.s.`, `ns`, `NS` at token `at`: the token behind it.
     pub(super) fn not_significant(&self, at: usize) -> Option<usize> {
-        let word = self.word(at)?;
-        if word.eq_ignore_ascii_case("ns") {
-            return Some(at + 1);
-        }
-        if word.eq_ignore_ascii_case("n")
-            && self.mark(at + 1) == Some(".")
-            && self.word(at + 2).is_some_and(|w| w.eq_ignore_ascii_case("s"))
-        {
-            return Some(if self.mark(at + 3) == Some(".") {
-                at + 4
-            } else {
-                at + 3
-            });
-        }
-        None
+        self.phrase(at, Phrase::NotSignificant)
     }
 
     /// A unit stands at token `at`.
     pub(super) fn unit(&self, at: usize) -> bool {
-        let Some(shown) = self.shown(at) else { return false };
-        if self.tokens[at].kind == Kind::Mark && matches!(shown, "°") {
+        // A symbol of the next result is no unit: `d = 0.5 M = 3`.
+        self.is(at, List::Units) && self.comparator(at + 1, false).is_none()
+    }
+
+    /// A word for a unit stands at token `at`, where it may also be one that is something else elsewhere.
+    pub(super) fn unit_word(&self, at: usize) -> bool {
+        self.word(at).is_some() && (self.is(at, List::Units) || self.is(at, List::ShortUnits))
+    }
+
+    /// The number behind the symbol at token `at` has a unit at token `next`, or shares that of a list:
+    /// `r = .75, r = 1.75 and r = 3.25 μm`.
+    pub(super) fn has_unit(&self, at: usize, mut next: usize) -> bool {
+        const LONGEST: usize = 6;
+        if self.unit(next) {
             return true;
         }
-        // A symbol of the next result is no unit: `d = 0.5 M = 3`.
-        let starts_next = self
-            .grammar
-            .comparator(self.text, self.tokens, at + 1, false)
-            .is_some();
-        self.grammar.units.contains(shown) && !starts_next
+        for _ in 0..LONGEST {
+            let from = next;
+            next += usize::from(self.mark(next) == Some(","));
+            next += usize::from(self.is(next, List::And) || self.is(next, List::Or));
+            if next == from || self.shown(next) != self.shown(at) || self.mark(next + 1) != Some("=") {
+                return false;
+            }
+            let Some(value) = self.value(next + 2, Company::Single) else {
+                return false;
+            };
+            next = value.next;
+            if self.unit(next) {
+                return true;
+            }
+        }
+        false
     }
 
     /// The word before shows that the letter means something else: `learning rate r = 0.04`.
@@ -45,25 +55,33 @@ impl Scan<'_> {
         while i > 0 && matches!(self.mark(i - 1), Some("(" | "," | "[")) {
             i -= 1;
         }
-        i > 0
-            && self
-                .word(i - 1)
-                .is_some_and(|w| self.grammar.before.contains(w.to_lowercase().as_str()))
+        i > 0 && self.is(i - 1, List::Before)
     }
 
     /// A df or a p stands behind the comma at token `at`: what is before it is a test.
-    pub(super) fn goes_on(&self, at: usize) -> bool {
+    pub(super) fn test_goes_on(&self, at: usize) -> bool {
         matches!(self.mark(at), Some("," | ";" | ":"))
             && self
-                .grammar
-                .spellings
-                .at(self.text, self.tokens, at + 1, |_| true)
-                .is_some_and(|f| {
-                    matches!(
-                        self.grammar.symbols[f.spelling.meaning].class,
-                        Class::P | Class::Df
-                    )
-                })
+                .symbol(at + 1)
+                .is_some_and(|(symbol, _)| matches!(symbol.class, Class::P | Class::Df))
+    }
+
+    /// A word of this meaning stands in the block.
+    pub(super) fn near(&self, meaning: &str) -> bool {
+        let words = self.words.get_or_init(|| {
+            self.grammar
+                .words_in(self.text_of_block())
+                .map(|(found, _)| found)
+                .collect()
+        });
+        words.contains(meaning)
+    }
+
+    fn text_of_block(&self) -> &str {
+        match (self.tokens.first(), self.tokens.last()) {
+            (Some(first), Some(last)) => &self.text[first.start as usize..last.end as usize],
+            _ => "",
+        }
     }
 
     /// The token at `at` does not continue a word, number or hyphenated compound.

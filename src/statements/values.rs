@@ -1,6 +1,7 @@
 //! *Values*: the printed number at a token, with its sign, grouping, decimal mark and power of ten.
 
 use super::Scan;
+use super::lists::List;
 use super::tokens::{Kind, on_the_line};
 use crate::numbers::Decimal;
 use std::ops::Range;
@@ -126,11 +127,7 @@ impl Scan<'_> {
             }
         }
         // `1,2-dimethyl`, `3rd`, `2x2` and the like are parts of words.
-        if self
-            .tokens
-            .get(i)
-            .is_some_and(|t| !t.spaced && t.kind == Kind::Word && !self.may_follow_number(t.text(self.text)))
-        {
+        if self.tight(i) && !self.may_follow_number(i) {
             return None;
         }
         Some(Value {
@@ -173,15 +170,16 @@ impl Scan<'_> {
         }
     }
 
-    /// Letters that may stand right behind a number: groups (`3.1a`), exponents were taken before.
-    fn may_follow_number(&self, word: &str) -> bool {
-        word.chars().count() == 1 && !matches!(word, "x" | "X" | "D" | "d")
-            || matches!(
-                word,
-                "ns" | "to" | "and" | "ms" | "mm" | "cm" | "kg" | "mg" | "years" | "yrs" | "CI"
-            )
-            || self.grammar.units.contains(word)
-            || word.chars().all(|c| c.is_lowercase()) && word.len() <= 3 && word != "x"
+    /// Letters that may stand right behind a number: groups (`3.1a`), units, the name of an interval (`95CI`);
+    /// but `2x2` and `3D` are names. Exponents were taken before.
+    fn may_follow_number(&self, at: usize) -> bool {
+        let Some(word) = self.word(at) else { return true };
+        let letters = word.chars().count();
+        !self.is(at, List::Dimensions)
+            && (letters == 1
+                || word.len() <= 3 && word.chars().all(char::is_lowercase)
+                || self.is(at, List::Units)
+                || self.interval_name(at).is_some())
     }
 
     /// `× 10⁻⁵`, `x 10^-6`, `× 10-6`, `·10^{-6}` at token `at`: the power and the token behind.
@@ -222,6 +220,21 @@ impl Scan<'_> {
             i += 1;
         }
         Some((if negative { -digits } else { digits }, i))
+    }
+
+    /// A token stands at `at`, and no space before it.
+    pub(super) fn tight(&self, at: usize) -> bool {
+        self.tokens.get(at).is_some_and(|t| !t.spaced)
+    }
+
+    /// A number stands at token `at`, without its sign.
+    pub(super) fn is_number(&self, at: usize) -> bool {
+        self.tokens.get(at).is_some_and(|t| t.kind == Kind::Number)
+    }
+
+    /// The token at `at` has a decimal point.
+    pub(super) fn has_decimals(&self, at: usize) -> bool {
+        self.shown(at).is_some_and(|shown| shown.contains(['.', '·']))
     }
 
     /// The text of a token.
