@@ -215,7 +215,9 @@ pub fn compile(more: &[(&str, &str)]) -> Result<Grammar, String> {
     let mut beginnings = Beginnings::default();
     beginnings.join(spellings.beginnings());
     beginnings.join(interval_spellings.beginnings());
-    numbers.iter().for_each(|(word, _)| beginnings.add(word));
+    let mut number_words = Beginnings::default();
+    numbers.iter().for_each(|(word, _)| number_words.add(word));
+    beginnings.join(&number_words);
     Ok(Grammar {
         beginnings,
         symbols,
@@ -229,6 +231,7 @@ pub fn compile(more: &[(&str, &str)]) -> Result<Grammar, String> {
         behind_first,
         lists: lists(all.list, &all.phrase)?,
         numbers,
+        number_words,
         thresholds: either(&all.thresholds, check)?,
         plans: either(&all.plans, check)?,
         medians: either(&all.medians, check)?,
@@ -345,7 +348,7 @@ fn forms(
     let mut behind_first = WordList::default();
     for raw in all {
         let form = Form::compile(&raw.pattern, &mut |name| names.get(name), whole)?;
-        behind_first.add(form.behind_first(), true);
+        behind_first.add(form.behind_first().iter().cloned(), true);
         forms.push(form);
     }
     forms.sort_by_key(|f: &Form| std::cmp::Reverse(f.len()));

@@ -28,6 +28,10 @@ enum Element {
 #[derive(Debug)]
 pub struct Form {
     elements: Vec<Element>,
+    /// The marks and words, as tokens, that may stand behind its first number.
+    behind_first: Vec<String>,
+    /// Words that it does not name may stand there, too.
+    any_words: bool,
 }
 
 impl Form {
@@ -70,7 +74,14 @@ impl Form {
             );
         }
         match elements.first() {
-            Some(Element::Slot(..)) if elements.len() > 1 => Ok(Form { elements }),
+            Some(Element::Slot(..)) if elements.len() > 1 => {
+                let (behind_first, any_words) = beginnings(&elements[1..]);
+                Ok(Form {
+                    elements,
+                    behind_first,
+                    any_words,
+                })
+            }
             _ => Err(format!("form {pattern:?} must begin with a {{symbol}} and go on")),
         }
     }
@@ -81,31 +92,29 @@ impl Form {
 
     /// The marks and words, as tokens, that may stand behind its first number; where words may stand that it
     /// does not name, `may_count` looks.
-    pub fn behind_first(&self) -> Vec<String> {
-        let mut all = Vec::new();
-        for element in &self.elements[1..] {
-            match element {
-                Element::Literal { any, optional } => {
-                    for literal in any {
-                        let mut pieces = Vec::new();
-                        tokens::tokenize(literal, 0, literal.len(), &mut pieces);
-                        all.extend(pieces.first().map(|t| t.text(literal).to_string()));
-                    }
-                    if !optional {
-                        break;
-                    }
-                }
-                Element::Words(_) => {}
-                Element::Slot(..) | Element::Ahead(_) => break,
-            }
-        }
-        all
+    pub fn behind_first(&self) -> &[String] {
+        &self.behind_first
     }
 
-    /// Matches the pattern at token `at`: the numbers of its slots and the token behind.
-    pub(crate) fn at(&self, scan: &Scan, at: usize) -> Option<(Vec<(&'static str, Value)>, usize)> {
-        let mut slots = Vec::new();
-        let next = self.from(scan, 0, at, &mut slots)?;
+    /// Matches the pattern behind its first number, which is read already: the numbers of its slots and the
+    /// token behind.
+    fn behind(&self, scan: &Scan, first: &FirstNumber) -> Option<(Vec<(&'static str, Value)>, usize)> {
+        let Some(Element::Slot(symbol, company)) = self.elements.first() else {
+            return None;
+        };
+        let value = match company {
+            Company::Whole => first.whole.as_ref()?,
+            _ => first.single.as_ref()?,
+        };
+        // Most forms fail here.
+        let shown = scan.shown(value.next)?;
+        if !self.behind_first.iter().any(|b| b.eq_ignore_ascii_case(shown))
+            && !(self.any_words && scan.word(value.next).is_some())
+        {
+            return None;
+        }
+        let mut slots = vec![(*symbol, value.clone())];
+        let next = self.from(scan, 1, value.next, &mut slots)?;
         Some((slots, next))
     }
 
@@ -161,6 +170,12 @@ impl Form {
     }
 }
 
+/// The number with which all forms at a token begin, as it reads for counts and for others.
+struct FirstNumber {
+    whole: Option<Value>,
+    single: Option<Value>,
+}
+
 impl Scan<'_> {
     /// A form at token `at`, which is a number.
     pub(super) fn form(&self, at: usize) -> Option<(Vec<Item>, usize)> {
@@ -173,7 +188,15 @@ impl Scan<'_> {
         if !promising && !self.may_count(at, last) {
             return None;
         }
-        let (slots, next) = self.grammar.forms.iter().find_map(|form| form.at(self, at))?;
+        let first = FirstNumber {
+            whole: self.value(at, Company::Whole),
+            single: self.value(at, Company::Single),
+        };
+        let (slots, next) = self
+            .grammar
+            .forms
+            .iter()
+            .find_map(|form| form.behind(self, &first))?;
         let quantities: Vec<Quantity> = slots
             .iter()
             .map(|(symbol, value)| self.quantity(symbol, Comparator::Equal, value))
@@ -239,6 +262,29 @@ impl Scan<'_> {
         }
         i > 0 && self.is(i - 1, List::Labels)
     }
+}
+
+/// The first tokens of the marks and words with which elements may begin, and whether other words may.
+fn beginnings(elements: &[Element]) -> (Vec<String>, bool) {
+    let mut all = Vec::new();
+    let mut any_words = false;
+    for element in elements {
+        match element {
+            Element::Literal { any, optional } => {
+                for literal in any {
+                    let mut pieces = Vec::new();
+                    tokens::tokenize(literal, 0, literal.len(), &mut pieces);
+                    all.extend(pieces.first().map(|t| t.text(literal).to_string()));
+                }
+                if !optional {
+                    break;
+                }
+            }
+            Element::Words(_) => any_words = true,
+            Element::Slot(..) | Element::Ahead(_) => break,
+        }
+    }
+    (all, any_words)
 }
 
 /// The token behind the literal, which may be several tokens in the text (`d.f.`).

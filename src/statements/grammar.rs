@@ -120,8 +120,9 @@ pub struct Grammar {
     /// What may stand behind the first number of a form.
     pub(super) behind_first: WordList,
     pub(super) lists: Lists,
-    /// Numbers in words.
+    /// Numbers in words, and which words they may be.
     pub(super) numbers: Vec<(String, u32)>,
+    pub(super) number_words: Beginnings,
     pub(super) thresholds: Expression,
     pub(super) plans: Expression,
     pub(super) medians: Expression,

@@ -64,8 +64,9 @@ pub enum Phrase {
 pub struct WordList {
     /// In order, so that they can be searched.
     words: Vec<String>,
-    /// The lengths that occur, as bits.
+    /// The lengths and the first bytes that occur, as bits.
     lengths: u64,
+    firsts: [u64; 4],
     any_capitals: bool,
     search: OnceLock<AhoCorasick>,
 }
@@ -77,11 +78,20 @@ impl WordList {
         self.words.sort();
         self.words.dedup();
         self.any_capitals |= any_capitals;
-        self.lengths = self.words.iter().fold(0, |bits, w| bits | 1 << w.len().min(63));
+        for word in self.words.iter().filter(|w| !w.is_empty()) {
+            self.lengths |= 1 << word.len().min(63);
+            let first = word.as_bytes()[0];
+            for byte in [first, first.to_ascii_uppercase()] {
+                self.firsts[usize::from(byte) / 64] |= 1 << (byte % 64);
+            }
+        }
     }
 
     pub fn has(&self, word: &str) -> bool {
-        if self.lengths & (1 << word.len().min(63)) == 0 {
+        let first = word.as_bytes().first().copied().unwrap_or(0);
+        if self.firsts[usize::from(first) / 64] & (1 << (first % 64)) == 0
+            || self.lengths & (1 << word.len().min(63)) == 0
+        {
             return false;
         }
         let find = |word: &str| self.words.binary_search_by(|w| w.as_str().cmp(word)).is_ok();
