@@ -182,8 +182,21 @@ impl Scan<'_> {
         if !self.begins_form(at) {
             return None;
         }
-        // Look behind the number before trying each form.
-        let last = self.spelled_out(at).map_or(at, |v| v.next - 1);
+        // `for year 2009 (24%)`
+        if self.counts_something(at) {
+            return None;
+        }
+        // Look behind the number before trying each form. `88 657` is one number.
+        let grouped = |i: usize| {
+            self.tokens
+                .get(i)
+                .is_some_and(|t| t.kind == Kind::Number && t.end - t.start == 3)
+        };
+        let number = match self.spelled_out(at) {
+            None if grouped(at + 1) => self.value(at, Company::Whole),
+            words => words,
+        };
+        let last = number.map_or(at, |v| v.next - 1);
         let promising = self.grammar.behind_first.has(self.shown(last + 1)?);
         if !promising && !self.may_count(at, last) {
             return None;
@@ -228,7 +241,9 @@ impl Scan<'_> {
 
     fn possible(&self, quantity: &Quantity) -> bool {
         if self.grammar.has(quantity.symbol, |s| s.whole) {
-            return quantity.number.is_whole() && quantity.number.digits >= 0;
+            // `000` is the end of something else.
+            let padded = quantity.printed.len() > 1 && quantity.printed.starts_with('0');
+            return quantity.number.is_whole() && quantity.number.digits >= 0 && !padded;
         }
         quantity.symbol != "percent" || quantity.number.value() <= LARGEST_SHARE
     }

@@ -164,6 +164,10 @@ impl Scan<'_> {
         if !(at + 1..at + WITHIN).any(|i| self.mark(i) == Some("±")) {
             return None;
         }
+        // `pH 7.0 ± 3.0`
+        if self.misleading_before(at) {
+            return None;
+        }
         let signed = at > 0 && self.mark(at - 1) == Some("-") && self.tokens[at - 1].spaced;
         let from = at - usize::from(signed);
         let value = self.value(from, Company::Single)?;

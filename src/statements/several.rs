@@ -66,7 +66,13 @@ impl Scan<'_> {
     fn range_end(&self, class: Class, comparator: Comparator, at: usize) -> Option<Value> {
         let ranged = matches!(
             class,
-            Class::Statistic | Class::P | Class::Effect | Class::Estimate | Class::Ratio | Class::Size
+            Class::Statistic
+                | Class::P
+                | Class::Effect
+                | Class::Estimate
+                | Class::Ratio
+                | Class::Size
+                | Class::Other
         );
         let goes_on = self.mark(at) == Some("–")
             || self.mark(at) == Some("-") && !self.tokens[at].spaced
