@@ -73,7 +73,7 @@ pub fn finding(
             .collect(),
         sentence: statement.sentence.clone(),
         reported: target
-            .map(|q| (q.symbol, format!("{} {}", q.comparator.sign(), q.printed)))
+            .map(|q| (q.symbol, wording::claim(q)))
             .into_iter()
             .collect(),
         expected: target

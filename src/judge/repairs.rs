@@ -56,10 +56,16 @@ fn turned(part: &Quantity, possible: &Set) -> Option<Repair> {
         && possible
             .iter()
             .all(|i| other.contains(i.low) && other.contains(i.high));
+    // `n.s.` has no comparator to turn, but is turned all the same.
+    let words = !part.printed.contains(|c: char| c.is_ascii_digit());
     all.then(|| Repair {
         symbol: part.symbol,
-        to: format!("{sign} {}", part.printed),
-        slip: Some("comparator turned round"),
+        to: if words {
+            format!("{sign} {}", part.number.print_like(".05"))
+        } else {
+            format!("{sign} {}", part.printed)
+        },
+        slip: (!words).then_some("comparator turned round"),
     })
 }
 

@@ -78,7 +78,16 @@ pub fn says(
 }
 
 fn as_printed(q: &Quantity) -> String {
-    format!("{} {} {}", in_print(q.symbol), q.comparator.sign(), q.printed)
+    format!("{} {}", in_print(q.symbol), claim(q))
+}
+
+/// What is printed about a quantity, with its comparator; words such as n.s. stand for themselves.
+pub fn claim(q: &Quantity) -> String {
+    if q.printed.contains(|c: char| c.is_ascii_digit()) {
+        format!("{} {}", q.comparator.sign(), q.printed)
+    } else {
+        format!("= {}", q.printed)
+    }
 }
 
 fn list(items: &[String]) -> String {

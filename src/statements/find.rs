@@ -64,7 +64,8 @@ impl Scan<'_> {
                 || i.class == Class::Statistic && i.plain
                 || self.grammar.has(i.symbol(), |s| s.spread)
         }) || self.list(List::TestFragments).is_in(text);
-        for draft in self.join(items) {
+        for mut draft in self.join(items) {
+            draft.without_equation();
             if !self.is_result(&draft, range, supported) {
                 continue;
             }

@@ -37,6 +37,19 @@ impl Gap {
 }
 
 impl Draft {
+    /// The equation of a line beside its test, `F(1, 3) = 81, p = .003; y = -15.7 + 0.3x`, is taken out;
+    /// coordinates, which are no results in any company, stay and show what the letters mean.
+    pub(super) fn without_equation(&mut self) {
+        let tested = self
+            .items
+            .iter()
+            .any(|i| i.class == Class::P && !i.quantities.is_empty());
+        let bait = self.items.iter().filter(|i| i.class == Class::Bait).count();
+        if bait == 1 && tested {
+            self.items.retain(|i| i.class != Class::Bait);
+        }
+    }
+
     fn has(&self, symbol: &str) -> bool {
         self.symbols().any(|s| s == symbol)
     }
