@@ -108,9 +108,9 @@ impl Form {
         };
         // Most forms fail here.
         let shown = scan.shown(value.next)?;
-        if !self.behind_first.iter().any(|b| b.eq_ignore_ascii_case(shown))
-            && !(self.any_words && scan.word(value.next).is_some())
-        {
+        let promising = self.behind_first.iter().any(|b| b.eq_ignore_ascii_case(shown))
+            || self.any_words && scan.word(value.next).is_some();
+        if !promising {
             return None;
         }
         let mut slots = vec![(*symbol, value.clone())];

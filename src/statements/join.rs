@@ -267,7 +267,7 @@ impl Scan<'_> {
             Class::P => {
                 d.has_class(Class::Statistic) || d.has_class(Class::Estimate) || d.has_class(Class::Effect)
             }
-            Class::Descriptive => d.has("M"),
+            Class::Descriptive => d.symbols().any(|s| self.middle(s)),
             _ => false,
         };
         let mut open: Vec<usize> = Vec::new();

@@ -166,7 +166,15 @@ impl Scan<'_> {
 
 #[cfg(test)]
 mod tests {
+    use super::super::Grammar;
     use super::*;
+
+    #[test]
+    fn the_built_in_files_fill_every_list() {
+        let lists = &Grammar::built_in().lists.lists;
+        assert_eq!(lists.len(), List::WholeNumberFollows as usize + 1);
+        assert!(lists.iter().all(|l| !l.words.is_empty()));
+    }
 
     #[test]
     fn a_list_knows_its_words_in_the_capitals_it_was_given() {
