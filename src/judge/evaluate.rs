@@ -6,6 +6,7 @@ use crate::manuscript::Manuscript;
 use crate::numbers::{Interval, Set};
 use crate::relations::{Case, Relation, Tie};
 use crate::statements::{Quantity, Statement};
+use std::collections::HashSet;
 
 /// Decides one tie.
 pub fn finding(
@@ -55,6 +56,8 @@ pub fn finding(
         }
     };
     assumes.extend(tie.remarks.iter().cloned());
+    let mut seen = HashSet::new();
+    assumes.retain(|a| seen.insert(a.clone()));
     let target = parts.first();
     let shown = shown_range(&expected, values.first().copied());
     Finding {
@@ -70,7 +73,7 @@ pub fn finding(
             .collect(),
         sentence: statement.sentence.clone(),
         reported: target
-            .map(|q| (q.symbol, format!("{} {}", q.comparator.sign(), q.printed)))
+            .map(|q| (q.symbol, wording::claim(q)))
             .into_iter()
             .collect(),
         expected: target

@@ -17,7 +17,13 @@ struct Hit {
 }
 
 /// Meanings that concern the one result they stand with, if they stand with one.
-const ABOUT_ONE: [&str; 4] = ["adjusted", "adjusted-unnamed", "bonferroni", "one-sided"];
+const ABOUT_ONE: [&str; 5] = [
+    "adjusted",
+    "adjusted-pairs",
+    "adjusted-unnamed",
+    "bonferroni",
+    "one-sided",
+];
 
 /// Bytes of a paragraph, to either side of a statement, that are looked at for a scale or a number
 /// of items: more than any paragraph that a person would write.
@@ -83,7 +89,7 @@ impl<'a> Mentions<'a> {
         // "Corrected for multiple comparisons" means the method that the manuscript names, if it names one.
         let named = hits
             .iter()
-            .any(|h| matches!(h.meaning, "adjusted" | "bonferroni"));
+            .any(|h| matches!(h.meaning, "adjusted" | "adjusted-pairs" | "bonferroni"));
         hits.retain(|h| h.meaning != "adjusted-unnamed" || !named);
         let mut words: Vec<Words> = Vec::new();
         for mut hit in hits {
@@ -226,6 +232,12 @@ fn number(text: &str) -> Option<f64> {
     }
 }
 
+/// Levels of significance that manuscripts use.
+const LEVELS: [f64; 7] = [0.1, 0.05, 0.025, 0.02, 0.01, 0.005, 0.001];
+
+/// Bytes before a level in which a word shows that it is the level of something else.
+const ASIDE: usize = 160;
+
 /// The level of significance that a manuscript states, if it states exactly one.
 pub fn stated_alpha(manuscript: &Manuscript, grammar: &Grammar) -> Option<f64> {
     let (_, expressions) = grammar.patterns.iter().find(|(meaning, _)| *meaning == "alpha")?;
@@ -238,11 +250,21 @@ pub fn stated_alpha(manuscript: &Manuscript, grammar: &Grammar) -> Option<f64> {
             continue;
         }
         for found in expressions.iter().flat_map(|e| e.captures_all(text)) {
-            let value = found
-                .get(1)
-                .and_then(|g| g.as_str().replace([',', '·'], ".").parse().ok());
+            let (value, at) = match found.get(1) {
+                Some(g) => (g.as_str().replace([',', '·'], ".").parse().ok(), g.range()),
+                None => continue,
+            };
+            let value = value.filter(|v| LEVELS.contains(v));
+            let near = text.floor_char_boundary(at.start.saturating_sub(ASIDE))
+                ..text.ceil_char_boundary((at.end + ASIDE / 2).min(text.len()));
+            if grammar
+                .words_in(&text[near])
+                .any(|(meaning, _)| meaning == "side-issue")
+            {
+                continue;
+            }
             match (value, stated) {
-                (Some(value), None) if value > 0.0 && value < 0.2 => stated = Some(value),
+                (Some(value), None) => stated = Some(value),
                 (Some(value), Some(known)) if value != known => return None,
                 _ => {}
             }

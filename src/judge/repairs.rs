@@ -56,10 +56,16 @@ fn turned(part: &Quantity, possible: &Set) -> Option<Repair> {
         && possible
             .iter()
             .all(|i| other.contains(i.low) && other.contains(i.high));
+    // `n.s.` has no comparator to turn, but is turned all the same.
+    let words = !part.printed.contains(|c: char| c.is_ascii_digit());
     all.then(|| Repair {
         symbol: part.symbol,
-        to: format!("{sign} {}", part.printed),
-        slip: Some("comparator turned round"),
+        to: if words {
+            format!("{sign} {}", part.number.print_like(".05"))
+        } else {
+            format!("{sign} {}", part.printed)
+        },
+        slip: (!words).then_some("comparator turned round"),
     })
 }
 
@@ -99,7 +105,8 @@ fn slip(part: &Quantity, possible: &Set) -> Option<Repair> {
     }
     // `p = .001` for `p < .001`: all that is possible lies below a level that bounds are printed with.
     let printed = part.number.value();
-    if part.symbol == "p" && BOUNDS.contains(&printed) && possible.iter().all(|i| i.high < printed) {
+    let bound = BOUNDS.contains(&printed) && part.number.digits % 10 != 0;
+    if part.symbol == "p" && bound && possible.iter().all(|i| i.high < printed) {
         let to = format!("< {}", part.printed);
         return Some(Repair {
             symbol: part.symbol,
@@ -126,10 +133,43 @@ fn slip(part: &Quantity, possible: &Set) -> Option<Repair> {
             return Some(repair(turned, "sign lost or added"));
         }
     }
-    candidates(&part.number)
-        .into_iter()
-        .find(|(d, _)| fits(d))
-        .map(|(d, slip)| repair(d, slip))
+    let mut fitting = candidates(&part.number).into_iter().filter(|(d, _)| fits(d));
+    let (first, slip) = fitting.next()?;
+    let mut same = vec![first];
+    // Points that are shifted by one place or two are not alike.
+    let alike = slip != "decimal point shifted";
+    for (d, _) in fitting.filter(|(_, s)| alike && *s == slip) {
+        if !same.contains(&d) {
+            same.push(d);
+        }
+    }
+    Some(Repair {
+        symbol: part.symbol,
+        to: listed(part, same),
+        slip: Some(slip),
+    })
+}
+
+/// Several numbers that one slip could have been made from: all of a few, the ends of a run, or the first few.
+fn listed(part: &Quantity, mut numbers: Vec<Decimal>) -> String {
+    let show = |d: &Decimal| d.print_like(&part.printed);
+    let place = numbers[0].place;
+    if numbers.iter().all(|d| d.place == place) {
+        let mut sorted = numbers.clone();
+        sorted.sort_by_key(|d| d.digits);
+        let run = sorted.windows(2).all(|pair| pair[1].digits - pair[0].digits == 1);
+        if let [low, .., high] = sorted.as_slice()
+            && run
+            && sorted.len() as i64 > MOST_SINGLE
+        {
+            return format!("{} to {}", show(low), show(high));
+        }
+        if run {
+            numbers = sorted;
+        }
+    }
+    let few = numbers.iter().take(MOST_SINGLE as usize).map(show);
+    few.collect::<Vec<_>>().join(" or ")
 }
 
 /// Numbers that a slip of the keyboard turns into the printed one, the commonest slips first.
@@ -155,15 +195,39 @@ fn candidates(printed: &Decimal) -> Vec<(Decimal, &'static str)> {
         d.swap(i - 1, i);
         add(&d, printed.place, "digits swapped");
     }
-    for shift in [1, -1, 2, -2] {
-        add(&digits, printed.place + shift, "decimal point shifted");
+    // A trailing zero that went to the other end: .230 for .023.
+    if printed.place < 0 && digits.len() > 1 && printed.digits % 10 == 0 && printed.digits != 0 {
+        add(
+            &digits[..digits.len() - 1],
+            printed.place,
+            "decimal point shifted",
+        );
     }
-    for i in 0..digits.len() {
-        for digit in b'0'..=b'9' {
-            let mut d = digits.clone();
-            d[i] = digit;
-            add(&d, printed.place, "one digit wrong");
+    let shifted = |add: &mut dyn FnMut(&[u8], i32, &'static str)| {
+        for shift in [1, -1, 2, -2] {
+            add(&digits, printed.place + shift, "decimal point shifted");
         }
+    };
+    let replaced = |add: &mut dyn FnMut(&[u8], i32, &'static str)| {
+        for i in 0..digits.len() {
+            for digit in b'0'..=b'9' {
+                let mut d = digits.clone();
+                d[i] = digit;
+                add(&d, printed.place, "one digit wrong");
+            }
+        }
+    };
+    // With three decimals behind a zero a shifted point would leave four or two, which such numbers seldom
+    // have; in zero there is nothing to shift.
+    let fraction = printed.value().abs() < 1.0 && printed.decimals() >= 3;
+    if printed.digits == 0 {
+        replaced(&mut add);
+    } else if fraction {
+        replaced(&mut add);
+        shifted(&mut add);
+    } else {
+        shifted(&mut add);
+        replaced(&mut add);
     }
     for i in 1..digits.len() {
         if digits[i] == digits[i - 1] {
@@ -285,6 +349,48 @@ mod tests {
             Some(("< .001".into(), "= printed for <"))
         );
         assert_eq!(named("t", "9.13", 2.19, 2.21), None);
+        // Nobody prints the level with a zero more, so this one is a p of its own.
+        assert_ne!(
+            named("p", ".010", 1e-6, 2e-6),
+            Some(("< .010".into(), "= printed for <"))
+        );
+    }
+
+    #[test]
+    fn all_numbers_that_one_slip_could_have_been_made_from_are_shown() {
+        assert_eq!(
+            named("p", ".46", 0.476, 0.512),
+            Some((".48 or .49".into(), "one digit wrong"))
+        );
+        assert_eq!(
+            named("t", "2.90", 2.936, 2.978),
+            Some(("2.94 to 2.98".into(), "one digit wrong"))
+        );
+    }
+
+    #[test]
+    fn repairs_keep_the_printed_precision_where_they_can() {
+        assert_eq!(
+            named("p", ".008", 0.0007, 0.0009),
+            Some((".001".into(), "one digit wrong"))
+        );
+        assert_eq!(
+            named("p", ".230", 0.0226, 0.0228),
+            Some((".023".into(), "decimal point shifted"))
+        );
+        assert_eq!(
+            named("t", "4.11", 41.09, 41.12),
+            Some(("41.1".into(), "decimal point shifted"))
+        );
+    }
+
+    #[test]
+    fn a_point_is_not_shifted_in_zero() {
+        assert_eq!(named("p", ".00", 0.110, 0.118), None);
+        assert_eq!(
+            named("p", ".00", 0.0, 0.012),
+            Some((".01".into(), "cut off instead of rounded"))
+        );
     }
 
     #[test]

@@ -2,7 +2,7 @@
 
 use super::finding::Verdict;
 use crate::numbers::Set;
-use crate::statements::Quantity;
+use crate::statements::{Quantity, in_print};
 
 /// Says what was found, why, and on which condition.
 pub fn says(
@@ -34,7 +34,11 @@ pub fn says(
             None => format!("{printed} could not be decided."),
         },
         Verdict::Agrees if others.is_empty() => format!("{printed} is possible."),
-        Verdict::Agrees => format!("{printed} agrees with {}: {range}{grounds}.", list(&given)),
+        Verdict::Agrees => format!(
+            "{printed} agrees with {}, from which {} is {range}{grounds}.",
+            list(&given),
+            in_print(target.symbol)
+        ),
         Verdict::Conflicts | Verdict::Reverses => {
             let condition = if borrowed {
                 "If the borrowed number belongs here: "
@@ -45,19 +49,22 @@ pub fn says(
                 if range.is_empty() {
                     format!("{printed} cannot be right.")
                 } else {
-                    format!("{printed} cannot be right: {} is {range}.", target.symbol)
+                    format!(
+                        "{printed} cannot be right: {} is {range}.",
+                        in_print(target.symbol)
+                    )
                 }
             } else if range.is_empty() {
                 format!(
                     "no {} goes with {}, but {printed} is printed.",
-                    target.symbol,
+                    in_print(target.symbol),
                     list(&given)
                 )
             } else {
                 format!(
                     "with {}, {} is {range}, but {printed} is printed.",
                     list(&given),
-                    target.symbol
+                    in_print(target.symbol)
                 )
             };
             let turn = if verdict == Verdict::Reverses {
@@ -71,7 +78,16 @@ pub fn says(
 }
 
 fn as_printed(q: &Quantity) -> String {
-    format!("{} {} {}", q.symbol, q.comparator.sign(), q.printed)
+    format!("{} {}", in_print(q.symbol), claim(q))
+}
+
+/// What is printed about a quantity, with its comparator; words such as n.s. stand for themselves.
+pub fn claim(q: &Quantity) -> String {
+    if q.printed.contains(|c: char| c.is_ascii_digit()) {
+        format!("{} {}", q.comparator.sign(), q.printed)
+    } else {
+        format!("= {}", q.printed)
+    }
 }
 
 fn list(items: &[String]) -> String {

@@ -104,6 +104,24 @@ fn ranges() {
     conflicts("range", "SD -1.2");
     conflicts("range", "eta2p 14");
     open("range", "n 12.5");
+    conflicts("range", "M 3.20 SD 1.1 n 0");
+    conflicts("range", "t 2.1 df 0 p .04");
+    conflicts("range", "F 2.1 df1 0 df2 20");
+    conflicts("range", "n 130 percent 130");
+    conflicts("range", "CFI 1.2");
+    conflicts("range", "ICC 1.3");
+    for text in [
+        "n 0",
+        "n 0 percent 0",
+        "chi2 0.00 df 0",
+        "count 130 percent 130",
+        "percent 130",
+        "n 90 percent 100",
+        "ICC -0.1",
+        "t 2.1 df 0.9",
+    ] {
+        assert!(outcomes("range", text, &[]).is_empty(), "{text}");
+    }
     open("range", "R2 -.20");
     for text in [
         "r -1.00",

@@ -63,7 +63,8 @@ pub fn ties(case: &Case) -> Vec<Tie> {
             let variant = p_value::make(Vec::new(), Box::new(law(Side::Both, controls)));
             variants.push(variant.left_open(reason));
         }
-        if test.symbol == "rho" {
+        // In a manuscript that speaks of Spearman, r may be his.
+        if test.symbol == "rho" || case.mention("spearman", Reach::Document).is_some() {
             let small = case.quantities[argument].interval.low < 10.0;
             let loosened = Loosened {
                 law: Box::new(law(Side::Both, less)),
@@ -71,7 +72,7 @@ pub fn ties(case: &Case) -> Vec<Tie> {
                 grow: 2.5,
                 more: if small { 0.05 } else { 0.002 },
             };
-            let reason = "for ρ the formula is an approximation, and p misses it by no more than exact tests and ties can explain";
+            let reason = "for a rank correlation the formula is an approximation, and p misses it by no more than exact tests and ties can explain";
             variants.push(p_value::make(Vec::new(), Box::new(loosened)).left_open(reason));
         }
         let mut tie = case.tie(vec![p, test.at, argument], variants);

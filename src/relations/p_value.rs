@@ -53,7 +53,16 @@ pub(super) fn variants(
             sides.extend([Side::Upper, Side::Lower]);
         }
     }
-    for meaning in ["bonferroni", "adjusted"] {
+    // Methods for pairs do not adjust a test of several groups at once, which has two df or more.
+    let omnibus = matches!(test.symbol, "F" | "chi2" | "H" | "G2")
+        && test
+            .df
+            .or(test.df1)
+            .is_some_and(|df| case.quantities[df].interval.low > 1.5);
+    for meaning in ["bonferroni", "adjusted", "adjusted-pairs"] {
+        if omnibus && meaning == "adjusted-pairs" {
+            continue;
+        }
         let Some(mention) = case.mention(meaning, Reach::Document) else {
             continue;
         };

@@ -1,8 +1,9 @@
 //! Some quantities have ranges that nothing can leave.
 //!
 //! Formula: 0 ≤ p ≤ 1; |r|, |ρ|, |τ|, |φ|, |κ| ≤ 1; 0 ≤ η², partial η², V ≤ 1; R², ω², ε², Cronbach's α ≤ 1;
-//! F, χ², H, Q, G², U, SD, SE, MSE, RMSEA, BF, OR, RR, HR ≥ 0; df ≥ 0; n and N whole and ≥ 0;
-//! 0 ≤ I² ≤ 100 %; 0 < level of confidence < 100 %.
+//! CFI, ICC ≤ 1; F, χ², H, Q, G², U, SD, SE, MSE, RMSEA, SRMR, BF, OR, RR, HR ≥ 0; df ≥ 0, of t and F ≥ 1
+//! if whole; n and N whole and ≥ 0, beside a mean, an SD or an SE ≥ 1; 0 ≤ I² ≤ 100 %; a percentage behind its
+//! n ≤ 100 %; 0 < level of confidence < 100 %.
 //!
 //! Only a quantity outside its range makes a finding; that one lies inside says nothing.
 //!
@@ -22,7 +23,7 @@ use crate::numbers::{Interval, Set};
 pub fn ties(case: &Case) -> Vec<Tie> {
     let mut ties = Vec::new();
     for (i, quantity) in case.quantities.iter().enumerate() {
-        let Some((low, high)) = limits(quantity.symbol).filter(|_| case.own(i)) else {
+        let Some((low, high)) = limits(case, i).filter(|_| case.own(i)) else {
             continue;
         };
         let natural = Interval { low, high };
@@ -53,16 +54,47 @@ pub fn ties(case: &Case) -> Vec<Tie> {
     ties
 }
 
-/// Lowest and highest value of a quantity.
-fn limits(symbol: &str) -> Option<(f64, f64)> {
+/// Lowest and highest value of a quantity where it stands.
+fn limits(case: &Case, at: usize) -> Option<(f64, f64)> {
+    let quantity = &case.quantities[at];
+    let (low, high) = (0.0, 100.0);
+    match quantity.symbol {
+        // A χ² of a saturated model has none; t and F have at least one.
+        "df" | "df1" | "df2" if quantity.number.is_whole() => {
+            let test = case
+                .tests()
+                .into_iter()
+                .find(|t| [t.df, t.df1, t.df2].contains(&Some(at)));
+            let some = test.is_some_and(|t| matches!(t.symbol, "t" | "F"));
+            Some((if some { 1.0 } else { 0.0 }, f64::INFINITY))
+        }
+        // Nobody at all (n = 0) is a result, but has no mean.
+        "n" | "N" if ["M", "Mdn", "SD", "SE"].iter().any(|s| case.first(s).is_some()) => Some((
+            if case.all(quantity.symbol).len() == 1 {
+                1.0
+            } else {
+                low
+            },
+            f64::INFINITY,
+        )),
+        "percent" => {
+            let before = at.checked_sub(1).map(|i| case.quantities[i].symbol);
+            (before == Some("n")).then_some((low, high))
+        }
+        symbol => natural(symbol),
+    }
+}
+
+/// Lowest and highest value of a quantity wherever it stands.
+fn natural(symbol: &str) -> Option<(f64, f64)> {
     const NONE: f64 = f64::INFINITY;
     Some(match symbol {
         "p" | "eta2" | "eta2p" | "eta2G" => (0.0, 1.0),
         "r" | "rho" | "tau" | "phi" | "V" | "kappa" => (-1.0, 1.0),
-        "R2" => (0.0, 1.0),
-        "R2adj" | "omega2" | "epsilon2" | "alpha" => (-NONE, 1.0),
-        "F" | "chi2" | "H" | "Q" | "G2" | "U" | "SD" | "SE" | "MSE" | "RMSEA" | "BF10" | "OR" | "RR"
-        | "HR" | "IRR" | "df" | "df1" | "df2" | "n" | "N" | "count" => (0.0, NONE),
+        "R2" | "CFI" => (0.0, 1.0),
+        "R2adj" | "omega2" | "epsilon2" | "alpha" | "ICC" => (-NONE, 1.0),
+        "F" | "chi2" | "H" | "Q" | "G2" | "U" | "SD" | "SE" | "MSE" | "RMSEA" | "SRMR" | "BF10" | "OR"
+        | "RR" | "HR" | "IRR" | "df" | "df1" | "df2" | "n" | "N" | "count" => (0.0, NONE),
         "I2" | "CI_level" | "CrI_level" | "power" => (0.0, 100.0),
         _ => return None,
     })

@@ -2,9 +2,10 @@
 //! in, what follows from the rest of the numbers and what would make them agree.
 
 use super::excerpt::{self, columns, paragraph};
-use super::words::{count, follows, list, symbol};
+use super::words::{count, follows, list};
 use super::{Entry, Report, Show, Tally, harmless};
 use crate::judge::{Counts, Document, Finding, Verdict};
+use crate::statements::in_print;
 use std::ops::Range;
 
 /// Room to the left of everything that belongs to a finding.
@@ -169,7 +170,7 @@ impl Text {
         let printed: Vec<String> = finding
             .reported
             .iter()
-            .map(|(name, printed)| format!("{} {printed}", symbol(name)))
+            .map(|(name, printed)| format!("{} {printed}", in_print(name)))
             .collect();
         let follows: Vec<String> = finding
             .expected
@@ -190,7 +191,7 @@ impl Text {
             self.row(
                 page,
                 label,
-                &format!("{} {is}{}{slip}", symbol(repair.symbol), repair.to),
+                &format!("{} {is}{}{slip}", in_print(repair.symbol), repair.to),
             );
         }
         if finding.repairs.len() > MOST_REPAIRS {

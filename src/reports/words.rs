@@ -2,31 +2,7 @@
 
 use crate::judge::{Finding, Verdict};
 use crate::numbers::Interval;
-use crate::statements::Quantity;
-
-/// A symbol as it is written in print.
-pub fn symbol(name: &str) -> &str {
-    match name {
-        "chi2" => "χ²",
-        "rho" => "ρ",
-        "tau" => "τ",
-        "beta" => "β",
-        "eta2" => "η²",
-        "eta2p" => "ηp²",
-        "omega2" => "ω²",
-        "R2" => "R²",
-        "R2adj" => "adjusted R²",
-        "phi" => "φ",
-        "alpha" => "α",
-        "kappa" => "κ",
-        "I2" => "I²",
-        "BF10" => "BF₁₀",
-        "CI_low" => "lower end of the CI",
-        "CI_high" => "upper end of the CI",
-        "CI_level" => "level of the CI",
-        other => other,
-    }
-}
+use crate::statements::{Quantity, in_print};
 
 /// `1 statement`, `2 statements`.
 pub fn count(n: usize, one: &str, many: &str) -> String {
@@ -46,7 +22,7 @@ pub fn list(items: &[String]) -> String {
 /// that was printed, if it is known.
 pub fn follows(finding: &Finding, name: &str, range: [f64; 2], quantity: Option<&Quantity>) -> String {
     let range = Interval::new(range[0], range[1]);
-    let name = symbol(name);
+    let name = in_print(name);
     let printed = quantity.map_or("", |q| q.printed.as_str());
     let decimals = quantity.map_or(2, |q| q.number.decimals()) as usize;
     let in_conflict = finding.verdict >= Verdict::Conflicts;

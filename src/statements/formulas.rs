@@ -1,14 +1,51 @@
 //! *Formulas*: a number that is only the first piece of a calculation (`R² = 1-(a/b)`, `p = 1/12`,
-//! `R = 1:10`) is no result, nor is a letter that is multiplied or taken from 1 (`1 - β`).
+//! `R = 1:10`) or of a run (`k = 1, 2, …, n`) is no result, nor is a letter that is multiplied or taken
+//! from 1 (`1 - β`).
 
 use super::Scan;
 use super::grammar::Class;
 use super::tokens::Kind;
 use super::values::Value;
 
+/// Most tokens from the start of a run of numbers to its dots.
+const RUN: usize = 8;
+
 impl Scan<'_> {
-    /// The value goes on as a calculation.
-    pub(super) fn calculates(&self, class: Class, value: &Value) -> bool {
+    /// The value, with `next` the token behind it and its percent sign, goes on as a formula.
+    pub(super) fn formula(&self, class: Class, value: &Value, next: usize) -> bool {
+        self.runs_on(next) || self.multiplied(next) || self.calculates(class, value)
+    }
+
+    /// `1, 2, …`, `1…`: the start of a run of numbers. Token `at` is behind the first.
+    fn runs_on(&self, at: usize) -> bool {
+        if self.mark(at) != Some(",") {
+            return self.mark(at) == Some("…");
+        }
+        for i in at + 1..at + RUN {
+            match self.tokens.get(i).map(|t| t.kind) {
+                Some(Kind::Number) => {}
+                Some(Kind::Mark) => match self.shown(i) {
+                    Some("…" | "⋯") => return true,
+                    Some(",") => {}
+                    Some(".") => return self.mark(i + 1) == Some(".") && self.mark(i + 2) == Some("."),
+                    _ => return false,
+                },
+                _ => return false,
+            }
+        }
+        false
+    }
+
+    /// `t = 2t₁`
+    fn multiplied(&self, at: usize) -> bool {
+        self.word(at).is_some()
+            && self.tight(at)
+            && self.tight(at + 1)
+            && self.tokens[at + 1].kind == Kind::Lowered
+    }
+
+    /// The value goes on as a calculation: `1-(a/b)`, `1/12`, `1:10`.
+    fn calculates(&self, class: Class, value: &Value) -> bool {
         if matches!(
             class,
             Class::Size | Class::Df | Class::Descriptive | Class::Ratio | Class::Interval
@@ -16,23 +53,21 @@ impl Scan<'_> {
             return false;
         }
         let at = value.next;
-        let (Some(sign), Some(next)) = (self.mark(at), self.tokens.get(at + 1)) else {
+        let Some(sign) = self.mark(at).filter(|_| self.tight(at) && self.tight(at + 1)) else {
             return false;
         };
-        if self.tokens[at].spaced || next.spaced {
-            return false;
-        }
         let whole = !self.text[value.span.clone()].contains(['.', '·', ',']);
         let opens = self.mark(at + 1) == Some("(");
+        let next = self.tokens[at + 1].kind;
         match sign {
-            "/" | ":" => whole && (opens || matches!(next.kind, Kind::Number | Kind::Word)),
-            "-" | "–" | "+" => opens || whole && next.kind == Kind::Word,
+            "/" | ":" => whole && (opens || matches!(next, Kind::Number | Kind::Word)),
+            "-" | "–" | "+" => opens || whole && next == Kind::Word,
             "^" => true,
             _ => false,
         }
     }
 
-    /// The symbol at tokens `at..behind` is a factor behind a bracket, or is taken from 1.
+    /// The symbol at tokens `at..behind` is a factor behind a bracket (`(a + b)r`), or is taken from 1.
     pub(super) fn factor(&self, at: usize, behind: usize, class: Class) -> bool {
         if at == 0 || behind > at + 1 || class == Class::P {
             return false;

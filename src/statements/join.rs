@@ -2,9 +2,11 @@
 //! between the items, and by what a result may hold: one test, one p, one interval per estimate.
 
 use super::Scan;
-use super::grammar::Class;
+use super::grammar::{Around, Class};
 use super::items::Item;
+use super::lists::List;
 use super::tokens::Kind;
+use std::ops::Range;
 
 /// Items that are reported together, in the order of the text.
 #[derive(Clone, Debug, Default)]
@@ -13,6 +15,7 @@ pub struct Draft {
 }
 
 /// What stands between two items.
+#[derive(Default)]
 struct Gap {
     words: usize,
     bytes: usize,
@@ -34,10 +37,27 @@ impl Gap {
 }
 
 impl Draft {
+    /// The equation of a line beside its test, `F(1, 3) = 81, p = .003; y = -15.7 + 0.3x`, is taken out;
+    /// coordinates, which are no results in any company, stay and show what the letters mean.
+    pub(super) fn without_equation(&mut self) {
+        let tested = self
+            .items
+            .iter()
+            .any(|i| i.class == Class::P && !i.quantities.is_empty());
+        let bait = self.items.iter().filter(|i| i.class == Class::Bait).count();
+        if bait == 1 && tested {
+            self.items.retain(|i| i.class != Class::Bait);
+        }
+    }
+
     fn has(&self, symbol: &str) -> bool {
+        self.symbols().any(|s| s == symbol)
+    }
+
+    fn symbols(&self) -> impl Iterator<Item = &'static str> {
         self.items
             .iter()
-            .any(|i| i.quantities.iter().any(|q| q.symbol == symbol))
+            .flat_map(|i| i.quantities.iter().map(|q| q.symbol))
     }
 
     fn has_class(&self, class: Class) -> bool {
@@ -55,6 +75,31 @@ impl Draft {
 
     fn only(&self, class: Class) -> bool {
         self.items.iter().all(|i| i.class == class)
+    }
+
+    /// Takes off what stands behind the first item with a quantity of this symbol, from the next estimate on.
+    fn split_behind(&mut self, symbol: &str) -> Vec<Item> {
+        use Class::*;
+        let first = self
+            .items
+            .iter()
+            .position(|i| i.quantities.iter().any(|q| q.symbol == symbol))
+            .unwrap_or(0);
+        let estimate = |i: &usize| {
+            matches!(
+                self.items[*i].class,
+                Statistic | Estimate | Effect | Ratio | Descriptive
+            )
+        };
+        let split = (first + 1..self.items.len()).find(estimate);
+        split.map(|at| self.items.split_off(at)).unwrap_or_default()
+    }
+
+    /// From the first byte of its items to the last.
+    pub fn bytes(&self) -> Range<usize> {
+        let start = self.items.iter().map(|i| i.bytes.start).min().unwrap_or(0);
+        let end = self.items.iter().map(|i| i.bytes.end).max().unwrap_or(start);
+        start..end
     }
 
     fn token_end(&self) -> usize {
@@ -76,11 +121,9 @@ impl Scan<'_> {
 
     /// `ts(38) = 2.1 and 3.4` are two items; a list of p stays one until its tests are known.
     fn one_by_one(&self, mut item: Item) -> Vec<Item> {
-        let dealt_out = matches!(item.class, Class::Statistic | Class::Descriptive | Class::Size);
+        let dealt_out = matches!(item.class, Class::Statistic | Class::Size)
+            || self.grammar.has(item.symbol(), |s| s.dealt);
         if item.more_values.is_empty() || !dealt_out {
-            return vec![item];
-        }
-        if item.quantities[0].symbol != "M" && item.class == Class::Descriptive {
             return vec![item];
         }
         let more = std::mem::take(&mut item.more_values);
@@ -102,127 +145,124 @@ impl Scan<'_> {
             return;
         };
         let gap = self.gap(last.token_end(), item.tokens.start);
-        let symbol = item.quantities[0].symbol;
         // A second p, or a second interval, takes with it the estimate it belongs to.
         let repeated = match item.class {
             Class::P | Class::Interval => last.has(item_key(&item)),
             _ => false,
         };
         if repeated && gap.within(5) {
-            let key = item_key(&item);
-            let first = last
-                .items
-                .iter()
-                .position(|i| i.quantities.iter().any(|q| q.symbol == key))
-                .unwrap_or(0);
-            let split = (first + 1..last.items.len()).find(|i| {
-                let class = last.items[*i].class;
-                matches!(
-                    class,
-                    Class::Statistic | Class::Estimate | Class::Effect | Class::Ratio | Class::Descriptive
-                )
-            });
-            let rest = split.map(|at| last.items.split_off(at)).unwrap_or_default();
+            let rest = last.split_behind(item_key(&item));
             drafts.push(Draft {
                 items: rest.into_iter().chain([item]).collect(),
             });
             return;
         }
-        let joins = !gap.broken && !repeated && self.may_join(last, &item, &gap, symbol);
+        let joins = !gap.broken && !repeated && self.may_join(last, &item, &gap);
         match joins {
             true => last.items.push(item),
             false => drafts.push(Draft { items: vec![item] }),
         }
     }
 
-    fn may_join(&self, draft: &Draft, item: &Item, gap: &Gap, symbol: &str) -> bool {
-        use Class::*;
-        let again = draft.has(symbol);
+    /// Whether an item belongs to the draft before it.
+    fn may_join(&self, draft: &Draft, item: &Item, gap: &Gap) -> bool {
         if gap.turns {
             return false;
         }
+        let symbol = item.symbol();
+        let again = draft.has(symbol);
         match item.class {
-            P => {
-                let counts_only = draft.only(Other) || draft.only(Size);
+            Class::P => {
+                let counts_only = draft.only(Class::Other) || draft.only(Class::Size);
                 gap.within(if counts_only { 1 } else { 6 })
             }
-            Df => !again && draft.has_class(Statistic) && !draft.has("df1") && gap.within(6),
-            Size => {
-                let counted = item.quantities.len() == 1;
-                gap.within(2)
-                    && !gap.lists
-                    && counted
-                    && !draft.only(Other)
-                    && (!again || symbol == "n" && !draft.only(Size) && !draft.has_class(P))
+            Class::Df => !again && draft.has_class(Class::Statistic) && !draft.has("df1") && gap.within(6),
+            Class::Size => self.size_joins(draft, item, gap),
+            Class::Interval => self.interval_joins(draft, item, gap),
+            Class::Bait => gap.within(1),
+            Class::Other if symbol == "percent" && item.quantities.len() == 1 => {
+                draft.has_class(Class::Size) && gap.within(0)
             }
-            Interval if symbol.starts_with("range") || item.quantities[0].symbol.starts_with("IQR") => {
-                draft.has_class(Descriptive) && gap.within(2)
+            Class::Other if matches!(symbol, "count" | "percent") => false,
+            _ if again => false,
+            Class::Other => gap.within(1) && !draft.has("count") && !gap.labels,
+            Class::Effect => (draft.has_test() && gap.within(6) || gap.within(0)) && !draft.only(Class::Size),
+            Class::Statistic => self.statistic_joins(draft, symbol, gap),
+            Class::Estimate | Class::Ratio => self.estimate_joins(draft, item, gap),
+            // A mean or median begins a statement, behind nothing but its n.
+            Class::Descriptive if self.middle(symbol) => draft.only(Class::Size) && gap.within(0),
+            Class::Descriptive => {
+                gap.within(if draft.has_class(Class::P) { 0 } else { 3 })
+                    && !draft.only(Class::Size)
+                    && !draft.only(Class::Other)
             }
-            Interval => {
-                // `0.944 slugs per bed per square metre and year (95% CI …`
-                let lone =
-                    draft.items.len() == 1 && self.mark(item.tokens.start.wrapping_sub(1)) == Some("(");
-                (draft.has_test() || draft.has_class(Descriptive) || draft.has_class(Other))
-                    && gap.within(if lone { 8 } else { 5 })
-            }
-            Effect => !again && (draft.has_test() && gap.within(6) || gap.within(0)) && !draft.only(Size),
-            Statistic if again => false,
-            Statistic => {
-                let pairs = |a: &[&str], b: &[&str]| {
-                    a.contains(&symbol) && b.iter().any(|s| draft.has(s))
-                        || b.contains(&symbol) && a.iter().any(|s| draft.has(s))
-                };
-                if draft.has_class(P) {
-                    symbol == "r" && gap.within(0)
-                } else if draft.has_class(Statistic) {
-                    gap.within(2)
-                        && (pairs(&["U", "W", "H", "rho", "tau"], &["z"])
-                            || pairs(&["r", "rho"], &["t", "z", "F", "U", "W"])
-                            || pairs(&["Q"], &["z"]))
-                } else if draft.has("M") || draft.has("Mdn") {
-                    false
-                } else if draft.only(Other) {
-                    gap.within(0) && !draft.has("count")
-                } else {
-                    gap.within(3)
-                }
-            }
-            Estimate | Ratio if again => false,
-            Estimate | Ratio => {
-                if draft.has_class(P) || draft.has_class(Statistic) {
-                    gap.within(0)
-                        && !(item.class == Estimate && draft.has_class(P) && draft.has_class(Estimate))
-                } else if draft.has_class(Estimate) && matches!(symbol, "beta" | "b" | "B") {
-                    gap.within(1)
-                } else {
-                    draft.only(Size) && gap.within(0)
-                }
-            }
-            Descriptive if again => false,
-            Descriptive if matches!(symbol, "M" | "Mdn") => {
-                draft.only(Size) && gap.within(0)
-                    || draft.has_class(Descriptive)
-                        && !draft.has("M")
-                        && gap.within(0)
-                        && symbol == "M"
-                        && draft.only(Size)
-            }
-            Descriptive => {
-                gap.within(if draft.has_class(P) { 0 } else { 3 }) && !draft.only(Size) && !draft.only(Other)
-            }
-            Other if symbol == "percent" && item.quantities.len() == 1 => {
-                draft.has_class(Size) && gap.within(0)
-            }
-            Other if symbol == "count" || symbol == "percent" => false,
-            Other => !again && gap.within(1) && !draft.has("count") && !gap.labels,
-            Bait => gap.within(1),
         }
+    }
+
+    fn size_joins(&self, draft: &Draft, item: &Item, gap: &Gap) -> bool {
+        let symbol = item.symbol();
+        // The n of a second group.
+        let second = symbol == "n" && !draft.only(Class::Size) && !draft.has_class(Class::P);
+        gap.within(2)
+            && !gap.lists
+            && item.quantities.len() == 1
+            && !draft.only(Class::Other)
+            && (!draft.has(symbol) || second)
+    }
+
+    fn interval_joins(&self, draft: &Draft, item: &Item, gap: &Gap) -> bool {
+        let descriptive = draft.has_class(Class::Descriptive);
+        if self.grammar.around(item.symbol()) != Some(Around::Estimate) {
+            return descriptive && gap.within(2);
+        }
+        // `0.944 slugs per bed per square metre and year (95% CI …`
+        let lone = draft.items.len() == 1 && self.mark(item.tokens.start.wrapping_sub(1)) == Some("(");
+        (draft.has_test() || descriptive || draft.has_class(Class::Other))
+            && gap.within(if lone { 8 } else { 5 })
+    }
+
+    fn statistic_joins(&self, draft: &Draft, symbol: &str, gap: &Gap) -> bool {
+        if draft.has_class(Class::P) {
+            // `p = .03, r = .31`
+            self.grammar.has(symbol, |s| s.behind_p) && gap.within(0)
+        } else if draft.has_class(Class::Statistic) {
+            // `U = 310, z = 2.1`
+            gap.within(2) && draft.symbols().any(|other| self.go_together(symbol, other))
+        } else if draft.symbols().any(|other| self.middle(other)) {
+            false
+        } else if draft.only(Class::Other) {
+            gap.within(0) && !draft.has("count")
+        } else {
+            gap.within(3)
+        }
+    }
+
+    fn estimate_joins(&self, draft: &Draft, item: &Item, gap: &Gap) -> bool {
+        let estimate = draft.has_class(Class::Estimate);
+        if draft.has_class(Class::P) || draft.has_class(Class::Statistic) {
+            gap.within(0) && !(item.class == Class::Estimate && draft.has_class(Class::P) && estimate)
+        } else if estimate && self.grammar.has(item.symbol(), |s| s.second) {
+            // `b = 0.2, β = .31`
+            gap.within(1)
+        } else {
+            draft.only(Class::Size) && gap.within(0)
+        }
+    }
+
+    fn middle(&self, symbol: &str) -> bool {
+        self.grammar.has(symbol, |s| s.middle)
+    }
+
+    /// Two statistics of the same test.
+    fn go_together(&self, one: &str, other: &str) -> bool {
+        self.grammar.has(one, |s| s.with.contains(&other))
+            || self.grammar.has(other, |s| s.with.contains(&one))
     }
 
     /// A plural item gives its values to the statements before it that lack one:
     /// `t(28) = 2.20 and t(28) = 0.31, ps = .036 and .759`. False if it finds none.
     fn shared(&self, item: &Item, drafts: &mut [Draft]) -> bool {
-        let key = item.quantities[0].symbol;
+        let key = item.symbol();
         let wanted = |d: &Draft| match item.class {
             Class::P => {
                 d.has_class(Class::Statistic) || d.has_class(Class::Estimate) || d.has_class(Class::Effect)
@@ -259,14 +299,7 @@ impl Scan<'_> {
 
     /// What stands between token `from` and token `to`.
     fn gap(&self, from: usize, to: usize) -> Gap {
-        let mut gap = Gap {
-            words: 0,
-            bytes: 0,
-            broken: false,
-            turns: false,
-            labels: false,
-            lists: false,
-        };
+        let mut gap = Gap::default();
         if to <= from {
             return gap;
         }
@@ -276,57 +309,28 @@ impl Scan<'_> {
         let mut closed = false;
         for i in from..to {
             let token = self.tokens[i];
-            let shown = token.text(self.text);
+            let behind = |mark: &str| i > from && self.mark(i - 1) == Some(mark);
             match token.kind {
                 Kind::Word => {
                     // `two-tailed`, `s` of `CIs`: one word.
-                    if !(i > from && !token.spaced && self.mark(i - 1) == Some("-")) {
-                        gap.words += 1;
-                    }
+                    gap.words += usize::from(token.spaced || !behind("-"));
                     gap.broken |= closed;
-                    gap.lists |= shown == "and" && i > from && self.mark(i - 1) == Some(";");
-                    gap.turns |= matches!(
-                        shown,
-                        "vs" | "versus"
-                            | "than"
-                            | "whereas"
-                            | "while"
-                            | "but"
-                            | "compared"
-                            | "or"
-                            | "against"
-                    );
+                    gap.lists |= behind(";") && self.is(i, List::And);
+                    gap.turns |= self.is(i, List::Contrasts);
                 }
                 Kind::Number | Kind::Dotted => {
-                    // `2-tailed`, `1-sided` count as words.
-                    let compound = self.mark(i + 1) == Some("-")
-                        && self
-                            .word(i + 2)
-                            .is_some_and(|w| w.starts_with("tail") || w.starts_with("side"));
                     // `cells/mm3`, `CD4`
                     let named = i > from && !token.spaced && self.tokens[i - 1].kind == Kind::Word;
-                    gap.broken |= !compound && !named;
+                    // `2-tailed` and `1-sided` count as words.
+                    gap.broken |= !named && !self.sided(i);
                 }
-                Kind::Mark => match shown {
+                Kind::Mark => match token.text(self.text) {
                     "(" | "[" => depth += 1,
                     ")" | "]" => {
                         depth -= 1;
                         closed |= depth < 0;
                     }
-                    "." => {
-                        let next = self.tokens.get(i + 1);
-                        let ends = next.is_none_or(|t| {
-                            // `. *P < .05`: a star opens its explanation.
-                            t.spaced && matches!(t.text(self.text), "*" | "†" | "‡")
-                                || t.spaced
-                                    && t.text(self.text).starts_with(|c: char| c.is_uppercase())
-                                    && self
-                                        .grammar
-                                        .comparator(self.text, self.tokens, i + 2, false)
-                                        .is_none()
-                        });
-                        gap.broken |= ends;
-                    }
+                    "." => gap.broken |= self.stops(i),
                     "?" | "!" => gap.broken = true,
                     _ => {}
                 },
@@ -335,12 +339,24 @@ impl Scan<'_> {
         }
         gap
     }
+
+    /// The full stop at token `at` ends what belongs together: a new sentence begins, or a star opens its
+    /// explanation (`. *P < .05`); but not before a symbol (`p = .03. F(1, 20) = …`).
+    fn stops(&self, at: usize) -> bool {
+        let Some(next) = self.tokens.get(at + 1) else {
+            return true;
+        };
+        let shown = next.text(self.text);
+        let star = matches!(shown, "*" | "†" | "‡");
+        let sentence = shown.starts_with(char::is_uppercase) && self.comparator(at + 2, false).is_none();
+        next.spaced && (star || sentence)
+    }
 }
 
 /// The symbol by which two items of this kind are the same.
 fn item_key(item: &Item) -> &'static str {
     match item.class {
         Class::Interval => item.quantities.last().map_or("", |q| q.symbol),
-        _ => item.quantities[0].symbol,
+        _ => item.symbol(),
     }
 }

@@ -2,25 +2,36 @@
 //! `t(28) = 2.20, p = .036`. This room turns the text of blocks into statements by the grammars;
 //! it knows neither file formats nor what makes numbers agree.
 
+mod arguments;
+mod assignment;
 mod bait;
+mod between;
+mod compile;
+mod doubts;
 mod expressions;
 mod find;
 mod forms;
 mod formulas;
 mod grammar;
+mod intervals;
 mod items;
 mod join;
+mod lists;
 mod names;
 mod pairs;
+mod print;
 mod sentences;
+mod several;
 mod spelled;
 mod spellings;
+mod surroundings;
 mod tokens;
 mod unnamed;
 mod values;
 
 pub use find::find;
 pub use grammar::Grammar;
+pub use print::in_print;
 
 use crate::numbers::{Comparator, Decimal, Interval};
 use std::cell::OnceCell;

@@ -1,23 +1,35 @@
 //! *Sentences*: the stretch of text around a range, from one full stop to the next.
 
+use super::Scan;
+use super::lists::{List, WordList};
 use std::ops::Range;
 
 /// No sentence is looked for farther than this, in bytes, from the range.
 const LONGEST: usize = 3000;
 
-/// The sentence of `text[block]` that holds `range`.
-pub fn around(text: &str, block: &Range<usize>, range: &Range<usize>) -> Range<usize> {
+impl Scan<'_> {
+    /// The sentence of the block that holds these bytes.
+    pub(super) fn sentence(&self, block: &Range<usize>, range: &Range<usize>) -> Range<usize> {
+        around(self.list(List::Abbreviations), self.text, block, range)
+    }
+}
+
+fn around(abbreviations: &WordList, text: &str, block: &Range<usize>, range: &Range<usize>) -> Range<usize> {
     let from = text.ceil_char_boundary(block.start.max(range.start.saturating_sub(LONGEST)));
-    let start = ends(&text[from..range.start]).last().map_or(from, |e| from + e);
+    let start = ends(abbreviations, &text[from..range.start])
+        .last()
+        .map_or(from, |e| from + e);
     let to = text.floor_char_boundary(block.end.min(range.end + LONGEST));
-    let end = ends(&text[range.end..to]).next().map_or(to, |e| range.end + e);
+    let end = ends(abbreviations, &text[range.end..to])
+        .next()
+        .map_or(to, |e| range.end + e);
     let lead = text[start..end].len() - text[start..end].trim_start().len();
     let trail = text[start..end].len() - text[start..end].trim_end().len();
     start + lead..(end - trail).max(range.end)
 }
 
 /// Byte offsets behind the ends of sentences.
-fn ends(text: &str) -> impl Iterator<Item = usize> + '_ {
+fn ends<'a>(abbreviations: &'a WordList, text: &'a str) -> impl Iterator<Item = usize> + 'a {
     let bytes = text.as_bytes();
     memchr::memchr3_iter(b'.', b'?', b'!', bytes).filter_map(move |at| {
         let mut end = at + 1;
@@ -37,48 +49,17 @@ fn ends(text: &str) -> impl Iterator<Item = usize> + '_ {
         let opens = next.is_uppercase()
             || matches!(next, '(' | '[' | '"')
             || next.is_ascii_digit() && bytes[at] != b'.';
-        (space && opens && !abbreviation(&text[..at], next)).then_some(end)
+        (space && opens && !abbreviation(abbreviations, &text[..at], next)).then_some(end)
     })
 }
 
 /// The dot at the end of `before` belongs to an abbreviation.
-fn abbreviation(before: &str, next: char) -> bool {
+fn abbreviation(abbreviations: &WordList, before: &str, next: char) -> bool {
     let word = before
         .rsplit(|c: char| !(c.is_alphanumeric() || c == '.'))
         .next()
         .unwrap_or("");
-    if matches!(
-        word.to_ascii_lowercase().as_str(),
-        "e.g"
-            | "i.e"
-            | "cf"
-            | "vs"
-            | "fig"
-            | "figs"
-            | "al"
-            | "no"
-            | "nos"
-            | "eq"
-            | "eqs"
-            | "approx"
-            | "ca"
-            | "st"
-            | "dr"
-            | "resp"
-            | "viz"
-            | "tab"
-            | "adj"
-            | "est"
-            | "coef"
-            | "supp"
-            | "ref"
-            | "sec"
-            | "std"
-            | "d.f"
-            | "s.d"
-            | "s.e"
-            | "s.e.m"
-    ) {
+    if abbreviations.has(word) {
         return true;
     }
     // Initials; but a result may well end in a single letter: `higher for group B. The`.
@@ -87,11 +68,13 @@ fn abbreviation(before: &str, next: char) -> bool {
 
 #[cfg(test)]
 mod tests {
+    use super::super::Grammar;
     use super::*;
 
     fn around_text(text: &str, needle: &str) -> String {
         let at = text.find(needle).expect("the needle is there");
-        text[around(text, &(0..text.len()), &(at..at + needle.len()))].to_string()
+        let abbreviations = Grammar::built_in().lists.get(List::Abbreviations);
+        text[around(abbreviations, text, &(0..text.len()), &(at..at + needle.len()))].to_string()
     }
 
     #[test]

@@ -38,6 +38,8 @@ pub struct Spellings {
 pub struct Beginnings {
     /// For each first byte in lower case, the lengths that words beginning with it have, as bits.
     lengths: [u32; 256],
+    /// For each first byte, the last bytes of such words, as bits; all where other than ASCII is about.
+    lasts: [u64; 256],
     /// One bit for each hash of a word, by its lowest bits.
     hashes: [u64; 256],
 }
@@ -46,6 +48,7 @@ impl Default for Beginnings {
     fn default() -> Beginnings {
         Beginnings {
             lengths: [0; 256],
+            lasts: [0; 256],
             hashes: [0; 256],
         }
     }
@@ -65,6 +68,10 @@ impl Beginnings {
             for length in near.clone() {
                 self.lengths[byte as usize] |= 1 << length;
             }
+            self.lasts[byte as usize] |= match word.is_ascii() {
+                true => last_bit(word),
+                false => u64::MAX,
+            };
         }
         let hash = head(word);
         self.hashes[(hash >> 6) as usize % 256] |= 1 << (hash % 64);
@@ -72,24 +79,26 @@ impl Beginnings {
 
     /// Lets through what another lets through.
     pub fn join(&mut self, other: &Beginnings) {
-        self.lengths
-            .iter_mut()
-            .zip(&other.lengths)
-            .for_each(|(a, b)| *a |= b);
-        self.hashes
-            .iter_mut()
-            .zip(&other.hashes)
-            .for_each(|(a, b)| *a |= b);
+        for i in 0..256 {
+            self.lengths[i] |= other.lengths[i];
+            self.lasts[i] |= other.lasts[i];
+            self.hashes[i] |= other.hashes[i];
+        }
     }
 
     /// Whether a word may be one of those that were added.
     pub fn may_be(&self, word: &str) -> bool {
-        let byte = word.as_bytes().first().map_or(0, u8::to_ascii_lowercase);
-        if self.lengths[byte as usize] & (1 << word.len().min(31)) == 0 {
-            return false;
+        self.head(word).is_some()
+    }
+
+    /// The key of a word that may be one of those that were added.
+    fn head(&self, word: &str) -> Option<u64> {
+        let byte = word.as_bytes().first().map_or(0, u8::to_ascii_lowercase) as usize;
+        if self.lengths[byte] & (1 << word.len().min(31)) == 0 || self.lasts[byte] & last_bit(word) == 0 {
+            return None;
         }
         let hash = head(word);
-        self.hashes[(hash >> 6) as usize % 256] & (1 << (hash % 64)) != 0
+        (self.hashes[(hash >> 6) as usize % 256] & (1 << (hash % 64)) != 0).then_some(hash)
     }
 }
 
@@ -169,12 +178,16 @@ impl Spellings {
         self
     }
 
-    /// The spelling that is this one piece and nothing else.
-    pub fn only(&self, piece: &str) -> Option<&Spelling> {
-        self.by_head
-            .get(&head(piece))?
-            .iter()
-            .find(|s| s.exact && s.pieces.len() == 1 && s.pieces[0].text == piece)
+    /// The spelling, capitals included, that consists of these pieces and nothing else.
+    pub fn only(&self, pieces: &[&str]) -> Option<&Spelling> {
+        let same = |s: &&Spelling| {
+            s.exact
+                && s.pieces
+                    .iter()
+                    .map(|p| p.text.as_str())
+                    .eq(pieces.iter().copied())
+        };
+        self.by_head.get(&head(pieces.first()?))?.iter().find(same)
     }
 
     /// Which words a spelling may begin with.
@@ -191,10 +204,7 @@ impl Spellings {
         allow: impl Fn(&Spelling) -> bool,
     ) -> Option<Found<'_>> {
         let first = tokens.get(at)?.text(text);
-        if !self.beginnings.may_be(first) {
-            return None;
-        }
-        let list = self.by_head.get(&head(first))?;
+        let list = self.by_head.get(&self.beginnings.head(first)?)?;
         list.iter()
             .filter(|s| allow(s))
             .find_map(|s| s.matches(text, tokens, at))
@@ -284,6 +294,14 @@ fn first_bytes(text: &str) -> Vec<u8> {
         bytes.push(c.encode_utf8(&mut buffer).as_bytes()[0].to_ascii_lowercase());
     }
     bytes
+}
+
+/// The bit of a word's last byte, the same for all capitals.
+fn last_bit(word: &str) -> u64 {
+    match word.as_bytes().last() {
+        Some(byte) if byte.is_ascii() => 1 << (byte.to_ascii_lowercase() % 64),
+        _ => u64::MAX,
+    }
 }
 
 /// A key that is the same for all capitalisations of a text.

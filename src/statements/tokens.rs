@@ -200,9 +200,14 @@ fn starts_power(text: &str, at: usize) -> bool {
 }
 
 fn word(text: &str, bytes: &[u8], at: &mut usize) {
-    while *at < bytes.len() {
-        match bytes[*at] {
-            b'a'..=b'z' | b'A'..=b'Z' => *at += 1,
+    loop {
+        let letters = bytes[*at..]
+            .iter()
+            .take_while(|b| b.is_ascii_alphabetic())
+            .count();
+        *at += letters;
+        let Some(byte) = bytes.get(*at) else { return };
+        match byte {
             b'\'' if bytes.get(*at + 1).is_some_and(u8::is_ascii_alphabetic) => *at += 1,
             0..=0x7f => break,
             _ => {

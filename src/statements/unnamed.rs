@@ -4,8 +4,9 @@
 //! (95% CI 1.1–2.0)`.
 
 use super::Scan;
-use super::grammar::Class;
+use super::grammar::{Around, Class};
 use super::items::Item;
+use super::lists::List;
 use super::tokens::Kind;
 use super::values::{Company, Value};
 use crate::numbers::Comparator;
@@ -15,9 +16,6 @@ const NAME_WITHIN: usize = 16;
 
 /// How many estimates before a number its name may serve, too.
 const NAME_SERVES: usize = 6;
-
-/// How many words may say of what a mean is: `the mean length of the dry beds was 3.1`.
-const THINGS: usize = 5;
 
 impl Scan<'_> {
     /// A number at token `at` whose interval or spread follows.
@@ -36,11 +34,11 @@ impl Scan<'_> {
             return None;
         }
         let follows = next + 1;
-        let (symbol, class) = if let Some(low) = self.interval_after(follows) {
-            match low {
-                "IQR_low" if !percent => ("Mdn", Class::Descriptive),
-                "CI_low" | "CrI_low" if percent => ("percent", Class::Other),
-                "CI_low" | "CrI_low" => self.name_before(from).unwrap_or(("est", Class::Estimate)),
+        let (symbol, class) = if let Some(around) = self.interval_after(follows) {
+            match around {
+                Around::Median if !percent => ("Mdn", Class::Descriptive),
+                Around::Estimate if percent => ("percent", Class::Other),
+                Around::Estimate => self.name_before(from).unwrap_or(("est", Class::Estimate)),
                 _ => return None,
             }
         } else if bracket && !percent && self.spread_after(follows) {
@@ -60,89 +58,6 @@ impl Scan<'_> {
         };
         let item = self.lone(symbol, class, &value, from);
         Some((vec![item], value.next))
-    }
-
-    /// The token of the number that follows `mean` and what it is a mean of, at token `at`:
-    /// `mean length of beds was 3.1`, `mean length 25 cm`.
-    pub(super) fn behind_things(&self, at: usize) -> Option<usize> {
-        if self.word(at - 1).is_none_or(|w| w.ends_with('s')) {
-            return None;
-        }
-        let mut i = at;
-        for _ in 0..THINGS {
-            let word = self.word(i)?;
-            // Means of these are other quantities.
-            if matches!(
-                word,
-                "rank"
-                    | "ranks"
-                    | "difference"
-                    | "differences"
-                    | "change"
-                    | "changes"
-                    | "square"
-                    | "squared"
-                    | "error"
-                    | "and"
-                    | "or"
-                    | "that"
-                    | "increases"
-                    | "increased"
-                    | "was"
-                    | "were"
-                    | "is"
-                    | "are"
-            ) {
-                return None;
-            }
-            // `mean depth in 2014`, `was more than 0.1`: the number says something else.
-            let leads_away = matches!(
-                word,
-                "to" | "than"
-                    | "from"
-                    | "for"
-                    | "with"
-                    | "by"
-                    | "in"
-                    | "at"
-                    | "over"
-                    | "under"
-                    | "about"
-                    | "after"
-            );
-            i += 1;
-            // `CD4`, `long-term`, `(all beds)`
-            if self
-                .tokens
-                .get(i)
-                .is_some_and(|t| t.kind == Kind::Number && !t.spaced)
-            {
-                i += 1;
-            }
-            while self.mark(i) == Some("-") && self.word(i + 1).is_some() && !self.tokens[i].spaced {
-                i += 2;
-            }
-            if let Some(behind) = self.remark(i) {
-                i = behind;
-            }
-            let said = self.mark(i) == Some("=")
-                || self
-                    .word(i)
-                    .is_some_and(|w| matches!(w, "was" | "were" | "is" | "are" | "of"));
-            let number = if said { i + 1 } else { i };
-            let Some(token) = self.tokens.get(number).filter(|t| t.kind == Kind::Number) else {
-                continue;
-            };
-            if leads_away && !said {
-                return None;
-            }
-            let decimals = token.text(self.text).contains(['.', '·']);
-            let times = matches!(self.word(number + 1), Some("times" | "fold"));
-            let measured = self.unit_word(number + 1) && !times || self.mark(number + 1) == Some("±");
-            let plainly = said && matches!(self.shown(i), Some("=" | "was" | "were"));
-            return (token.spaced && (decimals || measured || plainly)).then_some(number);
-        }
-        None
     }
 
     /// A quick look: a bracket, or a comma and then a name or a percentage, stands close behind.
@@ -173,28 +88,7 @@ impl Scan<'_> {
 
     /// The block speaks of other intervals or ranges, or is a cell, which its own head names.
     fn names_intervals(&self) -> bool {
-        self.cell
-            || self.tokens.iter().enumerate().any(|(i, t)| {
-                t.kind == Kind::Word
-                    && self
-                        .grammar
-                        .interval_spellings
-                        .at(self.text, self.tokens, i, |_| true)
-                        .is_some()
-            })
-    }
-
-    fn lone(&self, symbol: &'static str, class: Class, value: &Value, from: usize) -> Item {
-        Item {
-            class,
-            tokens: from..value.next,
-            bytes: value.span.clone(),
-            quantities: vec![self.quantity(symbol, Comparator::Equal, value, false)],
-            more_values: vec![],
-            plural: false,
-            alone: true,
-            plain: true,
-        }
+        self.cell || (0..self.tokens.len()).any(|i| self.word(i).is_some() && self.interval_name(i).is_some())
     }
 
     /// The number at token `at` with the sign before it: its value and first token.
@@ -221,42 +115,17 @@ impl Scan<'_> {
         Some((value, from))
     }
 
-    pub(super) fn unit_word(&self, at: usize) -> bool {
-        // `y` is no unit where it may be Spanish.
-        self.word(at)
-            .is_some_and(|w| self.grammar.units.contains(w) || matches!(w, "y" | "mo" | "wk"))
-    }
-
-    /// The number that begins at token `from` counts a table, a week or the like.
-    fn counts_something(&self, from: usize) -> bool {
-        let mut i = from;
-        while i > 0 && self.mark(i - 1) == Some(".") {
-            i -= 1;
-        }
-        i > 0
-            && self
-                .word(i - 1)
-                .is_some_and(|w| self.grammar.labels.contains(w.to_lowercase().as_str()))
-    }
-
-    /// What an interval whose level or name stands at token `at` calls its lower end.
-    fn interval_after(&self, at: usize) -> Option<&'static str> {
+    /// What the interval lies around whose level or name stands at token `at`.
+    fn interval_after(&self, at: usize) -> Option<Around> {
         let mut name = at;
         if self.tokens.get(at)?.kind == Kind::Number {
-            name += 1;
-            if self.mark(name) == Some("%") {
-                name += 1;
-            }
+            name += 1 + usize::from(self.mark(at + 1) == Some("%"));
         }
         // `95% bootstrap CI`
         for i in name..name + 3 {
             self.word(i)?;
             if let Some((item, _)) = self.interval(i) {
-                return item
-                    .quantities
-                    .iter()
-                    .map(|q| q.symbol)
-                    .find(|s| s.ends_with("_low"));
+                return self.grammar.around(item.symbol());
             }
         }
         None
@@ -265,22 +134,18 @@ impl Scan<'_> {
     /// `SD = 3.34` or `SE 0.4` at token `at`.
     fn spread_after(&self, at: usize) -> bool {
         self.assignment(at)
-            .is_some_and(|(item, _)| matches!(item.quantities[0].symbol, "SD" | "SE"))
+            .is_some_and(|(item, _)| self.grammar.has(item.symbol(), |s| s.spread))
     }
 
     /// A name written out, or a ratio, in the same sentence before token `from`, no number between.
     fn name_before(&self, from: usize) -> Option<(&'static str, Class)> {
-        let told = self.mark(from.wrapping_sub(1)) == Some(":")
-            || self
-                .word(from.wrapping_sub(1))
-                .is_some_and(|w| matches!(w, "was" | "were" | "is" | "of" | "to" | "being" | "by"));
+        let told = from > 0 && self.is(from - 1, List::LeadsToEstimate);
         let mut i = from;
         let mut steps = 0;
         let mut shared = 0;
         while i > 0 && steps < NAME_WITHIN {
             i -= 1;
             steps += 1;
-            let token = self.tokens[i];
             // `1.46 (CI 1.06–2.02) and 1.38 (CI …`: the name serves both. What else stands in brackets
             // is passed over.
             if let Some((start, estimate)) = self.bracket_before(i) {
@@ -294,35 +159,35 @@ impl Scan<'_> {
                 }
                 continue;
             }
-            if matches!(token.kind, Kind::Number | Kind::Dotted)
+            if matches!(self.tokens[i].kind, Kind::Number | Kind::Dotted)
                 || matches!(self.mark(i), Some("." | ";" | "?" | "="))
             {
                 return None;
             }
-            if token.kind != Kind::Word {
-                continue;
-            }
-            if let Some(found) = self.grammar.spellings.at(self.text, self.tokens, i, |_| true) {
-                let symbol = &self.grammar.symbols[found.spelling.meaning];
-                let named = match symbol.class {
-                    Class::Ratio => true,
-                    Class::Estimate | Class::Effect | Class::Descriptive | Class::Other => {
-                        told && (found.spelling.words || token.text(self.text).len() > 2)
-                    }
-                    _ => false,
-                };
-                if named && found.next <= from {
-                    return Some((symbol.name, symbol.class));
-                }
+            if let Some(name) = self.word(i).and_then(|_| self.name_at(i, from, told)) {
+                return Some(name);
             }
         }
         None
     }
 
+    /// The name at token `at` that a number at token `from` may have. `told`: a word leads to the number.
+    fn name_at(&self, at: usize, from: usize, told: bool) -> Option<(&'static str, Class)> {
+        let found = self.spelling(at)?;
+        let symbol = &self.grammar.symbols[found.spelling.meaning];
+        let fits = match symbol.class {
+            Class::Ratio => true,
+            Class::Estimate | Class::Effect | Class::Descriptive | Class::Other => {
+                told && (found.spelling.words || self.word(at)?.len() > 2)
+            }
+            _ => false,
+        };
+        (fits && found.next <= from).then_some((symbol.name, symbol.class))
+    }
+
     /// `and 1.57 (1.08–2.30)` behind another ratio and its interval, or behind the name of a ratio.
     fn ratio_with_ends(&self, value: &Value, from: usize) -> Option<(&'static str, Class)> {
-        let shown = &self.text[value.span.clone()];
-        if !shown.contains(['.', '·']) || value.number.value() <= 0.0 {
+        if !self.text[value.span.clone()].contains(['.', '·']) || value.number.value() <= 0.0 {
             return None;
         }
         let (low, high, _) = self.two_ends(value.next)?;
@@ -365,71 +230,10 @@ impl Scan<'_> {
         item.tokens.end = behind;
         item.bytes.end = self.bytes(open, behind).end;
         item.quantities
-            .push(self.quantity("IQR_low", Comparator::Equal, &low, false));
+            .push(self.quantity("IQR_low", Comparator::Equal, &low));
         item.quantities
-            .push(self.quantity("IQR_high", Comparator::Equal, &high, false));
+            .push(self.quantity("IQR_high", Comparator::Equal, &high));
         Some((vec![item], behind))
-    }
-
-    /// `4.6 ± 0.8 × 10⁻³`: the power belongs to the mean, too.
-    pub(super) fn shared_power(&self, mut item: Item, followers: &[Item]) -> Item {
-        let (Some(head), Some(spread)) = (
-            item.quantities.first_mut(),
-            followers.first().and_then(|f| f.quantities.first()),
-        ) else {
-            return item;
-        };
-        let between = &self.text[head.span.end.min(spread.span.start)..spread.span.start];
-        let factor = spread
-            .printed
-            .find(['×', 'x', 'X', '*', '∙'])
-            .map(|end| spread.printed[..end].trim_end());
-        let (Some(factor), "±") = (factor, between.trim()) else {
-            return item;
-        };
-        if head.printed.contains("10") && head.printed.contains(['×', 'x', 'X', '*', '∙']) {
-            return item;
-        }
-        let decimals = factor
-            .find(['.', '·'])
-            .map_or(0, |point| factor[point..].chars().count() as i32 - 1);
-        head.number.place += spread.number.place + decimals;
-        head.interval = head.comparator.interval(&head.number, false);
-        item
-    }
-
-    /// What is counted rather than measured, though it stands among the units.
-    fn countable(&self, at: usize) -> bool {
-        matches!(
-            self.word(at),
-            Some("individuals" | "cells" | "units" | "generations")
-        )
-    }
-
-    /// Whether the number at tokens `at..=last` may be a count of things that are named behind it:
-    /// `266 gardeners (88.1%)`, but not `8 weeks (40%)` or `nine of 302 gardeners (3%)`.
-    pub(super) fn may_count(&self, at: usize, last: usize) -> bool {
-        let bracket = (last + 2..last + 5).find(|i| matches!(self.mark(*i), Some("(" | "[")));
-        let Some(bracket) = bracket else { return false };
-        if !(last + 1..bracket).all(|i| self.word(i).is_some())
-            || self.mark(bracket + 2) != Some("%")
-            || self.unit_word(last + 1) && !self.countable(last + 1)
-            || self.counts_something(at)
-        {
-            return false;
-        }
-        // `in only one bed (17.1%)`: the share is of something else.
-        let one = self.word(at).is_some_and(|w| w.eq_ignore_ascii_case("one"));
-        let before = |i: usize| at.checked_sub(i).and_then(|i| self.word(i));
-        if one && before(1) == Some("only") && before(2) == Some("in") {
-            return false;
-        }
-        // `of 302 gardeners` is the whole, unless it is `a total of`; so is `the 302 gardeners`.
-        at < 2
-            || self.word(at - 1) != Some("the") && self.word(at - 1) != Some("of")
-            || self
-                .word(at - 2)
-                .is_some_and(|w| matches!(w, "total" | "number" | "sum" | "sample"))
     }
 }
 

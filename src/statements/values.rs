@@ -1,8 +1,10 @@
 //! *Values*: the printed number at a token, with its sign, grouping, decimal mark and power of ten.
 
 use super::Scan;
+use super::lists::List;
 use super::tokens::{Kind, on_the_line};
 use crate::numbers::Decimal;
+use std::borrow::Cow;
 use std::ops::Range;
 
 /// A number as read.
@@ -28,160 +30,170 @@ pub enum Company {
     Sole,
 }
 
+/// A number while it is read.
+struct Digits<'t> {
+    /// With a decimal point, and without what groups.
+    shown: Cow<'t, str>,
+    /// The byte behind it.
+    end: usize,
+    /// The token behind it.
+    next: usize,
+}
+
 impl Scan<'_> {
     /// Reads the number at token `at`, signs included.
     pub fn value(&self, at: usize, company: Company) -> Option<Value> {
-        let mut i = at;
-        let mut negative = false;
-        let mut start = None;
-        // At most one sign; a typesetter's space may stand behind it.
-        if let Some(sign) = self.mark(i)
-            && matches!(sign, "-" | "+" | "–" | "−")
-        {
-            negative = sign != "+";
-            start = Some(self.tokens[i].start as usize);
-            i += 1;
-        }
-        let first = self.tokens.get(i)?;
-        if first.kind == Kind::Word && company == Company::Whole && i == at {
+        let first = self.tokens.get(at)?;
+        if first.kind == Kind::Word && company == Company::Whole {
             return self.spelled_out(at);
         }
-        if first.kind != Kind::Number {
-            return None;
-        }
-        let start = start.unwrap_or(first.start as usize);
-        let mut shown = first.text(self.text).replace('·', ".");
-        let mut end = first.end as usize;
-        i += 1;
-        let mut exponent = 0;
-        if let Some(e) = shown.find(['e', 'E']) {
-            exponent = shown[e + 1..].parse().ok()?;
-            shown.truncate(e);
+        // At most one sign; a typesetter's space may stand behind it.
+        let sign = self.mark(at).filter(|m| matches!(*m, "-" | "+" | "–" | "−"));
+        let mut digits = self.digits(at + usize::from(sign.is_some()))?;
+        let exponent;
+        if let Some(e) = digits.shown.find(['e', 'E']) {
+            exponent = digits.shown[e + 1..].parse().ok()?;
+            digits.shown.to_mut().truncate(e);
         } else {
-            // Groups of thousands and decimal commas.
-            while let (Some(mark), Some(digits)) = (self.tokens.get(i), self.tokens.get(i + 1)) {
-                let part = digits.text(self.text);
-                let tight = !mark.spaced
-                    && !digits.spaced
-                    && digits.kind == Kind::Number
-                    && part.as_bytes()[0].is_ascii_digit();
-                if tight && mark.text(self.text) == "," {
-                    if self.groups(&shown, part, company) {
-                        shown.push_str(part);
-                    } else if !shown.contains('.')
-                        && part.bytes().all(|b| b.is_ascii_digit())
-                        && self.comma_is_decimal(&shown, part, company, i + 2)
-                    {
-                        shown.push('.');
-                        shown.push_str(part);
-                    } else {
-                        break;
-                    }
-                    end = digits.end as usize;
-                    i += 2;
-                    continue;
-                }
-                break;
-            }
+            self.take_groups(&mut digits, company);
             if company == Company::Whole {
-                // 12 406 with a thin space; 12.406 in a manuscript with decimal commas.
-                while let Some(digits) = self.tokens.get(i)
-                    && digits.kind == Kind::Number
-                    && digits.spaced
-                    && digits.end - digits.start == 3
-                    && digits.text(self.text).bytes().all(|b| b.is_ascii_digit())
-                    && (1..=3).contains(&(shown.len() % 4))
-                    && !shown.contains('.')
-                    && !shown.starts_with('0')
-                    && self
-                        .text
-                        .as_bytes()
-                        .get(digits.end as usize)
-                        .is_none_or(|b| !b.is_ascii_alphanumeric())
-                {
-                    shown.push_str(digits.text(self.text));
-                    end = digits.end as usize;
-                    i += 1;
-                }
-                if self.commas
-                    && let Some((whole, part)) = shown.split_once('.')
-                    && part.len() == 3
-                    && (1..=3).contains(&whole.len())
-                {
-                    shown = format!("{whole}{part}");
-                }
+                self.take_spaced_groups(&mut digits);
             }
-            // `10⁻⁷`, without a factor.
-            let alone = (shown == "10" && self.tokens.get(i).is_some_and(|t| !t.spaced))
-                .then(|| self.exponent(i, false))
-                .flatten()
-                .filter(|(power, _)| *power < 0);
-            if alone.is_some() {
-                shown.pop();
-            }
-            if let Some((power, behind)) = alone.or_else(|| self.power_of_ten(i)) {
-                exponent = power;
-                end = self.tokens[behind - 1].end as usize;
-                i = behind;
-            }
+            exponent = self.take_power(&mut digits).unwrap_or(0);
         }
         // `1,2-dimethyl`, `3rd`, `2x2` and the like are parts of words.
-        if self
-            .tokens
-            .get(i)
-            .is_some_and(|t| !t.spaced && t.kind == Kind::Word && !self.may_follow_number(t.text(self.text)))
-        {
+        if self.tight(digits.next) && !self.may_follow_number(digits.next) {
             return None;
         }
+        let negative = sign.is_some_and(|sign| sign != "+");
         Some(Value {
-            number: Decimal::read(&shown, negative, exponent)?,
-            span: start..end,
-            next: i,
+            number: Decimal::read(&digits.shown, negative, exponent)?,
+            span: first.start as usize..digits.end,
+            next: digits.next,
         })
     }
 
+    /// The digits of the token at `at`, with a point where a middle dot stands.
+    fn digits(&self, at: usize) -> Option<Digits<'_>> {
+        let token = self.tokens.get(at).filter(|t| t.kind == Kind::Number)?;
+        let shown = token.text(self.text);
+        Some(Digits {
+            shown: match shown.is_ascii() {
+                true => Cow::Borrowed(shown),
+                false => Cow::Owned(shown.replace('·', ".")),
+            },
+            end: token.end as usize,
+            next: at + 1,
+        })
+    }
+
+    /// Groups of thousands and decimal commas: `12,406`, `0,04`.
+    fn take_groups(&self, digits: &mut Digits, company: Company) {
+        while self.mark(digits.next) == Some(",")
+            && self.tight(digits.next)
+            && self.tight(digits.next + 1)
+            && let Some(token) = self.tokens.get(digits.next + 1)
+            && token.kind == Kind::Number
+        {
+            let part = token.text(self.text);
+            let whole = |part: &str| part.bytes().all(|b| b.is_ascii_digit());
+            if !part.starts_with(|c: char| c.is_ascii_digit()) {
+                return;
+            } else if self.groups(&digits.shown, part, company) {
+                digits.shown.to_mut().push_str(part);
+            } else if !digits.shown.contains('.')
+                && whole(part)
+                && self.comma_is_decimal(&digits.shown, part, company, digits.next + 2)
+            {
+                digits.shown.to_mut().push('.');
+                digits.shown.to_mut().push_str(part);
+            } else {
+                return;
+            }
+            digits.end = token.end as usize;
+            digits.next += 2;
+        }
+    }
+
+    /// `12 406` with a thin space; `12.406` in a manuscript with decimal commas.
+    fn take_spaced_groups(&self, digits: &mut Digits) {
+        while let Some(token) = self.tokens.get(digits.next)
+            && token.kind == Kind::Number
+            && token.spaced
+            && token.end - token.start == 3
+            && token.text(self.text).bytes().all(|b| b.is_ascii_digit())
+            && (1..=3).contains(&(digits.shown.len() % 4))
+            && !digits.shown.contains('.')
+            && !digits.shown.starts_with('0')
+            && self
+                .text
+                .as_bytes()
+                .get(token.end as usize)
+                .is_none_or(|b| !b.is_ascii_alphanumeric())
+        {
+            digits.shown.to_mut().push_str(token.text(self.text));
+            digits.end = token.end as usize;
+            digits.next += 1;
+        }
+        if self.commas
+            && let Some((whole, part)) = digits.shown.split_once('.')
+            && part.len() == 3
+            && (1..=3).contains(&whole.len())
+        {
+            digits.shown = Cow::Owned(format!("{whole}{part}"));
+        }
+    }
+
+    /// The power of ten behind the digits, as in `3.4 × 10⁻⁶`, or with the 10 itself, as in `10⁻⁷`.
+    fn take_power(&self, digits: &mut Digits) -> Option<i32> {
+        let alone = (digits.shown == "10" && self.tight(digits.next))
+            .then(|| self.exponent(digits.next, false))
+            .flatten()
+            .filter(|(power, _)| *power < 0);
+        if alone.is_some() {
+            digits.shown.to_mut().pop();
+        }
+        let (power, behind) = alone.or_else(|| self.power_of_ten(digits.next))?;
+        digits.end = self.tokens[behind - 1].end as usize;
+        digits.next = behind;
+        Some(power)
+    }
+
+    /// A comma behind `shown` and before `part` groups thousands.
     fn groups(&self, shown: &str, part: &str, company: Company) -> bool {
         let whole_part = &part[..part.find('.').unwrap_or(part.len())];
         let sizes = whole_part.len() == 3 && !shown.contains('.') && !shown.starts_with('0');
-        let length = shown.len();
-        let start = length >= 1;
         match company {
-            Company::Single | Company::Whole => sizes && start && !self.commas,
-            Company::Sole => sizes && start && !(self.commas && length <= 3 && part.len() != 3),
+            Company::Single | Company::Whole => sizes && !self.commas,
+            Company::Sole => sizes && !(self.commas && shown.len() <= 3 && part.len() != 3),
             Company::List => false,
         }
     }
 
+    /// A comma between `shown` and `part` is a decimal mark. Token `behind` is behind the part.
     fn comma_is_decimal(&self, shown: &str, part: &str, company: Company, behind: usize) -> bool {
         // `0,04` can be nothing else; a longer run `0,1,2` is a list.
         let another = self.mark(behind) == Some(",")
-            && self.tokens.get(behind).is_some_and(|t| !t.spaced)
-            && self
-                .tokens
-                .get(behind + 1)
-                .is_some_and(|t| !t.spaced && t.kind == Kind::Number);
+            && self.tight(behind)
+            && self.tight(behind + 1)
+            && self.is_number(behind + 1);
         match company {
-            Company::List => {
-                if self.commas {
-                    true
-                } else {
-                    shown == "0" && part.len() > 1 && !another
-                }
-            }
+            Company::List => self.commas || shown == "0" && part.len() > 1 && !another,
             Company::Sole => self.commas && !another,
             Company::Single | Company::Whole => (self.commas || shown == "0" || part.len() != 3) && !another,
         }
     }
 
-    /// Letters that may stand right behind a number: groups (`3.1a`), exponents were taken before.
-    fn may_follow_number(&self, word: &str) -> bool {
-        word.chars().count() == 1 && !matches!(word, "x" | "X" | "D" | "d")
-            || matches!(
-                word,
-                "ns" | "to" | "and" | "ms" | "mm" | "cm" | "kg" | "mg" | "years" | "yrs" | "CI"
-            )
-            || self.grammar.units.contains(word)
-            || word.chars().all(|c| c.is_lowercase()) && word.len() <= 3 && word != "x"
+    /// Letters that may stand right behind a number: groups (`3.1a`), units, the name of an interval (`95CI`);
+    /// but `2x2` and `3D` are names. Exponents were taken before.
+    fn may_follow_number(&self, at: usize) -> bool {
+        let Some(word) = self.word(at) else { return true };
+        let letters = word.chars().count();
+        !self.is(at, List::Dimensions)
+            && (letters == 1
+                || word.len() <= 3 && word.chars().all(char::is_lowercase)
+                || self.is(at, List::Units)
+                || self.interval_name(at).is_some())
     }
 
     /// `× 10⁻⁵`, `x 10^-6`, `× 10-6`, `·10^{-6}` at token `at`: the power and the token behind.
@@ -222,6 +234,21 @@ impl Scan<'_> {
             i += 1;
         }
         Some((if negative { -digits } else { digits }, i))
+    }
+
+    /// A token stands at `at`, and no space before it.
+    pub(super) fn tight(&self, at: usize) -> bool {
+        self.tokens.get(at).is_some_and(|t| !t.spaced)
+    }
+
+    /// A number stands at token `at`, without its sign.
+    pub(super) fn is_number(&self, at: usize) -> bool {
+        self.tokens.get(at).is_some_and(|t| t.kind == Kind::Number)
+    }
+
+    /// The token at `at` has a decimal point.
+    pub(super) fn has_decimals(&self, at: usize) -> bool {
+        self.shown(at).is_some_and(|shown| shown.contains(['.', '·']))
     }
 
     /// The text of a token.

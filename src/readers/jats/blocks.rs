@@ -46,7 +46,8 @@ impl<'a> Reading<'a> {
                 self.b.text(" ");
             }
         }
-        if self.in_citation && is_number_list(raw) && glued(self.last) {
+        let glued = self.in_citation && is_number_list(raw) && glued(self.last);
+        if glued && !in_brackets(self.b.open_text()) {
             // Citation numbers without brackets are raised on the page.
             self.b.superscript(raw);
             return;
@@ -491,6 +492,14 @@ fn is_number_list(text: &str) -> bool {
 /// Whether a number right behind this byte would be taken for a part of what stands before it.
 fn glued(last: u8) -> bool {
     last.is_ascii_alphanumeric() || matches!(last, b'.' | b',' | b')' | b'%' | b'"')
+}
+
+/// Whether a bracket is still open a few words before the end of a text.
+fn in_brackets(text: &str) -> bool {
+    const WITHIN: usize = 80;
+    let tail = &text.as_bytes()[text.len().saturating_sub(WITHIN)..];
+    let last = |marks: [u8; 2]| tail.iter().rposition(|b| marks.contains(b));
+    last([b'[', b'(']) > last([b']', b')'])
 }
 
 /// The formula in a TeX document that holds nothing else.

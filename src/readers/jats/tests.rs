@@ -124,10 +124,10 @@ fn citations_never_become_digits_of_a_number() {
     assert_eq!(
         body(
             "<p>p = .03<sup><xref ref-type='bibr' rid='r1'>12</xref>,<xref ref-type='bibr' rid='r2'>13</xref></sup> and \
-             p = .04<xref ref-type='bibr' rid='r1'>7</xref> but [<xref ref-type='bibr' rid='r1'>8</xref>] and \
+             p = .04<xref ref-type='bibr' rid='r1'>7</xref> but [<xref ref-type='bibr' rid='r1'>8</xref>,<xref ref-type='bibr' rid='r2'>9</xref>] and \
              Reed (<xref ref-type='bibr' rid='r3'>2014</xref>); note<xref ref-type='fn' rid='f'>3</xref></p>"
         ),
-        "p = .03¹²,¹³ and p = .04⁷ but [8] and Reed (2014); note³\n"
+        "p = .03¹²,¹³ and p = .04⁷ but [8,9] and Reed (2014); note³\n"
     );
 }
 
