@@ -3,7 +3,7 @@
 use super::fields::{Fields, Holds, holds};
 use super::omml;
 use super::styles::{self, Styles};
-use super::{symbol_element, table};
+use super::{choice, symbol_element, table};
 use crate::manuscript::{Builder, Part};
 use crate::readers::office::flow::{Item, Paragraph, Role, lines};
 use crate::readers::office::line::Line;
@@ -115,7 +115,11 @@ impl<'s, 't> Walker<'s, 't> {
                 "p" => self.paragraph(child, out, around, ahead),
                 "tbl" => {
                     out.extend(ahead.take().map(Item::Paragraph));
-                    table::push(self, child, out, around);
+                    table::push(child, out, &mut |tc| {
+                        let mut items = Vec::new();
+                        self.blocks(tc, &mut items, Around { part: None, ..around });
+                        items
+                    });
                 }
                 "sdt" => {
                     let around = control(child, around);
@@ -358,24 +362,6 @@ impl<'s, 't> Walker<'s, 't> {
             }
         }
     }
-}
-
-/// Of an alternative, so many elements are looked at for something to read.
-const LOOK_AHEAD: usize = 100_000;
-
-/// Of several ways to store the same thing, the first that has something to read.
-pub fn choice(alternatives: Element<'_>) -> Option<Element<'_>> {
-    let readable = |e: &Element<'_>| {
-        e.all()
-            .take(LOOK_AHEAD)
-            .any(|d| matches!(d.name(), "txbxContent" | "t" | "oMath" | "tbl"))
-    };
-    let choices = || {
-        alternatives
-            .children()
-            .filter(|c| matches!(c.name(), "Choice" | "Fallback"))
-    };
-    choices().find(readable).or_else(|| choices().next())
 }
 
 /// What a content control says about what it holds.

@@ -164,3 +164,21 @@ fn symbol_element(sym: Element<'_>) -> String {
         .map(String::from)
         .unwrap_or_default()
 }
+
+/// Of an alternative, so many elements are looked at for something to read.
+const LOOK_AHEAD: usize = 100_000;
+
+/// Of several ways to store the same thing, the first that has something to read.
+fn choice(alternatives: Element<'_>) -> Option<Element<'_>> {
+    let readable = |e: &Element<'_>| {
+        e.all()
+            .take(LOOK_AHEAD)
+            .any(|d| matches!(d.name(), "txbxContent" | "t" | "oMath" | "tbl"))
+    };
+    let choices = || {
+        alternatives
+            .children()
+            .filter(|c| matches!(c.name(), "Choice" | "Fallback"))
+    };
+    choices().find(readable).or_else(|| choices().next())
+}

@@ -1,7 +1,7 @@
 //! Tables of a Word file. Cells merged downwards are stored as one cell per row there, and become
 //! one cell with a height here.
 
-use super::body::{Around, Walker, choice};
+use super::choice;
 use super::styles::is_on;
 use crate::manuscript::CellShape;
 use crate::readers::office::flow::{Cell, Item, deepen_header, lines};
@@ -26,8 +26,8 @@ struct Raw {
     line: Line,
 }
 
-/// Appends a table and the notes its cells refer to.
-pub fn push<'t>(walker: &mut Walker<'_, 't>, tbl: Element<'t>, out: &mut Vec<Item>, around: Around) {
+/// Appends a table and the notes its cells refer to; `read` reads what a cell holds.
+pub fn push<'t>(tbl: Element<'t>, out: &mut Vec<Item>, read: &mut dyn FnMut(Element<'t>) -> Vec<Item>) {
     let mut trs = Vec::new();
     collect(tbl, "tr", &mut trs);
     let only_row = trs.len() == 1;
@@ -78,10 +78,8 @@ pub fn push<'t>(walker: &mut Walker<'_, 't>, tbl: Element<'t>, out: &mut Vec<Ite
                 Some(Some(v)) if v == "restart" => Merge::Begins,
                 Some(_) => Merge::Continues,
             };
-            let mut items = Vec::new();
-            walker.blocks(tc, &mut items, Around { part: None, ..around });
             let (items, aside): (Vec<Item>, Vec<Item>) =
-                items.into_iter().partition(|i| !matches!(i, Item::Note(_)));
+                read(tc).into_iter().partition(|i| !matches!(i, Item::Note(_)));
             notes.extend(aside);
             if only_row && count == 1 {
                 alone = Some(items.clone());

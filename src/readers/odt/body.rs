@@ -38,7 +38,7 @@ pub struct Walker<'s> {
     /// Formulas already read: each object stands in one place.
     seen: HashSet<String>,
     /// Bytes that repeated rows and cells may still add to the document.
-    pub spare: usize,
+    spare: usize,
 }
 
 impl<'s> Walker<'s> {
@@ -59,7 +59,7 @@ impl<'s> Walker<'s> {
         for child in holder.children() {
             match child.name() {
                 "p" | "h" => self.paragraph(child, out, around),
-                "table" => table::push(self, child, out, around),
+                "table" => table::push(&mut Inside { walker: self, around }, child, out),
                 "list" => self.blocks(
                     child,
                     out,
@@ -212,5 +212,30 @@ impl<'s> Walker<'s> {
                 }
             }
         }
+    }
+}
+
+/// Reads the cells of a table that stands in these surroundings.
+struct Inside<'w, 's> {
+    walker: &'w mut Walker<'s>,
+    around: Around,
+}
+
+impl<'t> table::Cells<'t> for Inside<'_, '_> {
+    fn read(&mut self, cell: Element<'t>) -> Vec<Item> {
+        let mut items = Vec::new();
+        let around = Around {
+            part: None,
+            listed: false,
+            ..self.around
+        };
+        self.walker.blocks(cell, &mut items, around);
+        items
+    }
+
+    fn affords(&mut self, bytes: usize) -> bool {
+        let rest = self.walker.spare.checked_sub(bytes);
+        self.walker.spare = rest.unwrap_or(self.walker.spare);
+        rest.is_some()
     }
 }

@@ -1,7 +1,6 @@
 //! Tables of an OpenDocument file. Cells covered by a merged neighbour are marked there and are
 //! left out here; repeated rows and cells are repeated within reason.
 
-use super::body::{Around, Walker};
 use crate::manuscript::CellShape;
 use crate::readers::office::flow::{Cell, Item, deepen_header, lines};
 use crate::readers::office::line::joined;
@@ -12,8 +11,17 @@ const LARGEST_SPAN: i64 = 1000;
 /// A row or cell stored once is repeated at most so often; spreadsheets fill their edges this way.
 const MOST_REPEATS: i64 = 64;
 
+/// Who reads the cells of a table.
+pub trait Cells<'t> {
+    /// What a cell holds.
+    fn read(&mut self, cell: Element<'t>) -> Vec<Item>;
+
+    /// Whether the document may grow by so many bytes more through repetitions.
+    fn affords(&mut self, bytes: usize) -> bool;
+}
+
 /// Appends a table and the notes its cells refer to.
-pub fn push<'t>(walker: &mut Walker<'_>, table: Element<'t>, out: &mut Vec<Item>, around: Around) {
+pub fn push<'t>(cells: &mut dyn Cells<'t>, table: Element<'t>, out: &mut Vec<Item>) {
     let mut trs = Vec::new();
     collect(table, false, &mut trs);
     let only_row = trs.len() == 1;
@@ -25,18 +33,10 @@ pub fn push<'t>(walker: &mut Walker<'_>, table: Element<'t>, out: &mut Vec<Item>
         let tcs: Vec<Element<'t>> = tr.children().filter(|c| c.name() == "table-cell").collect();
         let only_cell = tcs.len() == 1;
         for tc in tcs {
-            let mut items = Vec::new();
-            walker.blocks(
-                tc,
-                &mut items,
-                Around {
-                    part: None,
-                    listed: false,
-                    ..around
-                },
-            );
-            let (items, aside): (Vec<Item>, Vec<Item>) =
-                items.into_iter().partition(|i| !matches!(i, Item::Note(_)));
+            let (items, aside): (Vec<Item>, Vec<Item>) = cells
+                .read(tc)
+                .into_iter()
+                .partition(|i| !matches!(i, Item::Note(_)));
             notes.extend(aside);
             if only_row && only_cell {
                 alone = Some(items.clone());
@@ -50,12 +50,12 @@ pub fn push<'t>(walker: &mut Walker<'_>, table: Element<'t>, out: &mut Vec<Item>
                     header,
                 },
             };
-            for _ in 1..repeats(walker, tc, "number-columns-repeated", size(&cell)) {
+            for _ in 1..repeats(cells, tc, "number-columns-repeated", size(&cell)) {
                 row.push(cell.clone());
             }
             row.push(cell);
         }
-        for _ in 1..repeats(walker, tr, "number-rows-repeated", row.iter().map(size).sum()) {
+        for _ in 1..repeats(cells, tr, "number-rows-repeated", row.iter().map(size).sum()) {
             rows.push(row.clone());
         }
         rows.push(row);
@@ -77,14 +77,13 @@ fn size(cell: &Cell) -> usize {
 }
 
 /// How often a row or cell of this size stands there.
-fn repeats(walker: &mut Walker<'_>, e: Element<'_>, name: &str, size: usize) -> usize {
+fn repeats<'t>(cells: &mut dyn Cells<'t>, e: Element<'t>, name: &str, size: usize) -> usize {
     let wanted = e.number(name).unwrap_or(1).clamp(1, MOST_REPEATS) as usize;
-    let cost = (wanted - 1) * size;
-    if cost > walker.spare {
-        return 1;
+    if cells.affords((wanted - 1) * size) {
+        wanted
+    } else {
+        1
     }
-    walker.spare -= cost;
-    wanted
 }
 
 /// The rows, with whether they are header rows.
