@@ -208,7 +208,7 @@ impl Scan<'_> {
         }
         let never = matches!(
             head.symbol.class,
-            Class::Statistic | Class::P | Class::Df | Class::Size
+            Class::Statistic | Class::P | Class::Df | Class::Size | Class::Ratio
         );
         (!never).then_some(next + 1)
     }
