@@ -82,7 +82,8 @@ fn law(low: End, high: End) -> impl Law {
         if middle.meets(inside[0]) {
             low = 0.0;
         }
-        Some(Interval { low, high })
+        // A U that n1 and n2 do not allow has no z.
+        (low <= high).then_some(Interval { low, high })
     };
     Sizes {
         law: Box::new(ByRange { range, domains }),

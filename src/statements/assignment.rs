@@ -177,19 +177,7 @@ impl Scan<'_> {
 
     /// `p = n.s.`, the words from token `at` to token `behind`: a p above the level of significance.
     fn not_significant_item(&self, head: &Head, at: usize, behind: usize) -> Option<Item> {
-        let span = self.bytes(at, behind);
-        let number = Decimal::round(self.alpha, -2)
-            .filter(|d| d.value() == self.alpha)
-            .or_else(|| Decimal::round(self.alpha, -4))?;
-        let quantity = Quantity {
-            symbol: head.symbol.name,
-            printed: self.text[span.clone()].to_string(),
-            comparator: Comparator::Above,
-            number,
-            interval: Comparator::Above.interval(&number, false),
-            span,
-            borrowed: None,
-        };
+        let quantity = self.above_alpha(head.symbol.name, at, behind)?;
         Some(Item {
             plural: head.plural,
             ..Item::new(
@@ -198,6 +186,38 @@ impl Scan<'_> {
                 self.bytes(head.at, behind),
                 vec![quantity],
             )
+        })
+    }
+
+    /// `F < 1, n.s.`: the words stand for p, at token `at` behind a test.
+    pub(super) fn bare_not_significant(&self, at: usize) -> Option<Item> {
+        if !matches!(self.mark(at), Some("," | ";")) {
+            return None;
+        }
+        let behind = self.not_significant(at + 1)?;
+        // `t(30) = 1.2, n = 32` and `, ns = 3` go on as sizes.
+        if self.comparator(behind, false).is_some() {
+            return None;
+        }
+        let quantity = self.above_alpha("p", at + 1, behind)?;
+        let bytes = self.bytes(at + 1, behind);
+        Some(Item::new(Class::P, at + 1..behind, bytes, vec![quantity]))
+    }
+
+    /// A quantity above the level of significance that is printed as the words from `at` to `behind`.
+    fn above_alpha(&self, symbol: &'static str, at: usize, behind: usize) -> Option<Quantity> {
+        let span = self.bytes(at, behind);
+        let number = Decimal::round(self.alpha, -2)
+            .filter(|d| d.value() == self.alpha)
+            .or_else(|| Decimal::round(self.alpha, -4))?;
+        Some(Quantity {
+            symbol,
+            printed: self.text[span.clone()].to_string(),
+            comparator: Comparator::Above,
+            number,
+            interval: Comparator::Above.interval(&number, false),
+            span,
+            borrowed: None,
         })
     }
 

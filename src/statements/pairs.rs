@@ -24,6 +24,9 @@ impl Scan<'_> {
         if self.mark(at) == Some("±") {
             return self.spread_behind(at + 1);
         }
+        if item.class == Class::Statistic {
+            return self.bare_not_significant(at);
+        }
         let size = item.class == Class::Size;
         let listed = size && matches!(self.mark(at), Some("," | ";"));
         if !matches!(self.mark(at), Some("(" | "[")) && !listed || item.plural {
