@@ -350,6 +350,8 @@ fn every_relation_has_a_line_and_a_page() {
         assert_eq!(run.status, 0, "{}", relation.name);
         assert!(run.out.lines().count() > 4, "{}", relation.name);
         assert!(!relation.summary().is_empty(), "{}", relation.name);
+        let wide = run.out.lines().find(|l| l.chars().count() > 80);
+        assert_eq!(wide, None, "{} fits a terminal", relation.name);
     }
 }
 

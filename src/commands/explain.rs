@@ -25,7 +25,7 @@ impl Explain {
                 REGISTRY
                     .iter()
                     .find(|r| r.name == name)
-                    .map(|r| format!("{name}\n\n{}", r.documentation()))
+                    .map(|r| format!("{name}\n\n{}", reports::paragraphs(&r.documentation(), width())))
                     .unwrap_or_default()
             }
         };

@@ -216,7 +216,7 @@ fn bold_is_wanted() -> bool {
 
 /// Columns for text: of the terminal, within what is comfortable to read.
 fn width() -> usize {
-    const COMFORTABLE: std::ops::RangeInclusive<usize> = 60..=100;
+    const COMFORTABLE: std::ops::RangeInclusive<usize> = 40..=100;
     let set = std::env::var("COLUMNS")
         .ok()
         .and_then(|c| c.trim().parse::<usize>().ok());

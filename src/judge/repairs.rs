@@ -78,7 +78,9 @@ fn slip(part: &Quantity, possible: &Set) -> Option<Repair> {
         } else {
             d.rounding()
         };
-        possible.iter().any(|i| i.meets(range))
+        // Nobody prints a p of nothing; where it is so small, a bound is named instead.
+        let bare = part.symbol == "p" && d.digits == 0;
+        !bare && possible.iter().any(|i| i.meets(range))
     };
     let repair = |d: Decimal, slip| Repair {
         symbol: part.symbol,
@@ -387,6 +389,10 @@ mod tests {
     #[test]
     fn a_point_is_not_shifted_in_zero() {
         assert_eq!(named("p", ".00", 0.110, 0.118), None);
+        assert_eq!(
+            named("p", ".9", 0.043, 0.054),
+            Some((".1".into(), "one digit wrong"))
+        );
         assert_eq!(
             named("p", ".00", 0.0, 0.012),
             Some((".01".into(), "cut off instead of rounded"))

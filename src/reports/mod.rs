@@ -129,6 +129,15 @@ pub fn two_columns(entries: &[(&str, String)], width: usize) -> String {
     text
 }
 
+/// Text in paragraphs with an empty line between them, broken into lines of at most `width` columns.
+pub fn paragraphs(text: &str, width: usize) -> String {
+    let paragraphs = text.split("\n\n").map(|paragraph| {
+        let joined = paragraph.split_whitespace().collect::<Vec<_>>().join(" ");
+        excerpt::paragraph(&joined, width).join("\n") + "\n"
+    });
+    paragraphs.collect::<Vec<_>>().join("\n")
+}
+
 /// `text` with everything replaced that could move the cursor, change colours or turn the writing
 /// direction of a terminal. Each such character becomes one U+FFFD; tabs and line ends stay.
 pub fn harmless(text: &str) -> String {
