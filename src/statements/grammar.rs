@@ -220,6 +220,14 @@ impl Scan<'_> {
     pub(super) fn comparator(&self, at: usize, words: bool) -> Option<(Comparator, usize)> {
         let spellings = &self.grammar.comparator_spellings;
         let found = spellings.at(self.text, self.tokens, at, |s| words || !s.words)?;
+        // `n <- 50` gives a variable its value in program code.
+        let arrow = self.shown(found.next - 1) == Some("<")
+            && self.mark(found.next) == Some("-")
+            && !self.tokens[found.next].spaced
+            && self.tokens.get(found.next + 1).is_some_and(|t| t.spaced);
+        if arrow {
+            return None;
+        }
         Some((self.grammar.comparators[found.spelling.meaning], found.next))
     }
 }
