@@ -66,6 +66,7 @@ pub fn judge(
             mentions: &near,
             alpha,
             one_sided: options.one_sided,
+            among_results: among_results(statements, index, manuscript),
         };
         for relation in &relations {
             for tie in (relation.ties)(&case) {
@@ -74,4 +75,13 @@ pub fn judge(
         }
     }
     findings
+}
+
+/// Whether other results with a p stand in the same block, or the text is little else than this one.
+fn among_results(statements: &[Statement], index: usize, manuscript: &Manuscript) -> bool {
+    const NEIGHBOURS: usize = 20;
+    let statement = &statements[index];
+    let near = &statements[index.saturating_sub(NEIGHBOURS)..(index + NEIGHBOURS).min(statements.len())];
+    let p = |s: &Statement| s.block == statement.block && s.quantities.iter().any(|q| q.symbol == "p");
+    near.iter().any(p) || statement.range.len() * 3 > manuscript.text.len()
 }

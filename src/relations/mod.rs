@@ -126,6 +126,9 @@ pub struct Case<'a> {
     pub alpha: f64,
     /// The person says that tests are one-sided.
     pub one_sided: bool,
+    /// Results with a p stand in the same block, or the text is little else than this one: a letter
+    /// that stands alone is a statistic.
+    pub among_results: bool,
 }
 
 impl Case<'_> {

@@ -8,7 +8,8 @@
 //! Only a quantity outside its range makes a finding; that one lies inside says nothing.
 //!
 //! Assumes: nothing, except that n counts persons: with weights an n can be fractional, which is left open.
-//! An R² below zero can come from new data and is left open too.
+//! An R² below zero can come from new data and is left open too, and so is a letter that stands alone far from
+//! other results.
 //!
 //! Caution: a lost decimal point or a dash read as a minus is the usual reason.
 //!
@@ -16,6 +17,7 @@
 //!
 //! Example: r = 1.24 conflicts, because no correlation is larger than 1.
 
+use super::laws::Anything;
 use super::{Case, Tie, Variant};
 use crate::numbers::{Interval, Set};
 
@@ -48,6 +50,12 @@ pub fn ties(case: &Case) -> Vec<Tie> {
         if quantity.symbol == "R2" && quantity.interval.high < 0.0 {
             let below = |_: usize, _: &[Interval]| -> Set { vec![Interval::at_most(1.0)] };
             variants.push(Variant::new(&[], below).left_open("R² can be negative for new data"));
+        }
+        // Far from other results a letter that stands alone may be a parameter of any size.
+        let alone = (0..case.quantities.len()).filter(|k| case.own(*k)).count() == 1;
+        if alone && !case.among_results && quantity.symbol != "p" {
+            let reason = "it stands alone, and the letter may mean something else here";
+            variants.push(Variant::new(&[], Anything).left_open(reason));
         }
         ties.push(case.tie(vec![i], variants));
     }

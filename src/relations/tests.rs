@@ -57,6 +57,7 @@ pub(super) fn case<'a>(quantities: &'a [Quantity], mentions: &'a [Mention]) -> C
         mentions,
         alpha: 0.05,
         one_sided: false,
+        among_results: true,
     }
 }
 
