@@ -69,7 +69,7 @@ fn ordered(target: usize, values: &[Interval]) -> Set {
 }
 
 /// Parts: estimate, lower end, upper end.
-fn between(target: usize, values: &[Interval]) -> Set {
+pub(super) fn between(target: usize, values: &[Interval]) -> Set {
     let (estimate, low, high) = (values[0], values[1], values[2]);
     match target {
         0 if low.low <= high.high => vec![Interval {

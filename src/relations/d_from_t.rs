@@ -16,7 +16,7 @@
 //! Example: t(28) = 2.20 with 15 per group gives d from 0.801 to 0.805, so d = 0.80 agrees and d = 8.0 conflicts.
 
 use super::laws::{Anything, COUNTS, POSITIVE, Sizes, between, formula};
-use super::{Case, Law, Tie, Variant};
+use super::{Case, Law, Reach, Tie, Variant};
 use crate::numbers::Interval;
 
 /// See the module documentation.
@@ -49,7 +49,8 @@ pub fn ties(case: &Case) -> Vec<Tie> {
         if known {
             parts.extend(groups);
         }
-        let fractional = degrees.low != degrees.high || degrees.low.fract() != 0.0;
+        let welch = !known && case.mention("welch", Reach::Paragraph).is_some();
+        let fractional = welch || degrees.low != degrees.high || degrees.low.fract() != 0.0;
         ties.push(case.tie(parts, variants(root, corrected, known, fractional)));
     }
     ties
@@ -118,7 +119,7 @@ fn variants(root: bool, corrected: bool, known: bool, fractional: bool) -> Vec<V
         variants.push(make("two groups of unequal size".into(), Box::new(split)));
     }
     if fractional {
-        let reason = "with fractional degrees of freedom d does not follow from t";
+        let reason = "with the degrees of freedom of Welch's test d does not follow from t";
         variants.push(Variant::new(&[], Anything).left_open(reason));
     } else if !known {
         // |d| = |t|/√n · √(2(1 − ρ)) ≤ 2|t|/√n for a correlation ρ between the two measurements.

@@ -8,6 +8,7 @@ mod d_from_t;
 mod eta2_from_f;
 mod laws;
 mod mean_granularity;
+mod mean_range;
 mod p_from_chi2;
 mod p_from_ci;
 mod p_from_f;
@@ -68,6 +69,7 @@ pub const REGISTRY: &[Relation] = &[
     relation!("r-from-t", r_from_t),
     relation!("v-from-chi2", v_from_chi2),
     relation!("mean-granularity", mean_granularity),
+    relation!("mean-range", mean_range),
     relation!("percent-of-count", percent_of_count),
 ];
 

@@ -98,6 +98,42 @@ fn u_and_its_z() {
 }
 
 #[test]
+fn exact_p_beside_a_wald_interval_is_not_decided() {
+    // Woolf's interval with Fisher's p, and with the p of the likelihood ratio.
+    open(
+        "p-from-ci",
+        "OR 0.253 CI_level 95 CI_low 0.068 CI_high 0.933 p .073",
+    );
+    open(
+        "p-from-ci",
+        "OR 0.12 CI_level 95 CI_low 0.014 CI_high 1.10 p .024",
+    );
+    // A narrow interval comes from so many that the methods agree.
+    conflicts("p-from-ci", "OR 1.50 CI_level 95 CI_low 1.02 CI_high 2.21 p .12");
+    conflicts(
+        "p-from-ci",
+        "OR 0.253 CI_level 95 CI_low 0.068 CI_high 0.933 p .30",
+    );
+}
+
+#[test]
+fn means_lie_inside_their_range() {
+    agrees("mean-range", "M 4.20 SD 1.1 range_low 1 range_high 7");
+    agrees("mean-range", "Mdn 54 IQR_low 50 IQR_high 62");
+    conflicts("mean-range", "M 8.20 range_low 1 range_high 7");
+    conflicts("mean-range", "Mdn 45 IQR_low 50 IQR_high 62");
+    conflicts("mean-range", "Mdn 54 range_low 62 range_high 50");
+    for text in [
+        "M 8.20 IQR_low 1 IQR_high 7",
+        "M 3 M 8.20 range_low 1 range_high 7",
+        "range_low 1 range_high 7",
+    ] {
+        assert!(outcomes("mean-range", text, &[]).is_empty(), "{text}");
+    }
+    solutions_hold("mean-range", "M 8.20 range_low 1 range_high 7");
+}
+
+#[test]
 fn ranges() {
     conflicts("range", "r 1.24");
     conflicts("range", "p 1.2");

@@ -6,7 +6,8 @@
 //!
 //! Assumes: two-sided p and interval, and a null of no difference. Interval and p by different usual methods
 //! (Wald, likelihood ratio, score, exact, t with unknown degrees of freedom) are left open as long as the
-//! interval excludes the null where p is below 1 − level; 95 % where the level is not printed.
+//! interval excludes the null where p is below 1 − level, or nearly so where the groups are small; 95 % where
+//! the level is not printed.
 //!
 //! Caution: the p may be that of another comparison than the interval.
 //!
@@ -30,6 +31,14 @@ const METHODS: (f64, f64, f64) = (0.75, 1.35, 0.3);
 
 /// How far p may be on the wrong side of 1 − level for the same reason.
 const EDGE: f64 = 1.3;
+
+/// The same for ratios, whose p may be exact or corrected for continuity: so many standard errors of the
+/// logarithm in units of z. The correction takes half of one from z, since under independence
+/// N³ / (product of the margins) is near 1/a + 1/b + 1/c + 1/d.
+const CORRECTION: f64 = 0.55;
+
+/// And so many more units between z of p and z of the interval.
+const SPARSE: f64 = 0.25;
 
 /// See the module documentation.
 pub fn ties(case: &Case) -> Vec<Tie> {
@@ -113,7 +122,7 @@ fn variants(case: &Case, bounds: &Bounds, scale: Scale) -> Option<Vec<Variant>> 
     if bounds.level.is_none() {
         assumed.push("a 95% interval");
     }
-    let normal = move |c: f64| normal_two_sided(c * q);
+    let normal = move |c: f64, _: f64| normal_two_sided(c * q);
     let mut variants = vec![Variant::new(&assumed, law(scale, normal, normal))];
     let one_sided = case.mention("one-sided", Reach::Sentence);
     if case.one_sided || one_sided.is_some() {
@@ -134,23 +143,23 @@ fn variants(case: &Case, bounds: &Bounds, scale: Scale) -> Option<Vec<Variant>> 
             .filter(|df| *df >= 1.0)
     {
         let tq = t_quantile_two_sided(outside, df)?;
-        let by_t = move |c: f64| t_two_sided(c * tq, df);
+        let by_t = move |c: f64, _: f64| t_two_sided(c * tq, df);
         let text = format!("t distribution with {df} degrees of freedom");
         variants.push(Variant::new(&[assumed[0], &text], law(scale, by_t, by_t)));
     }
     // Everything that usual methods make of the interval: z somewhat different, t with few degrees of freedom.
     let tq = t_quantile_two_sided(outside, FEWEST_DF)?;
     let (less, more, units) = METHODS;
-    let lowest = move |c: f64| {
+    let lowest = move |c: f64, se: f64| {
+        let units = units + SPARSE * se;
         Some(normal_two_sided(c * q * more + units)?.min(t_two_sided(c * tq * more + units, FEWEST_DF)?))
     };
-    let highest = move |c: f64| {
-        Some(
-            normal_two_sided((c * q * less - units).max(0.0))?
-                .max(t_two_sided((c * tq * less - units).max(0.0), FEWEST_DF)?),
-        )
+    let highest = move |c: f64, se: f64| {
+        let units = units + SPARSE * se;
+        let z = |q: f64| (c * q * less - units).max(0.0);
+        Some(normal_two_sided(z(q))?.max(t_two_sided(z(tq), FEWEST_DF)?))
     };
-    let methods = one_side(scale, outside, lowest, highest);
+    let methods = one_side(scale, q, outside, lowest, highest);
     let reason = "p and interval fit only if they come from different methods (Wald, likelihood ratio, score, exact, t)";
     variants.push(Variant::new(&[], methods).left_open(reason));
     if let Some(mention) = case.mention("adjusted", Reach::Document) {
@@ -158,7 +167,7 @@ fn variants(case: &Case, bounds: &Bounds, scale: Scale) -> Option<Vec<Variant>> 
             "it fits if p is adjusted for multiple tests and the interval is not ({})",
             p_value::quoted(mention)
         );
-        let adjusted = Adjusted(Box::new(law(scale, lowest, highest)));
+        let adjusted = Adjusted(Box::new(spread_law(scale, q, lowest, highest)));
         variants.push(Variant::new(&[], adjusted).left_open(reason));
     }
     for meaning in ["bootstrap", "permutation", "bayes"] {
@@ -199,10 +208,22 @@ fn distance(scale: Scale, values: &[Interval]) -> Option<Interval> {
     })
 }
 
-/// Lowest or highest p for an estimate that is so many half widths away from the null.
-trait End: Fn(f64) -> Option<f64> + Send + Sync + 'static {}
+/// The standard error of the logarithm at most, where the interval is one of a ratio; else 0.
+fn standard_error(scale: Scale, q: f64, values: &[Interval]) -> f64 {
+    if scale != Scale::Log {
+        return 0.0;
+    }
+    let (low, high) = (scale.interval(values[2]), scale.interval(values[3]));
+    let se = (high.high - low.low) / (2.0 * q);
+    // Above this a table of counts says nothing anyway.
+    if se.is_finite() { se.clamp(0.0, 3.0) } else { 3.0 }
+}
 
-impl<F: Fn(f64) -> Option<f64> + Send + Sync + 'static> End for F {}
+/// Lowest or highest p for an estimate that is so many half widths away from the null, and the standard
+/// error of its logarithm.
+trait End: Fn(f64, f64) -> Option<f64> + Send + Sync + 'static {}
+
+impl<F: Fn(f64, f64) -> Option<f64> + Send + Sync + 'static> End for F {}
 
 /// Where estimate and ends are searched.
 fn domains(scale: Scale) -> Vec<Interval> {
@@ -215,9 +236,15 @@ fn domains(scale: Scale) -> Vec<Interval> {
 
 /// Parts: p, estimate, lower end, upper end.
 fn law(scale: Scale, lowest: impl End, highest: impl End) -> impl Law {
+    spread_law(scale, 1.0, lowest, highest)
+}
+
+/// The same, for ends that look at the standard error; q is the quantile of the level.
+fn spread_law(scale: Scale, q: f64, lowest: impl End, highest: impl End) -> impl Law {
     let range = move |values: &[Interval]| {
         let c = distance(scale, values)?;
-        Some(probability(lowest(c.high)?, highest(c.low)?))
+        let se = standard_error(scale, q, values);
+        Some(probability(lowest(c.high, se)?, highest(c.low, se)?))
     };
     ByRange {
         range,
@@ -226,10 +253,11 @@ fn law(scale: Scale, lowest: impl End, highest: impl End) -> impl Law {
 }
 
 /// The same, and p has to be on the side of `outside` = 1 − level that the interval says.
-fn one_side(scale: Scale, outside: f64, lowest: impl End, highest: impl End) -> impl Law {
+fn one_side(scale: Scale, q: f64, outside: f64, lowest: impl End, highest: impl End) -> impl Law {
     let range = move |values: &[Interval]| {
         let c = distance(scale, values)?;
-        probability(lowest(c.high)?, highest(c.low)?).meet(side(scale, outside, values))
+        let se = standard_error(scale, q, values);
+        probability(lowest(c.high, se)?, highest(c.low, se)?).meet(side(scale, q, outside, values))
     };
     ByRange {
         range,
@@ -237,16 +265,19 @@ fn one_side(scale: Scale, outside: f64, lowest: impl End, highest: impl End) -> 
     }
 }
 
-fn side(scale: Scale, outside: f64, values: &[Interval]) -> Interval {
+fn side(scale: Scale, q: f64, outside: f64, values: &[Interval]) -> Interval {
     let (low, high) = (scale.interval(values[2]), scale.interval(values[3]));
+    let slack = CORRECTION * standard_error(scale, q, values);
     if low.low > 0.0 || high.high < 0.0 {
+        let corrected = normal_two_sided((q - slack).max(0.0)).unwrap_or(1.0);
         Interval {
             low: 0.0,
-            high: outside * EDGE,
+            high: (outside * EDGE).max(corrected),
         }
     } else if low.high < 0.0 && high.low > 0.0 {
+        let corrected = normal_two_sided(q + slack).unwrap_or(0.0);
         Interval {
-            low: outside / EDGE,
+            low: (outside / EDGE).min(corrected),
             high: 1.0,
         }
     } else {

@@ -15,6 +15,7 @@
 //!
 //! Example: F(1, 52) = 8.31 gives p of .0057, so p = .006 agrees and p = .06 conflicts.
 
+use super::laws::Side;
 use super::laws::{ByRange, UNIT, probability};
 use super::search::MOST;
 use super::{Case, Law, Reach, Tie, p_value};
@@ -38,7 +39,19 @@ pub fn ties(case: &Case) -> Vec<Tie> {
             ties.push(Tie::open(vec![p, test.at], reason));
             continue;
         };
-        let mut variants = p_value::variants(case, &test, p, false, |_| Box::new(FLaw { corrected: false }));
+        // With one degree of freedom F is t², and its p is halved in a one-sided test.
+        let one = case.quantities[df1].interval == Interval::point(1.0);
+        let mut variants = p_value::variants(case, &test, p, one, |side| {
+            let law: Box<dyn Law> = Box::new(FLaw { corrected: false });
+            match side {
+                Side::Both => law,
+                Side::Upper => Box::new(Half { law, far: false }),
+                Side::Lower => Box::new(Half { law, far: true }),
+            }
+        });
+        for variant in &mut variants {
+            variant.assumes.retain(|a| a != "two-sided");
+        }
         if let Some(mention) = case.mention("sphericity", Reach::Document)
             && case.quantities[df1].interval.high > 1.0
         {
@@ -58,6 +71,38 @@ pub fn ties(case: &Case) -> Vec<Tie> {
         ties.push(tie);
     }
     ties
+}
+
+/// One-sided p of a law whose p is two-sided; `far` if the difference is against what was expected.
+struct Half {
+    law: Box<dyn Law>,
+    far: bool,
+}
+
+impl Law for Half {
+    fn solve(&self, target: usize, values: &[Interval]) -> Set {
+        let far = |p: Interval| Interval {
+            low: 1.0 - p.high,
+            high: 1.0 - p.low,
+        };
+        let turn = |p: Interval| if self.far { far(p) } else { p };
+        if target == 0 {
+            let half = |p: &Interval| {
+                turn(Interval {
+                    low: 0.5 * p.low,
+                    high: 0.5 * p.high,
+                })
+            };
+            return self.law.solve(0, values).iter().map(half).collect();
+        }
+        let mut values = values.to_vec();
+        let p = turn(values[0]);
+        values[0] = Interval {
+            low: 2.0 * p.low,
+            high: 2.0 * p.high,
+        };
+        self.law.solve(target, &values)
+    }
 }
 
 /// Parts: p, F, df1, df2. If `corrected`, both degrees of freedom are multiplied by some ε.

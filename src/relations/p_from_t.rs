@@ -16,7 +16,7 @@
 //! Example: t(28) = 2.20 gives p from .0358 to .0367, so p = .036 agrees and p = .063 conflicts.
 
 use super::laws::{Side, TailLaw};
-use super::{Case, Tie, p_value};
+use super::{Case, Law, Reach, Tie, p_value};
 use crate::distributions::t_two_sided;
 use crate::numbers::Interval;
 
@@ -31,7 +31,28 @@ pub fn ties(case: &Case) -> Vec<Tie> {
             let Some(df) = test.df.filter(|i| case.quantities[*i].interval.high > 0.0) else {
                 return Tie::open(vec![p, test.at], "the degrees of freedom of t are missing");
             };
-            let variants = p_value::variants(case, &test, p, true, |side| Box::new(law(side)));
+            let mut variants = p_value::variants(case, &test, p, true, |side| Box::new(law(side)));
+            let whole = case.quantities[df].number.is_whole();
+            if let Some(mention) = case.mention("welch", Reach::Document).filter(|_| whole) {
+                let said = format!(
+                    "fractional degrees of freedom printed as a whole number ({})",
+                    p_value::quoted(mention)
+                );
+                let rounded = |side| -> Box<dyn Law> {
+                    let less = Interval { low: -0.5, high: 0.5 };
+                    Box::new(TailLaw { less, ..law(side) })
+                };
+                for mut variant in p_value::variants(case, &test, p, true, rounded) {
+                    variant.assumes.push(said.clone());
+                    variants.push(
+                        if mention.reach <= Reach::Paragraph || variant.only_open.is_some() {
+                            variant
+                        } else {
+                            variant.left_open(format!("it fits with {said}"))
+                        },
+                    );
+                }
+            }
             let mut tie = case.tie(vec![p, test.at, df], variants);
             tie.remarks = p_value::remarks(case, p);
             tie

@@ -297,6 +297,33 @@ fn words_around_a_result_open_other_ways() {
         outcome("p-from-f", "F 3.00 df1 3 df2 60 p .15", &sphericity),
         Outcome::Conflicts
     );
+    let one = [mention("one-sided", "one-tailed", Reach::Sentence, &[])];
+    for (text, fits) in [
+        ("F 4.84 df1 1 df2 28 p .018", true),
+        ("F 4.84 df1 1 df2 28 p .982", true),
+        ("F 4.84 df1 1 df2 28 p .063", false),
+        ("F 4.84 df1 2 df2 28 p .008", false),
+    ] {
+        let out = outcome("p-from-f", text, &one);
+        assert_eq!(matches!(out, Outcome::Agrees(_)), fits, "{text}: {out:?}");
+    }
+
+    let welch = |reach| [mention("welch", "Welch's", reach, &[])];
+    let rounded = "t -1.409 df 6 p .2095";
+    assert!(matches!(
+        outcome("p-from-t", rounded, &welch(Reach::Sentence)),
+        Outcome::Agrees(_)
+    ));
+    assert!(matches!(
+        outcome("p-from-t", rounded, &welch(Reach::Document)),
+        Outcome::Open(_)
+    ));
+    assert_eq!(outcome("p-from-t", rounded, &[]), Outcome::Conflicts);
+    assert_eq!(
+        outcome("p-from-t", "t -1.409 df 6 p .23", &welch(Reach::Sentence)),
+        Outcome::Conflicts
+    );
+
     let permuted = [mention("permutation", "permutation", Reach::Sentence, &[])];
     assert!(matches!(outcome("p-from-t", more, &permuted), Outcome::Open(_)));
 }
