@@ -256,6 +256,12 @@ impl Scan<'_> {
                 && !first.number.is_whole()
                 && (low..=high).contains(&first.number.value())
         });
+        // A number without its zero (`τ = .21`) and a test below one (`F < 1`) are written in no other trade.
+        let test = matches!(symbol.class, Class::Statistic | Class::Effect);
+        let bare_point =
+            comparator == Comparator::Equal && first.printed.trim_start_matches(['-', ' ']).starts_with('.');
+        let below_one = comparator == Comparator::Below && first.printed == "1" && !symbol.bounded;
+        let sure = sure || test && (bare_point || below_one);
         let plural = head.plural || values.respectively && !values.more.is_empty();
         let mut more: Vec<Quantity> = values
             .more

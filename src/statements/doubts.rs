@@ -16,11 +16,13 @@ impl Scan<'_> {
     /// The assignment is not what it looks like. Token `next` is behind the value and its percent sign.
     pub(super) fn doubtful(&self, head: &Head, link: &Link, value: &Value, next: usize) -> bool {
         let symbol = head.symbol;
+        // `T2 = 40 ms` has no argument that shows it to be a test.
+        let bracketed = (head.at..head.next).any(|i| matches!(self.mark(i), Some("(" | "[")));
         self.lacks_decimals(head, link)
             || out_of_bounds(symbol, link, value)
             || self.goes_on_otherwise(symbol, value.next)
             || symbol.class == Class::Size && self.counts_other_things(head.at, next)
-            || !symbol.units && head.arguments.is_empty() && self.has_unit(head.at, next)
+            || !symbol.units && !bracketed && self.has_unit(head.at, next)
             || self.formula(symbol.class, value, next)
             || head.bare_letter() && self.misleading_before(head.at) && !self.test_goes_on(next)
     }

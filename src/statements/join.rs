@@ -140,11 +140,16 @@ impl Scan<'_> {
         if item.plural && self.shared(&item, drafts) {
             return;
         }
+        let compared = item.class == Class::Interval && self.two_means(drafts);
         let Some(last) = drafts.last_mut() else {
             drafts.push(Draft { items: vec![item] });
             return;
         };
         let gap = self.gap(last.token_end(), item.tokens.start);
+        if compared {
+            drafts.push(Draft { items: vec![item] });
+            return;
+        }
         // A second p, or a second interval, takes with it the estimate it belongs to.
         let repeated = match item.class {
             Class::P | Class::Interval => last.has(item_key(&item)),
@@ -161,6 +166,17 @@ impl Scan<'_> {
         match joins {
             true => last.items.push(item),
             false => drafts.push(Draft { items: vec![item] }),
+        }
+    }
+
+    /// The last two drafts are means that are compared: `M = 3.2, SD = 1.1 vs. M = 2.9, SD = 1.0`. An
+    /// interval behind them is that of their difference.
+    fn two_means(&self, drafts: &[Draft]) -> bool {
+        let [.., first, second] = drafts else { return false };
+        let means = |d: &Draft| d.only(Class::Descriptive) && d.has("M");
+        means(first) && means(second) && {
+            let between = self.gap(first.token_end(), second.items[0].tokens.start);
+            between.turns && between.words <= 2
         }
     }
 

@@ -27,6 +27,11 @@ impl Scan<'_> {
         if item.class == Class::Statistic {
             return self.bare_not_significant(at);
         }
+        // `OR = 0.20, [0.06, 0.67]`
+        let estimate = matches!(item.class, Class::Ratio | Class::Estimate | Class::Effect);
+        if estimate && self.mark(at) == Some(",") && self.mark(at + 1) == Some("[") && !item.plural {
+            return self.ends_behind(item, at + 1, "CI_low", "CI_high", true);
+        }
         let size = item.class == Class::Size;
         let listed = size && matches!(self.mark(at), Some("," | ";"));
         if !matches!(self.mark(at), Some("(" | "[")) && !listed || item.plural {
@@ -54,7 +59,18 @@ impl Scan<'_> {
         high_name: &'static str,
         inside: bool,
     ) -> Option<Item> {
-        let at = item.tokens.end;
+        self.ends_behind(item, item.tokens.end, low_name, high_name, inside)
+    }
+
+    /// The same with the bracket at token `at`.
+    fn ends_behind(
+        &self,
+        item: &Item,
+        at: usize,
+        low_name: &'static str,
+        high_name: &'static str,
+        inside: bool,
+    ) -> Option<Item> {
         let (low, high, behind) = self.two_ends(at)?;
         let number = item.quantities[0].number.value();
         if inside && !(low.number.value() <= number && number <= high.number.value()) {
