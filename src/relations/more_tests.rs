@@ -290,5 +290,7 @@ fn percentages() {
     agrees("percent-of-count", "count 12 n 34 percent 35.3");
     open("percent-of-count", "n 12 percent 35.3 ^N 40");
     conflicts("percent-of-count", "count 100 N 90 percent 111");
+    agrees("percent-of-count", "count 34 percent 38 n 90");
+    conflicts("percent-of-count", "count 34 percent 83 n 90");
     solutions_hold("percent-of-count", "count 34 N 90 percent 38");
 }

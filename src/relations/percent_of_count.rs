@@ -33,6 +33,12 @@ pub fn ties(case: &Case) -> Vec<Tie> {
             && before.is_none()
             && case.all("percent").len() == 1)
             .then_some((percent + 1, percent + 2));
+        // The percentage in between, as in 34 (38%) of 90.
+        let around = percent
+            .checked_sub(1)
+            .filter(|i| symbol(*i) == "count" && before.is_none())
+            .filter(|_| percent + 1 < case.quantities.len() && total(percent + 1) && case.own(percent + 1))
+            .map(|i| (i, percent + 1));
         // A count (or n) alone before it: the total is borrowed.
         let alone = percent
             .checked_sub(1)
@@ -43,7 +49,7 @@ pub fn ties(case: &Case) -> Vec<Tie> {
                     .find(|j| symbol(*j) == "N" && !case.own(*j))?;
                 Some((i, whole))
             });
-        let Some((count, whole)) = before.or(after).or(alone) else {
+        let Some((count, whole)) = before.or(after).or(around).or(alone) else {
             continue;
         };
         let whole_numbers = [count, whole]
