@@ -192,7 +192,8 @@ impl Manuscript {
         Place {
             page: mark.and_then(|m| m.page),
             section: block.section.map(|s| self.sections[s].title.clone()),
-            paragraph: Some(block.paragraph),
+            // A table may stand before the first paragraph.
+            paragraph: (block.paragraph > 0).then_some(block.paragraph),
             line: mark.and_then(|m| m.line),
             table: cell.map(|(table, _, index)| {
                 table

@@ -51,7 +51,12 @@ pub fn ties(case: &Case) -> Vec<Tie> {
         }
         let welch = !known && case.mention("welch", Reach::Paragraph).is_some();
         let fractional = welch || degrees.low != degrees.high || degrees.low.fract() != 0.0;
-        ties.push(case.tie(parts, variants(root, corrected, known, fractional)));
+        let mut variants = variants(root, corrected, known, fractional);
+        if case.mention("glass", Reach::Sentence).is_some() {
+            let reason = "Glass's Δ is standardised by the SD of one group, which t does not give";
+            variants.push(Variant::new(&[], Anything).left_open(reason));
+        }
+        ties.push(case.tie(parts, variants));
     }
     ties
 }
