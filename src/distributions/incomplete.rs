@@ -66,6 +66,38 @@ pub(super) fn beta(a: f64, b: f64, x: f64, y: f64) -> f64 {
     beta_fraction(a, b, x, y)
 }
 
+/// A continued fraction on its way, by Lentz's method as modified by Thompson and Barnett (1986).
+struct Fraction {
+    value: f64,
+    c: f64,
+    d: f64,
+}
+
+impl Fraction {
+    /// The fraction that is only its first term.
+    fn new(first: f64) -> Fraction {
+        let value = not_zero(first);
+        Fraction {
+            value,
+            c: value,
+            d: 0.0,
+        }
+    }
+
+    /// Takes in the next pair of terms; true once that changes nothing any more.
+    fn step(&mut self, above: f64, below: f64) -> bool {
+        self.d = 1.0 / not_zero(below + above * self.d);
+        self.c = not_zero(below + above / self.c);
+        let change = self.c * self.d;
+        self.value *= change;
+        (change - 1.0).abs() < SETTLED
+    }
+}
+
+fn not_zero(x: f64) -> f64 {
+    if x == 0.0 { TINY } else { x }
+}
+
 /// I_x(a, b) by the continued fraction, for x not above the mean a/(a + b).
 fn beta_fraction(a: f64, b: f64, x: f64, y: f64) -> f64 {
     let n = a + b;
@@ -76,32 +108,17 @@ fn beta_fraction(a: f64, b: f64, x: f64, y: f64) -> f64 {
         return 0.0;
     }
     let middle = a * y - b * x + 1.0;
-    let mut f = a * middle / (a + 1.0);
-    if f == 0.0 {
-        f = TINY;
-    }
-    let (mut c, mut d) = (f, 0.0);
+    let mut fraction = Fraction::new(a * middle / (a + 1.0));
     for step in 1..MOST_STEPS {
         let m = step as f64;
         let odd = a + 2.0 * m - 1.0;
         let above = (a + m - 1.0) / odd * (n + m - 1.0) / odd * m * (b - m) * x * x;
         let below = m + m * (b - m) * x / odd + (a + m) / (a + 2.0 * m + 1.0) * (middle + m * (1.0 + y));
-        d = below + above * d;
-        if d == 0.0 {
-            d = TINY;
-        }
-        c = below + above / c;
-        if c == 0.0 {
-            c = TINY;
-        }
-        d = 1.0 / d;
-        let change = c * d;
-        f *= change;
-        if (change - 1.0).abs() < SETTLED {
+        if fraction.step(above, below) {
             break;
         }
     }
-    (front / f).clamp(0.0, 1.0)
+    (front / fraction.value).clamp(0.0, 1.0)
 }
 
 /// Upper regularised incomplete gamma function Q(a, x) for a > 0, x ≥ 0, with the same promise.
@@ -129,28 +146,16 @@ pub(super) fn gamma_upper(a: f64, x: f64) -> f64 {
         return 0.0;
     }
     let mut below = x + 1.0 - a;
-    let mut f = if below == 0.0 { TINY } else { below };
-    let (mut c, mut d) = (f, 0.0);
+    let mut fraction = Fraction::new(below);
     for step in 1..MOST_STEPS {
         let m = step as f64;
         let above = -m * (m - a);
         below += 2.0;
-        d = below + above * d;
-        if d == 0.0 {
-            d = TINY;
-        }
-        c = below + above / c;
-        if c == 0.0 {
-            c = TINY;
-        }
-        d = 1.0 / d;
-        let change = c * d;
-        f *= change;
-        if (change - 1.0).abs() < SETTLED {
+        if fraction.step(above, below) {
             break;
         }
     }
-    (front * a / f).clamp(0.0, 1.0)
+    (front * a / fraction.value).clamp(0.0, 1.0)
 }
 
 #[cfg(test)]

@@ -19,42 +19,48 @@ pub fn finding(
     let parts: Vec<&Quantity> = tie.parts.iter().map(|i| &case.quantities[*i]).collect();
     let values: Vec<Interval> = parts.iter().map(|q| q.interval).collect();
     let mut assumes: Vec<String> = parts.iter().filter_map(|q| q.borrowed.clone()).collect();
-    let mut expected: Set = Vec::new();
-    let mut found_repairs = Vec::new();
-    let mut reason = tie.open.clone();
-    let verdict = if tie.open.is_some() {
-        Verdict::Open
-    } else {
-        let fits = |only_open: bool| {
-            tie.variants
-                .iter()
-                .find(|v| v.only_open.is_some() == only_open && v.law.holds(&values))
-        };
-        let main = tie.variants.first();
-        expected = main.map(|v| v.law.solve(0, &values)).unwrap_or_default();
-        match (fits(false), fits(true)) {
-            (Some(variant), _) => {
-                assumes.extend(variant.assumes.iter().cloned());
-                expected = variant.law.solve(0, &values);
-                Verdict::Agrees
-            }
-            (None, Some(variant)) => {
-                assumes.extend(variant.assumes.iter().cloned());
-                reason = variant.only_open.clone();
-                Verdict::Open
-            }
-            (None, None) => {
-                assumes.extend(main.iter().flat_map(|v| v.assumes.iter().cloned()));
-                found_repairs = repairs::repairs(tie, &parts, &values);
-                let borrowed = parts.iter().any(|q| q.borrowed.is_some());
-                if !borrowed && reverses(tie, &parts, &values, case.alpha) {
-                    Verdict::Reverses
-                } else {
-                    Verdict::Conflicts
-                }
-            }
-        }
+    let fits = |only_open: bool| {
+        let mut alike = tie.variants.iter().filter(|v| v.only_open.is_some() == only_open);
+        alike.find(|v| v.law.holds(&values))
     };
+    // The variant that is shown: the first that fits, otherwise the first of all.
+    let (verdict, variant) = if tie.open.is_some() {
+        (Verdict::Open, None)
+    } else if let Some(variant) = fits(false) {
+        (Verdict::Agrees, Some(variant))
+    } else if let Some(variant) = fits(true) {
+        (Verdict::Open, Some(variant))
+    } else {
+        let borrowed = parts.iter().any(|q| q.borrowed.is_some());
+        let turns = !borrowed && reverses(tie, &parts, &values, case.alpha);
+        (
+            if turns {
+                Verdict::Reverses
+            } else {
+                Verdict::Conflicts
+            },
+            tie.variants.first(),
+        )
+    };
+    let found_repairs = match verdict {
+        Verdict::Conflicts | Verdict::Reverses => repairs::repairs(tie, &parts, &values),
+        _ => Vec::new(),
+    };
+    let reason = tie.open.as_ref().or(match verdict {
+        Verdict::Open => variant.and_then(|v| v.only_open.as_ref()),
+        _ => None,
+    });
+    // What follows is shown by the main form of the law, unless another form is the one that agrees.
+    let shown_by = if verdict == Verdict::Agrees {
+        variant
+    } else {
+        tie.variants.first()
+    };
+    let expected: Set = match tie.open {
+        Some(_) => Vec::new(),
+        None => shown_by.map(|v| v.law.solve(0, &values)).unwrap_or_default(),
+    };
+    assumes.extend(variant.iter().flat_map(|v| v.assumes.iter().cloned()));
     assumes.extend(tie.remarks.iter().cloned());
     let mut seen = HashSet::new();
     assumes.retain(|a| seen.insert(a.clone()));
@@ -78,7 +84,7 @@ pub fn finding(
             .collect(),
         expected: target
             .zip(shown)
-            .map(|(q, [low, high])| (q.symbol, [low, high]))
+            .map(|(q, ends)| (q.symbol, ends))
             .into_iter()
             .collect(),
         says: wording::says(
@@ -86,7 +92,7 @@ pub fn finding(
             &parts,
             &expected,
             shown,
-            reason.as_deref(),
+            reason.map(String::as_str),
             &assumes,
             case.alpha,
         ),

@@ -1,6 +1,6 @@
 //! Which words that matter stand near a statement.
 
-use crate::manuscript::{Block, BlockKind, Manuscript, Part};
+use crate::manuscript::{Block, Manuscript};
 use crate::relations::{Mention, Reach};
 use crate::statements::{Grammar, Quantity, Statement};
 use std::collections::HashMap;
@@ -70,7 +70,7 @@ impl<'a> Mentions<'a> {
                 .blocks
                 .get(block)
                 .is_some_and(|b| b.range.contains(&range.start));
-            if inside && speaks(&manuscript.blocks[block]) {
+            if inside && manuscript.blocks[block].is_authors_own() {
                 while results.get(result).is_some_and(|s| s.sentence.end < range.start) {
                     result += 1;
                 }
@@ -178,6 +178,14 @@ impl<'a> Mentions<'a> {
         }
     }
 
+    /// A number in digits or in words.
+    fn number(&self, text: &str) -> Option<f64> {
+        self.grammar
+            .number_word(text)
+            .map(f64::from)
+            .or_else(|| text.parse().ok())
+    }
+
     fn patterns(&self, statement: &Statement, home: &Block, near: &mut Vec<Mention>) {
         for (meaning, expressions) in &self.grammar.patterns {
             if *meaning == "alpha" {
@@ -205,30 +213,13 @@ impl<'a> Mentions<'a> {
                         .iter()
                         .skip(1)
                         .flatten()
-                        .filter_map(|g| number(g.as_str()))
+                        .filter_map(|g| self.number(g.as_str()))
                         .collect(),
                     reach,
                     paragraph: home.paragraph,
                 });
             }
         }
-    }
-}
-
-/// Words in reference lists and headings of the back matter say nothing about the results.
-fn speaks(block: &Block) -> bool {
-    matches!(block.part, Part::Abstract | Part::Body) && block.kind != BlockKind::Quote
-}
-
-/// A number in digits or in words.
-fn number(text: &str) -> Option<f64> {
-    const WORDS: [&str; 13] = [
-        "zero", "one", "two", "three", "four", "five", "six", "seven", "eight", "nine", "ten", "eleven",
-        "twelve",
-    ];
-    match WORDS.iter().position(|w| text.eq_ignore_ascii_case(w)) {
-        Some(n) => Some(n as f64),
-        None => text.parse().ok(),
     }
 }
 
@@ -242,7 +233,7 @@ const ASIDE: usize = 160;
 pub fn stated_alpha(manuscript: &Manuscript, grammar: &Grammar) -> Option<f64> {
     let (_, expressions) = grammar.patterns.iter().find(|(meaning, _)| *meaning == "alpha")?;
     let mut stated: Option<f64> = None;
-    for block in manuscript.blocks.iter().filter(|b| speaks(b)) {
+    for block in manuscript.blocks.iter().filter(|b| b.is_authors_own()) {
         let text = manuscript.block_text(block);
         // A level is printed as .05, .01, .1 …; most paragraphs hold nothing like it.
         let level = |part: &str| memchr::memmem::find(text.as_bytes(), part.as_bytes()).is_some();

@@ -2,7 +2,7 @@
 
 use super::finding::Verdict;
 use crate::numbers::Set;
-use crate::statements::{Quantity, in_print};
+use crate::statements::{Quantity, in_print, list};
 
 /// Says what was found, why, and on which condition.
 pub fn says(
@@ -87,14 +87,6 @@ pub fn claim(q: &Quantity) -> String {
         format!("{} {}", q.comparator.sign(), q.printed)
     } else {
         format!("= {}", q.printed)
-    }
-}
-
-fn list(items: &[String]) -> String {
-    match items {
-        [] => String::new(),
-        [one] => one.clone(),
-        [rest @ .., last] => format!("{} and {last}", rest.join(", ")),
     }
 }
 

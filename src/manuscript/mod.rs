@@ -101,6 +101,14 @@ pub struct Block {
     pub cell: Option<CellAt>,
 }
 
+impl Block {
+    /// Whether the authors themselves say here what they found: the abstract and the body, without
+    /// words quoted from elsewhere.
+    pub fn is_authors_own(&self) -> bool {
+        matches!(self.part, Part::Abstract | Part::Body) && self.kind != BlockKind::Quote
+    }
+}
+
 /// A heading and its depth, in document order.
 #[derive(Clone, Debug)]
 pub struct Section {

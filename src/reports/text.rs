@@ -2,10 +2,10 @@
 //! in, what follows from the rest of the numbers and what would make them agree.
 
 use super::excerpt::{self, columns, paragraph};
-use super::words::{count, follows, list};
+use super::words::{count, follows};
 use super::{Entry, Report, Show, Tally, harmless};
 use crate::judge::{Counts, Document, Finding, Verdict};
-use crate::statements::in_print;
+use crate::statements::{in_print, list};
 use std::ops::Range;
 
 /// Room to the left of everything that belongs to a finding.

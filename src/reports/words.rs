@@ -9,15 +9,6 @@ pub fn count(n: usize, one: &str, many: &str) -> String {
     format!("{n} {}", if n == 1 { one } else { many })
 }
 
-/// A list as in a sentence: `a`, `a and b`, `a, b and c`.
-pub fn list(items: &[String]) -> String {
-    match items {
-        [] => String::new(),
-        [one] => one.clone(),
-        [most @ .., last] => format!("{} and {last}", most.join(", ")),
-    }
-}
-
 /// What follows for one quantity from the rest, e.g. `p = .0358 to .0367`. `quantity` is the one
 /// that was printed, if it is known.
 pub fn follows(finding: &Finding, name: &str, range: [f64; 2], quantity: Option<&Quantity>) -> String {
@@ -138,6 +129,7 @@ fn manner(shown: String, like: &str) -> String {
 mod tests {
     use super::super::samples;
     use super::*;
+    use crate::statements::list;
 
     fn shown(verdict: Verdict, comparator: &str, printed: &str, range: [f64; 2]) -> String {
         let mut finding = samples::finding(verdict);

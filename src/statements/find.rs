@@ -4,7 +4,7 @@ use super::grammar::{Class, Grammar};
 use super::lists::List;
 use super::tokens::{self, Token};
 use super::{Scan, Statement, values};
-use crate::manuscript::{Block, BlockKind, Manuscript, Part};
+use crate::manuscript::{BlockKind, Manuscript};
 use std::ops::Range;
 
 /// Finds the statements of the abstract and the body.
@@ -15,7 +15,7 @@ pub fn find(manuscript: &Manuscript, grammar: &Grammar, alpha: f64) -> Vec<State
     let mut tokens: Vec<Token> = Vec::new();
     let mut statements = Vec::new();
     for (index, block) in manuscript.blocks.iter().enumerate() {
-        if !holds_results(block) || !may_hold_results(grammar, &text.as_bytes()[block.range.clone()]) {
+        if !block.is_authors_own() || !may_hold_results(grammar, &text.as_bytes()[block.range.clone()]) {
             continue;
         }
         tokens.clear();
@@ -36,10 +36,6 @@ pub fn find(manuscript: &Manuscript, grammar: &Grammar, alpha: f64) -> Vec<State
         statement.id = i + 1;
     }
     statements
-}
-
-fn holds_results(block: &Block) -> bool {
-    matches!(block.part, Part::Abstract | Part::Body) && block.kind != BlockKind::Quote
 }
 
 /// A quick look: where none of these marks and words stands there is no result.

@@ -182,6 +182,17 @@ impl Grammar {
         Some(interval.around)
     }
 
+    /// The number that a word stands for, in any capitals: 9 for `nine`.
+    pub fn number_word(&self, word: &str) -> Option<u32> {
+        if !self.number_words.may_be(word) {
+            return None;
+        }
+        self.numbers
+            .iter()
+            .find(|(w, _)| w.eq_ignore_ascii_case(word))
+            .map(|(_, number)| *number)
+    }
+
     /// Whether a symbol, the name of an interval or a number in words may begin with this word.
     pub(super) fn may_begin(&self, word: &str) -> bool {
         self.beginnings.may_be(word)

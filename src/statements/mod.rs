@@ -31,7 +31,7 @@ mod values;
 
 pub use find::find;
 pub use grammar::Grammar;
-pub use print::in_print;
+pub use print::{in_print, list};
 
 use crate::numbers::{Comparator, Decimal, Interval};
 use std::cell::OnceCell;

@@ -1,4 +1,4 @@
-//! Symbols as they stand in print, for sentences that people read.
+//! Symbols and lists as they stand in print, for sentences that people read.
 
 /// A symbol as it is written in print: `χ²` for `chi2`.
 pub fn in_print(symbol: &str) -> &str {
@@ -30,5 +30,14 @@ pub fn in_print(symbol: &str) -> &str {
         "percent" => "percentage",
         "est" => "estimate",
         other => other,
+    }
+}
+
+/// A list as in a sentence: `a`, `a and b`, `a, b and c`.
+pub fn list(items: &[String]) -> String {
+    match items {
+        [] => String::new(),
+        [one] => one.clone(),
+        [most @ .., last] => format!("{} and {last}", most.join(", ")),
     }
 }

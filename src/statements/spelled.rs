@@ -7,12 +7,7 @@ use crate::numbers::Decimal;
 impl Scan<'_> {
     /// The number written out at token `at`.
     pub(super) fn spelled_out(&self, at: usize) -> Option<Value> {
-        let known = |i: usize| {
-            let word = self.word(i).filter(|w| self.grammar.number_words.may_be(w))?;
-            let mut numbers = self.grammar.numbers.iter();
-            let (_, number) = numbers.find(|(w, _)| w.eq_ignore_ascii_case(word))?;
-            Some(*number)
-        };
+        let known = |i: usize| self.grammar.number_word(self.word(i)?);
         let first = known(at)?;
         let tens = first >= 20 && first % 10 == 0;
         let hyphen = tens && matches!(self.mark(at + 1), Some("-" | "–"));
