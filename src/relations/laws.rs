@@ -176,14 +176,23 @@ impl Law for Adjusted {
                 .into_iter()
                 .collect();
         }
-        let mut values = values.to_vec();
-        values[0].low = 0.0;
-        if values[0].high < 0.0 {
-            return Set::new();
-        }
-        self.0.solve(target, &values)
+        with_smaller_p(&*self.0, target, values)
     }
 }
+
+/// All values of a part other than p for which the law gives the printed p or a smaller one, which a
+/// correction can have raised.
+fn with_smaller_p(law: &dyn Law, target: usize, values: &[Interval]) -> Set {
+    let mut values = values.to_vec();
+    values[0].low = 0.0;
+    if values[0].high < 0.0 {
+        return Set::new();
+    }
+    law.solve(target, &values)
+}
+
+/// For more tests than this a correction is taken to give any larger p.
+const MOST_TESTS: f64 = 200.0;
 
 /// p as the Bonferroni or Šidák correction for some number k of tests makes it of the one that a law
 /// gives: min(1, k·p) or 1 − (1 − p)^k.
@@ -193,25 +202,18 @@ impl Law for Multiplied {
     fn solve(&self, target: usize, values: &[Interval]) -> Set {
         if target > 0 {
             // An enclosure is enough here: it only serves repairs.
-            let mut values = values.to_vec();
-            values[0].low = 0.0;
-            return if values[0].high < 0.0 {
-                Set::new()
-            } else {
-                self.0.solve(target, &values)
-            };
+            return with_smaller_p(&*self.0, target, values);
         }
         let Some(raw) = self.0.solve(0, values).first().copied() else {
             return Set::new();
         };
+        let sidak = |k: f64| -(k * (-raw.low.min(1.0)).ln_1p()).exp_m1();
         let mut set = Set::new();
         let mut k = 1.0;
         loop {
-            let low = -(k * (-raw.low.min(1.0)).ln_1p()).exp_m1();
-            let high = (k * raw.high).min(1.0);
+            let (low, high) = (sidak(k), (k * raw.high).min(1.0));
             // From here on the multiples run into each other, or p is 1.
-            let next = -((k + 1.0) * (-raw.low.min(1.0)).ln_1p()).exp_m1();
-            if high >= 1.0 || next <= high || k > 200.0 {
+            if high >= 1.0 || sidak(k + 1.0) <= high || k > MOST_TESTS {
                 set.push(Interval { low, high: 1.0 }.widen(ACCURACY));
                 return set;
             }

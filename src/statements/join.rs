@@ -140,16 +140,15 @@ impl Scan<'_> {
         if item.plural && self.shared(&item, drafts) {
             return;
         }
-        let compared = item.class == Class::Interval && self.two_means(drafts);
+        if item.class == Class::Interval && self.two_means(drafts) {
+            drafts.push(Draft { items: vec![item] });
+            return;
+        }
         let Some(last) = drafts.last_mut() else {
             drafts.push(Draft { items: vec![item] });
             return;
         };
         let gap = self.gap(last.token_end(), item.tokens.start);
-        if compared {
-            drafts.push(Draft { items: vec![item] });
-            return;
-        }
         // A second p, or a second interval, takes with it the estimate it belongs to.
         let repeated = match item.class {
             Class::P | Class::Interval => last.has(item_key(&item)),

@@ -41,28 +41,17 @@ impl Scan<'_> {
             return self.bracketed_percent(at);
         }
         match self.grammar.named(item.symbol()).and_then(|s| s.bracket) {
-            _ if item.class == Class::Ratio => self.bracketed_ends(item, "CI_low", "CI_high", false),
+            _ if item.class == Class::Ratio => self.ends_behind(item, at, "CI_low", "CI_high", false),
             Some(Bracket::Quartiles) if self.near("medians") => {
-                self.bracketed_ends(item, "IQR_low", "IQR_high", true)
+                self.ends_behind(item, at, "IQR_low", "IQR_high", true)
             }
-            Some(Bracket::Quartiles) => self.bracketed_ends(item, "range_low", "range_high", true),
+            Some(Bracket::Quartiles) => self.ends_behind(item, at, "range_low", "range_high", true),
             Some(Bracket::Spread) => self.bracketed_spread(at),
             None => None,
         }
     }
 
-    /// `(1.10–2.11)` behind an item. `inside`: its number must lie between the ends.
-    fn bracketed_ends(
-        &self,
-        item: &Item,
-        low_name: &'static str,
-        high_name: &'static str,
-        inside: bool,
-    ) -> Option<Item> {
-        self.ends_behind(item, item.tokens.end, low_name, high_name, inside)
-    }
-
-    /// The same with the bracket at token `at`.
+    /// `(1.10–2.11)` at token `at`, behind an item. `inside`: its number must lie between the ends.
     fn ends_behind(
         &self,
         item: &Item,
