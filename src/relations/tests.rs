@@ -256,6 +256,47 @@ fn comparators_and_zeros() {
 }
 
 #[test]
+fn corrections_excuse_only_what_they_can_make_of_p() {
+    // t(28) = 2.20 has p = .0362 (SciPy 1.17), so .072 is twice and .109 three times as much; no
+    // whole multiple, and no 1 − (1 − p)^k, prints as .090.
+    let bonferroni = |reach| [mention("bonferroni", "Bonferroni", reach, &[])];
+    for (p, fits) in [
+        (".072", true),
+        (".109", true),
+        (".105", true),
+        (".090", false),
+        (".012", false),
+    ] {
+        let text = format!("t 2.20 df 28 p {p}");
+        let agrees = matches!(
+            outcome("p-from-t", &text, &bonferroni(Reach::Paragraph)),
+            Outcome::Agrees(_)
+        );
+        assert_eq!(agrees, fits, "{text}");
+        let far = outcome("p-from-t", &text, &bonferroni(Reach::Document));
+        assert_eq!(matches!(far, Outcome::Open(_)), fits, "{text}");
+    }
+    // Tukey's method is for pairs: it raises the p of t and of F with one df, not of F with more.
+    let pairs = [mention("adjusted-pairs", "Tukey", Reach::Document, &[])];
+    for (text, fits) in [
+        ("t 2.20 df 28 p .090", true),
+        ("F 4.84 df1 1 df2 28 p .090", true),
+        ("F 4.84 df1 2 df2 28 p .090", false),
+    ] {
+        let relation = if text.starts_with('t') {
+            "p-from-t"
+        } else {
+            "p-from-f"
+        };
+        assert_eq!(
+            matches!(outcome(relation, text, &pairs), Outcome::Open(_)),
+            fits,
+            "{text}"
+        );
+    }
+}
+
+#[test]
 fn words_around_a_result_open_other_ways() {
     let one = |reach| [mention("one-sided", "one-tailed", reach, &[])];
     let half = "t 2.20 df 28 p .018";
