@@ -245,7 +245,7 @@ fn pages_without_text_are_named() {
     let error = read(&pdf(std::slice::from_ref(&image), "")).expect_err("nothing to read");
     assert_eq!(
         error.0,
-        "has no text layer (page images only): run text recognition on it first"
+        "has no text layer on page 1 (page images only): run text recognition on it first"
     );
     let m = read(&pdf(&[content(&[at(50.0, 700.0, "Seen.")]), image], "")).expect("the sample is a PDF");
     assert_eq!(
