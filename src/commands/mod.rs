@@ -1,6 +1,7 @@
 //! A *command* is one thing that tieout can be asked to do. This room turns what was typed into
 //! work for the other rooms and their results into output and an exit status.
 
+mod boxes;
 mod check;
 mod explain;
 mod guard;
@@ -46,6 +47,8 @@ enum Command {
     Try(try_text::Try),
     /// List the relations, or explain one: formula, assumptions, cautions, source
     Explain(explain::Explain),
+    #[command(hide = true)]
+    Boxes(boxes::Boxes),
     /// The process of its own in which difficult PDFs are read; called by the reader, never by hand
     #[command(name = "worker-pdf", hide = true)]
     WorkerPdf,
@@ -58,6 +61,7 @@ impl Cli {
             Command::Check(check) => check.run(),
             Command::Try(try_text) => try_text.run(),
             Command::Explain(explain) => explain.run(),
+            Command::Boxes(boxes) => boxes.run(),
             Command::WorkerPdf => return crate::readers::pdf::worker::run(),
         };
         match done {

@@ -4,15 +4,19 @@
 //! Every call of the engine is counted, and beyond [`Limits`] the page is given up by unwinding
 //! through the engine, which has no other way to be stopped.
 
-use super::glyphs::{FontUse, Glyph, Glyphs, Meaning, PageGlyphs, Shape, Step, Turn};
+use super::glyphs::{Area, FontUse, Glyph, Glyphs, Meaning, PageGlyphs, Shape, Step, Turn};
 use super::nesting::Forms;
+use super::replaced;
 use hayro_interpret::font::{Glyph as Drawn, GlyphIdentifier, GlyphRun};
 use hayro_interpret::hayro_cmap::BfString;
-use hayro_interpret::kurbo::{Affine, BezPath, PathEl, Point, Shape as _};
+use hayro_interpret::kurbo::{Affine, BezPath, PathEl, Point, Rect, Shape as _};
 use hayro_interpret::{
     BlendMode, ClipPath, Context, Device, DrawMode, DrawProps, Image, ImageDrawProps, InterpreterCache,
     InterpreterSettings, RenderContent, SoftMask, TransformExt, interpret_page,
 };
+use hayro_syntax::object::Dict;
+use hayro_syntax::object::dict::keys::{ACTUAL_TEXT, USER_UNIT};
+use hayro_syntax::page::Page;
 use hayro_syntax::{DecryptionError, LoadPdfError, Pdf};
 use std::collections::HashMap;
 use std::hash::{Hash, Hasher};
@@ -79,7 +83,9 @@ pub fn glyphs(bytes: Vec<u8>, limits: Limits) -> Result<Glyphs, Refusal> {
             taker.out.left_out += all.len().min(limits.pages) - index;
             break;
         }
+        let unit = unit(page);
         let (width, height) = page.render_dimensions();
+        let (width, height) = (width * unit, height * unit);
         taker.start_page(index as u32 + 1, width, height);
         if forms.drawn_on(page) > limits.forms_per_page {
             taker.page.cut_short = true;
@@ -88,8 +94,8 @@ pub fn glyphs(bytes: Vec<u8>, limits: Limits) -> Result<Glyphs, Refusal> {
         }
         let done = catch_unwind(AssertUnwindSafe(|| {
             let mut context = Context::new(
-                page.initial_transform(true).to_kurbo(),
-                hayro_interpret::kurbo::Rect::new(0.0, 0.0, width as f64, height as f64),
+                Affine::scale(f64::from(unit)) * page.initial_transform(true).to_kurbo(),
+                Rect::new(0.0, 0.0, width as f64, height as f64),
                 &cache,
                 page.xref(),
                 settings.clone(),
@@ -107,6 +113,12 @@ pub fn glyphs(bytes: Vec<u8>, limits: Limits) -> Result<Glyphs, Refusal> {
     Ok(taker.out)
 }
 
+/// How many points a step of the page's own coordinates takes; pages wider than five metres need it.
+fn unit(page: &Page<'_>) -> f32 {
+    let unit = page.raw().get::<f32>(USER_UNIT).unwrap_or(1.0);
+    if unit.is_finite() { unit.clamp(0.1, 1000.0) } else { 1.0 }
+}
+
 /// The payload with which a page is given up.
 struct Enough;
 
@@ -118,7 +130,15 @@ struct Taker {
     end: Instant,
     fonts: HashMap<u128, u16>,
     shapes: HashMap<GlyphIdentifier, u32>,
+    /// The open stretches of marked content: the first glyph and the text it stands for, if the file
+    /// says so.
+    marked: Vec<Option<(usize, String)>>,
+    /// How many more are open than are followed.
+    unmarked: usize,
 }
+
+/// Marked content inside marked content is not followed any deeper.
+const DEEPEST_MARKS: usize = 64;
 
 impl Taker {
     fn new(limits: Limits, end: Instant) -> Taker {
@@ -130,11 +150,15 @@ impl Taker {
             end,
             fonts: HashMap::new(),
             shapes: HashMap::new(),
+            marked: Vec::new(),
+            unmarked: 0,
         }
     }
 
     fn start_page(&mut self, number: u32, width: f32, height: f32) {
         self.calls = 0;
+        self.marked.clear();
+        self.unmarked = 0;
         self.page = PageGlyphs {
             number,
             width,
@@ -194,10 +218,12 @@ impl Taker {
             return;
         }
         // Fonts that are not embedded are stretched; where the next glyph begins is then the truth.
+        let mut stretch = 1.0;
         if let Some(next) = next {
             let (whole, part) = ((end - origin).hypot(), (next - origin).dot(along) / along.hypot());
             if part > 0.3 * whole && part < 0.95 * whole {
                 end = origin + along * (part / along.hypot());
+                stretch = part / whole;
             }
         }
         let unit = along / along.hypot();
@@ -218,7 +244,16 @@ impl Taker {
         let to = |p: Point| turn.to_reading((p.x as f32, p.y as f32), (width, height));
         let (x0, baseline) = to(origin);
         let (x1, _) = to(end);
-        self.page.glyphs.push(Glyph {
+        let bounds = shape.and_then(|s| drawn_bounds(&self.out.shapes[s as usize]));
+        let ink = bounds.map(|bounds| {
+            let bounds = (place * Affine::scale_non_uniform(stretch, 1.0)).transform_rect_bbox(bounds);
+            let (a, b) = (
+                to(Point::new(bounds.x0, bounds.y0)),
+                to(Point::new(bounds.x1, bounds.y1)),
+            );
+            [a.0.min(b.0), a.1.min(b.1), a.0.max(b.0), a.1.max(b.1)]
+        });
+        let mut glyph = Glyph {
             meaning: meaning(glyph),
             code: glyph.char_code(),
             font,
@@ -227,9 +262,24 @@ impl Taker {
             x0: x0.min(x1),
             x1: x0.max(x1),
             baseline,
+            ink: Area::default(),
             turn,
-        });
+        };
+        if ink.is_none() && shape.is_some() && glyph.meaning == Meaning::Char('\u{ad}') {
+            // Where a word may be broken and is not.
+            return;
+        }
+        glyph.ink = ink.unwrap_or_else(|| glyph.area());
+        self.page.glyphs.push(glyph);
     }
+}
+
+/// What a shape covers, if it is drawn at all and no larger than glyphs are.
+fn drawn_bounds(shape: &Shape) -> Option<Rect> {
+    let [x0, y0, x1, y1] = shape.bounds.map(f64::from);
+    let usual = |v: f64| (-3000.0..=3000.0).contains(&v);
+    (shape.bounds.iter().all(|v| usual(f64::from(*v))) && x1 > x0 && y1 > y0)
+        .then(|| Rect::new(x0, y0, x1, y1))
 }
 
 /// What the text layer says. Bitmap fonts and Type 1 fonts with home-made glyph names often say
@@ -331,7 +381,24 @@ impl<'a> Device<'a> for Taker {
 
     fn pop_transparency_group(&mut self) {}
 
-    fn begin_marked_content(&mut self, _: &[u8], _: Option<&hayro_syntax::object::Dict<'_>>) {
+    fn begin_marked_content(&mut self, _: &[u8], properties: Option<&Dict<'_>>) {
         self.count(1);
+        let actual = properties
+            .and_then(|p| p.get::<hayro_syntax::object::String<'_>>(ACTUAL_TEXT))
+            .map(|s| replaced::text(s.as_bytes()));
+        if self.marked.len() < DEEPEST_MARKS {
+            self.marked
+                .push(actual.map(|text| (self.page.glyphs.len(), text)));
+        } else {
+            self.unmarked += 1;
+        }
+    }
+
+    fn end_marked_content(&mut self) {
+        if self.unmarked > 0 {
+            self.unmarked -= 1;
+        } else if let Some(Some((from, text))) = self.marked.pop() {
+            replaced::replace(&mut self.page.glyphs, from, &text);
+        }
     }
 }

@@ -15,6 +15,8 @@ pub enum Shift {
 #[derive(Clone, Debug, PartialEq)]
 pub struct Word {
     pub parts: Vec<(Shift, String)>,
+    /// Where its characters are drawn.
+    pub inks: Vec<Ink>,
     /// On the page as read (see [`Turn`](super::glyphs::Turn)).
     pub area: Area,
     /// A gap as wide as between cells or columns stands before it.
@@ -23,7 +25,36 @@ pub struct Word {
     pub bold: bool,
 }
 
+/// Where the characters from the end of the ink before up to this byte of the word's text are drawn.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub struct Ink {
+    pub end: u32,
+    /// On the page as shown.
+    pub area: Area,
+}
+
 impl Word {
+    fn len(&self) -> usize {
+        self.parts.iter().map(|p| p.1.len()).sum()
+    }
+
+    /// The text has grown by what is drawn here.
+    fn ink(&mut self, area: Area) {
+        let end = self.len() as u32;
+        self.inks.push(Ink { end, area });
+    }
+
+    /// The last character has been changed by what is drawn here.
+    fn ink_again(&mut self, area: Area) {
+        let end = self.len() as u32;
+        if let Some(last) = self.inks.last_mut() {
+            *last = Ink {
+                end,
+                area: union(last.area, area),
+            };
+        }
+    }
+
     pub fn text(&self) -> String {
         self.parts.iter().map(|(_, t)| t.as_str()).collect()
     }
@@ -140,24 +171,33 @@ fn piece_words(
     words: &mut Vec<Word>,
 ) {
     let mut last: Option<&Glyph> = None;
+    // Where the pen goes on; behind a stack, at the end of its wider part.
+    let mut pen = f32::MIN;
     let mut fresh = true;
     let mut first = true;
-    for g in piece.glyphs.iter().map(|g| &page.glyphs[*g as usize]) {
+    let order = unstacked(&piece.glyphs, baseline, size, page);
+    for g in order.iter().map(|g| &page.glyphs[*g as usize]) {
         if g.meaning.is_space() {
             fresh = true;
             continue;
         }
         if let Some(l) = last {
-            fresh |= g.x0 - l.x1 > WORD_GAP * l.size.max(g.size);
+            fresh |= g.x0 - pen > WORD_GAP * l.size.max(g.size);
         }
         let before = last;
         last = Some(g);
         let shift = shift_of(g, baseline, size);
+        pen = if shift == Shift::None || fresh {
+            g.x1
+        } else {
+            pen.max(g.x1)
+        };
         let bold = glyphs.fonts[g.font as usize].bold;
         let new = fresh || first || words.is_empty();
         if new {
             words.push(Word {
                 parts: Vec::new(),
+                inks: Vec::new(),
                 area: g.area(),
                 after_gap: first && !words.is_empty(),
                 bold,
@@ -167,11 +207,13 @@ fn piece_words(
         first = false;
         let Some(word) = words.last_mut() else { continue };
         word.area = union(word.area, g.area());
+        let ink = g.turn.area_to_page(g.ink, (page.width, page.height));
         if let (Meaning::Char(c), Some(l)) = (&g.meaning, before)
             && !new
             && let Some((_, text)) = word.parts.last_mut()
             && accented(l, g, *c, text)
         {
+            word.ink_again(ink);
             continue;
         }
         match word.parts.last_mut() {
@@ -182,7 +224,61 @@ fn piece_words(
                 word.parts.push((shift, text));
             }
         }
+        word.ink(ink);
     }
+}
+
+/// The glyphs with raised and lowered marks that stand above one another in one order, whichever
+/// was drawn first: an exponent comes before the numbers of an index (`χ²₁₇`) but behind a letter
+/// (`ηp²`), and other raised marks come last (`t₂₈*`).
+fn unstacked(order: &[u32], baseline: f32, size: f32, page: &PageGlyphs) -> Vec<u32> {
+    let glyph = |i: u32| &page.glyphs[i as usize];
+    let shift = |i: u32| {
+        let g = glyph(i);
+        (!g.meaning.is_space()).then(|| shift_of(g, baseline, size))
+    };
+    let mut out = order.to_vec();
+    let mut at = 1;
+    while at < out.len() {
+        let (before, here) = (shift(out[at - 1]), shift(out[at]));
+        let opposite = matches!(
+            (before, here),
+            (Some(Shift::Raised), Some(Shift::Lowered)) | (Some(Shift::Lowered), Some(Shift::Raised))
+        );
+        let (a, b) = (glyph(out[at - 1]), glyph(out[at]));
+        if !opposite || b.x0 > a.x1 - 0.3 * (a.x1 - a.x0) {
+            at += 1;
+            continue;
+        }
+        let from = at - out[..at].iter().rev().take_while(|g| shift(**g) == before).count();
+        let to = at + out[at..].iter().take_while(|g| shift(**g) == here).count();
+        let text = |part: &[u32]| {
+            let mut text = String::new();
+            for g in part {
+                glyph(*g).meaning.add_to(&mut text);
+            }
+            text
+        };
+        let (first, second) = (text(&out[from..at]), text(&out[at..to]));
+        let swap = if before == Some(Shift::Raised) {
+            !raised_first(&first, &second)
+        } else {
+            raised_first(&second, &first)
+        };
+        if swap {
+            out[from..to].rotate_left(at - from);
+        }
+        at = to.max(at + 1);
+    }
+    out
+}
+
+fn raised_first(raised: &str, lowered: &str) -> bool {
+    let exponent = raised
+        .chars()
+        .all(|c| c.is_numeric() || matches!(c, '-' | '\u{2212}' | '+' | '.'));
+    let letters = lowered.chars().next().is_some_and(char::is_alphabetic);
+    exponent && !letters
 }
 
 /// Puts an accent on its letter when the two are drawn over each other, as TeX does; the text ends

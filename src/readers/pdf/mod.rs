@@ -18,6 +18,7 @@ mod margins;
 mod nesting;
 mod paragraphs;
 mod pieces;
+mod replaced;
 mod roles;
 #[cfg(test)]
 mod sample;
@@ -151,6 +152,7 @@ fn manuscript(glyphs: &Glyphs, cut_off: bool) -> Result<Manuscript, Unreadable> 
         .iter()
         .map(|p| Sheet {
             number: p.number,
+            width: p.width,
             height: p.height,
         })
         .collect();
