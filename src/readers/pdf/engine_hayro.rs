@@ -4,6 +4,7 @@
 //! Every call of the engine is counted, and beyond [`Limits`] the page is given up by unwinding
 //! through the engine, which has no other way to be stopped.
 
+use super::engine_type3::Bounds;
 use super::glyphs::{Area, FontUse, Glyph, Glyphs, Meaning, PageGlyphs, Shape, Step, Turn};
 use super::nesting::Forms;
 use super::replaced;
@@ -12,7 +13,7 @@ use hayro_interpret::hayro_cmap::BfString;
 use hayro_interpret::kurbo::{Affine, BezPath, PathEl, Point, Rect, Shape as _};
 use hayro_interpret::{
     BlendMode, ClipPath, Context, Device, DrawMode, DrawProps, Image, ImageDrawProps, InterpreterCache,
-    InterpreterSettings, RenderContent, SoftMask, TransformExt, interpret_page,
+    InterpreterSettings, Paint, RenderContent, SoftMask, TransformExt, interpret_page,
 };
 use hayro_syntax::object::Dict;
 use hayro_syntax::object::dict::keys::{ACTUAL_TEXT, USER_UNIT};
@@ -92,6 +93,7 @@ pub fn glyphs(bytes: Vec<u8>, limits: Limits) -> Result<Glyphs, Refusal> {
             taker.end_page();
             continue;
         }
+        taker.draw_type3 = !forms.drawn_by_glyphs();
         let done = catch_unwind(AssertUnwindSafe(|| {
             let mut context = Context::new(
                 Affine::scale(f64::from(unit)) * page.initial_transform(true).to_kurbo(),
@@ -130,6 +132,9 @@ struct Taker {
     end: Instant,
     fonts: HashMap<u128, u16>,
     shapes: HashMap<GlyphIdentifier, u32>,
+    type3: Bounds,
+    /// Glyphs of Type 3 fonts may be drawn to see what they cover.
+    draw_type3: bool,
     /// The open stretches of marked content: the first glyph and the text it stands for, if the file
     /// says so.
     marked: Vec<Option<(usize, String)>>,
@@ -150,6 +155,8 @@ impl Taker {
             end,
             fonts: HashMap::new(),
             shapes: HashMap::new(),
+            type3: Bounds::default(),
+            draw_type3: false,
             marked: Vec::new(),
             unmarked: 0,
         }
@@ -193,7 +200,7 @@ impl Taker {
         index
     }
 
-    fn take(&mut self, glyph: &Drawn<'_>, place: Affine, next: Option<Point>) {
+    fn take<'a>(&mut self, glyph: &Drawn<'a>, place: Affine, next: Option<Point>, paint: &Paint<'a>) {
         let (advance, font, shape) = match glyph {
             Drawn::Outline(g) => {
                 let id = g.identifier();
@@ -244,7 +251,14 @@ impl Taker {
         let to = |p: Point| turn.to_reading((p.x as f32, p.y as f32), (width, height));
         let (x0, baseline) = to(origin);
         let (x1, _) = to(end);
-        let bounds = shape.and_then(|s| drawn_bounds(&self.out.shapes[s as usize]));
+        let bounds = match glyph {
+            Drawn::Outline(_) => shape.map(|s| {
+                let [x0, y0, x1, y1] = self.out.shapes[s as usize].bounds.map(f64::from);
+                Rect::new(x0, y0, x1, y1)
+            }),
+            Drawn::Type3(g) => self.draw_type3.then(|| self.type3.of(g, paint)).flatten(),
+        };
+        let bounds = bounds.filter(|b| is_usual(*b));
         let ink = bounds.map(|bounds| {
             let bounds = (place * Affine::scale_non_uniform(stretch, 1.0)).transform_rect_bbox(bounds);
             let (a, b) = (
@@ -274,12 +288,12 @@ impl Taker {
     }
 }
 
-/// What a shape covers, if it is drawn at all and no larger than glyphs are.
-fn drawn_bounds(shape: &Shape) -> Option<Rect> {
-    let [x0, y0, x1, y1] = shape.bounds.map(f64::from);
-    let usual = |v: f64| (-3000.0..=3000.0).contains(&v);
-    (shape.bounds.iter().all(|v| usual(f64::from(*v))) && x1 > x0 && y1 > y0)
-        .then(|| Rect::new(x0, y0, x1, y1))
+/// Whether something is drawn, and no larger than glyphs are.
+fn is_usual(bounds: Rect) -> bool {
+    let near = |v: f64| v.abs() <= 3000.0;
+    bounds.width() > 0.0
+        && bounds.height() > 0.0
+        && [bounds.x0, bounds.y0, bounds.x1, bounds.y1].into_iter().all(near)
 }
 
 /// What the text layer says. Bitmap fonts and Type 1 fonts with home-made glyph names often say
@@ -356,7 +370,7 @@ impl<'a> Device<'a> for Taker {
             let next = glyphs
                 .get(i + 1)
                 .map(|n| props.transform * n.transform() * Point::ORIGIN);
-            self.take(glyph, place, next);
+            self.take(glyph, place, next, &props.paint);
         }
     }
 

@@ -10,6 +10,7 @@
 mod columns;
 mod compose;
 mod engine_hayro;
+mod engine_type3;
 mod fallback;
 pub mod glyphs;
 mod guard;
