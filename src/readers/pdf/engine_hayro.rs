@@ -279,7 +279,7 @@ impl Taker {
             ink: Area::default(),
             turn,
         };
-        if ink.is_none() && shape.is_some() && glyph.meaning == Meaning::Char('\u{ad}') {
+        if glyph.meaning == Meaning::Char('\u{ad}') && glyph.x1 - glyph.x0 < 0.05 * size {
             // Where a word may be broken and is not.
             return;
         }

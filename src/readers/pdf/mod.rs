@@ -25,6 +25,8 @@ mod roles;
 mod sample;
 #[cfg(test)]
 mod tests;
+#[cfg(test)]
+mod tests_places;
 
 pub use fallback::worker;
 
