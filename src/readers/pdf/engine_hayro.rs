@@ -5,7 +5,8 @@
 //! through the engine, which has no other way to be stopped.
 
 use super::engine_type3::Bounds;
-use super::glyphs::{Area, FontUse, Glyph, Glyphs, Meaning, PageGlyphs, Shape, Step, Turn};
+use super::fractions;
+use super::glyphs::{Area, FontUse, Glyph, Glyphs, Meaning, PageGlyphs, Shape, Step, Turn, span};
 use super::nesting::Forms;
 use super::replaced;
 use hayro_interpret::font::{Glyph as Drawn, GlyphIdentifier, GlyphRun};
@@ -175,6 +176,7 @@ impl Taker {
     }
 
     fn end_page(&mut self) {
+        fractions::lay_out(&mut self.page);
         self.out.pages.push(std::mem::take(&mut self.page));
     }
 
@@ -261,11 +263,10 @@ impl Taker {
         let bounds = bounds.filter(|b| is_usual(*b));
         let ink = bounds.map(|bounds| {
             let bounds = (place * Affine::scale_non_uniform(stretch, 1.0)).transform_rect_bbox(bounds);
-            let (a, b) = (
+            span(
                 to(Point::new(bounds.x0, bounds.y0)),
                 to(Point::new(bounds.x1, bounds.y1)),
-            );
-            [a.0.min(b.0), a.1.min(b.1), a.0.max(b.0), a.1.max(b.1)]
+            )
         });
         let mut glyph = Glyph {
             meaning: meaning(glyph),
@@ -379,8 +380,15 @@ impl<'a> Device<'a> for Taker {
         self.page.image = true;
     }
 
-    fn draw_path(&mut self, _: &BezPath, _: DrawProps<'a>, _: &DrawMode) {
+    fn draw_path(&mut self, path: &BezPath, props: DrawProps<'a>, _: &DrawMode) {
         self.count(1);
+        let area = props.transform.transform_rect_bbox(path.bounding_box());
+        let (long, thin) = (area.width().max(area.height()), area.width().min(area.height()));
+        if thin < 2.0 && long > 3.0 && long.is_finite() {
+            self.page
+                .bars
+                .push([area.x0, area.y0, area.x1, area.y1].map(|v| v as f32));
+        }
     }
 
     fn push_clip_path(&mut self, _: &ClipPath) {

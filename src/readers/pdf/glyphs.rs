@@ -66,14 +66,26 @@ impl Turn {
         }
     }
 
+    /// An area of the page in the reading frame.
+    pub fn area_to_reading(self, area: Area, page: (f32, f32)) -> Area {
+        span(
+            self.to_reading((area[0], area[1]), page),
+            self.to_reading((area[2], area[3]), page),
+        )
+    }
+
     /// An area from the reading frame back to the page.
     pub fn area_to_page(self, area: Area, page: (f32, f32)) -> Area {
-        let (a, b) = (
+        span(
             self.to_page((area[0], area[1]), page),
             self.to_page((area[2], area[3]), page),
-        );
-        [a.0.min(b.0), a.1.min(b.1), a.0.max(b.0), a.1.max(b.1)]
+        )
     }
+}
+
+/// The area between two corners.
+pub fn span(a: (f32, f32), b: (f32, f32)) -> Area {
+    [a.0.min(b.0), a.1.min(b.1), a.0.max(b.0), a.1.max(b.1)]
 }
 
 /// One printed character.
@@ -152,6 +164,8 @@ pub struct PageGlyphs {
     pub width: f32,
     pub height: f32,
     pub glyphs: Vec<Glyph>,
+    /// Thin bars, with the page upright.
+    pub bars: Vec<Area>,
     /// The page shows at least one image.
     pub image: bool,
     /// Interpretation was given up before the end of the page.
@@ -214,12 +228,9 @@ mod tests {
             let page = (600.0, 800.0);
             let there = turn.to_reading((100.0, 50.0), page);
             assert_eq!(turn.to_page(there, page), (100.0, 50.0));
-            let other = turn.to_reading((130.0, 60.0), page);
-            let area = union(
-                [there.0, there.1, there.0, there.1],
-                [other.0, other.1, other.0, other.1],
-            );
-            assert_eq!(turn.area_to_page(area, page), [100.0, 50.0, 130.0, 60.0]);
+            let area = [100.0, 50.0, 130.0, 60.0];
+            let there = turn.area_to_reading(area, page);
+            assert_eq!(turn.area_to_page(there, page), area);
         }
     }
 }

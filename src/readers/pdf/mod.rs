@@ -12,6 +12,7 @@ mod compose;
 mod engine_hayro;
 mod engine_type3;
 mod fallback;
+mod fractions;
 pub mod glyphs;
 mod guard;
 mod lines;
