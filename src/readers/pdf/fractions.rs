@@ -1,7 +1,7 @@
 //! A *fraction* is printed over three lines: the numerator, the bar and the denominator. For
 //! reading it is laid out on the line it stands in, `24.1/3.32`; the ink of its glyphs stays where it is.
 
-use super::glyphs::{Area, Glyph, Meaning, PageGlyphs, Turn};
+use super::glyphs::{Area, Glyph, Meaning, PageGlyphs, Turn, union};
 
 /// Bars looked at on one page; a page of formulas has a few dozen.
 const MOST_BARS: usize = 400;
@@ -18,13 +18,10 @@ pub fn lay_out(page: &mut PageGlyphs) {
         if !page.glyphs.iter().any(|g| g.turn == turn) {
             continue;
         }
+        let all = page.bars.iter().map(|bar| turn.area_to_reading(*bar, size));
+        let mut bars = in_one(all.filter(|b| b[3] - b[1] < 2.0).collect());
+        bars.retain(|b| (3.0..LONGEST_BAR).contains(&(b[2] - b[0])));
         // The shortest first, as fractions may stand in fractions.
-        let mut bars: Vec<Area> = page
-            .bars
-            .iter()
-            .map(|bar| turn.area_to_reading(*bar, size))
-            .filter(|b| (3.0..LONGEST_BAR).contains(&(b[2] - b[0])) && b[3] - b[1] < 2.0)
-            .collect();
         bars.sort_by(|a, b| (a[2] - a[0]).total_cmp(&(b[2] - b[0])));
         for bar in bars {
             if let Some(fraction) = Fraction::at(bar, turn, &page.glyphs) {
@@ -32,6 +29,21 @@ pub fn lay_out(page: &mut PageGlyphs) {
             }
         }
     }
+}
+
+/// Bars that go on from one another, put together: some programs draw long ones bit by bit.
+fn in_one(mut bars: Vec<Area>) -> Vec<Area> {
+    bars.sort_by(|a, b| a[1].total_cmp(&b[1]).then(a[0].total_cmp(&b[0])));
+    let mut out: Vec<Area> = Vec::new();
+    for bar in bars {
+        match out.last_mut() {
+            Some(last) if (last[1] - bar[1]).abs() < 0.3 && bar[0] - last[2] < 0.6 => {
+                *last = union(*last, bar);
+            }
+            _ => out.push(bar),
+        }
+    }
+    out
 }
 
 /// One fraction; its parts are indexes of glyphs, in the order in which they are drawn.
@@ -64,7 +76,17 @@ impl Fraction {
         let width = right - left;
         let centred = |p: &Part| (p.left + p.right - left - right).abs() / 2.0 < 0.1 * width + 1.2;
         let fills = (above.right - above.left).max(below.right - below.left) > 0.6 * width;
-        if !(fills && centred(&above) && centred(&below)) {
+        // What goes on beyond the bar is a line of text with something drawn under it.
+        let goes_on = |p: &Part| {
+            glyphs.iter().enumerate().any(|(i, g)| {
+                g.turn == turn
+                    && !g.meaning.is_space()
+                    && (g.baseline - p.baseline).abs() < 0.1 * p.size
+                    && (g.x0 - right).max(left - g.x1) < 0.6 * p.size
+                    && !p.glyphs.contains(&i)
+            })
+        };
+        if !(fills && centred(&above) && centred(&below)) || goes_on(&above) || goes_on(&below) {
             return None;
         }
         // The line goes on at least on one side, with its axis at the height of the bar.
@@ -265,6 +287,19 @@ mod tests {
             "122 702.3 35 0.4 re f\n",
         );
         assert_eq!(shown, "The size was d = (3.4 - 1.1)/s₁₂ = 0.80.");
+    }
+
+    #[test]
+    fn what_is_underlined_bit_by_bit_is_no_row_of_fractions() {
+        let shown = text(
+            &[
+                at(50.0, 706.8, "We saw 24.1 litres of water,"),
+                at(50.0, 693.1, "and 3.32 litres"),
+                at(171.0, 700.0, "(x)"),
+            ],
+            "79.5 702.3 8.7 0.4 re f 88.2 702.3 8.7 0.4 re f\n",
+        );
+        assert!(!shown.contains('/'), "{shown}");
     }
 
     #[test]

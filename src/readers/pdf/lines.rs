@@ -182,7 +182,9 @@ fn piece_words(
             continue;
         }
         if let Some(l) = last {
-            fresh |= g.x0 - pen > WORD_GAP * l.size.max(g.size);
+            let decimal = words.last().is_some_and(|w| is_decimal(w, l, g));
+            let gap = if decimal { DECIMAL_GAP } else { WORD_GAP };
+            fresh |= g.x0 - pen > gap * l.size.max(g.size);
         }
         let before = last;
         last = Some(g);
@@ -228,6 +230,19 @@ fn piece_words(
     }
 }
 
+/// Some programs set a thin space behind the point of a number as behind any other point.
+const DECIMAL_GAP: f32 = 0.2;
+
+/// Whether the digit goes on with the number that the word ends with.
+fn is_decimal(word: &Word, point: &Glyph, digit: &Glyph) -> bool {
+    if point.meaning != Meaning::Char('.') || !matches!(digit.meaning, Meaning::Char('0'..='9')) {
+        return false;
+    }
+    let level = (point.baseline - digit.baseline).abs() < 0.05 * digit.size;
+    let before = word.parts.last().and_then(|p| p.1.chars().rev().nth(1));
+    level && before.is_none_or(|c| c.is_ascii_digit() || matches!(c, '-' | '\u{2212}' | '–'))
+}
+
 /// The glyphs with raised and lowered marks that stand above one another in one order, whichever
 /// was drawn first: an exponent comes before the numbers of an index (`χ²₁₇`) but behind a letter
 /// (`ηp²`), and other raised marks come last (`t₂₈*`).
@@ -260,10 +275,13 @@ fn unstacked(order: &[u32], baseline: f32, size: f32, page: &PageGlyphs) -> Vec<
             text
         };
         let (first, second) = (text(&out[from..at]), text(&out[at..to]));
+        // `χ²` is a name of its own.
+        let chi = from > 0
+            && matches!(glyph(out[from - 1]).meaning, Meaning::Char(c) if CHI.contains(&c));
         let swap = if before == Some(Shift::Raised) {
-            !raised_first(&first, &second)
+            !raised_first(&first, &second, chi)
         } else {
-            raised_first(&second, &first)
+            raised_first(&second, &first, chi)
         };
         if swap {
             out[from..to].rotate_left(at - from);
@@ -273,12 +291,15 @@ fn unstacked(order: &[u32], baseline: f32, size: f32, page: &PageGlyphs) -> Vec<
     out
 }
 
-fn raised_first(raised: &str, lowered: &str) -> bool {
+/// χ, upright and in the styles of mathematical letters.
+const CHI: [char; 4] = ['χ', '\u{1d6d8}', '\u{1d712}', '\u{1d74c}'];
+
+fn raised_first(raised: &str, lowered: &str, chi: bool) -> bool {
     let exponent = raised
         .chars()
         .all(|c| c.is_numeric() || matches!(c, '-' | '\u{2212}' | '+' | '.'));
     let letters = lowered.chars().next().is_some_and(char::is_alphabetic);
-    exponent && !letters
+    exponent && (chi || !letters)
 }
 
 /// Puts an accent on its letter when the two are drawn over each other, as TeX does; the text ends
