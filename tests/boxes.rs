@@ -7,7 +7,8 @@ use serde_json::Value;
 
 const DEMO: &[u8] = include_bytes!("../fixtures/demo/watering.pdf");
 /// A white image of one pixel.
-const IMAGE: &[u8] = b"\x89PNG\r\n\x1a\n\0\0\0\rIHDR\0\0\0\x01\0\0\0\x01\x08\0\0\0\0:~\x9bU\0\0\0\nIDATx\x9cc\xf8\
+const IMAGE: &[u8] =
+    b"\x89PNG\r\n\x1a\n\0\0\0\rIHDR\0\0\0\x01\0\0\0\x01\x08\0\0\0\0:~\x9bU\0\0\0\nIDATx\x9cc\xf8\
     \x0f\0\x01\x01\x01\0\x1b\xb6\xeeV\0\0\0\0IEND\xaeB`\x82";
 
 fn area(value: &Value) -> [f64; 4] {
@@ -70,7 +71,14 @@ fn on_the_line(text: &str) -> String {
 fn pictures_show_the_boxes_over_the_page() {
     let s = Scratch::new();
     s.file("watering.pdf", DEMO).file("images/p-01.png", IMAGE);
-    let run = s.run(&["boxes", "watering.pdf", "--images", "images/p-{}.png", "--out", "seen"]);
+    let run = s.run(&[
+        "boxes",
+        "watering.pdf",
+        "--images",
+        "images/p-{}.png",
+        "--out",
+        "seen",
+    ]);
     run.is("", "", 0);
     let svg = std::fs::read_to_string(s.path().join("seen/page-1.svg")).expect("the picture");
     assert!(svg.contains("href=\"data:image/png;base64,iVBORw0KGgo"));

@@ -60,12 +60,8 @@ fn draw(document: &Document, images: &str, out: &Path) -> Result<(), Refused> {
             continue;
         };
         let image = std::fs::read(path).map_err(|e| trouble(path, e))?;
-        let picture = reports::page_svg(document, page, size, &image).ok_or_else(|| {
-            Refused(format!(
-                "{}: is neither PNG nor JPEG; convert it",
-                path.display()
-            ))
-        })?;
+        let picture = reports::page_svg(document, page, size, &image)
+            .ok_or_else(|| Refused(format!("{}: is neither PNG nor JPEG; convert it", path.display())))?;
         let path = out.join(format!("page-{page}.svg"));
         std::fs::write(&path, picture).map_err(|e| trouble(&path, e))?;
     }
@@ -94,8 +90,7 @@ impl Images {
         } else {
             folder
         };
-        let entries =
-            std::fs::read_dir(folder).map_err(|e| Refused(format!("{}: {e}", folder.display())))?;
+        let entries = std::fs::read_dir(folder).map_err(|e| Refused(format!("{}: {e}", folder.display())))?;
         let mut found: Vec<(u32, PathBuf)> = entries
             .flatten()
             .filter_map(|entry| {

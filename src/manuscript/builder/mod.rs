@@ -194,7 +194,8 @@ impl Builder {
         }
         let mut from = 0;
         for (at, area) in std::mem::take(&mut self.drawn) {
-            self.add(&raw[from..at]);
+            let Some(before) = raw.get(from..at) else { continue };
+            self.add(before);
             self.ink.add(self.text.len(), area);
             from = at;
         }
@@ -427,6 +428,7 @@ fn plain_words(text: &[u8], space: bool) -> usize {
 
 #[cfg(test)]
 mod tests {
+    use super::super::LineArea;
     use super::*;
 
     #[test]
@@ -442,6 +444,53 @@ mod tests {
         let at = m.text.find("p =").expect("the text holds it");
         assert_eq!(m.place(&m.blocks[0], at..at + 7).line, Some(8));
         assert_eq!(m.place(&m.blocks[0], 0..3).line, Some(7));
+    }
+
+    #[test]
+    fn areas_follow_the_text_through_forms_and_joined_lines() {
+        let mut b = Builder::new(Format::Pdf);
+        b.open(BlockKind::Paragraph);
+        b.page(3);
+        b.page_size([600.0, 800.0]);
+        b.line(1);
+        let area = |n: usize| [10.0 * n as f32, 100.0, 10.0 * n as f32 + 8.0, 110.0];
+        for (at, n) in [(0, 1), (1, 2), (2, 3)] {
+            b.drawn(at, area(n));
+        }
+        b.text("xﬁ-");
+        b.line_break();
+        b.line(2);
+        b.drawn(0, area(4));
+        b.drawn(2, area(5));
+        b.text("ne");
+        b.drawn(0, area(6));
+        b.drawn(4, area(7));
+        b.drawn(5, area(8));
+        b.superscript("𝟐,3");
+        let m = b.finish();
+        assert_eq!(m.text, "xfine²,³\n");
+        let at = |part: &str| {
+            let from = m.text.find(part).expect("it is there");
+            m.areas(from..from + part.len())
+        };
+        let near = |a: LineArea, line, n: usize| {
+            let close = a.area.iter().zip(area(n)).all(|(a, b)| (a - b).abs() < 0.02);
+            assert!(close && a.page == 3 && a.line == Some(line), "{a:?} is not {n}");
+        };
+        near(at("fi")[0], 1, 2);
+        let word = at("fine");
+        assert_eq!(word.len(), 2);
+        // Without the hyphen that is gone.
+        near(word[0], 1, 2);
+        near(word[1], 2, 4);
+        near(at("²")[0], 2, 6);
+        near(at("³")[0], 2, 8);
+        assert_eq!(m.page_size(3), Some([600.0, 800.0]));
+        // A place that is known by nothing is no place.
+        let mut b = Builder::new(Format::Pdf);
+        b.drawn(7, area(1));
+        b.text("x");
+        assert!(b.finish().areas(0..1).is_empty());
     }
 
     #[test]

@@ -119,7 +119,11 @@ pub fn glyphs(bytes: Vec<u8>, limits: Limits) -> Result<Glyphs, Refusal> {
 /// How many points a step of the page's own coordinates takes; pages wider than five metres need it.
 fn unit(page: &Page<'_>) -> f32 {
     let unit = page.raw().get::<f32>(USER_UNIT).unwrap_or(1.0);
-    if unit.is_finite() { unit.clamp(0.1, 1000.0) } else { 1.0 }
+    if unit.is_finite() {
+        unit.clamp(0.1, 1000.0)
+    } else {
+        1.0
+    }
 }
 
 /// The payload with which a page is given up.
@@ -204,10 +208,7 @@ impl Taker {
 
     /// Takes down what was drawn if it is a thin bar.
     fn bar(&mut self, area: Rect) {
-        let (long, thin) = (
-            area.width().max(area.height()),
-            area.width().min(area.height()),
-        );
+        let (long, thin) = (area.width().max(area.height()), area.width().min(area.height()));
         if thin < 2.0 && long > 1.0 && long.is_finite() {
             self.page
                 .bars

@@ -7,6 +7,8 @@ use super::glyphs::{Area, Glyph, Meaning, PageGlyphs, Turn, union};
 const MOST_BARS: usize = 400;
 /// Bars of fractions are shorter, in points.
 const LONGEST_BAR: f32 = 300.0;
+/// Baselines of fractions stand no further from the bar, in points.
+const REACH: f32 = 36.0;
 
 /// Lays out all fractions of a page.
 pub fn lay_out(page: &mut PageGlyphs) {
@@ -23,12 +25,30 @@ pub fn lay_out(page: &mut PageGlyphs) {
         bars.retain(|b| (3.0..LONGEST_BAR).contains(&(b[2] - b[0])));
         // The shortest first, as fractions may stand in fractions.
         bars.sort_by(|a, b| (a[2] - a[0]).total_cmp(&(b[2] - b[0])));
+        let mut order = by_baseline(&page.glyphs, turn);
         for bar in bars {
-            if let Some(fraction) = Fraction::at(bar, turn, &page.glyphs) {
+            let near = near(&order, &page.glyphs, (bar[1] + bar[3]) / 2.0);
+            if let Some(fraction) = Fraction::at(bar, &near, &page.glyphs) {
                 fraction.lay_out(&mut page.glyphs);
+                order = by_baseline(&page.glyphs, turn);
             }
         }
     }
+}
+
+/// The glyphs that are turned this way, from top to bottom.
+fn by_baseline(glyphs: &[Glyph], turn: Turn) -> Vec<usize> {
+    let mut order: Vec<usize> = (0..glyphs.len()).filter(|i| glyphs[*i].turn == turn).collect();
+    order.sort_by(|a, b| glyphs[*a].baseline.total_cmp(&glyphs[*b].baseline));
+    order
+}
+
+/// The glyphs that a fraction around height `y` can reach, in the order in which they are drawn.
+fn near(order: &[usize], glyphs: &[Glyph], y: f32) -> Vec<usize> {
+    let at = |y: f32| order.partition_point(|i| glyphs[*i].baseline < y);
+    let mut near = order[at(y - REACH)..at(y + REACH)].to_vec();
+    near.sort_unstable();
+    near
 }
 
 /// Bars that go on from one another, put together: some programs draw long ones bit by bit.
@@ -57,42 +77,42 @@ struct Fraction {
 }
 
 impl Fraction {
-    fn at(bar: Area, turn: Turn, glyphs: &[Glyph]) -> Option<Fraction> {
+    fn at(bar: Area, near: &[usize], glyphs: &[Glyph]) -> Option<Fraction> {
         let [left, _, right, _] = bar;
         let y = (bar[1] + bar[3]) / 2.0;
         let here = |g: &Glyph| {
             let middle = (g.x0 + g.x1) / 2.0;
-            g.turn == turn && middle > left - 1.0 && middle < right + 1.0
+            middle > left - 1.0 && middle < right + 1.0
         };
         // Full-size glyphs sit right above the bar or hang right below it, as no other line does.
-        let above = part(glyphs, |g| {
+        let above = part(near, glyphs, |g| {
             here(g) && (0.05..0.62).contains(&((y - g.baseline) / g.size))
         })?;
-        let below = part(glyphs, |g| {
+        let below = part(near, glyphs, |g| {
             here(g) && (0.3..1.15).contains(&((g.baseline - y) / g.size))
         })?;
-        let above = above.with_marks(glyphs, |g| here(g) && g.baseline < y);
-        let below = below.with_marks(glyphs, |g| here(g) && g.baseline - 0.3 * g.size > y);
+        let above = above.with_marks(near, glyphs, |g| here(g) && g.baseline < y);
+        let below = below.with_marks(near, glyphs, |g| here(g) && g.baseline - 0.3 * g.size > y);
         let width = right - left;
         let centred = |p: &Part| (p.left + p.right - left - right).abs() / 2.0 < 0.1 * width + 1.2;
         let fills = (above.right - above.left).max(below.right - below.left) > 0.6 * width;
         // What goes on beyond the bar is a line of text with something drawn under it.
         let goes_on = |p: &Part| {
-            glyphs.iter().enumerate().any(|(i, g)| {
-                g.turn == turn
-                    && !g.meaning.is_space()
+            near.iter().any(|i| {
+                let g = &glyphs[*i];
+                !g.meaning.is_space()
                     && (g.baseline - p.baseline).abs() < 0.1 * p.size
                     && (g.x0 - right).max(left - g.x1) < 0.6 * p.size
-                    && !p.glyphs.contains(&i)
+                    && !p.glyphs.contains(i)
             })
         };
         if !(fills && centred(&above) && centred(&below)) || goes_on(&above) || goes_on(&below) {
             return None;
         }
         // The line goes on at least on one side, with its axis at the height of the bar.
-        let neighbour = glyphs.iter().enumerate().find(|(i, g)| {
-            g.turn == turn
-                && !g.meaning.is_space()
+        let neighbour = near.iter().find(|i| {
+            let g = &glyphs[**i];
+            !g.meaning.is_space()
                 && (0.12..0.45).contains(&((g.baseline - y) / g.size))
                 && g.size > 0.95 * above.size
                 && (left - g.x1 < 1.2 * g.size && left - g.x1 > -0.3 * g.size
@@ -104,8 +124,8 @@ impl Fraction {
             bar,
             above: above.glyphs,
             below: below.glyphs,
-            baseline: neighbour.1.baseline,
-            size: neighbour.1.size,
+            baseline: glyphs[*neighbour].baseline,
+            size: glyphs[*neighbour].size,
         })
     }
 
@@ -191,8 +211,8 @@ struct Part {
 }
 
 /// The glyphs that fit, if they make up a line.
-fn part(glyphs: &[Glyph], fits: impl Fn(&Glyph) -> bool) -> Option<Part> {
-    let all: Vec<usize> = (0..glyphs.len()).filter(|i| fits(&glyphs[*i])).collect();
+fn part(near: &[usize], glyphs: &[Glyph], fits: impl Fn(&Glyph) -> bool) -> Option<Part> {
+    let all: Vec<usize> = near.iter().copied().filter(|i| fits(&glyphs[*i])).collect();
     let size = all.iter().map(|i| glyphs[*i].size).fold(0.0, f32::max);
     let full: Vec<&Glyph> = all
         .iter()
@@ -218,8 +238,8 @@ impl Part {
     }
 
     /// With its raised and lowered marks.
-    fn with_marks(self, glyphs: &[Glyph], fits: impl Fn(&Glyph) -> bool) -> Part {
-        let all = (0..glyphs.len()).filter(|i| {
+    fn with_marks(self, near: &[usize], glyphs: &[Glyph], fits: impl Fn(&Glyph) -> bool) -> Part {
+        let all = near.iter().copied().filter(|i| {
             let g = &glyphs[*i];
             let mark = g.size < 0.85 * self.size && (g.baseline - self.baseline).abs() < 0.55 * self.size;
             self.glyphs.contains(i) || mark && fits(g)
@@ -261,14 +281,8 @@ mod tests {
             at(126.2, 693.1, "3.32"),
             at(148.0, 700.0, "= 7.25, p = .010."),
         ];
-        for bar in [
-            "126 702.3 18 0.4 re f\n",
-            "0.4 w 126 702.5 m 144 702.5 l S\n",
-        ] {
-            assert_eq!(
-                text(&shown, bar),
-                "The ratio was F = 24.1/3.32 = 7.25, p = .010."
-            );
+        for bar in ["126 702.3 18 0.4 re f\n", "0.4 w 126 702.5 m 144 702.5 l S\n"] {
+            assert_eq!(text(&shown, bar), "The ratio was F = 24.1/3.32 = 7.25, p = .010.");
         }
         // Without a bar they are lines of a table or of something else.
         assert!(!text(&shown, "").contains('/'));

@@ -170,7 +170,7 @@ fn piece_words(
     glyphs: &Glyphs,
     words: &mut Vec<Word>,
 ) {
-    let mut last: Option<&Glyph> = None;
+    let mut last: Option<(&Glyph, Shift)> = None;
     // Where the pen goes on; behind a stack, at the end of its wider part.
     let mut pen = f32::MIN;
     let mut fresh = true;
@@ -181,14 +181,20 @@ fn piece_words(
             fresh = true;
             continue;
         }
-        if let Some(l) = last {
-            let decimal = words.last().is_some_and(|w| is_decimal(w, l, g));
-            let gap = if decimal { DECIMAL_GAP } else { WORD_GAP };
+        let shift = shift_of(g, baseline, size);
+        if let Some((l, before)) = last {
+            let decimal = || words.last().is_some_and(|w| is_decimal(w, l, g));
+            let gap = if before == shift && shift != Shift::None {
+                MARK_GAP
+            } else if decimal() {
+                DECIMAL_GAP
+            } else {
+                WORD_GAP
+            };
             fresh |= g.x0 - pen > gap * l.size.max(g.size);
         }
-        let before = last;
-        last = Some(g);
-        let shift = shift_of(g, baseline, size);
+        let before = last.map(|l| l.0);
+        last = Some((g, shift));
         pen = if shift == Shift::None || fresh {
             g.x1
         } else {
@@ -230,6 +236,8 @@ fn piece_words(
     }
 }
 
+/// Within raised or lowered marks; formula editors set their signs and letters apart (`10⁻ ⁵`).
+const MARK_GAP: f32 = 0.25;
 /// Some programs set a thin space behind the point of a number as behind any other point.
 const DECIMAL_GAP: f32 = 0.2;
 
@@ -265,7 +273,12 @@ fn unstacked(order: &[u32], baseline: f32, size: f32, page: &PageGlyphs) -> Vec<
             at += 1;
             continue;
         }
-        let from = at - out[..at].iter().rev().take_while(|g| shift(**g) == before).count();
+        let from = at
+            - out[..at]
+                .iter()
+                .rev()
+                .take_while(|g| shift(**g) == before)
+                .count();
         let to = at + out[at..].iter().take_while(|g| shift(**g) == here).count();
         let text = |part: &[u32]| {
             let mut text = String::new();
@@ -276,8 +289,7 @@ fn unstacked(order: &[u32], baseline: f32, size: f32, page: &PageGlyphs) -> Vec<
         };
         let (first, second) = (text(&out[from..at]), text(&out[at..to]));
         // `χ²` is a name of its own.
-        let chi = from > 0
-            && matches!(glyph(out[from - 1]).meaning, Meaning::Char(c) if CHI.contains(&c));
+        let chi = from > 0 && matches!(glyph(out[from - 1]).meaning, Meaning::Char(c) if CHI.contains(&c));
         let swap = if before == Some(Shift::Raised) {
             !raised_first(&first, &second, chi)
         } else {

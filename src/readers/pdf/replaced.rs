@@ -32,12 +32,15 @@ pub fn replace(glyphs: &mut Vec<Glyph>, from: usize, text: &str) {
     if !drawn.iter().all(|i| level(&glyphs[*i])) {
         return;
     }
-    let whole = drawn.iter().map(|i| &glyphs[*i]).fold(first.clone(), |whole, g| Glyph {
-        x0: whole.x0.min(g.x0),
-        x1: whole.x1.max(g.x1),
-        ink: union(whole.ink, g.ink),
-        ..whole
-    });
+    let whole = drawn
+        .iter()
+        .map(|i| &glyphs[*i])
+        .fold(first.clone(), |whole, g| Glyph {
+            x0: whole.x0.min(g.x0),
+            x1: whole.x1.max(g.x1),
+            ink: union(whole.ink, g.ink),
+            ..whole
+        });
     glyphs.truncate(from);
     glyphs.push(Glyph {
         meaning: Meaning::Many(text.into()),

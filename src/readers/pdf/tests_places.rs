@@ -80,10 +80,7 @@ fn a_box_holds_exactly_the_glyphs_of_its_range() {
     // one from 111 to 394, four from 12 to 472, five from 32 to 438, comma 250.
     let (one, pair) = (area(&m, "₁"), area(&m, "₄₅"));
     assert_near(one, [56.58, 97.77, 58.56, 102.5]);
-    assert_near(
-        pair,
-        [55.8 + 5.25 + 0.08, 97.77, 55.8 + 8.75 + 3.07, 102.5 + 0.1],
-    );
+    assert_near(pair, [55.8 + 5.25 + 0.08, 97.77, 55.8 + 8.75 + 3.07, 102.5 + 0.1]);
     let whole = area(&m, "F₁,₄₅ = 7.25");
     assert!(whole[0] < one[0] && whole[2] > pair[2] + 20.0);
     // Spaces are not drawn.
