@@ -1,6 +1,7 @@
 //! A *command* is one thing that tieout can be asked to do. This room turns what was typed into
 //! work for the other rooms and their results into output and an exit status.
 
+mod boxes;
 mod check;
 mod explain;
 mod inputs;
@@ -46,6 +47,8 @@ enum Command {
     Try(try_text::Try),
     /// List the relations, or explain one: formula, assumptions, cautions, source
     Explain(explain::Explain),
+    #[command(hide = true)]
+    Boxes(boxes::Boxes),
     /// The process of its own in which files of binary formats are read; never called by hand
     #[command(name = worker::COMMAND, hide = true)]
     Worker,
@@ -58,6 +61,7 @@ impl Cli {
             Command::Check(check) => check.run(),
             Command::Try(try_text) => try_text.run(),
             Command::Explain(explain) => explain.run(),
+            Command::Boxes(boxes) => boxes.run(),
             Command::Worker => return worker::run(),
         };
         match done {

@@ -7,11 +7,15 @@
 
 mod builder;
 mod characters;
+mod ink;
 mod place;
 
 pub use builder::{Builder, CellShape, Description};
+pub use ink::{Area, LineArea, union};
 pub use place::Place;
+pub(crate) use place::is_one_line;
 
+use ink::Ink;
 use serde::{Deserialize, Serialize};
 use std::ops::Range;
 
@@ -165,6 +169,7 @@ pub struct Manuscript {
     /// What the reader wants the person to know, e.g. `page 3 has no text`.
     pub remarks: Vec<String>,
     marks: Vec<Mark>,
+    ink: Ink,
     /// Number of characters before each multiple of [`STRIDE`] bytes.
     char_index: Vec<usize>,
 }
@@ -188,10 +193,8 @@ impl Manuscript {
 
     /// The place of a byte range of the text, which must lie inside the block.
     pub fn place(&self, block: &Block, bytes: Range<usize>) -> Place {
-        let mark = match self.marks.partition_point(|m| m.at <= bytes.start) {
-            0 => None,
-            n => Some(self.marks[n - 1]),
-        };
+        let mark = self.mark(bytes.start);
+        let areas = self.areas(bytes.clone());
         let cell = block.cell.map(|at| {
             (
                 &self.tables[at.table],
@@ -215,8 +218,38 @@ impl Manuscript {
             column: cell.map(|(_, cell, _)| cell.column + 1),
             start: self.char_offset(bytes.start),
             end: self.char_offset(bytes.end),
-            area: None,
+            area: areas.first().map(|a| a.area),
+            areas,
         }
+    }
+
+    fn mark(&self, byte: usize) -> Option<Mark> {
+        let after = self.marks.partition_point(|m| m.at <= byte);
+        after.checked_sub(1).map(|at| self.marks[at])
+    }
+
+    /// What a byte range of the text covers on the pages: one area for each printed line, in the
+    /// order of the text. Empty for formats without pages.
+    pub fn areas(&self, bytes: Range<usize>) -> Vec<LineArea> {
+        if self.ink.is_empty() {
+            return Vec::new();
+        }
+        // Spaces are not drawn.
+        let text = &self.text[bytes.clone()];
+        let start = bytes.start + (text.len() - text.trim_start().len());
+        let end = bytes.start + text.trim_end().len();
+        self.ink
+            .areas(start..end.max(start), |at| self.mark(at).and_then(|m| m.line))
+    }
+
+    /// Width and height in points of a page on which something of the text is drawn.
+    pub fn page_size(&self, page: u32) -> Option<[f32; 2]> {
+        self.ink.page_size(page)
+    }
+
+    /// The pages on which something of the text is drawn.
+    pub fn drawn_pages(&self) -> Vec<u32> {
+        self.ink.pages()
     }
 
     /// The section titles above a block, outermost first.

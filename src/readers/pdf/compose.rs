@@ -11,6 +11,7 @@ use crate::readers::headings::{self, Parts};
 #[derive(Clone, Copy, Debug)]
 pub struct Sheet {
     pub number: u32,
+    pub width: f32,
     pub height: f32,
 }
 
@@ -30,7 +31,7 @@ pub fn compose(b: &mut Builder, blocks: &[Block], body: Body, sheets: &[Sheet]) 
         let kind = depth.map_or_else(|| roles::kind(block, body, height), BlockKind::Heading);
         b.part(state.part(index, block, kind));
         b.open(kind);
-        write(b, block);
+        write(b, block, sheets);
         b.close();
     }
 }
@@ -158,12 +159,15 @@ impl State {
 }
 
 /// Writes the lines of a block, marking where each stands.
-fn write(b: &mut Builder, block: &Block) {
+fn write(b: &mut Builder, block: &Block, sheets: &[Sheet]) {
     for (i, (number, line)) in block.lines.iter().enumerate() {
         if i > 0 {
             b.line_break();
         }
         b.page(line.page);
+        if let Some(sheet) = sheets.iter().find(|s| s.number == line.page) {
+            b.page_size([sheet.width, sheet.height]);
+        }
         b.line(*number);
         for (w, word) in line.words.iter().enumerate() {
             if w > 0 {
@@ -175,7 +179,16 @@ fn write(b: &mut Builder, block: &Block) {
 }
 
 fn write_word(b: &mut Builder, word: &Word) {
+    let mut inks = word.inks.iter();
+    // How much of the word is written, and how much of it is known to be drawn where.
+    let (mut done, mut drawn): (usize, usize) = (0, 0);
     for (shift, text) in &word.parts {
+        while drawn < done + text.len() {
+            let Some(ink) = inks.next() else { break };
+            b.drawn(drawn.saturating_sub(done), ink.area);
+            drawn = ink.end as usize;
+        }
+        done += text.len();
         match shift {
             Shift::None => b.text(text),
             Shift::Raised => b.superscript(text),

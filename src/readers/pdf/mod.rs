@@ -11,7 +11,9 @@
 mod columns;
 mod compose;
 mod engine_hayro;
+mod engine_type3;
 mod fallback;
+mod fractions;
 pub mod glyphs;
 mod guard;
 mod lines;
@@ -19,11 +21,14 @@ mod margins;
 mod nesting;
 mod paragraphs;
 mod pieces;
+mod replaced;
 mod roles;
 #[cfg(test)]
 mod sample;
 #[cfg(test)]
 mod tests;
+#[cfg(test)]
+mod tests_places;
 
 use super::{Failure, Unreadable};
 use crate::manuscript::{BlockKind, Builder, Format, Manuscript};
@@ -150,6 +155,7 @@ fn manuscript(glyphs: &Glyphs, cut_off: bool) -> Result<Manuscript, Unreadable> 
         .iter()
         .map(|p| Sheet {
             number: p.number,
+            width: p.width,
             height: p.height,
         })
         .collect();
