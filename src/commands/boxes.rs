@@ -1,10 +1,11 @@
 //! `tieout boxes`, hidden: shows where on the pages statements and quantities were found. Any
 //! program that turns pages into images can make the images; the boxes are drawn over them.
 
-use super::guard::guarded;
 use super::inputs::Input;
 use super::{Judging, Refused, Status, run};
 use crate::judge::Document;
+use crate::readers::contained::{Limits, Pool};
+use crate::readers::guard::guarded;
 use crate::reports;
 use clap::Args;
 use std::fmt::Write;
@@ -32,10 +33,11 @@ pub struct Boxes {
 impl Boxes {
     pub(super) fn run(self) -> Result<Status, Refused> {
         let options = self.judging.options()?;
-        let grammar = self.judging.grammar()?;
+        let grammar = run::grammar(&self.judging.grammar)?;
         let name = self.file.display();
         let input = Input::File(self.file.clone());
-        let document = guarded(|| Ok(crate::examine(input.read()?, grammar, &options)))
+        let pool = Pool::new(run::executable(), Limits::default(), 1);
+        let document = guarded(|| Ok(crate::examine(input.read(&pool)?, grammar, &options)))
             .map_err(|reason| Refused(format!("{name}: {reason}")))?;
         if document.manuscript.drawn_pages().is_empty() {
             return Err(Refused(format!(

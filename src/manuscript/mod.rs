@@ -16,10 +16,11 @@ pub use place::Place;
 pub(crate) use place::is_one_line;
 
 use ink::Ink;
+use serde::{Deserialize, Serialize};
 use std::ops::Range;
 
 /// The file formats that can be read.
-#[derive(Clone, Copy, Debug, PartialEq, Eq, Hash, serde::Serialize)]
+#[derive(Clone, Copy, Debug, PartialEq, Eq, Hash, Serialize, Deserialize)]
 #[serde(rename_all = "lowercase")]
 pub enum Format {
     Text,
@@ -50,7 +51,7 @@ impl Format {
 
 /// Which part of the document a block belongs to. Results are looked for in [`Part::Abstract`]
 /// and [`Part::Body`] only: a p-value in a reference list is somebody else's.
-#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+#[derive(Clone, Copy, Debug, PartialEq, Eq, Serialize, Deserialize)]
 pub enum Part {
     /// Title page, authors, affiliations, keywords, dates.
     Front,
@@ -63,7 +64,7 @@ pub enum Part {
 }
 
 /// What a block is on the page.
-#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+#[derive(Clone, Copy, Debug, PartialEq, Eq, Serialize, Deserialize)]
 pub enum BlockKind {
     /// Level 1 is the highest heading below the title.
     Heading(u8),
@@ -82,7 +83,7 @@ pub enum BlockKind {
 }
 
 /// Where a cell block belongs.
-#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+#[derive(Clone, Copy, Debug, PartialEq, Eq, Serialize, Deserialize)]
 pub struct CellAt {
     /// Index into [`Manuscript::tables`].
     pub table: usize,
@@ -91,7 +92,7 @@ pub struct CellAt {
 }
 
 /// A run of text that belongs together. No statement ever crosses the border of a block.
-#[derive(Clone, Debug)]
+#[derive(Clone, Debug, PartialEq, Serialize, Deserialize)]
 pub struct Block {
     pub kind: BlockKind,
     pub part: Part,
@@ -114,14 +115,14 @@ impl Block {
 }
 
 /// A heading and its depth, in document order.
-#[derive(Clone, Debug)]
+#[derive(Clone, Debug, PartialEq, Serialize, Deserialize)]
 pub struct Section {
     pub title: String,
     pub level: u8,
 }
 
 /// One cell of a table grid.
-#[derive(Clone, Debug)]
+#[derive(Clone, Debug, PartialEq, Serialize, Deserialize)]
 pub struct Cell {
     /// Row and column of its upper left corner in the grid, from 0.
     pub row: u32,
@@ -135,7 +136,7 @@ pub struct Cell {
 }
 
 /// A table as a grid: merged cells stand once, with their spans.
-#[derive(Clone, Debug)]
+#[derive(Clone, Debug, PartialEq, Serialize, Deserialize)]
 pub struct Table {
     /// Its label as printed, e.g. `Table 2`.
     pub label: Option<String>,
@@ -148,15 +149,16 @@ pub struct Table {
 }
 
 /// From this byte of the text on, characters stand on this page and line.
-#[derive(Clone, Copy, Debug, PartialEq)]
+#[derive(Clone, Copy, Debug, PartialEq, Serialize, Deserialize)]
 struct Mark {
     at: usize,
     page: Option<u32>,
     line: Option<u32>,
 }
 
-/// One input document after reading.
-#[derive(Clone, Debug)]
+/// One input document after reading. It is read in a process of its own where the format is not to be
+/// trusted, and handed over whole: every type in it can be serialised.
+#[derive(Clone, Debug, PartialEq, Serialize, Deserialize)]
 pub struct Manuscript {
     pub format: Format,
     /// The text as read. Blocks are separated by blank lines, cells of a row by tabs.

@@ -35,6 +35,8 @@ pub struct Limits {
     pub glyphs_per_page: usize,
     /// Forms drawn for one page, those drawn by forms included.
     pub forms_per_page: u64,
+    /// Pages beyond this are left out. Whoever reads contained has more patience
+    /// ([`contained::Limits`](crate::readers::contained::Limits)), so that what was read is kept.
     pub time: Duration,
 }
 
@@ -45,7 +47,7 @@ impl Default for Limits {
             calls_per_page: 2_000_000,
             glyphs_per_page: 100_000,
             forms_per_page: 100_000,
-            time: Duration::from_secs(60),
+            time: Duration::from_secs(40),
         }
     }
 }

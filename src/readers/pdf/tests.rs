@@ -3,6 +3,15 @@
 use super::sample::{At, at, bold, content, pdf, sized};
 use super::*;
 use crate::manuscript::Part;
+use std::time::Duration;
+
+/// Both ways, one after the other.
+fn read(bytes: &[u8]) -> Result<Manuscript, Unreadable> {
+    super::read(bytes).or_else(|failure| match failure {
+        Failure::TryRescue => rescue(bytes),
+        Failure::Unreadable(reason) => Err(reason),
+    })
+}
 
 fn read_pages(pages: &[Vec<At>]) -> Manuscript {
     let contents: Vec<String> = pages.iter().map(|p| content(p)).collect();
