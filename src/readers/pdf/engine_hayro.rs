@@ -4,6 +4,7 @@
 //! Every call of the engine is counted, and beyond [`Limits`] the page is given up by unwinding
 //! through the engine, which has no other way to be stopped.
 
+use super::engine_paths;
 use super::glyphs::{FontUse, Glyph, Glyphs, Meaning, PageGlyphs, Shape, Step, Turn};
 use super::nesting::Forms;
 use hayro_interpret::font::{Glyph as Drawn, GlyphIdentifier, GlyphRun};
@@ -315,8 +316,9 @@ impl<'a> Device<'a> for Taker {
         self.page.image = true;
     }
 
-    fn draw_path(&mut self, _: &BezPath, _: DrawProps<'a>, _: &DrawMode) {
+    fn draw_path(&mut self, path: &BezPath, props: DrawProps<'a>, mode: &DrawMode) {
         self.count(1);
+        engine_paths::take(&mut self.page.rules, path, &props, mode);
     }
 
     fn push_clip_path(&mut self, _: &ClipPath) {

@@ -5,6 +5,8 @@
 //! Coordinates are points in the *reading frame*: the page turned so that its text runs from left
 //! to right, x to the right and y downwards from the upper left corner. [`Turn`] maps back.
 
+use super::tables::Rules;
+
 /// What the file's text layer says a glyph means.
 #[derive(Clone, Debug, PartialEq)]
 pub enum Meaning {
@@ -145,6 +147,8 @@ pub struct PageGlyphs {
     pub width: f32,
     pub height: f32,
     pub glyphs: Vec<Glyph>,
+    /// Lines and bars, with the page upright ([`Turn::None`]).
+    pub rules: Rules,
     /// The page shows at least one image.
     pub image: bool,
     /// Interpretation was given up before the end of the page.
