@@ -4,8 +4,8 @@
 use super::lines::{Shift, Word};
 use super::paragraphs::{Block, Body};
 use super::roles;
-use super::tables::compose::Tables;
 use super::tables::Table;
+use super::tables::compose::Tables;
 use crate::manuscript::{BlockKind, Builder, Part};
 use crate::readers::headings::{self, Parts};
 

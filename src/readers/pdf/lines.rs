@@ -100,7 +100,10 @@ pub fn rows(mut pieces: Vec<Piece>) -> Vec<Vec<Piece>> {
 
 /// Makes a line of the pieces of one row.
 pub fn line(row: &[Piece], page: &PageGlyphs, glyphs: &Glyphs) -> Option<Line> {
-    if let Some(Piece { table: Some(table), .. }) = row.first() {
+    if let Some(Piece {
+        table: Some(table), ..
+    }) = row.first()
+    {
         return Some(Line {
             page: page.number,
             words: Vec::new(),

@@ -16,7 +16,7 @@ static NUMBERING: LazyLock<Regex> = LazyLock::new(|| {
 });
 static CAPTION: LazyLock<Regex> = LazyLock::new(|| {
     pattern(
-        r"(?i)^(?:supplementa(?:ry|l)\s+|extended\s+data\s+|online\s+|web\s+|appendix\s+)?(figure|fig\.|fig|e?table|tab\.|abbildung|abb\.|tabelle|tableau|tabla|figura|tabela|scheme|box)\s*(?:[A-Z]{0,2}[.-]?\d{1,3}(?:\.\d{1,2})?[a-z]?|[IVX]{1,5})\b",
+        r"(?i)^(?:supplementa(?:ry|l)\s+|extended\s+data\s+|online\s+|web\s+|appendix\s+)?(figure|fig\.|fig|e?table|tab\.|abbildung|abb\.|tabelle|tableau|tabla|figura|tabela|scheme|box)\s*(?:[A-Z]{0,2}[.-]?\d{1,3}(?:[.-]\d{1,2})?[a-z]?|[IVX]{1,5})\b",
     )
 });
 static NOTE: LazyLock<Regex> = LazyLock::new(|| pattern(r"^(?:Notes?\s*[.:]|NOTES?\s*[.:]|Anmerkung)"));

@@ -37,7 +37,11 @@ pub fn find(sheet: &Sheet, area: &Area, bottom: f32, used: &[usize], others: &[A
         .min_by(|a, b| sheet.captions[*a].area[1].total_cmp(&sheet.captions[*b].area[1]))?;
     let found = below_cells(sheet, below);
     // It may be the caption of the next table, then it stands nearer to that one.
-    let end = found.pieces.iter().map(|i| sheet.pieces[*i].area[3]).fold(f32::MIN, f32::max);
+    let end = found
+        .pieces
+        .iter()
+        .map(|i| sheet.pieces[*i].area[3])
+        .fold(f32::MIN, f32::max);
     let gap = sheet.captions[below].area[1] - bottom;
     let nearer = others
         .iter()
@@ -75,13 +79,15 @@ fn above_cells(sheet: &Sheet, start: usize, area: &Area) -> Option<Found> {
             if *i != caption.piece && sheet.is_caption_start(piece) {
                 return None;
             }
-            if piece.area[1] - last > 1.3 * sheet.size {
+            // A short title may stand between caption and cells.
+            let title = row.len() == 1 && piece.glyphs.len() <= 40;
+            if piece.area[1] - last > if title { 3.2 } else { 1.3 } * sheet.size {
                 return None;
             }
         }
         last = row.iter().map(|i| sheet.pieces[*i].area[3]).fold(last, f32::max);
     }
-    (area[1] - last < 2.6 * sheet.size).then_some(Found {
+    (area[1] - last < 4.0 * sheet.size).then_some(Found {
         start: Some(start),
         pieces,
         below: false,
@@ -134,7 +140,10 @@ pub fn notes(sheet: &Sheet, area: &Area, cell_size: f32) -> Vec<usize> {
         let top = line.area[1];
         let begins = content::begins_note(line);
         let smaller = line.size < 0.93 * sheet.size && line.size < 1.02 * cell_size;
-        if row.iter().any(|i| sheet.is_caption_start(&sheet.pieces[*i])) || line.area[0] > area[2] || line.area[2] < area[0] {
+        if row.iter().any(|i| sheet.is_caption_start(&sheet.pieces[*i]))
+            || line.area[0] > area[2]
+            || line.area[2] < area[0]
+        {
             break;
         }
         let first = out.is_empty();

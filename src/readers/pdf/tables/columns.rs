@@ -26,11 +26,20 @@ impl Seams {
     ///
     /// `heads` have no voice either, but where a seam may stand in a wide strip, it stands clear of them.
     pub fn find(lines: &[&Line], heads: &[Line], walls: Vec<f32>, m: Measure) -> Seams {
-        let rows: Vec<Vec<Chunk>> = lines
-            .iter()
-            .map(|l| chunks(l, m.space, &walls))
-            .filter(|c| c.len() >= 2)
-            .collect();
+        let mut rows: Vec<Vec<Chunk>> = Vec::new();
+        for (i, line) in lines.iter().enumerate() {
+            let mut here = chunks(line, m.space, &walls);
+            let overlaps = i > 0 && line.baseline - lines[i - 1].baseline < 0.85 * m.size;
+            // A label half-way between two lines speaks with the one above.
+            match rows.last_mut() {
+                Some(row) if overlaps && (row.len() == 1 || here.len() == 1) => row.append(&mut here),
+                _ => rows.push(here),
+            }
+        }
+        rows.retain(|c| c.len() >= 2);
+        for row in &mut rows {
+            row.sort_by(|a, b| a.left.total_cmp(&b.left));
+        }
         let mut at = strips(&rows, m);
         // A wall inside a strip is the seam itself.
         at.retain(|s| !walls.iter().any(|w| *w >= s.0 - 1.0 && *w <= s.1 + 1.0));
@@ -63,10 +72,7 @@ impl Seams {
         let mut out = vec![chunk.clone()];
         for i in chunk.words.start + 1..chunk.words.end {
             let (before, after) = (line.words[i - 1].area[2], line.words[i].area[0]);
-            let over = self
-                .at
-                .iter()
-                .any(|s| *s > before - 0.5 && *s < after + 0.5);
+            let over = self.at.iter().any(|s| *s > before - 0.5 && *s < after + 0.5);
             if over && after - before >= least {
                 let last = out.len() - 1;
                 out[last].words.end = i;

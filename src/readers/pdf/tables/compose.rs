@@ -87,7 +87,11 @@ fn write(b: &mut Builder, parts: &[(&Table, u32)]) {
     };
     let captions = |b: &mut Builder, part: &(&Table, u32), about: &mut Description| {
         let (table, number) = part;
-        let from = if table.below { number + table.lines as u32 } else { *number };
+        let from = if table.below {
+            number + table.lines as u32
+        } else {
+            *number
+        };
         text(b, BlockKind::Caption, &table.caption, from, table.page, about);
     };
     if !first.below {
@@ -99,7 +103,11 @@ fn write(b: &mut Builder, parts: &[(&Table, u32)]) {
         let grid = &table.grid;
         let repeated = k > 0 && grid.header_rows > 0 && heads(&first.grid) == heads(grid);
         let skip = if repeated { grid.header_rows } else { 0 };
-        let from = if table.below { *number } else { number + table.caption.len() as u32 };
+        let from = if table.below {
+            *number
+        } else {
+            number + table.caption.len() as u32
+        };
         rows(b, table, skip, from);
     }
     b.close_table();
@@ -111,9 +119,19 @@ fn write(b: &mut Builder, parts: &[(&Table, u32)]) {
         let from = number + (table.lines + table.caption.len()) as u32;
         let mut at = 0;
         while at < table.notes.len() {
-            let n = 1 + table.notes[at + 1..].iter().take_while(|l| !begins_note(l)).count();
+            let n = 1 + table.notes[at + 1..]
+                .iter()
+                .take_while(|l| !begins_note(l))
+                .count();
             let lines = &table.notes[at..at + n];
-            text(b, BlockKind::TableNote, lines, from + at as u32, table.page, &mut about);
+            text(
+                b,
+                BlockKind::TableNote,
+                lines,
+                from + at as u32,
+                table.page,
+                &mut about,
+            );
             at += n;
         }
     }

@@ -79,8 +79,30 @@ pub fn is_value(text: &str) -> bool {
 fn is_blank_mark(text: &str) -> bool {
     matches!(
         text,
-        "-" | "–" | "—" | "−" | "–." | "…" | "..." | "." | "n.s." | "ns" | "NA" | "n/a" | "N/A" | "n.a."
-            | "NS" | "Ref." | "Ref" | "ref" | "ref." | "Yes" | "No" | "x" | "X" | "✓" | "NaN"
+        "-" | "–"
+            | "—"
+            | "−"
+            | "–."
+            | "…"
+            | "..."
+            | "."
+            | "n.s."
+            | "ns"
+            | "NA"
+            | "n/a"
+            | "N/A"
+            | "n.a."
+            | "NS"
+            | "Ref."
+            | "Ref"
+            | "ref"
+            | "ref."
+            | "Yes"
+            | "No"
+            | "x"
+            | "X"
+            | "✓"
+            | "NaN"
     )
 }
 
@@ -120,11 +142,17 @@ pub fn space_of<'a>(lines: impl Iterator<Item = &'a Line>, size: f32) -> f32 {
         let count: usize = word.parts.iter().map(|(_, t)| t.chars().count()).sum();
         if count >= 3 {
             let each = (word.area[2] - word.area[0]) / count as f32 / size;
-            same += usize::from((0.5..0.7).contains(&each) && ((each - 0.6).abs() < 0.012 || (each - 0.525).abs() < 0.006));
+            same += usize::from(
+                (0.5..0.7).contains(&each) && ((each - 0.6).abs() < 0.012 || (each - 0.525).abs() < 0.006),
+            );
             all += 1;
         }
     }
-    if all >= 4 && same * 10 >= all * 9 { 0.95 * size } else { 0.45 * size }
+    if all >= 4 && same * 10 >= all * 9 {
+        0.95 * size
+    } else {
+        0.45 * size
+    }
 }
 
 #[cfg(test)]
@@ -133,7 +161,18 @@ mod tests {
 
     #[test]
     fn values_and_labels() {
-        for value in ["12.3", ".45***", "12 (40.0%)", "[0.10, 0.47]", "< .001", "—", "1,294", "−.29", "12 ± 3", "2.61a"] {
+        for value in [
+            "12.3",
+            ".45***",
+            "12 (40.0%)",
+            "[0.10, 0.47]",
+            "< .001",
+            "—",
+            "1,294",
+            "−.29",
+            "12 ± 3",
+            "2.61a",
+        ] {
             assert!(is_value(value), "{value}");
         }
         for label in ["North", "M", "Study 2", "Litres (n = 30)", "Age, years", ""] {
@@ -143,7 +182,14 @@ mod tests {
 
     #[test]
     fn notes_by_their_first_words() {
-        for note in ["Note. SD in brackets.", "* p < .05", "*p < .05. **p < .01", "† Two beds", "Notes: as above", "Source: the diaries"] {
+        for note in [
+            "Note. SD in brackets.",
+            "* p < .05",
+            "*p < .05. **p < .01",
+            "† Two beds",
+            "Notes: as above",
+            "Source: the diaries",
+        ] {
             assert!(NOTE.is_match(note), "{note}");
         }
         for other in ["Noted above", "Model 1", "p", "North 12.3"] {

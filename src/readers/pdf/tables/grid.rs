@@ -53,6 +53,8 @@ pub struct Draft<'a> {
     /// Shorter ones.
     pub part: Vec<Area>,
     pub down: Vec<Area>,
+    /// Left and right end.
+    pub sides: [f32; 2],
     pub placed: Vec<Vec<Placed>>,
     /// The number of lines that are heads of columns.
     pub heads: usize,
@@ -100,6 +102,7 @@ impl<'a> Draft<'a> {
             full,
             part,
             down: down.to_vec(),
+            sides: [area[0], area[2]],
             placed: Vec::new(),
             heads: 0,
         };
@@ -135,7 +138,12 @@ impl<'a> Draft<'a> {
                             o.chunk.words.end = chunk.words.end;
                             o.chunk.right = chunk.right;
                         }
-                        _ => out.push(Placed { line: index, chunk, first, last }),
+                        _ => out.push(Placed {
+                            line: index,
+                            chunk,
+                            first,
+                            last,
+                        }),
                     }
                 }
             }
@@ -150,9 +158,16 @@ impl<'a> Draft<'a> {
     /// two.
     fn widen(&self, placed: &mut [Placed], walls: &[f32]) {
         let gap = |c: usize| self.seams.walled(c) && !walls.contains(&self.seams.at[c]);
-        let own: Vec<(usize, usize, f32)> = placed.iter().map(|p| (p.first, p.last, p.chunk.middle())).collect();
+        let own: Vec<(usize, usize, f32)> = placed
+            .iter()
+            .map(|p| (p.first, p.last, p.chunk.middle()))
+            .collect();
         let nearest = |k: usize, column: usize| {
-            let left = if column == 0 { f32::MIN } else { self.seams.at[column - 1] };
+            let left = if column == 0 {
+                f32::MIN
+            } else {
+                self.seams.at[column - 1]
+            };
             let right = self.seams.at.get(column).copied().unwrap_or(f32::MAX);
             let middle = match (left > f32::MIN, right < f32::MAX) {
                 (true, true) => (left + right) / 2.0,
@@ -160,7 +175,8 @@ impl<'a> Draft<'a> {
                 _ => right,
             };
             own.iter().enumerate().all(|(o, (first, last, m))| {
-                o == k || !(*first..=*last).contains(&column) && (m - middle).abs() > (own[k].2 - middle).abs()
+                o == k
+                    || !(*first..=*last).contains(&column) && (m - middle).abs() > (own[k].2 - middle).abs()
             })
         };
         for (k, p) in placed.iter_mut().enumerate() {
@@ -227,10 +243,16 @@ impl<'a> Draft<'a> {
         };
         let all = |texts: &[String], look: &dyn Fn(&str) -> bool| texts.iter().all(|t| look(t.trim()));
         let marks = |t: &str| {
-            t.chars()
-                .all(|c| matches!(c, '*' | '∗' | '†' | '‡' | '§' | '+') || c.is_ascii_lowercase() && t.len() == 1)
+            t.chars().all(|c| {
+                matches!(c, '*' | '∗' | '†' | '‡' | '§' | '+') || c.is_ascii_lowercase() && t.len() == 1
+            })
         };
-        let signs = |t: &str| matches!(t, "±" | "–" | "-" | "—" | "to" | "," | "/" | "(" | "[" | ")" | "]" | ";");
+        let signs = |t: &str| {
+            matches!(
+                t,
+                "±" | "–" | "-" | "—" | "to" | "," | "/" | "(" | "[" | ")" | "]" | ";"
+            )
+        };
         let open = |t: &str| {
             let count = |c: char| t.matches(c).count();
             count('(') > count(')') || count('[') > count(']')
@@ -286,7 +308,11 @@ fn walls(area: &Area, down: &[Area], size: f32) -> Vec<f32> {
             None => at.push((rule[0], long)),
         }
     }
-    let mut out: Vec<f32> = at.iter().filter(|(_, sum)| *sum > 0.33 * height).map(|(x, _)| *x).collect();
+    let mut out: Vec<f32> = at
+        .iter()
+        .filter(|(_, sum)| *sum > 0.33 * height)
+        .map(|(x, _)| *x)
+        .collect();
     out.sort_by(f32::total_cmp);
     out
 }
@@ -302,7 +328,10 @@ fn head_by_rule(lines: &[Line], full: &[f32]) -> Option<usize> {
     let mut rules = full.iter().copied().skip_while(|r| above(*r) == 0);
     let mut heads = above(rules.next()?);
     // More lines than that, or lines of values, are rows.
-    if heads > 6 || heads >= lines.len() || lines[..heads].iter().skip(1).any(values) {
+    let last = heads - 1;
+    let numbered = heads >= 2 && !values(&lines[last - 1]);
+    let inner = if numbered { last } else { heads };
+    if heads > 6 || heads >= lines.len() || lines[..inner].iter().skip(1).any(values) {
         return None;
     }
     for rule in rules {
@@ -314,7 +343,10 @@ fn head_by_rule(lines: &[Line], full: &[f32]) -> Option<usize> {
         let bare = band
             .iter()
             .all(|l| l.pieces >= 2 && !l.words.iter().any(|w| is_value(&w.text())));
-        let valued = lines[next..].iter().take(3).any(|l| l.words.iter().any(|w| is_value(&w.text())));
+        let valued = lines[next..]
+            .iter()
+            .take(3)
+            .any(|l| l.words.iter().any(|w| is_value(&w.text())));
         if band.len() > 2 || !bare || !valued {
             break;
         }

@@ -58,7 +58,13 @@ fn rule_below(draft: &Draft, line: usize, chunk: &Chunk) -> Option<(f32, f32)> {
         .part
         .iter()
         // Under two heads it says nothing about either.
-        .filter(|r| others.iter().filter(|o| o.middle() > r[0] && o.middle() < r[2]).count() == 1)
+        .filter(|r| {
+            others
+                .iter()
+                .filter(|o| o.middle() > r[0] && o.middle() < r[2])
+                .count()
+                == 1
+        })
         .filter(|r| r[1] > own.baseline - 0.2 * own.size && r[1] < next.min(own.baseline + 1.6 * own.size))
         .find(|r| {
             let slack = 0.6 * own.size;
@@ -171,15 +177,21 @@ fn bands(draft: &Draft) -> Vec<(std::ops::Range<usize>, Vec<Head>)> {
     let mut out: Vec<(std::ops::Range<usize>, Vec<Head>)> = Vec::new();
     for index in 0..draft.heads {
         let line = &draft.lines[index];
-        let overlaps = index > 0 && line.baseline - draft.lines[index - 1].baseline < 0.85 * draft.measure.size;
+        let overlaps =
+            index > 0 && line.baseline - draft.lines[index - 1].baseline < 0.85 * draft.measure.size;
         if !overlaps || out.is_empty() {
             out.push((index..index, Vec::new()));
         }
-        let Some((lines, heads)) = out.last_mut() else { continue };
+        let Some((lines, heads)) = out.last_mut() else {
+            continue;
+        };
         lines.end = index + 1;
         for p in &draft.placed[index] {
             let part = (index, p.chunk.words.clone());
-            match heads.iter_mut().find(|h| h.left < p.chunk.right && h.right > p.chunk.left) {
+            match heads
+                .iter_mut()
+                .find(|h| h.left < p.chunk.right && h.right > p.chunk.left)
+            {
                 Some(head) => {
                     head.parts.push(part);
                     head.left = head.left.min(p.chunk.left);
@@ -227,7 +239,8 @@ fn spread_over(draft: &Draft, heads: &mut [Head], next: &[Head]) -> bool {
             .filter(|n| {
                 let distance = |m: f32| (n.middle() - m).abs();
                 let own = distance(middles[k]);
-                (k == 0 || own <= distance(middles[k - 1])) && (k + 1 == middles.len() || own <= distance(middles[k + 1]))
+                (k == 0 || own <= distance(middles[k - 1]))
+                    && (k + 1 == middles.len() || own <= distance(middles[k + 1]))
             })
             .collect();
         let mut best: Option<(f32, usize, usize)> = None;
@@ -249,14 +262,22 @@ fn spread_over(draft: &Draft, heads: &mut [Head], next: &[Head]) -> bool {
         }
         // A head right above a single one is the first line of it.
         let alone = mine.iter().any(|n| {
-            (head.left - n.left).abs() < 0.3 * size || (head.right - n.right).abs() < 0.3 * size || (head.middle() - n.middle()).abs() < 0.3 * size
+            (head.left - n.left).abs() < 0.3 * size
+                || (head.right - n.right).abs() < 0.3 * size
+                || (head.middle() - n.middle()).abs() < 0.3 * size
         });
         let close = best.is_some_and(|b| b.0 < 0.9 * size);
         let reaches = head.last > head.first;
-        let covered = mine.iter().filter(|n| n.first >= head.first && n.last <= head.last).count();
+        let covered = mine
+            .iter()
+            .filter(|n| n.first >= head.first && n.last <= head.last)
+            .count();
         found.push(match best {
             Some((off, first, last))
-                if close && (!alone || reaches || off < 0.5 * size && heads.len() >= 2 && heads.len() * 2 <= next.len()) =>
+                if close
+                    && (!alone
+                        || reaches
+                        || off < 0.5 * size && heads.len() >= 2 && heads.len() * 2 <= next.len()) =>
             {
                 Some((first.min(head.first), last.max(head.last)))
             }

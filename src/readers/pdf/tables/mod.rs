@@ -64,7 +64,14 @@ impl Table {
 
 /// Takes the tables of a page out of its pieces, adds them to those of earlier pages, and leaves pieces
 /// that keep their place. `size` is the one that most of the document is set in.
-pub fn take(page: &PageGlyphs, glyphs: &Glyphs, pieces: &mut Vec<Piece>, turn: Turn, size: f32, all: &mut Vec<Table>) {
+pub fn take(
+    page: &PageGlyphs,
+    glyphs: &Glyphs,
+    pieces: &mut Vec<Piece>,
+    turn: Turn,
+    size: f32,
+    all: &mut Vec<Table>,
+) {
     if pieces.len() < 5 {
         return;
     }
@@ -72,7 +79,9 @@ pub fn take(page: &PageGlyphs, glyphs: &Glyphs, pieces: &mut Vec<Piece>, turn: T
     let sheet = Sheet::new(page, glyphs, std::mem::take(pieces), turn, size);
     let mut found = Search::new(&sheet, all.last());
     found.run();
-    let Search { tables, taken, areas, .. } = found;
+    let Search {
+        tables, taken, areas, ..
+    } = found;
     let mut rest: Vec<Piece> = Vec::with_capacity(sheet.pieces.len());
     let mut stand_ins = Vec::new();
     for (i, (table, area)) in tables.iter().zip(&areas).enumerate() {
@@ -137,13 +146,22 @@ impl<'s, 'a> Search<'s, 'a> {
             return;
         }
         let free = |i: &usize| !self.taken[*i];
-        let reach = [region.area[0] - 1.0, region.area[1], region.area[2] + 1.0, region.area[3]];
+        let reach = [
+            region.area[0] - 1.0,
+            region.area[1],
+            region.area[2] + 1.0,
+            region.area[3],
+        ];
         let mut cells: Vec<usize> = sheet.pieces_in(&reach).into_iter().filter(free).collect();
         // A caption between the first two rules.
         let mut caption = self.caption_inside(region, &mut cells);
         let mut area = region.area;
         if let Some(c) = &caption {
-            let bottom = c.pieces.iter().map(|i| sheet.pieces[*i].area[3]).fold(f32::MIN, f32::max);
+            let bottom = c
+                .pieces
+                .iter()
+                .map(|i| sheet.pieces[*i].area[3])
+                .fold(f32::MIN, f32::max);
             area[1] = area[1].max(bottom);
         }
         let mut lines = sheet.lines(&cells);
@@ -159,8 +177,14 @@ impl<'s, 'a> Search<'s, 'a> {
         };
         let grid = draft.grid();
         let own = |i: &usize| !self.taken[*i] && !cells.contains(i);
-        let mut below: Vec<usize> = captions::notes(sheet, &area, draft.measure.size).into_iter().filter(own).collect();
-        let bottom = below.iter().map(|i| sheet.pieces[*i].area[3]).fold(area[3], f32::max);
+        let mut below: Vec<usize> = captions::notes(sheet, &area, draft.measure.size)
+            .into_iter()
+            .filter(own)
+            .collect();
+        let bottom = below
+            .iter()
+            .map(|i| sheet.pieces[*i].area[3])
+            .fold(area[3], f32::max);
         caption = caption.or_else(|| captions::find(sheet, &area, bottom, &self.captions_used, others));
         if let Some(c) = &mut caption {
             c.pieces.retain(|i| !self.taken[*i] && !cells.contains(i));
@@ -175,20 +199,25 @@ impl<'s, 'a> Search<'s, 'a> {
         let hull = cells.iter().map(|i| sheet.pieces[*i].area).fold(area, union);
         let above = |i: &usize| sheet.pieces[*i].area[3] < hull[1] && !self.taken[*i];
         let below_all = |i: &usize| sheet.pieces[*i].area[1] > hull[3] && !below.contains(i);
-        let at_top = !(0..sheet.pieces.len()).any(|i| above(&i) && caption.as_ref().is_none_or(|c| !c.pieces.contains(&i)));
+        let at_top = !(0..sheet.pieces.len())
+            .any(|i| above(&i) && caption.as_ref().is_none_or(|c| !c.pieces.contains(&i)));
         let at_bottom = !(0..sheet.pieces.len()).any(|i| below_all(&i));
-        let goes_on = at_top && caption.is_none() && self.before.is_some_and(|t| t.could_go_on(sheet.page.number, sides) && t.grid.columns == grid.columns);
+        let goes_on = at_top
+            && caption.is_none()
+            && self
+                .before
+                .is_some_and(|t| t.could_go_on(sheet.page.number, sides) && t.grid.columns == grid.columns);
         let evidence = Evidence {
             captioned: caption.is_some() || goes_on,
             figure,
             rules: rules.len(),
             walls: draft.seams.walls.len(),
             drawings: sheet.drawings(&area),
-            open_top: region.rules.first().is_some_and(|r| lines[0].baseline < r[1] + 0.5),
+            open_top: region
+                .rules
+                .first()
+                .is_some_and(|r| lines[0].baseline < r[1] + 0.5),
         };
-        if std::env::var_os("GRID_DEBUG").is_some() {
-            eprintln!("p{} {:?} {evidence:?} {}x{} heads {}", sheet.page.number, region.area, grid.rows, grid.columns, grid.header_rows);
-        }
         if !plausible::is_table(&grid, evidence) {
             return;
         }

@@ -32,7 +32,13 @@ pub fn is_table(grid: &Grid, e: Evidence) -> bool {
         room += cell.colspan * cell.rowspan;
         in_row[cell.row] += 1;
         let sentence = cell.text.iter().map(|(_, w)| w.len()).sum::<usize>() >= 7
-            && is_prose(&cell.text.iter().flat_map(|(_, w)| w.iter().cloned()).collect::<Vec<_>>());
+            && is_prose(
+                &cell
+                    .text
+                    .iter()
+                    .flat_map(|(_, w)| w.iter().cloned())
+                    .collect::<Vec<_>>(),
+            );
         prose += usize::from(sentence);
         if cell.row >= grid.header_rows && cell.column > 0 {
             cells += 1;
@@ -41,6 +47,22 @@ pub fn is_table(grid: &Grid, e: Evidence) -> bool {
     }
     let values = values as f32 / cells.max(1) as f32;
     let prose = prose as f32 / grid.cells.len().max(1) as f32;
+    let wide = grid
+        .cells
+        .iter()
+        .filter(|c| c.row >= grid.header_rows && c.colspan > 1 && c.colspan < grid.columns)
+        .count();
+    let head = grid.cells.iter().filter(|c| c.header).count();
+    let head_texts = || grid.cells.iter().filter(|c| c.header).map(|c| c.plain());
+    let head_values = head_texts().filter(|t| is_value(t)).count();
+    let numbers: Vec<i64> = head_texts().filter_map(|t| t.parse().ok()).collect();
+    let counted = numbers.len() == head_values
+        && matches!(numbers.first(), Some(0 | 1))
+        && numbers.windows(2).all(|w| w[1] == w[0] + 1);
+    let code = grid.cells.iter().any(|c| {
+        let text = c.plain();
+        text.starts_with("> ") || text.starts_with("R> ") || text.contains("<-") || text.contains("():")
+    });
     let filled = room as f32 / (grid.rows * grid.columns) as f32;
     let several = in_row[grid.header_rows..].iter().filter(|n| **n >= 2).count();
     if several == 0 || several * 5 < rows * 2 {
@@ -56,12 +78,17 @@ pub fn is_table(grid: &Grid, e: Evidence) -> bool {
             several >= 2 && values >= 0.4 && prose < 0.2 && filled > 0.4
         };
     }
-    if e.figure || e.drawings > 6 {
+    // The ticks of axes are values without heads and at no columns; code and what it prints is no
+    // table of the author's.
+    let ticks =
+        head > 0 && head_values * 3 > head * 2 && !(counted && e.rules >= 3) || wide * 4 > grid.cells.len();
+    if e.figure || e.drawings > 6 || code || ticks {
         return false;
     }
     // A frame around every cell.
     if e.walls > 0 && e.walls + 1 >= grid.columns && e.rules >= 3 && several >= 2 && prose < 0.4 {
-        return filled > 0.5 && (values >= 0.35 || e.rules >= grid.rows && grid.rows >= 3 && grid.header_rows > 0);
+        return filled > 0.5
+            && (values >= 0.35 || e.rules >= grid.rows && grid.rows >= 3 && grid.header_rows > 0);
     }
     let enough = if grid.columns == 2 {
         several >= 3 && values >= 0.8
@@ -71,7 +98,15 @@ pub fn is_table(grid: &Grid, e: Evidence) -> bool {
     let heads = grid.header_rows > 0;
     match e.rules {
         0 => false,
-        1 => e.open_top && heads && grid.columns >= 3 && several >= 3 && values >= 0.6 && filled > 0.7 && prose == 0.0,
+        1 => {
+            e.open_top
+                && heads
+                && grid.columns >= 3
+                && several >= 3
+                && values >= 0.6
+                && filled > 0.7
+                && prose == 0.0
+        }
         2 => e.open_top && heads && enough && grid.columns >= 3 && prose < 0.1,
         _ => heads && enough && prose < 0.2 && filled > 0.4,
     }

@@ -82,29 +82,43 @@ fn same_length(a: &Area, b: &Area) -> bool {
 
 /// Whether what stands between two rules could be cells.
 fn could_be_cells(sheet: &Sheet, area: Area, first: bool) -> bool {
-    let mut inside = sheet.inside(&area).peekable();
-    if inside.peek().is_none() {
-        return area[3] - area[1] < 2.6 * sheet.size;
+    let rows = sheet.row_pieces(area[0], area[2], area[1], area[3]);
+    let size = sheet.size;
+    if rows.is_empty() {
+        return area[3] - area[1] < 2.6 * size;
     }
     let width = area[2] - area[0];
-    let (mut glyphs, mut prose_glyphs, mut prose) = (0, 0, 0);
-    for piece in inside {
-        let size = sheet.size;
-        let beyond = piece.area[0] < area[0] - 1.5 * size || piece.area[2] > area[2] + 1.5 * size;
-        if beyond {
+    let (mut glyphs, mut prose_glyphs, mut prose, mut long) = (0, 0, 0, 0);
+    let mut last = area[1];
+    for row in &rows {
+        let top = row.iter().map(|p| p.area[1]).fold(f32::MAX, f32::min);
+        // Rows follow one another; what leaves more room is something else.
+        if top - last > 3.2 * size {
             return false;
         }
-        // The caption may stand below the first rule, nowhere else.
-        if sheet.is_caption_start(piece) && !(first && piece.baseline - area[1] < 2.2 * size) {
-            return false;
-        }
-        glyphs += piece.glyphs.len();
-        if piece.glyphs.len() >= 35 && piece.width() > 0.3 * width {
-            prose_glyphs += piece.glyphs.len();
-            prose += 1;
+        last = row.iter().map(|p| p.area[3]).fold(last, f32::max);
+        for piece in row {
+            let beyond = piece.area[0] < area[0] - 1.5 * size || piece.area[2] > area[2] + 1.5 * size;
+            if beyond {
+                return false;
+            }
+            // The caption may stand below the first rule, nowhere else.
+            if sheet.is_caption_start(piece) && !(first && piece.baseline - area[1] < 2.2 * size) {
+                return false;
+            }
+            glyphs += piece.glyphs.len();
+            // Behind a short label, long cells are no running text.
+            let first_long = row[0].glyphs.len() >= 25 || row.len() == 1;
+            if first_long && piece.glyphs.len() >= 35 && piece.width() > 0.3 * width {
+                prose_glyphs += piece.glyphs.len();
+                prose += 1;
+                long += usize::from(row.len() == 1);
+            }
         }
     }
-    !(prose >= 6 && prose_glyphs * 10 >= glyphs * 6)
+    let cells = rows.iter().any(|r| r.len() > 1);
+    let text = !cells && long > 0 && rows.len() >= 2 && !first;
+    area[3] - last < 3.2 * size && !text && !(prose >= 6 && prose_glyphs * 10 >= glyphs * 6)
 }
 
 /// A region with what belongs to it above and below: the heads above a single rule, the rows below
@@ -118,7 +132,12 @@ fn stretched(sheet: &Sheet, mut region: Region) -> Option<Region> {
         .filter(|p| p.baseline <= top && p.baseline > top - 1.3 * size)
         .collect();
     let short = |p: &&Piece| p.glyphs.len() <= 40;
-    let heads = above.len() >= 2 && above.iter().all(short) && above.iter().all(|p| sheet.within(p, left, right) && !sheet.is_caption_start(p));
+    let cells: usize = above.iter().map(|p| sheet.cells_of(p)).sum();
+    let heads = (above.len() >= 2 || cells >= 3)
+        && above.iter().all(short)
+        && above
+            .iter()
+            .all(|p| sheet.within(p, left, right) && !sheet.is_caption_start(p));
     if heads {
         region.area[1] = above.iter().map(|p| p.area[1]).fold(top, f32::min);
         // The heads may take more lines; one alone in its line does not stand at the left end.
@@ -131,7 +150,9 @@ fn stretched(sheet: &Sheet, mut region: Region) -> Option<Region> {
                 .collect();
             let heads = !more.is_empty()
                 && more.iter().all(short)
-                && more.iter().all(|p| sheet.within(p, left, right) && !sheet.is_caption_start(p))
+                && more
+                    .iter()
+                    .all(|p| sheet.within(p, left, right) && !sheet.is_caption_start(p))
                 && (more.len() > 1 || more[0].area[0] > left + 0.3 * (right - left));
             if !heads {
                 break;
@@ -164,7 +185,9 @@ pub fn captioned(sheet: &Sheet, taken: &[Area]) -> Vec<Region> {
         let (left, right) = (column[0] - 2.0, column[1] + 2.0);
         if let Some((top, bottom)) = sheet.rows_after(left, right, caption.last_baseline) {
             let inside = sheet.inside(&[left, top, right, bottom]);
-            let (l, r) = inside.fold((f32::MAX, f32::MIN), |(l, r), p| (l.min(p.area[0]), r.max(p.area[2])));
+            let (l, r) = inside.fold((f32::MAX, f32::MIN), |(l, r), p| {
+                (l.min(p.area[0]), r.max(p.area[2]))
+            });
             let rules = sheet
                 .rules
                 .across

@@ -35,7 +35,13 @@ pub struct Sheet<'a> {
 }
 
 impl<'a> Sheet<'a> {
-    pub fn new(page: &'a PageGlyphs, glyphs: &'a Glyphs, mut pieces: Vec<Piece>, turn: Turn, size: f32) -> Sheet<'a> {
+    pub fn new(
+        page: &'a PageGlyphs,
+        glyphs: &'a Glyphs,
+        mut pieces: Vec<Piece>,
+        turn: Turn,
+        size: f32,
+    ) -> Sheet<'a> {
         pieces.sort_by(|a, b| a.baseline.total_cmp(&b.baseline));
         let mut sheet = Sheet {
             page,
@@ -68,14 +74,19 @@ impl<'a> Sheet<'a> {
                 continue;
             }
             let text = piece.plain_text(self.page);
-            let Some(found) = roles::label(&text) else { continue };
+            let Some(found) = roles::label(&text) else {
+                continue;
+            };
             if !found.table {
                 self.figures.push(piece.area);
                 continue;
             }
             let rest = text[found.range.end..].trim_start();
             let low = rest.starts_with(|c: char| c.is_lowercase()) || rest.starts_with([',', ')', ';']);
-            let continued = rest.to_lowercase().trim_start_matches(['(', '.', ' ', '-', '—', '–', ',', ':']).starts_with("cont");
+            let continued = rest
+                .to_lowercase()
+                .trim_start_matches(['(', '.', ' ', '-', '—', '–', ',', ':'])
+                .starts_with("cont");
             if low && !continued || self.in_running_text(index, rest) {
                 continue;
             }
@@ -129,6 +140,20 @@ impl<'a> Sheet<'a> {
         self.captions.iter().any(|c| same(&c.area)) || self.figures.iter().any(same)
     }
 
+    /// How many cells a piece may hold: tight columns have gaps hardly wider than words.
+    pub fn cells_of(&self, piece: &Piece) -> usize {
+        let mut cells = 1;
+        let mut right = f32::MAX;
+        for g in piece.glyphs.iter().map(|g| &self.page.glyphs[*g as usize]) {
+            if g.meaning.is_space() {
+                continue;
+            }
+            cells += usize::from(g.x0 - right > 0.8 * piece.size);
+            right = g.x1;
+        }
+        cells
+    }
+
     pub fn within(&self, piece: &Piece, left: f32, right: f32) -> bool {
         piece.area[0] >= left - 1.2 * self.size && piece.area[2] <= right + 1.2 * self.size
     }
@@ -169,7 +194,7 @@ impl<'a> Sheet<'a> {
     }
 
     /// The pieces of an area in rows of nearly the same baseline.
-    fn row_pieces(&self, left: f32, right: f32, top: f32, bottom: f32) -> Vec<Vec<&Piece>> {
+    pub fn row_pieces(&self, left: f32, right: f32, top: f32, bottom: f32) -> Vec<Vec<&Piece>> {
         let mut rows: Vec<Vec<&Piece>> = Vec::new();
         for piece in self.inside(&[left, top, right, bottom]) {
             match rows.last_mut() {
@@ -188,14 +213,36 @@ impl<'a> Sheet<'a> {
             .copied()
     }
 
-    /// The column of text that something stands in, or the whole width of the text.
+    /// The column of text that something stands in: one of the page's, or what the text beside and
+    /// above it leaves, or the whole width of the text.
     pub fn column_of(&self, area: &Area) -> [f32; 2] {
-        self.own_column(area)
-            .unwrap_or_else(|| {
-                self.pieces
-                    .iter()
-                    .fold([f32::MAX, f32::MIN], |w, p| [w[0].min(p.area[0]), w[1].max(p.area[2])])
-            })
+        self.own_column(area).unwrap_or_else(|| self.room_of(area))
+    }
+
+    fn room_of(&self, area: &Area) -> [f32; 2] {
+        let mut room = self.pieces.iter().fold([f32::MAX, f32::MIN], |w, p| {
+            [w[0].min(p.area[0]), w[1].max(p.area[2])]
+        });
+        let gap = 0.6 * self.size;
+        let (mut left, mut right, mut across) = ((0, f32::MIN), (0, f32::MAX), 0);
+        let window = [f32::MIN, area[1] - 8.0 * self.size, f32::MAX, area[3]];
+        for p in self.inside(&window) {
+            if p.area[2] < area[0] - gap {
+                left = (left.0 + 1, f32::max(left.1, p.area[2]));
+            } else if p.area[0] > area[2] + gap {
+                right = (right.0 + 1, f32::min(right.1, p.area[0]));
+            } else if p.area[0] < area[0] - 2.0 * gap || p.area[2] > area[2] + 2.0 * gap {
+                across += 1;
+            }
+        }
+        // One line may be the end of a paragraph, several are a column.
+        if left.0 >= 3 && left.0 > across {
+            room[0] = left.1 + gap;
+        }
+        if right.0 >= 3 && right.0 > across {
+            room[1] = right.1 - gap;
+        }
+        room
     }
 
     /// The lower end of the rows of cells that begin right below a height, if there are at least so
@@ -232,7 +279,14 @@ impl<'a> Sheet<'a> {
             if row[0].baseline - last > 3.2 * self.size {
                 return None;
             }
-            if self.row_look(row, left, right) == RowLook::Cells {
+            // Heads of two narrow columns may stand so close that they look like one label.
+            let heads = row.len() == 1
+                && row[0].glyphs.len() <= 60
+                && self.cells_of(row[0]) >= 2
+                && rows
+                    .get(i + 1)
+                    .is_some_and(|next| self.row_look(next, left, right) == RowLook::Cells);
+            if heads || self.row_look(row, left, right) == RowLook::Cells {
                 let top = row.iter().map(|p| p.area[1]).fold(f32::MAX, f32::min);
                 let bottom = self.rows_down(left, right, top, 3)?;
                 return Some((top, bottom));
@@ -247,18 +301,27 @@ impl<'a> Sheet<'a> {
 
     fn row_look(&self, row: &[&Piece], left: f32, right: f32) -> RowLook {
         let width = right - left;
-        let bad = row.iter().any(|p| !self.within(p, left, right) || self.is_caption_start(p));
+        let bad = row
+            .iter()
+            .any(|p| !self.within(p, left, right) || self.is_caption_start(p));
         if bad {
             return RowLook::Other;
         }
-        let wide = row.iter().filter(|p| p.width() > 0.55 * width && p.glyphs.len() > 40).count();
+        let wide = row
+            .iter()
+            .filter(|p| p.width() > 0.55 * width && p.glyphs.len() > 40)
+            .count();
         if wide > 0 {
             return RowLook::Other;
         }
-        if row.len() >= 2 {
+        if row.len() >= 2 || self.cells_of(row[0]) >= 3 {
             return RowLook::Cells;
         }
-        if row[0].width() < 0.45 * width { RowLook::Label } else { RowLook::Other }
+        if row[0].width() < 0.45 * width {
+            RowLook::Label
+        } else {
+            RowLook::Other
+        }
     }
 
     /// How many curves and slanted strokes are drawn in an area.
@@ -284,7 +347,10 @@ fn columns(pieces: &[Piece]) -> Vec<[f32; 2]> {
     let mut edges: Vec<(f32, Vec<f32>)> = Vec::new();
     for piece in &long {
         let [left, _, right, _] = piece.area;
-        match edges.iter_mut().find(|(l, _)| (*l - left).abs() < 0.6 * piece.size) {
+        match edges
+            .iter_mut()
+            .find(|(l, _)| (*l - left).abs() < 0.6 * piece.size)
+        {
             Some((_, rights)) => rights.push(right),
             None => edges.push((left, vec![right])),
         }
