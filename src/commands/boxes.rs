@@ -2,7 +2,7 @@
 //! program that turns pages into images can make the images; the boxes are drawn over them.
 
 use super::inputs::Input;
-use super::{Judging, Refused, Status, run};
+use super::{Judging, Refused, Status, grammar, run};
 use crate::judge::Document;
 use crate::readers::contained::{Limits, Pool};
 use crate::readers::guard::guarded;
@@ -33,7 +33,7 @@ pub struct Boxes {
 impl Boxes {
     pub(super) fn run(self) -> Result<Status, Refused> {
         let options = self.judging.options()?;
-        let grammar = run::grammar(&self.judging.grammar)?;
+        let grammar = grammar(&self.judging.grammar)?;
         let name = self.file.display();
         let input = Input::File(self.file.clone());
         let pool = Pool::new(run::executable(), Limits::default(), 1);

@@ -4,6 +4,8 @@
 use super::lines::{Shift, Word};
 use super::paragraphs::{Block, Body};
 use super::roles;
+use super::tables::Table;
+use super::tables::compose::Tables;
 use crate::manuscript::{BlockKind, Builder, Part};
 use crate::readers::headings::{self, Parts};
 
@@ -16,9 +18,15 @@ pub struct Sheet {
 }
 
 /// Fills the builder.
-pub fn compose(b: &mut Builder, blocks: &[Block], body: Body, sheets: &[Sheet]) {
+pub fn compose(b: &mut Builder, blocks: &[Block], tables: &[Table], body: Body, sheets: &[Sheet]) {
     let mut state = State::new(blocks, body);
+    let mut tables = Tables::new(tables, blocks);
     for (index, block) in blocks.iter().enumerate() {
+        if let Some(table) = block.first().table {
+            b.part(state.part(index, block, BlockKind::Caption));
+            tables.write(b, table);
+            continue;
+        }
         let height = sheets
             .iter()
             .find(|s| s.number == block.first().page)
@@ -169,12 +177,17 @@ fn write(b: &mut Builder, block: &Block, sheets: &[Sheet]) {
             b.page_size([sheet.width, sheet.height]);
         }
         b.line(*number);
-        for (w, word) in line.words.iter().enumerate() {
-            if w > 0 {
-                b.text(" ");
-            }
-            write_word(b, word);
+        write_words(b, &line.words);
+    }
+}
+
+/// Writes words with spaces between.
+pub fn write_words(b: &mut Builder, words: &[Word]) {
+    for (w, word) in words.iter().enumerate() {
+        if w > 0 {
+            b.text(" ");
         }
+        write_word(b, word);
     }
 }
 

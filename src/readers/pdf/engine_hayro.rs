@@ -4,6 +4,7 @@
 //! Every call of the engine is counted, and beyond [`Limits`] the page is given up by unwinding
 //! through the engine, which has no other way to be stopped.
 
+use super::engine_paths;
 use super::engine_type3::Bounds;
 use super::fractions;
 use super::glyphs::{Area, FontUse, Glyph, Glyphs, Meaning, PageGlyphs, Shape, Step, Turn, span};
@@ -399,9 +400,10 @@ impl<'a> Device<'a> for Taker {
         self.page.image = true;
     }
 
-    fn draw_path(&mut self, path: &BezPath, props: DrawProps<'a>, _: &DrawMode) {
+    fn draw_path(&mut self, path: &BezPath, props: DrawProps<'a>, mode: &DrawMode) {
         self.count(1);
         self.bar(props.transform.transform_rect_bbox(path.bounding_box()));
+        engine_paths::take(&mut self.page.rules, path, &props, mode);
     }
 
     fn push_clip_path(&mut self, _: &ClipPath) {

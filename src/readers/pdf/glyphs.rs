@@ -5,6 +5,8 @@
 //! Coordinates are points in the *reading frame*: the page turned so that its text runs from left
 //! to right, x to the right and y downwards from the upper left corner. [`Turn`] maps back.
 
+use super::tables::Rules;
+
 /// What the file's text layer says a glyph means.
 #[derive(Clone, Debug, PartialEq)]
 pub enum Meaning {
@@ -166,6 +168,8 @@ pub struct PageGlyphs {
     pub glyphs: Vec<Glyph>,
     /// Thin bars, with the page upright.
     pub bars: Vec<Area>,
+    /// Lines and bars, with the page upright ([`Turn::None`]).
+    pub rules: Rules,
     /// The page shows at least one image.
     pub image: bool,
     /// Interpretation was given up before the end of the page.

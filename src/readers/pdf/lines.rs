@@ -74,6 +74,8 @@ pub struct Line {
     pub font: u16,
     /// Number of pieces: more than one in table rows and badly justified lines.
     pub pieces: usize,
+    /// The table that it keeps the place of; it has no words then.
+    pub table: Option<usize>,
 }
 
 impl Line {
@@ -110,7 +112,9 @@ pub fn rows(mut pieces: Vec<Piece>) -> Vec<Vec<Piece>> {
                 } else {
                     0.35
                 };
-                (p.baseline - piece.baseline).abs() < slack * size
+                p.table.is_none()
+                    && piece.table.is_none()
+                    && (p.baseline - piece.baseline).abs() < slack * size
                     && (p.area[2] - 0.3 * size <= piece.area[0] || piece.area[2] - 0.3 * size <= p.area[0])
             })
         });
@@ -127,6 +131,22 @@ pub fn rows(mut pieces: Vec<Piece>) -> Vec<Vec<Piece>> {
 
 /// Makes a line of the pieces of one row.
 pub fn line(row: &[Piece], page: &PageGlyphs, glyphs: &Glyphs) -> Option<Line> {
+    if let Some(Piece {
+        table: Some(table), ..
+    }) = row.first()
+    {
+        return Some(Line {
+            page: page.number,
+            words: Vec::new(),
+            area: row[0].area,
+            baseline: row[0].baseline,
+            size: row[0].size,
+            bold: false,
+            font: 0,
+            pieces: 1,
+            table: Some(*table),
+        });
+    }
     let ink: Vec<&Glyph> = row
         .iter()
         .flat_map(|p| &p.glyphs)
@@ -159,6 +179,7 @@ pub fn line(row: &[Piece], page: &PageGlyphs, glyphs: &Glyphs) -> Option<Line> {
         bold: bold * 10 >= ink.len() * 8,
         font,
         pieces: row.len(),
+        table: None,
     })
 }
 

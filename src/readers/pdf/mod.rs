@@ -11,6 +11,7 @@
 mod columns;
 mod compose;
 mod engine_hayro;
+mod engine_paths;
 mod engine_type3;
 mod fallback;
 mod fractions;
@@ -25,6 +26,7 @@ mod replaced;
 mod roles;
 #[cfg(test)]
 mod sample;
+mod tables;
 #[cfg(test)]
 mod tests;
 #[cfg(test)]
@@ -135,10 +137,13 @@ fn manuscript(glyphs: &Glyphs, cut_off: bool) -> Result<Manuscript, Unreadable> 
             Unreadable::new("has no text on its pages; if they show any, run text recognition on it first")
         });
     }
-    let columns = read_columns(glyphs);
+    let (columns, tables) = read_columns(glyphs);
     let body = Body::of(&columns);
     let blocks = paragraphs::blocks(&columns, body);
     let blocks = paragraphs::join(blocks, body, |block| {
+        if block.first().table.is_some() {
+            return Standing::Float;
+        }
         if roles::heading(block, body).is_some() {
             return Standing::Heading;
         }
@@ -158,7 +163,7 @@ fn manuscript(glyphs: &Glyphs, cut_off: bool) -> Result<Manuscript, Unreadable> 
         .collect();
     let mut b = Builder::new(Format::Pdf);
     remarks(&mut b, glyphs, cut_off);
-    compose::compose(&mut b, &blocks, body, &sheets);
+    compose::compose(&mut b, &blocks, &tables, body, &sheets);
     Ok(b.finish())
 }
 
@@ -235,11 +240,12 @@ fn listed(pages: &[u32]) -> Option<String> {
     }
 }
 
-/// The columns of all pages in reading order.
-fn read_columns(glyphs: &Glyphs) -> Vec<Column> {
+/// The columns of all pages in reading order, and the tables that stand in them.
+fn read_columns(glyphs: &Glyphs) -> (Vec<Column>, Vec<tables::Table>) {
     let pages: Vec<&PageGlyphs> = glyphs.pages.iter().collect();
     let mut main: Vec<Vec<pieces::Piece>> = Vec::with_capacity(pages.len());
     let mut aside: Vec<Vec<Vec<pieces::Piece>>> = Vec::with_capacity(pages.len());
+    let mut all_turns: Vec<Vec<Turn>> = Vec::with_capacity(pages.len());
     for page in &pages {
         let turns = turns(page);
         let mut all = turns.iter().map(|t| pieces::pieces(page, *t));
@@ -247,8 +253,17 @@ fn read_columns(glyphs: &Glyphs) -> Vec<Column> {
         margins::drop_line_numbers(page, &mut first);
         main.push(first);
         aside.push(all.collect());
+        all_turns.push(turns);
     }
     margins::drop_running_lines(&pages, &mut main);
+    let size = pieces::usual_size(main.iter().flatten());
+    let mut tables = Vec::new();
+    for (p, page) in pages.iter().enumerate() {
+        let sides = std::iter::once(&mut main[p]).chain(&mut aside[p]);
+        for (pieces, turn) in sides.zip(&all_turns[p]) {
+            tables::take(page, glyphs, pieces, *turn, size, &mut tables);
+        }
+    }
     let mut out = Vec::new();
     for ((page, main), aside) in pages.iter().zip(main).zip(aside) {
         let mut number = 1;
@@ -277,7 +292,7 @@ fn read_columns(glyphs: &Glyphs) -> Vec<Column> {
             add(pieces, true);
         }
     }
-    out
+    (out, tables)
 }
 
 /// The directions of text on a page, the one of most glyphs first.
