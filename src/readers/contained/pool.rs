@@ -24,6 +24,7 @@ pub struct Pool {
 struct Workers {
     idle: Vec<Process>,
     busy: usize,
+    started: u64,
 }
 
 impl Pool {
@@ -86,6 +87,11 @@ impl Pool {
         drop(idle);
     }
 
+    /// How many workers have been started so far: those still there, those lost, those retired.
+    pub fn started(&self) -> u64 {
+        self.workers().started
+    }
+
     /// Waits until one more worker may be busy.
     fn place(&self) -> Place<'_> {
         let full = |w: &mut Workers| w.busy >= self.most;
@@ -136,7 +142,9 @@ impl Pool {
         loop {
             let idle = self.workers().idle.pop();
             let Some(mut worker) = idle else {
-                return Process::start(&self.executable, self.limits);
+                let new = Process::start(&self.executable, self.limits)?;
+                self.workers().started += 1;
+                return Ok(new);
             };
             if worker.is_alive() {
                 return Ok(worker);

@@ -109,13 +109,16 @@ pub fn rescue(bytes: &[u8]) -> Result<Manuscript, Unreadable> {
         b.close();
     }
     if b.is_blank() {
-        return Err(no_text());
+        return Err(no_text(&[]));
     }
     Ok(b.finish())
 }
 
-fn no_text() -> Unreadable {
-    Unreadable::new("has no text layer (page images only): run text recognition on it first")
+fn no_text(pages: &[u32]) -> Unreadable {
+    let pages = listed(pages).unwrap_or_else(|| "any page".to_string());
+    Unreadable::new(format!(
+        "has no text layer on {pages} (page images only): run text recognition on it first"
+    ))
 }
 
 fn manuscript(glyphs: &Glyphs, cut_off: bool) -> Result<Manuscript, Unreadable> {
@@ -132,7 +135,7 @@ fn manuscript(glyphs: &Glyphs, cut_off: bool) -> Result<Manuscript, Unreadable> 
             ));
         }
         return Err(if glyphs.pages.iter().any(|p| p.image) {
-            no_text()
+            no_text(&glyphs.pages.iter().map(|p| p.number).collect::<Vec<u32>>())
         } else {
             Unreadable::new("has no text on its pages; if they show any, run text recognition on it first")
         });
