@@ -183,6 +183,8 @@ impl Taker {
     }
 
     fn end_page(&mut self) {
+        true_sizes(&mut self.page.glyphs);
+        ligatures(&mut self.page.glyphs);
         fractions::lay_out(&mut self.page);
         self.out.pages.push(std::mem::take(&mut self.page));
     }
@@ -239,8 +241,9 @@ impl Taker {
         let along = place * Point::new(1000.0, 0.0) - origin;
         let up = place * Point::new(0.0, 1000.0) - origin;
         let size = up.hypot() as f32;
-        if !(0.5..2000.0).contains(&size) || !origin.is_finite() || !along.is_finite() || along.hypot() == 0.0
-        {
+        // The sizes of bitmap fonts are put right at the end of the page.
+        let drawable = shape.is_none() || (0.5..2000.0).contains(&size);
+        if !drawable || !origin.is_finite() || !along.is_finite() || along.hypot() == 0.0 {
             return;
         }
         // Fonts that are not embedded are stretched; where the next glyph begins is then the truth.
@@ -314,11 +317,68 @@ fn is_usual(bounds: Rect) -> bool {
         && [bounds.x0, bounds.y0, bounds.x1, bounds.y1].into_iter().all(near)
 }
 
+/// Bitmap fonts may count in any unit, so that their size says nothing. Where it does not go with
+/// the widths, the letters' average width tells: about half the size, as in most fonts.
+fn true_sizes(glyphs: &mut [Glyph]) {
+    let mut by_size: HashMap<u32, Vec<f32>> = HashMap::new();
+    for g in glyphs.iter().filter(|g| g.shape.is_none()) {
+        let widths = by_size.entry(g.size.to_bits()).or_default();
+        if matches!(g.meaning, Meaning::Char(c) if c.is_alphanumeric()) {
+            widths.push(g.x1 - g.x0);
+        }
+    }
+    let mut sizes: HashMap<u32, f32> = HashMap::new();
+    for (bits, mut widths) in by_size {
+        let size = f32::from_bits(bits);
+        widths.sort_by(f32::total_cmp);
+        let typical = widths.get(widths.len() / 2).copied().unwrap_or(0.5 * size);
+        if !(0.2..1.2).contains(&(typical / size)) {
+            sizes.insert(bits, 2.0 * typical);
+        }
+    }
+    for g in glyphs.iter_mut().filter(|g| g.shape.is_none()) {
+        if let Some(size) = sizes.get(&g.size.to_bits()) {
+            g.size = size.clamp(0.5, 2000.0);
+        }
+    }
+}
+
+/// TeX's bitmap fonts name nothing; their ligatures have these codes in its two usual encodings. As
+/// other files use the same codes for anything, the next character must go on with the word.
+fn ligatures(glyphs: &mut [Glyph]) {
+    for i in 0..glyphs.len().saturating_sub(1) {
+        let (g, next) = (&glyphs[i], &glyphs[i + 1]);
+        let text = match g.code {
+            0x0b | 0x1b => "ff",
+            0x0c | 0x1c => "fi",
+            0x0d | 0x1d => "fl",
+            0x0e | 0x1e => "ffi",
+            0x0f | 0x1f => "ffl",
+            _ => continue,
+        };
+        let touches = |a: &Glyph, b: &Glyph| {
+            a.baseline == b.baseline && a.turn == b.turn && (b.x0 - a.x1).abs() < 0.1 * a.size
+        };
+        let goes_on = touches(g, next) && matches!(next.meaning, Meaning::Char('a'..='z'));
+        let begins = i.checked_sub(1).map(|b| &glyphs[b]).is_none_or(|before| {
+            !touches(before, g)
+                || matches!(before.meaning, Meaning::Char(c) if !c.is_ascii_digit())
+                || matches!(before.meaning, Meaning::Many(_))
+        });
+        if g.shape.is_none() && g.meaning == Meaning::Unknown && goes_on && begins {
+            glyphs[i].meaning = Meaning::Many(text.into());
+        }
+    }
+}
+
 /// What the text layer says. Bitmap fonts and Type 1 fonts with home-made glyph names often say
 /// nothing, but then use the ASCII code.
 fn meaning(glyph: &Drawn<'_>) -> Meaning {
+    let bitmap = matches!(glyph, Drawn::Type3(_));
     match glyph.as_unicode() {
-        Some(BfString::Char(c)) if c != '\0' => Meaning::Char(c),
+        // Whoever draws a soft hyphen shows a hyphen; some files name all their hyphens so.
+        Some(BfString::Char('\u{ad}')) => Meaning::Char('-'),
+        Some(BfString::Char(c)) if c != '\0' && !(c.is_control() && bitmap) => Meaning::Char(c),
         Some(BfString::String(s)) if !s.is_empty() => Meaning::Many(s.into()),
         _ => {
             let coded_in_ascii = match glyph {

@@ -202,7 +202,10 @@ fn piece_words(
             fresh = true;
             continue;
         }
-        let shift = shift_of(g, baseline, size);
+        let shift = match drawn_shift(g, glyphs) {
+            Shift::None => shift_of(g, baseline, size),
+            drawn => drawn,
+        };
         if let Some((l, before)) = last {
             let decimal = || words.last().is_some_and(|w| is_decimal(w, l, g));
             let gap = if before == shift && shift != Shift::None {
@@ -382,6 +385,21 @@ fn combining(c: char) -> Option<char> {
         '\u{300}'..='\u{30c}' => c,
         _ => return None,
     })
+}
+
+/// Digits that a font has ready raised or lowered: set like all others, but drawn small and off the
+/// baseline. Old-style digits stand on it or reach below it in full size.
+fn drawn_shift(g: &Glyph, glyphs: &Glyphs) -> Shift {
+    let (Meaning::Char('0'..='9'), Some(shape)) = (&g.meaning, g.shape) else {
+        return Shift::None;
+    };
+    let [_, low, _, high] = glyphs.shapes[shape as usize].bounds;
+    match high - low {
+        height if !(150.0..500.0).contains(&height) => Shift::None,
+        _ if low > 180.0 => Shift::Raised,
+        _ if low < -40.0 => Shift::Lowered,
+        _ => Shift::None,
+    }
 }
 
 fn shift_of(g: &Glyph, baseline: f32, size: f32) -> Shift {
