@@ -13,6 +13,7 @@ use crate::readers::headings::{self, Parts};
 #[derive(Clone, Copy, Debug)]
 pub struct Sheet {
     pub number: u32,
+    pub width: f32,
     pub height: f32,
 }
 
@@ -38,7 +39,7 @@ pub fn compose(b: &mut Builder, blocks: &[Block], tables: &[Table], body: Body, 
         let kind = depth.map_or_else(|| roles::kind(block, body, height), BlockKind::Heading);
         b.part(state.part(index, block, kind));
         b.open(kind);
-        write(b, block);
+        write(b, block, sheets);
         b.close();
     }
 }
@@ -156,7 +157,8 @@ impl State {
         let raised = roles::begins_raised(block);
         let entries_raised = *self.entries_raised.get_or_insert(raised);
         // Not numbered like the entries: a footnote to the text above the references on this page.
-        let note = kind == BlockKind::Footnote && raised && !entries_raised;
+        let leads_back = block.last().text().trim_end().ends_with('↩');
+        let note = kind == BlockKind::Footnote && (raised && !entries_raised || leads_back);
         if note || self.float_page.is_some() {
             Part::Body
         } else {
@@ -166,12 +168,15 @@ impl State {
 }
 
 /// Writes the lines of a block, marking where each stands.
-fn write(b: &mut Builder, block: &Block) {
+fn write(b: &mut Builder, block: &Block, sheets: &[Sheet]) {
     for (i, (number, line)) in block.lines.iter().enumerate() {
         if i > 0 {
             b.line_break();
         }
         b.page(line.page);
+        if let Some(sheet) = sheets.iter().find(|s| s.number == line.page) {
+            b.page_size([sheet.width, sheet.height]);
+        }
         b.line(*number);
         write_words(b, &line.words);
     }
@@ -188,7 +193,16 @@ pub fn write_words(b: &mut Builder, words: &[Word]) {
 }
 
 fn write_word(b: &mut Builder, word: &Word) {
+    let mut inks = word.inks.iter();
+    // How much of the word is written, and how much of it is known to be drawn where.
+    let (mut done, mut drawn): (usize, usize) = (0, 0);
     for (shift, text) in &word.parts {
+        while drawn < done + text.len() {
+            let Some(ink) = inks.next() else { break };
+            b.drawn(drawn.saturating_sub(done), ink.area);
+            drawn = ink.end as usize;
+        }
+        done += text.len();
         match shift {
             Shift::None => b.text(text),
             Shift::Raised => b.superscript(text),

@@ -277,6 +277,11 @@ impl Measure {
         } else {
             self.leading
         };
+        // Nothing begins behind a comma or an open bracket, whatever the next line looks like; it may
+        // stand lower for what is raised in it.
+        if ends_open(&text) && !line.bold && (0.0..1.8 * usual).contains(&step) {
+            return Seam::None;
+        }
         if step > (1.25 * usual).max(usual + 0.22 * size) || step < 0.0 {
             return Seam::Apart;
         }

@@ -81,6 +81,10 @@ pub fn kind(block: &Block, body: Body, page_height: f32) -> BlockKind {
     if NOTE.is_match(&text) {
         return BlockKind::TableNote;
     }
+    // Browsers print notes as a list at the end, each with an arrow that leads back to its mark.
+    if text.trim_end().ends_with('↩') {
+        return BlockKind::Footnote;
+    }
     let first = block.first();
     let raised = begins_raised(block);
     let marked = first.words.first().is_some_and(|w| {
