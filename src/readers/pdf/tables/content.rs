@@ -70,8 +70,8 @@ pub fn is_value(text: &str) -> bool {
         digits += usize::from(c.is_ascii_digit());
         letters += usize::from(c.is_alphabetic());
     }
-    let starts_low = !text.chars().next().is_some_and(char::is_alphabetic) || letters <= 2;
-    digits > 0 && letters <= digits && starts_low
+    let named = text.chars().next().is_some_and(char::is_alphabetic);
+    digits > 0 && letters <= digits && !named
 }
 
 /// What stands in a cell that has no value.
@@ -182,7 +182,15 @@ mod tests {
         ] {
             assert!(is_value(value), "{value}");
         }
-        for label in ["North", "M", "Study 2", "Litres (n = 30)", "Age, years", ""] {
+        for label in [
+            "North",
+            "M",
+            "Study 2",
+            "Litres (n = 30)",
+            "Age, years",
+            "F(2, 115)",
+            "",
+        ] {
             assert!(!is_value(label), "{label}");
         }
     }

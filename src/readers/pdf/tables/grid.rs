@@ -134,7 +134,8 @@ impl<'a> Draft<'a> {
             let mut out: Vec<Placed> = Vec::new();
             for chunk in &whole {
                 let head = index < heads;
-                let parts = if cut && !(head && heads::spans(self, index, heads, chunk)) {
+                let (first, last) = self.seams.span(chunk.left, chunk.right, self.measure.size);
+                let parts = if cut && first != last && !(head && heads::spans(self, index, heads, chunk)) {
                     self.seams.cut(line, chunk, least)
                 } else {
                     vec![chunk.clone()]
@@ -367,13 +368,14 @@ fn head_by_rule(lines: &[Line], full: &[f32]) -> Option<usize> {
             continue;
         }
         let band = &lines[heads..next];
-        let bare = band
-            .iter()
-            .all(|l| l.pieces >= 2 && !l.words.iter().any(|w| is_value(&w.text())));
-        let valued = lines[next..]
-            .iter()
-            .take(3)
-            .any(|l| l.words.iter().any(|w| is_value(&w.text())));
+        let holds_values = |l: &Line| {
+            let cells = content::chunks(l, 0.45 * l.size, &[]);
+            cells
+                .iter()
+                .any(|c| is_value(&text_of(&l.words[c.words.clone()])))
+        };
+        let bare = band.iter().all(|l| l.pieces >= 2 && !holds_values(l));
+        let valued = lines[next..].iter().take(3).any(holds_values);
         if band.len() > 2 || !bare || !valued {
             break;
         }

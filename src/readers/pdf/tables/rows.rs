@@ -293,7 +293,7 @@ fn goes_on(
     if let Some(tight) = step.inside {
         return gap <= tight;
     }
-    if closes_bracket(draft, before, line) {
+    if closes_bracket(draft, before, line) || is_rest(draft, before, line) {
         return true;
     }
     let shared = b.columns.iter().filter(|c| a.columns.contains(c)).count();
@@ -361,6 +361,17 @@ fn closes_bracket(draft: &Draft, before: usize, line: usize) -> bool {
                 .find(same)
                 .is_some_and(|a| open(&draft.text(a)) > 0)
     })
+}
+
+/// Whether a line holds nothing but the bracket of one cell that did not fit behind its number.
+fn is_rest(draft: &Draft, before: usize, line: usize) -> bool {
+    let [only] = draft.placed[line].as_slice() else {
+        return false;
+    };
+    only.first > 0
+        && draft.placed[before].len() >= 3
+        && draft.text(only).starts_with(['(', '['])
+        && breaks(draft, before, line, 0.0)
 }
 
 /// Whether the first word of what stands below another would not have fitted behind it, in a column at
