@@ -7,6 +7,7 @@
 //! Files are not trusted: the engine runs behind a [`guard`], the second engine ([`fallback`]) in a
 //! process of its own.
 
+mod afterwards;
 mod columns;
 mod compose;
 mod engine_hayro;
