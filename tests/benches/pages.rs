@@ -163,7 +163,8 @@ fn printed(share: usize) {
         let Ok(source) = fs::read_to_string(path.with_extension("txt")) else {
             continue;
         };
-        let source = triples(&words(&source));
+        let source = words(&source);
+        let source = triples(&source);
         let own = recall(&source, &triples(&words(&our_text(&path))));
         let raw = words(&without_breaks(&output(theirs(&path, &["-raw"]))));
         let raw = recall(&source, &triples(&raw));

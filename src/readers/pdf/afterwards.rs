@@ -39,7 +39,12 @@ fn true_sizes(glyphs: &mut [Glyph]) {
     }
     for g in glyphs.iter_mut().filter(|g| g.shape.is_none()) {
         if let Some(size) = sizes.get(&g.size.to_bits()) {
+            // Where the ink is not known, the size stands for it.
+            let stands_in = g.ink == g.area();
             g.size = size.clamp(0.5, 2000.0);
+            if stands_in {
+                g.ink = g.area();
+            }
         }
     }
 }
@@ -91,6 +96,7 @@ mod tests {
                 x0: i as f32 * width,
                 x1: (i + 1) as f32 * width,
                 baseline: 100.0,
+                ink: [i as f32 * width, 95.0, (i + 1) as f32 * width, 100.0],
                 turn: Turn::None,
             })
             .collect()

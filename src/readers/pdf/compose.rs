@@ -4,6 +4,8 @@
 use super::lines::{Shift, Word};
 use super::paragraphs::{Block, Body};
 use super::roles;
+use super::tables::Table;
+use super::tables::compose::Tables;
 use crate::manuscript::{BlockKind, Builder, Part};
 use crate::readers::headings::{self, Parts};
 
@@ -11,13 +13,20 @@ use crate::readers::headings::{self, Parts};
 #[derive(Clone, Copy, Debug)]
 pub struct Sheet {
     pub number: u32,
+    pub width: f32,
     pub height: f32,
 }
 
 /// Fills the builder.
-pub fn compose(b: &mut Builder, blocks: &[Block], body: Body, sheets: &[Sheet]) {
+pub fn compose(b: &mut Builder, blocks: &[Block], tables: &[Table], body: Body, sheets: &[Sheet]) {
     let mut state = State::new(blocks, body);
+    let mut tables = Tables::new(tables, blocks);
     for (index, block) in blocks.iter().enumerate() {
+        if let Some(table) = block.first().table {
+            b.part(state.part(index, block, BlockKind::Caption));
+            tables.write(b, table);
+            continue;
+        }
         let height = sheets
             .iter()
             .find(|s| s.number == block.first().page)
@@ -30,7 +39,7 @@ pub fn compose(b: &mut Builder, blocks: &[Block], body: Body, sheets: &[Sheet]) 
         let kind = depth.map_or_else(|| roles::kind(block, body, height), BlockKind::Heading);
         b.part(state.part(index, block, kind));
         b.open(kind);
-        write(b, block);
+        write(b, block, sheets);
         b.close();
     }
 }
@@ -159,24 +168,41 @@ impl State {
 }
 
 /// Writes the lines of a block, marking where each stands.
-fn write(b: &mut Builder, block: &Block) {
+fn write(b: &mut Builder, block: &Block, sheets: &[Sheet]) {
     for (i, (number, line)) in block.lines.iter().enumerate() {
         if i > 0 {
             b.line_break();
         }
         b.page(line.page);
-        b.line(*number);
-        for (w, word) in line.words.iter().enumerate() {
-            if w > 0 {
-                b.text(" ");
-            }
-            write_word(b, word);
+        if let Some(sheet) = sheets.iter().find(|s| s.number == line.page) {
+            b.page_size([sheet.width, sheet.height]);
         }
+        b.line(*number);
+        write_words(b, &line.words);
+    }
+}
+
+/// Writes words with spaces between.
+pub fn write_words(b: &mut Builder, words: &[Word]) {
+    for (w, word) in words.iter().enumerate() {
+        if w > 0 {
+            b.text(" ");
+        }
+        write_word(b, word);
     }
 }
 
 fn write_word(b: &mut Builder, word: &Word) {
+    let mut inks = word.inks.iter();
+    // How much of the word is written, and how much of it is known to be drawn where.
+    let (mut done, mut drawn): (usize, usize) = (0, 0);
     for (shift, text) in &word.parts {
+        while drawn < done + text.len() {
+            let Some(ink) = inks.next() else { break };
+            b.drawn(drawn.saturating_sub(done), ink.area);
+            drawn = ink.end as usize;
+        }
+        done += text.len();
         match shift {
             Shift::None => b.text(text),
             Shift::Raised => b.superscript(text),

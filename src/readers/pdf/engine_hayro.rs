@@ -5,15 +5,22 @@
 //! through the engine, which has no other way to be stopped.
 
 use super::afterwards;
-use super::glyphs::{FontUse, Glyph, Glyphs, Meaning, PageGlyphs, Shape, Step, Turn};
+use super::engine_paths;
+use super::engine_type3::Bounds;
+use super::fractions;
+use super::glyphs::{Area, FontUse, Glyph, Glyphs, Meaning, PageGlyphs, Shape, Step, Turn, span};
 use super::nesting::Forms;
+use super::replaced;
 use hayro_interpret::font::{Glyph as Drawn, GlyphIdentifier, GlyphRun};
 use hayro_interpret::hayro_cmap::BfString;
-use hayro_interpret::kurbo::{Affine, BezPath, PathEl, Point, Shape as _};
+use hayro_interpret::kurbo::{Affine, BezPath, PathEl, Point, Rect, Shape as _};
 use hayro_interpret::{
     BlendMode, ClipPath, Context, Device, DrawMode, DrawProps, Image, ImageDrawProps, InterpreterCache,
-    InterpreterSettings, RenderContent, SoftMask, TransformExt, interpret_page,
+    InterpreterSettings, Paint, RenderContent, SoftMask, TransformExt, interpret_page,
 };
+use hayro_syntax::object::Dict;
+use hayro_syntax::object::dict::keys::{ACTUAL_TEXT, USER_UNIT};
+use hayro_syntax::page::Page;
 use hayro_syntax::{DecryptionError, LoadPdfError, Pdf};
 use rustc_hash::FxHashMap;
 use std::hash::{Hash, Hasher};
@@ -30,6 +37,8 @@ pub struct Limits {
     pub glyphs_per_page: usize,
     /// Forms drawn for one page, those drawn by forms included.
     pub forms_per_page: u64,
+    /// Pages beyond this are left out. Whoever reads contained has more patience
+    /// ([`contained::Limits`](crate::readers::contained::Limits)), so that what was read is kept.
     pub time: Duration,
 }
 
@@ -40,7 +49,7 @@ impl Default for Limits {
             calls_per_page: 2_000_000,
             glyphs_per_page: 100_000,
             forms_per_page: 100_000,
-            time: Duration::from_secs(60),
+            time: Duration::from_secs(40),
         }
     }
 }
@@ -80,17 +89,20 @@ pub fn glyphs(bytes: Vec<u8>, limits: Limits) -> Result<Glyphs, Refusal> {
             taker.out.left_out += all.len().min(limits.pages) - index;
             break;
         }
+        let unit = unit(page);
         let (width, height) = page.render_dimensions();
+        let (width, height) = (width * unit, height * unit);
         taker.start_page(index as u32 + 1, width, height);
         if forms.drawn_on(page) > limits.forms_per_page {
             taker.page.cut_short = true;
             taker.end_page();
             continue;
         }
+        taker.draw_type3 = !forms.drawn_by_glyphs();
         let done = catch_unwind(AssertUnwindSafe(|| {
             let mut context = Context::new(
-                page.initial_transform(true).to_kurbo(),
-                hayro_interpret::kurbo::Rect::new(0.0, 0.0, width as f64, height as f64),
+                Affine::scale(f64::from(unit)) * page.initial_transform(true).to_kurbo(),
+                Rect::new(0.0, 0.0, width as f64, height as f64),
                 &cache,
                 page.xref(),
                 settings.clone(),
@@ -108,6 +120,16 @@ pub fn glyphs(bytes: Vec<u8>, limits: Limits) -> Result<Glyphs, Refusal> {
     Ok(taker.out)
 }
 
+/// How many points a step of the page's own coordinates takes; pages wider than five metres need it.
+fn unit(page: &Page<'_>) -> f32 {
+    let unit = page.raw().get::<f32>(USER_UNIT).unwrap_or(1.0);
+    if unit.is_finite() {
+        unit.clamp(0.1, 1000.0)
+    } else {
+        1.0
+    }
+}
+
 /// The payload with which a page is given up.
 struct Enough;
 
@@ -121,7 +143,18 @@ struct Taker {
     shapes: FxHashMap<GlyphIdentifier, u32>,
     /// What each shape means when it is selected by this code; asking the engine takes longer.
     meanings: Vec<(u32, Meaning)>,
+    type3: Bounds,
+    /// Glyphs of Type 3 fonts may be drawn to see what they cover.
+    draw_type3: bool,
+    /// The open stretches of marked content: the first glyph and the text it stands for, if the file
+    /// says so.
+    marked: Vec<Option<(usize, String)>>,
+    /// How many more are open than are followed.
+    unmarked: usize,
 }
+
+/// Marked content inside marked content is not followed any deeper.
+const DEEPEST_MARKS: usize = 64;
 
 impl Taker {
     fn new(limits: Limits, end: Instant) -> Taker {
@@ -134,11 +167,17 @@ impl Taker {
             fonts: FxHashMap::default(),
             shapes: FxHashMap::default(),
             meanings: Vec::new(),
+            type3: Bounds::default(),
+            draw_type3: false,
+            marked: Vec::new(),
+            unmarked: 0,
         }
     }
 
     fn start_page(&mut self, number: u32, width: f32, height: f32) {
         self.calls = 0;
+        self.marked.clear();
+        self.unmarked = 0;
         self.page = PageGlyphs {
             number,
             width,
@@ -149,6 +188,7 @@ impl Taker {
 
     fn end_page(&mut self) {
         afterwards::put_right(&mut self.page.glyphs);
+        fractions::lay_out(&mut self.page);
         self.out.pages.push(std::mem::take(&mut self.page));
     }
 
@@ -191,7 +231,17 @@ impl Taker {
         new
     }
 
-    fn take(&mut self, glyph: &Drawn<'_>, place: Affine, next: Option<Point>) {
+    /// Takes down what was drawn if it is a thin bar.
+    fn bar(&mut self, area: Rect) {
+        let (long, thin) = (area.width().max(area.height()), area.width().min(area.height()));
+        if thin < 2.0 && long > 1.0 && long.is_finite() {
+            self.page
+                .bars
+                .push([area.x0, area.y0, area.x1, area.y1].map(|v| v as f32));
+        }
+    }
+
+    fn take<'a>(&mut self, glyph: &Drawn<'a>, place: Affine, next: Option<Point>, paint: &Paint<'a>) {
         let (advance, font, shape) = match glyph {
             Drawn::Outline(g) => {
                 let id = g.identifier();
@@ -217,10 +267,12 @@ impl Taker {
             return;
         }
         // Fonts that are not embedded are stretched; where the next glyph begins is then the truth.
+        let mut stretch = 1.0;
         if let Some(next) = next {
             let (whole, part) = ((end - origin).hypot(), (next - origin).dot(along) / along.hypot());
             if part > 0.3 * whole && part < 0.95 * whole {
                 end = origin + along * (part / along.hypot());
+                stretch = part / whole;
             }
         }
         let unit = along / along.hypot();
@@ -241,8 +293,23 @@ impl Taker {
         let to = |p: Point| turn.to_reading((p.x as f32, p.y as f32), (width, height));
         let (x0, baseline) = to(origin);
         let (x1, _) = to(end);
+        let bounds = match glyph {
+            Drawn::Outline(_) => shape.map(|s| {
+                let [x0, y0, x1, y1] = self.out.shapes[s as usize].bounds.map(f64::from);
+                Rect::new(x0, y0, x1, y1)
+            }),
+            Drawn::Type3(g) => self.draw_type3.then(|| self.type3.of(g, paint)).flatten(),
+        };
+        let bounds = bounds.filter(|b| is_usual(*b));
+        let ink = bounds.map(|bounds| {
+            let bounds = (place * Affine::scale_non_uniform(stretch, 1.0)).transform_rect_bbox(bounds);
+            span(
+                to(Point::new(bounds.x0, bounds.y0)),
+                to(Point::new(bounds.x1, bounds.y1)),
+            )
+        });
         let meaning = self.meaning(glyph, shape);
-        self.page.glyphs.push(Glyph {
+        let mut glyph = Glyph {
             meaning,
             code: glyph.char_code(),
             font,
@@ -251,9 +318,24 @@ impl Taker {
             x0: x0.min(x1),
             x1: x0.max(x1),
             baseline,
+            ink: Area::default(),
             turn,
-        });
+        };
+        if glyph.meaning == Meaning::Char('\u{ad}') && glyph.x1 - glyph.x0 < 0.05 * size {
+            // Where a word may be broken and is not.
+            return;
+        }
+        glyph.ink = ink.unwrap_or_else(|| glyph.area());
+        self.page.glyphs.push(glyph);
     }
+}
+
+/// Whether something is drawn, and no larger than glyphs are.
+fn is_usual(bounds: Rect) -> bool {
+    let near = |v: f64| v.abs() <= 3000.0;
+    bounds.width() > 0.0
+        && bounds.height() > 0.0
+        && [bounds.x0, bounds.y0, bounds.x1, bounds.y1].into_iter().all(near)
 }
 
 /// What the text layer says. Bitmap fonts and Type 1 fonts with home-made glyph names often say
@@ -331,17 +413,22 @@ impl<'a> Device<'a> for Taker {
             let next = glyphs
                 .get(i + 1)
                 .map(|n| props.transform * n.transform() * Point::ORIGIN);
-            self.take(glyph, place, next);
+            self.take(glyph, place, next, &props.paint);
         }
     }
 
-    fn draw_image(&mut self, _: Image<'a, '_>, _: ImageDrawProps<'a>) {
+    fn draw_image(&mut self, image: Image<'a, '_>, props: ImageDrawProps<'a>) {
         self.count(1);
+        let area = Rect::new(0.0, 0.0, f64::from(image.width()), f64::from(image.height()));
+        // Rules of old TeX files are images too.
+        self.bar(props.transform.transform_rect_bbox(area));
         self.page.image = true;
     }
 
-    fn draw_path(&mut self, _: &BezPath, _: DrawProps<'a>, _: &DrawMode) {
+    fn draw_path(&mut self, path: &BezPath, props: DrawProps<'a>, mode: &DrawMode) {
         self.count(1);
+        self.bar(props.transform.transform_rect_bbox(path.bounding_box()));
+        engine_paths::take(&mut self.page.rules, path, &props, mode);
     }
 
     fn push_clip_path(&mut self, _: &ClipPath) {
@@ -356,7 +443,24 @@ impl<'a> Device<'a> for Taker {
 
     fn pop_transparency_group(&mut self) {}
 
-    fn begin_marked_content(&mut self, _: &[u8], _: Option<&hayro_syntax::object::Dict<'_>>) {
+    fn begin_marked_content(&mut self, _: &[u8], properties: Option<&Dict<'_>>) {
         self.count(1);
+        let actual = properties
+            .and_then(|p| p.get::<hayro_syntax::object::String<'_>>(ACTUAL_TEXT))
+            .map(|s| replaced::text(s.as_bytes()));
+        if self.marked.len() < DEEPEST_MARKS {
+            self.marked
+                .push(actual.map(|text| (self.page.glyphs.len(), text)));
+        } else {
+            self.unmarked += 1;
+        }
+    }
+
+    fn end_marked_content(&mut self) {
+        if self.unmarked > 0 {
+            self.unmarked -= 1;
+        } else if let Some(Some((from, text))) = self.marked.pop() {
+            replaced::replace(&mut self.page.glyphs, from, &text);
+        }
     }
 }

@@ -89,6 +89,10 @@ pub fn drop_running_lines(pages: &[&PageGlyphs], pieces: &mut [Vec<Piece>]) {
     }
     drop.sort_unstable();
     drop.dedup();
+    // Lines that are all there is are the text itself.
+    if drop.len() == pieces.iter().map(Vec::len).sum::<usize>() {
+        return;
+    }
     for (page, piece) in drop.into_iter().rev() {
         pieces[page].remove(piece);
     }

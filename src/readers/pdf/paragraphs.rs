@@ -132,6 +132,8 @@ fn column_blocks(index: usize, column: &Column, body: Body, out: &mut Vec<Block>
         let row = is_row(lines, i);
         let seam = match out[from..].last() {
             None => Seam::Apart,
+            Some(block) if line.table.is_some() && block.first().table == line.table => Seam::None,
+            Some(block) if line.table.is_some() || block.first().table.is_some() => Seam::Apart,
             Some(block) if block.row || row => Seam::Apart,
             Some(block) => measure.seam(block, line, lines.get(i + 1)),
         };

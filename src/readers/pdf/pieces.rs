@@ -17,9 +17,22 @@ pub struct Piece {
     pub baseline: f32,
     /// Size of most of its text.
     pub size: f32,
+    /// The table that it keeps the place of; it has no glyphs then.
+    pub table: Option<usize>,
 }
 
 impl Piece {
+    /// A line's room in the place of a table.
+    pub fn in_place_of(table: usize, area: Area) -> Piece {
+        Piece {
+            glyphs: Vec::new(),
+            area,
+            baseline: area[3],
+            size: area[3] - area[1],
+            table: Some(table),
+        }
+    }
+
     fn new(glyphs: Vec<u32>, page: &PageGlyphs) -> Option<Piece> {
         let ink: Vec<&Glyph> = glyphs
             .iter()
@@ -33,6 +46,7 @@ impl Piece {
             area,
             baseline,
             size,
+            table: None,
         })
     }
 
@@ -95,6 +109,16 @@ pub fn main_line(glyphs: &[&Glyph]) -> (f32, f32) {
     baselines.sort_by(f32::total_cmp);
     let baseline = baselines.get(baselines.len() / 2).copied().unwrap_or_default();
     (baseline, size)
+}
+
+/// The size that most glyphs are set in, to a quarter of a point.
+pub fn usual_size<'a>(pieces: impl Iterator<Item = &'a Piece>) -> f32 {
+    let mut sizes: std::collections::HashMap<u32, usize> = std::collections::HashMap::new();
+    for p in pieces {
+        *sizes.entry((4.0 * p.size).round() as u32).or_default() += p.glyphs.len();
+    }
+    let most = sizes.into_iter().max_by_key(|(size, n)| (*n, *size));
+    most.map_or(10.0, |(size, _)| size as f32 / 4.0)
 }
 
 /// The pieces of a page that are turned this way.
