@@ -4,6 +4,7 @@
 //! Every call of the engine is counted, and beyond [`Limits`] the page is given up by unwinding
 //! through the engine, which has no other way to be stopped.
 
+use super::afterwards;
 use super::engine_paths;
 use super::engine_type3::Bounds;
 use super::fractions;
@@ -21,7 +22,7 @@ use hayro_syntax::object::Dict;
 use hayro_syntax::object::dict::keys::{ACTUAL_TEXT, USER_UNIT};
 use hayro_syntax::page::Page;
 use hayro_syntax::{DecryptionError, LoadPdfError, Pdf};
-use std::collections::HashMap;
+use rustc_hash::FxHashMap;
 use std::hash::{Hash, Hasher};
 use std::panic::{AssertUnwindSafe, catch_unwind, resume_unwind};
 use std::time::{Duration, Instant};
@@ -138,8 +139,10 @@ struct Taker {
     calls: u64,
     limits: Limits,
     end: Instant,
-    fonts: HashMap<u128, u16>,
-    shapes: HashMap<GlyphIdentifier, u32>,
+    fonts: FxHashMap<u128, u16>,
+    shapes: FxHashMap<GlyphIdentifier, u32>,
+    /// What each shape means when it is selected by this code; asking the engine takes longer.
+    meanings: Vec<(u32, Meaning)>,
     type3: Bounds,
     /// Glyphs of Type 3 fonts may be drawn to see what they cover.
     draw_type3: bool,
@@ -161,8 +164,9 @@ impl Taker {
             calls: 0,
             limits,
             end,
-            fonts: HashMap::new(),
-            shapes: HashMap::new(),
+            fonts: FxHashMap::default(),
+            shapes: FxHashMap::default(),
+            meanings: Vec::new(),
             type3: Bounds::default(),
             draw_type3: false,
             marked: Vec::new(),
@@ -183,8 +187,7 @@ impl Taker {
     }
 
     fn end_page(&mut self) {
-        true_sizes(&mut self.page.glyphs);
-        ligatures(&mut self.page.glyphs);
+        afterwards::put_right(&mut self.page.glyphs);
         fractions::lay_out(&mut self.page);
         self.out.pages.push(std::mem::take(&mut self.page));
     }
@@ -209,6 +212,23 @@ impl Taker {
         });
         fonts[index as usize].uses += 1;
         index
+    }
+
+    fn meaning(&mut self, glyph: &Drawn<'_>, shape: Option<u32>) -> Meaning {
+        let Some(shape) = shape.map(|s| s as usize) else {
+            return meaning(glyph);
+        };
+        if let Some((code, known)) = self.meanings.get(shape)
+            && *code == glyph.char_code()
+        {
+            return known.clone();
+        }
+        let new = meaning(glyph);
+        if shape >= self.meanings.len() {
+            self.meanings.resize(shape + 1, (u32::MAX, Meaning::Unknown));
+        }
+        self.meanings[shape] = (glyph.char_code(), new.clone());
+        new
     }
 
     /// Takes down what was drawn if it is a thin bar.
@@ -288,8 +308,9 @@ impl Taker {
                 to(Point::new(bounds.x1, bounds.y1)),
             )
         });
+        let meaning = self.meaning(glyph, shape);
         let mut glyph = Glyph {
-            meaning: meaning(glyph),
+            meaning,
             code: glyph.char_code(),
             font,
             shape,
@@ -317,67 +338,11 @@ fn is_usual(bounds: Rect) -> bool {
         && [bounds.x0, bounds.y0, bounds.x1, bounds.y1].into_iter().all(near)
 }
 
-/// Bitmap fonts may count in any unit, so that their size says nothing. Where it does not go with
-/// the widths, the letters' average width tells: about half the size, as in most fonts.
-fn true_sizes(glyphs: &mut [Glyph]) {
-    let mut by_size: HashMap<u32, Vec<f32>> = HashMap::new();
-    for g in glyphs.iter().filter(|g| g.shape.is_none()) {
-        let widths = by_size.entry(g.size.to_bits()).or_default();
-        if matches!(g.meaning, Meaning::Char(c) if c.is_alphanumeric()) {
-            widths.push(g.x1 - g.x0);
-        }
-    }
-    let mut sizes: HashMap<u32, f32> = HashMap::new();
-    for (bits, mut widths) in by_size {
-        let size = f32::from_bits(bits);
-        widths.sort_by(f32::total_cmp);
-        let typical = widths.get(widths.len() / 2).copied().unwrap_or(0.5 * size);
-        if !(0.2..1.2).contains(&(typical / size)) {
-            sizes.insert(bits, 2.0 * typical);
-        }
-    }
-    for g in glyphs.iter_mut().filter(|g| g.shape.is_none()) {
-        if let Some(size) = sizes.get(&g.size.to_bits()) {
-            g.size = size.clamp(0.5, 2000.0);
-        }
-    }
-}
-
-/// TeX's bitmap fonts name nothing; their ligatures have these codes in its two usual encodings. As
-/// other files use the same codes for anything, the next character must go on with the word.
-fn ligatures(glyphs: &mut [Glyph]) {
-    for i in 0..glyphs.len().saturating_sub(1) {
-        let (g, next) = (&glyphs[i], &glyphs[i + 1]);
-        let text = match g.code {
-            0x0b | 0x1b => "ff",
-            0x0c | 0x1c => "fi",
-            0x0d | 0x1d => "fl",
-            0x0e | 0x1e => "ffi",
-            0x0f | 0x1f => "ffl",
-            _ => continue,
-        };
-        let touches = |a: &Glyph, b: &Glyph| {
-            a.baseline == b.baseline && a.turn == b.turn && (b.x0 - a.x1).abs() < 0.1 * a.size
-        };
-        let goes_on = touches(g, next) && matches!(next.meaning, Meaning::Char('a'..='z'));
-        let begins = i.checked_sub(1).map(|b| &glyphs[b]).is_none_or(|before| {
-            !touches(before, g)
-                || matches!(before.meaning, Meaning::Char(c) if !c.is_ascii_digit())
-                || matches!(before.meaning, Meaning::Many(_))
-        });
-        if g.shape.is_none() && g.meaning == Meaning::Unknown && goes_on && begins {
-            glyphs[i].meaning = Meaning::Many(text.into());
-        }
-    }
-}
-
 /// What the text layer says. Bitmap fonts and Type 1 fonts with home-made glyph names often say
 /// nothing, but then use the ASCII code.
 fn meaning(glyph: &Drawn<'_>) -> Meaning {
     let bitmap = matches!(glyph, Drawn::Type3(_));
     match glyph.as_unicode() {
-        // Whoever draws a soft hyphen shows a hyphen; some files name all their hyphens so.
-        Some(BfString::Char('\u{ad}')) => Meaning::Char('-'),
         Some(BfString::Char(c)) if c != '\0' && !(c.is_control() && bitmap) => Meaning::Char(c),
         Some(BfString::String(s)) if !s.is_empty() => Meaning::Many(s.into()),
         _ => {

@@ -197,18 +197,20 @@ impl Glyphs {
         let Some(main) = (0..self.fonts.len()).max_by_key(|f| self.fonts[*f].uses) else {
             return;
         };
+        // The letter that each shape is.
+        let mut letters: Vec<Option<char>> = vec![None; self.shapes.len()];
+        for glyph in self.pages.iter().flat_map(|p| &p.glyphs) {
+            if let (Some(shape), Meaning::Char(c)) = (glyph.shape, &glyph.meaning)
+                && c.is_ascii_alphabetic()
+            {
+                letters[shape as usize] = Some(*c);
+            }
+        }
         let mut density = std::collections::HashMap::new();
-        for page in &self.pages {
-            for glyph in &page.glyphs {
-                if let (Some(shape), Meaning::Char(c)) = (glyph.shape, &glyph.meaning)
-                    && c.is_ascii_alphabetic()
-                {
-                    let s = &self.shapes[shape as usize];
-                    let room = (s.bounds[2] - s.bounds[0]) * (s.bounds[3] - s.bounds[1]);
-                    if room > 0.0 {
-                        density.entry((glyph.font, *c)).or_insert(s.ink / room);
-                    }
-                }
+        for (s, letter) in self.shapes.iter().zip(letters) {
+            let room = (s.bounds[2] - s.bounds[0]) * (s.bounds[3] - s.bounds[1]);
+            if let (Some(c), true) = (letter, room > 0.0) {
+                density.entry((s.font, c)).or_insert(s.ink / room);
             }
         }
         for (index, font) in self.fonts.iter_mut().enumerate() {

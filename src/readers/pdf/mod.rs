@@ -8,6 +8,7 @@
 //! its own ([`contained`](super::contained)). What defeats the first engine is left to the second,
 //! [`fallback`].
 
+mod afterwards;
 mod columns;
 mod compose;
 mod engine_hayro;
