@@ -18,10 +18,12 @@ pub fn finding(
 ) -> Finding {
     let parts: Vec<&Quantity> = tie.parts.iter().map(|i| &case.quantities[*i]).collect();
     let values: Vec<Interval> = parts.iter().map(|q| q.interval).collect();
+    let readings = readings(&parts);
     let mut assumes: Vec<String> = parts.iter().filter_map(|q| q.borrowed.clone()).collect();
+    assumes.extend(parts.iter().flat_map(|q| q.doubts()));
     let fits = |only_open: bool| {
         let mut alike = tie.variants.iter().filter(|v| v.only_open.is_some() == only_open);
-        alike.find(|v| v.law.holds(&values))
+        alike.find(|v| readings.iter().any(|values| v.law.holds(values)))
     };
     // The variant that is shown: the first that fits, otherwise the first of all.
     let (verdict, variant) = if tie.open.is_some() {
@@ -31,8 +33,8 @@ pub fn finding(
     } else if let Some(variant) = fits(true) {
         (Verdict::Open, Some(variant))
     } else {
-        let borrowed = parts.iter().any(|q| q.borrowed.is_some());
-        let turns = !borrowed && reverses(tie, &parts, &values, case.alpha);
+        let sure = |q: &&Quantity| q.borrowed.is_none() && q.doubts().next().is_none();
+        let turns = parts.iter().all(sure) && reverses(tie, &parts, &values, case.alpha);
         (
             if turns {
                 Verdict::Reverses
@@ -95,10 +97,27 @@ pub fn finding(
             reason.map(String::as_str),
             &assumes,
             case.alpha,
-        ),
+        ) + &wording::on_the_page(manuscript, statement, &parts),
         assumes,
         repairs: found_repairs,
     }
+}
+
+/// Every way to read the parts: where signs are uncertain, with each of them.
+fn readings(parts: &[&Quantity]) -> Vec<Vec<Interval>> {
+    const MOST: usize = 64;
+    let mut all: Vec<Vec<Interval>> = vec![Vec::with_capacity(parts.len())];
+    for part in parts {
+        let mut ways = part.readings();
+        if all.len() * ways.len() > MOST {
+            ways = vec![part.interval];
+        }
+        all = all
+            .iter()
+            .flat_map(|values| ways.iter().map(|w| values.iter().copied().chain([*w]).collect()))
+            .collect();
+    }
+    all
 }
 
 /// The one interval of a set; for several, the edges next to what is printed.

@@ -94,6 +94,9 @@ struct DocumentJson<'a> {
 struct StatementJson<'a> {
     id: usize,
     quote: &'a str,
+    /// The same stretch as the file's text layer has it, where the page shows something else.
+    #[serde(skip_serializing_if = "Option::is_none")]
+    layer: Option<String>,
     place: Place,
     quantities: Vec<QuantityJson<'a>>,
 }
@@ -111,6 +114,12 @@ struct QuantityJson<'a> {
     end: usize,
     #[serde(skip_serializing_if = "Option::is_none")]
     borrowed: Option<&'a str>,
+    /// `uncertain` where a character before the digits could not be read.
+    #[serde(skip_serializing_if = "Option::is_none")]
+    sign: Option<&'static str>,
+    /// What was read by context only.
+    #[serde(skip_serializing_if = "Option::is_none")]
+    context: Option<&'a str>,
 }
 
 fn statement<'a>(document: &'a Document, statement: &'a Statement) -> StatementJson<'a> {
@@ -119,6 +128,7 @@ fn statement<'a>(document: &'a Document, statement: &'a Statement) -> StatementJ
     StatementJson {
         id: statement.id,
         quote: &manuscript.text[statement.range.clone()],
+        layer: manuscript.layer_text(&statement.range),
         place: manuscript.place(block, statement.range.clone()),
         quantities: statement
             .quantities
@@ -138,6 +148,8 @@ fn quantity<'a>(document: &Document, quantity: &'a Quantity) -> QuantityJson<'a>
         start: document.manuscript.char_offset(quantity.span.start),
         end: document.manuscript.char_offset(quantity.span.end),
         borrowed: quantity.borrowed.as_deref(),
+        sign: quantity.doubt.unsigned.map(|_| "uncertain"),
+        context: quantity.doubt.by_context.as_deref(),
     }
 }
 

@@ -175,11 +175,38 @@ fn write(b: &mut Builder, block: &Block) {
 }
 
 fn write_word(b: &mut Builder, word: &Word) {
+    let mut from = 0;
     for (shift, text) in &word.parts {
-        match shift {
-            Shift::None => b.text(text),
+        let to = from + text.len();
+        let inside = word
+            .corrected
+            .iter()
+            .filter(|c| (from..to).contains(&c.range.start));
+        // Raised and lowered parts are read as a whole, so they are corrected as a whole.
+        let (mut done, mut layer) = (from, String::new());
+        for c in inside {
+            let (before, shown) = (&text[done - from..c.range.start - from], &text[c.range.start - from..c.range.end - from]);
+            if *shift == Shift::None {
+                b.text(before);
+                b.corrected(&c.layer, |b| b.text(shown));
+            } else {
+                layer.push_str(before);
+                layer.push_str(&c.layer);
+            }
+            done = c.range.end;
+        }
+        let rest = &text[done - from..];
+        layer.push_str(rest);
+        let write = |b: &mut Builder| match shift {
+            Shift::None => b.text(rest),
             Shift::Raised => b.superscript(text),
             Shift::Lowered => b.subscript(text),
+        };
+        if *shift != Shift::None && done > from {
+            b.corrected(&layer, write);
+        } else {
+            write(b);
         }
+        from = to;
     }
 }

@@ -21,6 +21,17 @@ pub struct Word {
     pub after_gap: bool,
     /// Set in a bold font.
     pub bold: bool,
+    /// Where the page shows something else than the text layer says, in the order of the text.
+    pub corrected: Vec<Corrected>,
+}
+
+/// A character of a word that the text layer has otherwise.
+#[derive(Clone, Debug, PartialEq)]
+pub struct Corrected {
+    /// Byte range in the word's text.
+    pub range: std::ops::Range<usize>,
+    /// What the text layer says; empty if it says nothing.
+    pub layer: String,
 }
 
 impl Word {
@@ -161,6 +172,7 @@ fn piece_words(
                 area: g.area(),
                 after_gap: first && !words.is_empty(),
                 bold,
+                corrected: Vec::new(),
             });
         }
         fresh = false;
@@ -174,6 +186,8 @@ fn piece_words(
         {
             continue;
         }
+        let length = |word: &Word| word.parts.iter().map(|(_, text)| text.len()).sum::<usize>();
+        let start = g.layer.as_ref().map_or(0, |_| length(word));
         match word.parts.last_mut() {
             Some((s, text)) if *s == shift => g.meaning.add_to(text),
             _ => {
@@ -181,6 +195,12 @@ fn piece_words(
                 g.meaning.add_to(&mut text);
                 word.parts.push((shift, text));
             }
+        }
+        if let Some(layer) = &g.layer {
+            word.corrected.push(Corrected {
+                range: start..length(word),
+                layer: layer.known_text(),
+            });
         }
     }
 }
