@@ -4,7 +4,7 @@
 mod helper;
 
 use std::path::Path;
-use tieout::judge::{Document, Options};
+use tieout::judge::{Document, Options, Verdict};
 use tieout::manuscript::nothing_or;
 use tieout::statements::Grammar;
 
@@ -94,7 +94,12 @@ fn both_readings_are_kept() {
             .iter()
             .filter(|r| r.contains("the page shows something else"))
             .collect();
-        assert_eq!(remarks.len(), usize::from(!wanted.is_empty()), "{}: {remarks:?}", entry.file);
+        assert_eq!(
+            remarks.len(),
+            usize::from(!wanted.is_empty()),
+            "{}: {remarks:?}",
+            entry.file
+        );
     }
     assert!(kinds >= 12, "only {kinds} files have a wrong layer");
 }
@@ -120,4 +125,46 @@ fn findings_say_what_the_page_shows_and_what_its_layer_says() {
         m.layer_text(&statement.range).as_deref(),
         Some("t(52) ¼ 2.88, p ¼ .006, d ¼ 0.78")
     );
+}
+
+#[test]
+fn an_unknown_glyph_before_a_number_makes_its_sign_uncertain() {
+    let document = examine("sign-uncertain.pdf");
+    let statement = &document.statements[0];
+    let t = &statement.quantities[0];
+    assert_eq!((t.interval.low, t.interval.high), (-2.885, 2.885));
+    // With either sign p follows, and b follows from neither its SE nor anything else here.
+    let finding = document
+        .findings
+        .iter()
+        .find(|f| f.relation == "p-from-t")
+        .expect("t, df and p are there");
+    assert_eq!(finding.verdict, Verdict::Agrees);
+    assert_eq!(
+        finding.assumes,
+        [
+            "sign of t 2.88 uncertain: the character before it could not be read",
+            "two-sided"
+        ]
+    );
+    let run = helper::Scratch::new();
+    let bytes = std::fs::read("fixtures/shapes/sign-uncertain.pdf").expect("a readable fixture");
+    let out = run
+        .file("a.pdf", bytes)
+        .run(&["check", "--format", "json", "a.pdf"])
+        .out;
+    assert!(out.contains(r#""sign":"uncertain""#), "{out}");
+}
+
+#[test]
+fn the_report_says_what_was_read_by_context() {
+    let text = "Crops differed, v2(1) ¼ 6.83, p ¼ .09. Beds did not, t(52) ¼ 0.31, p ¼ .76.\n";
+    let run = helper::Scratch::new();
+    let run = run.file("a.txt", text).run(&["check", "a.txt"]);
+    let out = run.out.split_whitespace().collect::<Vec<_>>().join(" ");
+    assert_eq!(run.status, 1, "{out}");
+    assert!(out.contains("`¼` read as `=` by context"), "{out}");
+    assert!(out.contains("If the characters were read rightly: "), "{out}");
+    // .09 and .009 lie on two sides of .05, but what rests on a guess does not reverse.
+    assert!(out.contains("1 conflicts") && !out.contains("reverses"), "{out}");
 }

@@ -4,7 +4,7 @@ use super::finding::{Finding, Verdict};
 use super::{repairs, wording};
 use crate::manuscript::Manuscript;
 use crate::numbers::{Interval, Set};
-use crate::relations::{Case, Relation, Tie};
+use crate::relations::{Case, Relation, Tie, Variant};
 use crate::statements::{Quantity, Statement};
 use std::collections::HashSet;
 
@@ -17,8 +17,9 @@ pub fn finding(
     manuscript: &Manuscript,
 ) -> Finding {
     let parts: Vec<&Quantity> = tie.parts.iter().map(|i| &case.quantities[*i]).collect();
-    let values: Vec<Interval> = parts.iter().map(|q| q.interval).collect();
     let readings = readings(&parts);
+    // Where signs are uncertain, what is not about them is shown by the numbers as printed.
+    let values = &readings[0];
     let mut assumes: Vec<String> = parts.iter().filter_map(|q| q.borrowed.clone()).collect();
     assumes.extend(parts.iter().flat_map(|q| q.doubts()));
     let fits = |only_open: bool| {
@@ -34,7 +35,7 @@ pub fn finding(
         (Verdict::Open, Some(variant))
     } else {
         let sure = |q: &&Quantity| q.borrowed.is_none() && q.doubts().next().is_none();
-        let turns = parts.iter().all(sure) && reverses(tie, &parts, &values, case.alpha);
+        let turns = parts.iter().all(sure) && reverses(tie, &parts, values, case.alpha);
         (
             if turns {
                 Verdict::Reverses
@@ -45,7 +46,7 @@ pub fn finding(
         )
     };
     let found_repairs = match verdict {
-        Verdict::Conflicts | Verdict::Reverses => repairs::repairs(tie, &parts, &values),
+        Verdict::Conflicts | Verdict::Reverses => repairs::repairs(tie, &parts, values),
         _ => Vec::new(),
     };
     let reason = tie.open.as_ref().or(match verdict {
@@ -60,7 +61,10 @@ pub fn finding(
     };
     let expected: Set = match tie.open {
         Some(_) => Vec::new(),
-        None => shown_by.map(|v| v.law.solve(0, &values)).unwrap_or_default(),
+        None => {
+            let solved = |v: &Variant| merged(readings.iter().flat_map(|values| v.law.solve(0, values)));
+            shown_by.map(solved).unwrap_or_default()
+        }
     };
     assumes.extend(variant.iter().flat_map(|v| v.assumes.iter().cloned()));
     assumes.extend(tie.remarks.iter().cloned());
@@ -101,6 +105,20 @@ pub fn finding(
         assumes,
         repairs: found_repairs,
     }
+}
+
+/// Intervals in order, with those that touch made one.
+fn merged(intervals: impl Iterator<Item = Interval>) -> Set {
+    let mut all: Vec<Interval> = intervals.collect();
+    all.sort_by(|a, b| a.low.total_cmp(&b.low));
+    let mut out = Set::new();
+    for i in all {
+        match out.last_mut() {
+            Some(last) if i.low <= last.high => *last = last.hull(i),
+            _ => out.push(i),
+        }
+    }
+    out
 }
 
 /// Every way to read the parts: where signs are uncertain, with each of them.

@@ -99,7 +99,11 @@ pub fn on_the_page(manuscript: &Manuscript, statement: &Statement, parts: &[&Qua
         return String::new();
     }
     let (shown, layer): (Vec<String>, Vec<String>) = pairs.into_iter().unzip();
-    format!(" The page shows {}; its text layer says {}.", list(&shown), list(&layer))
+    format!(
+        " The page shows {}; its text layer says {}.",
+        list(&shown),
+        list(&layer)
+    )
 }
 
 fn as_printed(q: &Quantity) -> String {

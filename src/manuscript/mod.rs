@@ -159,7 +159,9 @@ pub fn nothing_or(layer: &str) -> String {
     }
     let mut shown = String::from("`");
     for c in layer.chars() {
-        if c.is_control() || matches!(c, '\u{ad}' | '\u{e000}'..='\u{f8ff}' | '\u{200b}'..='\u{200f}' | '\u{fff0}'..) {
+        if c.is_control()
+            || matches!(c, '\u{ad}' | '\u{e000}'..='\u{f8ff}' | '\u{200b}'..='\u{200f}' | '\u{fff0}'..)
+        {
             shown += &format!("U+{:04X}", c as u32);
         } else {
             shown.push(c);

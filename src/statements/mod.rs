@@ -7,6 +7,7 @@ mod assignment;
 mod bait;
 mod between;
 mod compile;
+mod context;
 mod doubts;
 mod expressions;
 mod find;
@@ -29,6 +30,7 @@ mod tokens;
 mod unnamed;
 mod values;
 
+pub use context::by_context;
 pub use find::find;
 pub use grammar::Grammar;
 pub use print::{in_print, list};

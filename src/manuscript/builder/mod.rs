@@ -350,7 +350,8 @@ impl Builder {
         let mut kept = Vec::new();
         for mut c in self.corrections.drain(first..) {
             let shown = &self.text[c.range.clone()];
-            let range = settle::carried(c.range.start - start, moved)..settle::carried(c.range.end - start, moved);
+            let range =
+                settle::carried(c.range.start - start, moved)..settle::carried(c.range.end - start, moved);
             let now = settled.get(range.clone()).unwrap_or_default();
             if now == shown || now == "-" && matches!(shown, "–" | "—") {
                 c.range = start + range.start..start + range.end;

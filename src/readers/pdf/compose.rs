@@ -185,7 +185,10 @@ fn write_word(b: &mut Builder, word: &Word) {
         // Raised and lowered parts are read as a whole, so they are corrected as a whole.
         let (mut done, mut layer) = (from, String::new());
         for c in inside {
-            let (before, shown) = (&text[done - from..c.range.start - from], &text[c.range.start - from..c.range.end - from]);
+            let (before, shown) = (
+                &text[done - from..c.range.start - from],
+                &text[c.range.start - from..c.range.end - from],
+            );
             if *shift == Shift::None {
                 b.text(before);
                 b.corrected(&c.layer, |b| b.text(shown));

@@ -19,9 +19,9 @@ mod nesting;
 mod paragraphs;
 mod pieces;
 mod roles;
-mod shapes;
 #[cfg(test)]
 mod sample;
+mod shapes;
 #[cfg(test)]
 mod tests;
 
@@ -225,7 +225,11 @@ fn corrected(b: &Builder) -> Option<String> {
         0 => String::new(),
         n => format!(" and {n} more"),
     };
-    let places = if all == 1 { "1 place" } else { &format!("{all} places") };
+    let places = if all == 1 {
+        "1 place"
+    } else {
+        &format!("{all} places")
+    };
     (all > 0).then(|| {
         format!(
             "in {places} the page shows something else than the file's text layer says; what the page shows was read: {}{more}",

@@ -61,7 +61,8 @@ impl Said {
 /// for it, or it lies where home-made encodings put their letters.
 pub fn may_hide_letter(said: Option<char>) -> bool {
     match Said::of(said) {
-        Said::Nothing | Said::Plain => true,
+        Said::Nothing => true,
+        Said::Plain => said.is_some_and(|c| c.is_ascii_alphabetic()),
         Said::Upper => !said.is_some_and(|c| "µçþßøØ×æœ¤".contains(c)),
         Said::Other => false,
     }
@@ -111,7 +112,8 @@ pub fn contradicts(mark: Mark, said: Option<char>) -> bool {
         | Mark::PlusMinus
         | Mark::Times
         | Mark::Almost => {
-            !matches!(c, '\u{2190}'..='\u{21ff}' | '\u{2300}'..='\u{27bf}' | '\u{27f0}'..='\u{28ff}') && !is_greek(c)
+            !matches!(c, '\u{2190}'..='\u{21ff}' | '\u{2300}'..='\u{27bf}' | '\u{27f0}'..='\u{28ff}')
+                && !is_greek(c)
         }
         // What else has one dot on the line?
         Mark::Point => kind == Said::Plain || kind == Said::Upper || matches!(c, ':' | ';' | '='),
@@ -139,8 +141,8 @@ fn names(mark: Mark) -> &'static str {
             "-‐‑‒–—―−_¯ˉˍ‾⁃⁻₋﹘﹣－─━╌╴╶ㅡー一¬~ \u{304}\u{305}\u{331}\u{332}⎯⏤'|·⋅"
         }
         Mark::Equal => "=═゠＝⹀˭꞊≡≑≐≒≓≔≕≖≗≘≙≚≛≜≝≞≟‗〓二ニ∥\u{333}\"",
-        Mark::Less => "<‹〈⟨〈＜﹤⪡≺≪⋖⊰∠ᐸくㄑ˂⁌",
-        Mark::Greater => ">›〉⟩〉＞﹥⪢≻≫⋗⊱ᐳ˃⁍",
+        Mark::Less => "<‹〈⟨〈＜﹤⪡≺≪⋖⊰∠ᐸくㄑ˂⁌≮",
+        Mark::Greater => ">›〉⟩〉＞﹥⪢≻≫⋗⊱ᐳ˃⁍Σ∑≯",
         Mark::AtMost => "≤⩽≦⪕⪙≲⋜⊴⪯≼≨⪇⊑<",
         Mark::AtLeast => "≥⩾≧⪖⪚≳⋝⊵⪰≽≩⪈⊒>",
         Mark::Plus => "+＋﹢➕✚┼⁺₊†✝十᛭⵿⊹∔˖⨁⊕♱✙",

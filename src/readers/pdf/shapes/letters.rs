@@ -3,13 +3,13 @@
 //! An outline counts as a Greek letter only if it looks like one, looks like no other letter, and
 //! does not look like the letter that the text layer says it is.
 
-use super::slices::{Edges, Span};
+use super::slices::{self, Edges, Row, Span};
 use std::sync::OnceLock;
 
 const COLUMNS: usize = 10;
 const ROWS: usize = 12;
 /// Cuts per row of the picture.
-const CUTS: usize = 4;
+const CUTS: usize = slices::ROWS / ROWS;
 /// The strongest ink of a cell.
 const FULL: f32 = 15.0;
 
@@ -36,8 +36,8 @@ pub struct Picture {
 }
 
 impl Picture {
-    /// The picture of an outline; `None` if it has no area.
-    pub fn of(edges: &Edges) -> Option<Picture> {
+    /// The picture of an outline from its cuts; `None` if it has no area.
+    pub fn of(edges: &Edges, rows: &[Row]) -> Option<Picture> {
         let [left, low, right, high] = edges.bounds;
         let (width, height) = (right - left, high - low);
         if !(width > 50.0 && height > 50.0 && width < 2000.0 && height < 2000.0) {
@@ -45,7 +45,7 @@ impl Picture {
         }
         let cell = width / COLUMNS as f32;
         let mut ink = [0.0f32; COLUMNS * ROWS];
-        for (i, row) in edges.rows(ROWS * CUTS).iter().enumerate() {
+        for (i, row) in rows.iter().enumerate() {
             let line = &mut ink[i / CUTS * COLUMNS..][..COLUMNS];
             for Span { from, to } in row.iter() {
                 let (from, to) = ((from - left) / cell, (to - left) / cell);
@@ -111,7 +111,12 @@ struct Reference {
 
 fn references() -> &'static [Reference] {
     static READ: OnceLock<Vec<Reference>> = OnceLock::new();
-    READ.get_or_init(|| include_str!("letters.txt").lines().filter_map(reference).collect())
+    READ.get_or_init(|| {
+        include_str!("letters.txt")
+            .lines()
+            .filter_map(reference)
+            .collect()
+    })
 }
 
 fn reference(line: &str) -> Option<Reference> {
@@ -161,7 +166,8 @@ const TWINS: &[(char, &str)] = &[
 /// the same layer is known to be wrong elsewhere.
 pub fn greek(picture: &Picture, said: Option<char>, lies: bool) -> Option<char> {
     let all = references();
-    let nearest = |like: &dyn Fn(&Reference) -> Option<f32>| all.iter().filter_map(like).fold(f32::MAX, f32::min);
+    let nearest =
+        |like: &dyn Fn(&Reference) -> Option<f32>| all.iter().filter_map(like).fold(f32::MAX, f32::min);
     let own = said.filter(char::is_ascii_alphanumeric).map_or(f32::MAX, |said| {
         let capital = said.to_ascii_uppercase();
         nearest(&|r| match r.letter {

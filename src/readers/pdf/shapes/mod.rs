@@ -12,13 +12,25 @@ mod agreement;
 mod letters;
 mod marks;
 mod slices;
+mod strokes;
 
 use super::glyphs::{Glyphs, Meaning, Shape};
-use slices::Edges;
+use letters::Picture;
+use slices::{Edges, ROWS, Row};
 use std::collections::HashMap;
+
+/// Steps of an outline that is looked at: fewer make no area, more make an ornament.
+const STEPS: std::ops::Range<usize> = 4..600;
 
 /// A font with this many distinct letters is a text font.
 const ALPHABET: u32 = 20;
+
+/// So is one with this many, if this many of the most frequent eight are among them.
+const FEW: u32 = 12;
+const USUAL: usize = 6;
+
+/// A font with this many of the ten digits has digits and nothing else under their names.
+const DIGITS: u32 = 8;
 
 /// What the outline of a shape says, against one meaning that the text layer gives it.
 #[derive(Clone, Copy, Debug, PartialEq)]
@@ -37,16 +49,22 @@ enum Verdict {
 #[derive(Clone, Debug, Default)]
 struct FontLayer {
     letters: u64,
-    /// For each ASCII letter and digit the shape that it is said to be; `None` if there are several.
+    digits: u16,
+    /// For each character of ASCII the shape that it is said to be; `None` if there are several.
     codes: HashMap<char, Option<u32>>,
-    /// A mark in it is called something else.
+    /// It calls a glyph something else than it is.
     lies: bool,
+    /// That was only seen by one of its letters.
+    found_out: bool,
 }
 
 impl FontLayer {
     fn add(&mut self, c: char, shape: u32) {
         if c.is_ascii_alphabetic() {
             self.letters |= 1 << (c as u32 - 'A' as u32);
+        }
+        if let Some(digit) = c.to_digit(10) {
+            self.digits |= 1 << digit;
         }
         self.codes
             .entry(c)
@@ -59,96 +77,157 @@ impl FontLayer {
     }
 
     fn is_text(&self) -> bool {
-        self.letters.count_ones() >= ALPHABET
+        let usual = "etaoinsr"
+            .chars()
+            .filter(|c| self.letters >> (*c as u32 - 'A' as u32) & 1 == 1)
+            .count();
+        let letters = self.letters.count_ones();
+        letters >= ALPHABET || letters >= FEW && usual >= USUAL
     }
 
-    /// Whether the layer's word for a letter or digit is to be taken.
+    /// Whether the layer's word is to be taken: for letters, digits and what belongs to plain text,
+    /// but not for the signs that texts like to take from elsewhere.
     fn believed(&self, c: char) -> bool {
-        self.is_text() && self.codes.get(&c).is_some_and(Option::is_some)
+        // Likewise a font that has its digits.
+        let complete = match c {
+            '0'..='9' => self.digits.count_ones() >= DIGITS || self.is_text(),
+            c => self.is_text() && !"=<>+/:*%~|".contains(c),
+        };
+        complete && self.codes.get(&c).is_some_and(Option::is_some)
+    }
+}
+
+/// One meaning that the layer gives a shape, and what came of comparing them.
+#[derive(Clone, Copy, Debug)]
+struct Pair {
+    said: Option<char>,
+    verdict: Verdict,
+}
+
+/// For each shape its meanings, nearly always one: every glyph of the file is looked up here, so
+/// nothing is hashed.
+struct Pairs(Vec<Vec<Pair>>);
+
+impl Pairs {
+    /// The pairs of all glyphs, and what they tell of each font's layer.
+    fn of(glyphs: &Glyphs, layers: &mut [FontLayer]) -> Pairs {
+        let mut all: Vec<Vec<Pair>> = vec![Vec::new(); glyphs.shapes.len()];
+        for g in glyphs.pages.iter().flat_map(|p| &p.glyphs) {
+            let Some(shape) = g.shape else { continue };
+            let said = agreement::single(&g.meaning);
+            let own = &mut all[shape as usize];
+            if own.iter().any(|p| p.said == said) {
+                continue;
+            }
+            own.push(Pair {
+                said,
+                verdict: Verdict::Stands,
+            });
+            if let Some(c) = said.filter(char::is_ascii_graphic) {
+                layers[g.font as usize].add(c, shape);
+            }
+        }
+        Pairs(all)
+    }
+
+    /// The verdicts on the meaning of each glyph are carried out.
+    fn apply(&self, glyphs: &mut Glyphs) {
+        let stands = |p: &Pair| p.verdict == Verdict::Stands;
+        let untouched: Vec<bool> = self.0.iter().map(|own| own.iter().all(stands)).collect();
+        if untouched.iter().all(|u| *u) {
+            return;
+        }
+        for g in glyphs.pages.iter_mut().flat_map(|p| &mut p.glyphs) {
+            let Some(shape) = g.shape.filter(|s| !untouched[*s as usize]) else {
+                continue;
+            };
+            let said = agreement::single(&g.meaning);
+            match self.0[shape as usize]
+                .iter()
+                .find(|p| p.said == said)
+                .map(|p| p.verdict)
+            {
+                Some(Verdict::Shows(c)) => {
+                    let layer = std::mem::replace(&mut g.meaning, Meaning::Char(c));
+                    g.layer = Some(Box::new(layer));
+                }
+                Some(Verdict::Renames(c)) => g.meaning = Meaning::Char(c),
+                Some(Verdict::Unknown) => g.meaning = Meaning::Unknown,
+                Some(Verdict::Stands) | None => {}
+            }
+        }
     }
 }
 
 /// Compares every distinct glyph with what the text layer says of it, and corrects the meanings.
 pub fn verify(glyphs: &mut Glyphs) {
     let mut layers: Vec<FontLayer> = vec![FontLayer::default(); glyphs.fonts.len()];
-    let mut seen: HashMap<(u32, Option<char>), Verdict> = HashMap::new();
-    // What each distinct pair of shape and meaning is, once.
-    for page in &glyphs.pages {
-        for g in &page.glyphs {
-            let Some(shape) = g.shape else { continue };
-            let said = agreement::single(&g.meaning);
-            if seen.insert((shape, said), Verdict::Stands).is_none()
-                && let Some(c) = said.filter(char::is_ascii_alphanumeric)
-            {
-                layers[g.font as usize].add(c, shape);
+    let mut pairs = Pairs::of(glyphs, &mut layers);
+    let mut undecided: Vec<Undecided> = Vec::new();
+    for (index, (shape, own)) in glyphs.shapes.iter().zip(&mut pairs.0).enumerate() {
+        let layer = &mut layers[shape.font as usize];
+        let mut cut: Option<(Edges, Vec<Row>)> = None;
+        for (meaning, pair) in own.iter_mut().enumerate() {
+            let said = pair.said;
+            if let Some(c) = said.and_then(agreement::plain) {
+                pair.verdict = Verdict::Renames(c);
+            } else if shape.outline.is_empty() && said.is_none() {
+                pair.verdict = Verdict::Renames(' ');
+            }
+            let doubted = |c| !layer.believed(c) && !agreement::beyond_doubt(c);
+            if pair.verdict != Verdict::Stands || !STEPS.contains(&shape.outline.len()) || !said.is_none_or(doubted) {
+                continue;
+            }
+            let (edges, rows) = cut.get_or_insert_with(|| {
+                let edges = Edges::of(&shape.outline);
+                let rows = edges.rows(ROWS);
+                (edges, rows)
+            });
+            pair.verdict = as_mark(shape, edges, rows, said);
+            layer.lies |= matches!(pair.verdict, Verdict::Shows(_)) && said.is_some_and(|c| !c.is_control());
+            let open = matches!(pair.verdict, Verdict::Stands | Verdict::Unknown);
+            if open && !layer.is_text() && agreement::may_hide_letter(said) {
+                undecided.extend(Picture::of(edges, rows).map(|picture| Undecided {
+                    shape: index,
+                    meaning,
+                    picture,
+                }));
             }
         }
     }
-    let mut pairs: Vec<(u32, Option<char>)> = seen.keys().copied().collect();
-    pairs.sort_unstable();
-    let mut outlines: HashMap<u32, Edges> = HashMap::new();
-    let mut rest = Vec::new();
-    for (shape, said) in pairs {
-        let s = &glyphs.shapes[shape as usize];
-        let layer = &mut layers[s.font as usize];
-        if let Some(c) = said.and_then(agreement::plain) {
-            seen.insert((shape, said), Verdict::Renames(c));
-            continue;
-        }
-        if s.outline.is_empty() && said.is_none() {
-            seen.insert((shape, said), Verdict::Renames(' '));
-            continue;
-        }
-        if s.outline.len() < 4 || said.is_some_and(|c| layer.believed(c) || agreement::beyond_doubt(c)) {
-            continue;
-        }
-        let edges = outlines.entry(shape).or_insert_with(|| Edges::of(&s.outline));
-        let verdict = as_mark(s, edges, said);
-        layer.lies |= matches!(verdict, Verdict::Shows(_)) && said.is_some_and(|c| !c.is_control());
-        if matches!(verdict, Verdict::Stands | Verdict::Unknown) {
-            rest.push((shape, said));
-        }
-        seen.insert((shape, said), verdict);
-    }
-    // Letters come second, and those that look like others last: a font that is wrong elsewhere is
-    // trusted less.
-    for _ in 0..2 {
-        rest.retain(|(shape, said)| {
-            let s = &glyphs.shapes[*shape as usize];
-            let layer = &mut layers[s.font as usize];
-            if layer.is_text() || !agreement::may_hide_letter(*said) {
-                return false;
+    // Letters come second, and once more where one of them shows that its font is wrong: such a font
+    // is trusted less, also about letters that look like others.
+    for again in [false, true] {
+        for u in &undecided {
+            let layer = &mut layers[glyphs.shapes[u.shape].font as usize];
+            let pair = &mut pairs.0[u.shape][u.meaning];
+            if again && (!layer.found_out || matches!(pair.verdict, Verdict::Shows(_))) {
+                continue;
             }
-            let picture = outlines.get(shape).and_then(letters::Picture::of);
-            let letter = picture.and_then(|picture| letters::greek(&picture, *said, layer.lies));
-            if let Some(letter) = letter {
-                layer.lies |= said.is_some();
-                seen.insert((*shape, *said), Verdict::Shows(letter));
-            }
-            letter.is_none()
-        });
-    }
-    if seen.values().all(|v| *v == Verdict::Stands) {
-        return;
-    }
-    for page in &mut glyphs.pages {
-        for g in &mut page.glyphs {
-            let Some(shape) = g.shape else { continue };
-            match seen.get(&(shape, agreement::single(&g.meaning))) {
-                Some(Verdict::Shows(c)) => {
-                    let layer = std::mem::replace(&mut g.meaning, Meaning::Char(*c));
-                    g.layer = Some(Box::new(layer));
-                }
-                Some(Verdict::Renames(c)) => g.meaning = Meaning::Char(*c),
-                Some(Verdict::Unknown) => g.meaning = Meaning::Unknown,
-                _ => {}
+            if let Some(letter) = letters::greek(&u.picture, pair.said, layer.lies) {
+                layer.found_out |= !layer.lies && pair.said.is_some();
+                layer.lies |= pair.said.is_some();
+                pair.verdict = Verdict::Shows(letter);
             }
         }
     }
+    pairs.apply(glyphs);
 }
 
-fn as_mark(shape: &Shape, edges: &Edges, said: Option<char>) -> Verdict {
-    match marks::mark(edges, shape.advance) {
+/// An outline that is no mark and may be a letter.
+struct Undecided {
+    shape: usize,
+    /// Index of the pair.
+    meaning: usize,
+    picture: Picture,
+}
+
+fn as_mark(shape: &Shape, edges: &Edges, rows: &[Row], said: Option<char>) -> Verdict {
+    // Only a mark with one stroke or none at half its height is ever called a letter or digit.
+    if said.is_some_and(|c| c.is_ascii_alphanumeric()) && rows[ROWS / 2].len() > 1 {
+        return Verdict::Stands;
+    }
+    match marks::mark(edges, rows, shape.advance) {
         Some(mark) if said == Some('\u{ad}') && agreement::is_dash(mark) => Verdict::Renames('-'),
         Some(mark) if agreement::contradicts(mark, said) => Verdict::Shows(mark.char()),
         Some(_) => Verdict::Stands,

@@ -4,6 +4,7 @@
 //! gaps between spans that are closed in on all sides are *holes*.
 
 use crate::readers::pdf::glyphs::Step;
+use std::cell::OnceCell;
 
 /// Cuts through a glyph. The thinnest bar of a mark (a twentieth of its height) still gets two.
 pub const ROWS: usize = 48;
@@ -208,9 +209,18 @@ pub struct Component {
     pub rows: Vec<Row>,
     /// Left, lower, right, upper end.
     pub bounds: [f32; 4],
+    single: OnceCell<Option<Vec<Span>>>,
 }
 
 impl Component {
+    pub fn new(rows: Vec<Row>, bounds: [f32; 4]) -> Component {
+        Component {
+            rows,
+            bounds,
+            single: OnceCell::new(),
+        }
+    }
+
     pub fn width(&self) -> f32 {
         self.bounds[2] - self.bounds[0]
     }
@@ -232,14 +242,14 @@ impl Component {
     }
 
     /// One span in every row; their middles and widths then describe it.
-    pub fn single(&self) -> Option<Vec<Span>> {
-        self.rows
-            .iter()
-            .map(|row| match **row {
-                [one] => Some(one),
-                _ => None,
-            })
-            .collect()
+    pub fn single(&self) -> Option<&[Span]> {
+        let one = |row: &Row| match **row {
+            [one] => Some(one),
+            _ => None,
+        };
+        self.single
+            .get_or_init(|| self.rows.iter().map(one).collect())
+            .as_deref()
     }
 }
 
@@ -257,7 +267,7 @@ pub fn components(rows: &[Row], low: f32, high: f32, most: usize) -> Option<Vec<
                 None => {
                     let bounds = [f32::MAX, low + i as f32 * step, f32::MIN, f32::MIN];
                     let rows = Vec::with_capacity(rows.len() - i);
-                    out.push((*group, i, Component { rows, bounds }));
+                    out.push((*group, i, Component::new(rows, bounds)));
                     out.len() - 1
                 }
             };
