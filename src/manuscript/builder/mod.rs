@@ -24,6 +24,7 @@ pub use tables::{CellShape, Description};
 use super::characters::{self, Read};
 use super::ink::{Area, Ink};
 use super::{Block, BlockKind, Correction, Format, Manuscript, Mark, Part, STRIDE, Section, Table};
+use std::collections::HashMap;
 use tables::OpenTable;
 
 /// Collects a document block by block. See the module text for an example.
@@ -37,6 +38,7 @@ pub struct Builder {
     corrections: Vec<Correction>,
     marks: Vec<Mark>,
     ink: Ink,
+    page_sizes: HashMap<u32, [f32; 2]>,
     /// Where the characters of the next text are drawn, by their byte in it.
     drawn: Vec<(usize, Area)>,
     part: Part,
@@ -62,6 +64,7 @@ impl Builder {
             corrections: Vec::new(),
             marks: Vec::new(),
             ink: Ink::default(),
+            page_sizes: HashMap::new(),
             drawn: Vec::new(),
             part: Part::Body,
             section: None,
@@ -86,14 +89,15 @@ impl Builder {
     /// The following text stands on this page (from 1).
     pub fn page(&mut self, page: u32) {
         self.page = Some(page);
+        if let Some(size) = self.page_sizes.get(&page) {
+            self.ink.sheet(page, *size);
+        }
         self.mark();
     }
 
-    /// Width and height in points of the current page, for [`Builder::drawn`].
-    pub fn page_size(&mut self, size: [f32; 2]) {
-        if let Some(page) = self.page {
-            self.ink.sheet(page, size);
-        }
+    /// Width and height in points of a page, for [`Builder::drawn`]; known before the page is.
+    pub fn page_size(&mut self, page: u32, size: [f32; 2]) {
+        self.page_sizes.insert(page, size);
     }
 
     /// The characters from byte `at` of the next text on are drawn in this area of the page, whose size
@@ -503,8 +507,8 @@ mod tests {
     fn areas_follow_the_text_through_forms_and_joined_lines() {
         let mut b = Builder::new(Format::Pdf);
         b.open(BlockKind::Paragraph);
+        b.page_size(3, [600.0, 800.0]);
         b.page(3);
-        b.page_size([600.0, 800.0]);
         b.line(1);
         let area = |n: usize| [10.0 * n as f32, 100.0, 10.0 * n as f32 + 8.0, 110.0];
         for (at, n) in [(0, 1), (1, 2), (2, 3)] {

@@ -19,6 +19,9 @@ pub struct Sheet {
 
 /// Fills the builder.
 pub fn compose(b: &mut Builder, blocks: &[Block], tables: &[Table], body: Body, sheets: &[Sheet]) {
+    for sheet in sheets {
+        b.page_size(sheet.number, [sheet.width, sheet.height]);
+    }
     let mut state = State::new(blocks, body);
     let mut tables = Tables::new(tables, blocks);
     for (index, block) in blocks.iter().enumerate() {
@@ -39,7 +42,7 @@ pub fn compose(b: &mut Builder, blocks: &[Block], tables: &[Table], body: Body, 
         let kind = depth.map_or_else(|| roles::kind(block, body, height), BlockKind::Heading);
         b.part(state.part(index, block, kind));
         b.open(kind);
-        write(b, block, sheets);
+        write(b, block);
         b.close();
     }
 }
@@ -168,15 +171,12 @@ impl State {
 }
 
 /// Writes the lines of a block, marking where each stands.
-fn write(b: &mut Builder, block: &Block, sheets: &[Sheet]) {
+fn write(b: &mut Builder, block: &Block) {
     for (i, (number, line)) in block.lines.iter().enumerate() {
         if i > 0 {
             b.line_break();
         }
         b.page(line.page);
-        if let Some(sheet) = sheets.iter().find(|s| s.number == line.page) {
-            b.page_size([sheet.width, sheet.height]);
-        }
         b.line(*number);
         write_words(b, &line.words);
     }

@@ -232,16 +232,6 @@ impl Taker {
         new
     }
 
-    /// Takes down what was drawn if it is a thin bar.
-    fn bar(&mut self, area: Rect) {
-        let (long, thin) = (area.width().max(area.height()), area.width().min(area.height()));
-        if thin < 2.0 && long > 1.0 && long.is_finite() {
-            self.page
-                .bars
-                .push([area.x0, area.y0, area.x1, area.y1].map(|v| v as f32));
-        }
-    }
-
     fn take<'a>(
         &mut self,
         glyph: &Drawn<'a>,
@@ -432,14 +422,12 @@ impl<'a> Device<'a> for Taker {
     fn draw_image(&mut self, image: Image<'a, '_>, props: ImageDrawProps<'a>) {
         self.count(1);
         let area = Rect::new(0.0, 0.0, f64::from(image.width()), f64::from(image.height()));
-        // Rules of old TeX files are images too.
-        self.bar(props.transform.transform_rect_bbox(area));
+        engine_paths::take_image(&mut self.page.rules, props.transform.transform_rect_bbox(area));
         self.page.image = true;
     }
 
     fn draw_path(&mut self, path: &BezPath, props: DrawProps<'a>, mode: &DrawMode) {
         self.count(1);
-        self.bar(props.transform.transform_rect_bbox(path.bounding_box()));
         engine_paths::take(&mut self.page.rules, path, &props, mode);
     }
 

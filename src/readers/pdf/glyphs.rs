@@ -179,8 +179,6 @@ pub struct PageGlyphs {
     pub width: f32,
     pub height: f32,
     pub glyphs: Vec<Glyph>,
-    /// Thin bars, with the page upright.
-    pub bars: Vec<Area>,
     /// Lines and bars, with the page upright ([`Turn::None`]).
     pub rules: Rules,
     /// The page shows at least one image.
