@@ -88,7 +88,7 @@ pub fn readers(most: usize) -> Pool {
 
 /// The running program, which is its own worker. If it can't be found, no worker will start, and
 /// each file that needs one says so.
-fn executable() -> PathBuf {
+pub(super) fn executable() -> PathBuf {
     // On Linux this is the program itself even if its file has been replaced or removed meanwhile.
     const ITSELF: &str = "/proc/self/exe";
     if cfg!(target_os = "linux") && Path::new(ITSELF).exists() {

@@ -23,6 +23,17 @@ pub struct Word {
     pub after_gap: bool,
     /// Set in a bold font.
     pub bold: bool,
+    /// Where the page shows something else than the text layer says, in the order of the text.
+    pub corrected: Vec<Corrected>,
+}
+
+/// A character of a word that the text layer has otherwise.
+#[derive(Clone, Debug, PartialEq)]
+pub struct Corrected {
+    /// Byte range in the word's text.
+    pub range: std::ops::Range<usize>,
+    /// What the text layer says; empty if it says nothing.
+    pub layer: String,
 }
 
 /// Where the characters from the end of the ink before up to this byte of the word's text are drawn.
@@ -74,6 +85,8 @@ pub struct Line {
     pub font: u16,
     /// Number of pieces: more than one in table rows and badly justified lines.
     pub pieces: usize,
+    /// The table that it keeps the place of; it has no words then.
+    pub table: Option<usize>,
 }
 
 impl Line {
@@ -110,7 +123,9 @@ pub fn rows(mut pieces: Vec<Piece>) -> Vec<Vec<Piece>> {
                 } else {
                     0.35
                 };
-                (p.baseline - piece.baseline).abs() < slack * size
+                p.table.is_none()
+                    && piece.table.is_none()
+                    && (p.baseline - piece.baseline).abs() < slack * size
                     && (p.area[2] - 0.3 * size <= piece.area[0] || piece.area[2] - 0.3 * size <= p.area[0])
             })
         });
@@ -127,6 +142,22 @@ pub fn rows(mut pieces: Vec<Piece>) -> Vec<Vec<Piece>> {
 
 /// Makes a line of the pieces of one row.
 pub fn line(row: &[Piece], page: &PageGlyphs, glyphs: &Glyphs) -> Option<Line> {
+    if let Some(Piece {
+        table: Some(table), ..
+    }) = row.first()
+    {
+        return Some(Line {
+            page: page.number,
+            words: Vec::new(),
+            area: row[0].area,
+            baseline: row[0].baseline,
+            size: row[0].size,
+            bold: false,
+            font: 0,
+            pieces: 1,
+            table: Some(*table),
+        });
+    }
     let ink: Vec<&Glyph> = row
         .iter()
         .flat_map(|p| &p.glyphs)
@@ -159,6 +190,7 @@ pub fn line(row: &[Piece], page: &PageGlyphs, glyphs: &Glyphs) -> Option<Line> {
         bold: bold * 10 >= ink.len() * 8,
         font,
         pieces: row.len(),
+        table: None,
     })
 }
 
@@ -181,7 +213,10 @@ fn piece_words(
             fresh = true;
             continue;
         }
-        let shift = shift_of(g, baseline, size);
+        let shift = match drawn_shift(g, glyphs) {
+            Shift::None => shift_of(g, baseline, size),
+            drawn => drawn,
+        };
         if let Some((l, before)) = last {
             let decimal = || words.last().is_some_and(|w| is_decimal(w, l, g));
             let gap = if before == shift && shift != Shift::None {
@@ -209,6 +244,7 @@ fn piece_words(
                 area: g.area(),
                 after_gap: first && !words.is_empty(),
                 bold,
+                corrected: Vec::new(),
             });
         }
         fresh = false;
@@ -224,6 +260,8 @@ fn piece_words(
             word.ink_again(ink);
             continue;
         }
+        let length = |word: &Word| word.parts.iter().map(|(_, text)| text.len()).sum::<usize>();
+        let start = g.layer.as_ref().map_or(0, |_| length(word));
         match word.parts.last_mut() {
             Some((s, text)) if *s == shift => g.meaning.add_to(text),
             _ => {
@@ -233,6 +271,12 @@ fn piece_words(
             }
         }
         word.ink(ink);
+        if let Some(layer) = &g.layer {
+            word.corrected.push(Corrected {
+                range: start..length(word),
+                layer: layer.known_text(),
+            });
+        }
     }
 }
 
@@ -361,6 +405,21 @@ fn combining(c: char) -> Option<char> {
         '\u{300}'..='\u{30c}' => c,
         _ => return None,
     })
+}
+
+/// Digits that a font has ready raised or lowered: set like all others, but drawn small and off the
+/// baseline. Old-style digits stand on it or reach below it in full size.
+fn drawn_shift(g: &Glyph, glyphs: &Glyphs) -> Shift {
+    let (Meaning::Char('0'..='9'), Some(shape)) = (&g.meaning, g.shape) else {
+        return Shift::None;
+    };
+    let [_, low, _, high] = glyphs.shapes[shape as usize].bounds;
+    match high - low {
+        height if !(150.0..500.0).contains(&height) => Shift::None,
+        _ if low > 180.0 => Shift::Raised,
+        _ if low < -40.0 => Shift::Lowered,
+        _ => Shift::None,
+    }
 }
 
 fn shift_of(g: &Glyph, baseline: f32, size: f32) -> Shift {

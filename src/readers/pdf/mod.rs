@@ -8,9 +8,11 @@
 //! its own ([`contained`](super::contained)). What defeats the first engine is left to the second,
 //! [`fallback`].
 
+mod afterwards;
 mod columns;
 mod compose;
 mod engine_hayro;
+mod engine_paths;
 mod engine_type3;
 mod fallback;
 mod fractions;
@@ -25,13 +27,15 @@ mod replaced;
 mod roles;
 #[cfg(test)]
 mod sample;
+mod shapes;
+mod tables;
 #[cfg(test)]
 mod tests;
 #[cfg(test)]
 mod tests_places;
 
 use super::{Failure, Unreadable};
-use crate::manuscript::{BlockKind, Builder, Format, Manuscript};
+use crate::manuscript::{BlockKind, Builder, Format, Manuscript, nothing_or};
 use compose::Sheet;
 use engine_hayro::{Limits, Refusal};
 use glyphs::{Glyphs, PageGlyphs, Turn};
@@ -138,10 +142,13 @@ fn manuscript(glyphs: &Glyphs, cut_off: bool) -> Result<Manuscript, Unreadable> 
             Unreadable::new("has no text on its pages; if they show any, run text recognition on it first")
         });
     }
-    let columns = read_columns(glyphs);
+    let (columns, tables) = read_columns(glyphs);
     let body = Body::of(&columns);
     let blocks = paragraphs::blocks(&columns, body);
     let blocks = paragraphs::join(blocks, body, |block| {
+        if block.first().table.is_some() {
+            return Standing::Float;
+        }
         if roles::heading(block, body).is_some() {
             return Standing::Heading;
         }
@@ -161,7 +168,10 @@ fn manuscript(glyphs: &Glyphs, cut_off: bool) -> Result<Manuscript, Unreadable> 
         .collect();
     let mut b = Builder::new(Format::Pdf);
     remarks(&mut b, glyphs, cut_off);
-    compose::compose(&mut b, &blocks, body, &sheets);
+    compose::compose(&mut b, &blocks, &tables, body, &sheets);
+    if let Some(remark) = corrected(&b) {
+        b.remark(remark);
+    }
     Ok(b.finish())
 }
 
@@ -212,6 +222,33 @@ fn remarks(b: &mut Builder, glyphs: &Glyphs, cut_off: bool) {
     }
 }
 
+/// How often the page shows something else than its text layer says.
+fn corrected(b: &Builder) -> Option<String> {
+    const MOST: usize = 6;
+    let kinds = b.corrections();
+    let all: usize = kinds.iter().map(|k| k.2).sum();
+    let named: Vec<String> = kinds
+        .iter()
+        .take(MOST)
+        .map(|(shown, layer, n)| format!("`{shown}` where the layer says {} ({n}×)", nothing_or(layer)))
+        .collect();
+    let more = match kinds.len().saturating_sub(MOST) {
+        0 => String::new(),
+        n => format!(" and {n} more"),
+    };
+    let places = if all == 1 {
+        "1 place"
+    } else {
+        &format!("{all} places")
+    };
+    (all > 0).then(|| {
+        format!(
+            "in {places} the page shows something else than the file's text layer says; what the page shows was read: {}{more}",
+            named.join(", ")
+        )
+    })
+}
+
 /// `page 3`, `pages 3, 5–7`.
 fn listed(pages: &[u32]) -> Option<String> {
     let mut ranges: Vec<(u32, u32)> = Vec::new();
@@ -238,11 +275,12 @@ fn listed(pages: &[u32]) -> Option<String> {
     }
 }
 
-/// The columns of all pages in reading order.
-fn read_columns(glyphs: &Glyphs) -> Vec<Column> {
+/// The columns of all pages in reading order, and the tables that stand in them.
+fn read_columns(glyphs: &Glyphs) -> (Vec<Column>, Vec<tables::Table>) {
     let pages: Vec<&PageGlyphs> = glyphs.pages.iter().collect();
     let mut main: Vec<Vec<pieces::Piece>> = Vec::with_capacity(pages.len());
     let mut aside: Vec<Vec<Vec<pieces::Piece>>> = Vec::with_capacity(pages.len());
+    let mut all_turns: Vec<Vec<Turn>> = Vec::with_capacity(pages.len());
     for page in &pages {
         let turns = turns(page);
         let mut all = turns.iter().map(|t| pieces::pieces(page, *t));
@@ -250,8 +288,17 @@ fn read_columns(glyphs: &Glyphs) -> Vec<Column> {
         margins::drop_line_numbers(page, &mut first);
         main.push(first);
         aside.push(all.collect());
+        all_turns.push(turns);
     }
     margins::drop_running_lines(&pages, &mut main);
+    let size = pieces::usual_size(main.iter().flatten());
+    let mut tables = Vec::new();
+    for (p, page) in pages.iter().enumerate() {
+        let sides = std::iter::once(&mut main[p]).chain(&mut aside[p]);
+        for (pieces, turn) in sides.zip(&all_turns[p]) {
+            tables::take(page, glyphs, pieces, *turn, size, &mut tables);
+        }
+    }
     let mut out = Vec::new();
     for ((page, main), aside) in pages.iter().zip(main).zip(aside) {
         let mut number = 1;
@@ -280,7 +327,7 @@ fn read_columns(glyphs: &Glyphs) -> Vec<Column> {
             add(pieces, true);
         }
     }
-    out
+    (out, tables)
 }
 
 /// The directions of text on a page, the one of most glyphs first.
