@@ -1,7 +1,7 @@
 //! From blocks to the manuscript: parts, headings, and the text with its raised and lowered
 //! characters, page by page and line by line.
 
-use super::lines::{Shift, Word};
+use super::lines::{Ink, Shift, Word};
 use super::paragraphs::{Block, Body};
 use super::roles;
 use super::tables::Table;
@@ -193,20 +193,73 @@ pub fn write_words(b: &mut Builder, words: &[Word]) {
 }
 
 fn write_word(b: &mut Builder, word: &Word) {
-    let mut inks = word.inks.iter();
-    // How much of the word is written, and how much of it is known to be drawn where.
-    let (mut done, mut drawn): (usize, usize) = (0, 0);
+    let mut pen = Pen {
+        inks: word.inks.iter(),
+        drawn: 0,
+    };
+    let mut from = 0;
     for (shift, text) in &word.parts {
-        while drawn < done + text.len() {
-            let Some(ink) = inks.next() else { break };
-            b.drawn(drawn.saturating_sub(done), ink.area);
-            drawn = ink.end as usize;
+        let to = from + text.len();
+        let inside = word
+            .corrected
+            .iter()
+            .filter(|c| (from..to).contains(&c.range.start));
+        // Raised and lowered parts are read as a whole, so they are corrected as a whole.
+        let (mut done, mut layer) = (from, String::new());
+        for c in inside {
+            let before = &text[done - from..c.range.start - from];
+            if *shift == Shift::None {
+                let shown = &text[c.range.start - from..c.range.end - from];
+                pen.write(b, done, before);
+                b.corrected(&c.layer, |b| pen.write(b, c.range.start, shown));
+            } else {
+                layer.push_str(before);
+                layer.push_str(&c.layer);
+            }
+            done = c.range.end;
         }
-        done += text.len();
-        match shift {
-            Shift::None => b.text(text),
-            Shift::Raised => b.superscript(text),
-            Shift::Lowered => b.subscript(text),
+        let rest = &text[done - from..];
+        if *shift == Shift::None {
+            pen.write(b, done, rest);
+        } else {
+            pen.draw(b, from, to);
+            layer.push_str(rest);
+            let write = |b: &mut Builder| match shift {
+                Shift::Lowered => b.subscript(text),
+                _ => b.superscript(text),
+            };
+            if done > from {
+                b.corrected(&layer, write);
+            } else {
+                write(b);
+            }
+        }
+        from = to;
+    }
+}
+
+/// Goes along a word and says where what is written is drawn.
+struct Pen<'a> {
+    inks: std::slice::Iter<'a, Ink>,
+    /// How much of the word is known to be drawn where.
+    drawn: usize,
+}
+
+impl Pen<'_> {
+    /// The next text to be written goes from one byte of the word to another.
+    fn draw(&mut self, b: &mut Builder, from: usize, to: usize) {
+        while self.drawn < to {
+            let Some(ink) = self.inks.next() else { break };
+            b.drawn(self.drawn.saturating_sub(from), ink.area);
+            self.drawn = ink.end as usize;
+        }
+    }
+
+    /// Writes text that begins at a byte of the word.
+    fn write(&mut self, b: &mut Builder, from: usize, text: &str) {
+        if !text.is_empty() {
+            self.draw(b, from, from + text.len());
+            b.text(text);
         }
     }
 }

@@ -94,6 +94,10 @@ impl Fraction {
         if !(fills && centred(&above) && centred(&below)) || goes_on(&above) || goes_on(&below) {
             return None;
         }
+        // Cells of a table above and below a rule, with the label of both rows beside it.
+        if above.in_cells(glyphs) || below.in_cells(glyphs) {
+            return None;
+        }
         // The line goes on at least on one side, with its axis at the height of the bar.
         let neighbour = near.iter().find(|i| {
             let g = &glyphs[**i];
@@ -211,6 +215,18 @@ fn part(near: &[usize], glyphs: &[Glyph], fits: impl Fn(&Glyph) -> bool) -> Opti
 }
 
 impl Part {
+    /// Whether gaps wider than any in a formula lie between its glyphs.
+    fn in_cells(&self, glyphs: &[Glyph]) -> bool {
+        let ink = self
+            .glyphs
+            .iter()
+            .map(|i| &glyphs[*i])
+            .filter(|g| !g.meaning.is_space());
+        let mut ends: Vec<(f32, f32)> = ink.map(|g| (g.x0, g.x1)).collect();
+        ends.sort_by(|a, b| a.0.total_cmp(&b.0));
+        ends.windows(2).any(|w| w[1].0 - w[0].1 > 1.2 * self.size)
+    }
+
     fn of(all: Vec<usize>, glyphs: &[Glyph], size: f32, baseline: f32) -> Part {
         let inked = || all.iter().map(|i| &glyphs[*i]).filter(|g| !g.meaning.is_space());
         Part {

@@ -81,7 +81,7 @@ fn above_cells(sheet: &Sheet, start: usize, area: &Area) -> Option<Found> {
             }
             // A short title may stand between caption and cells.
             let title = row.len() == 1 && piece.glyphs.len() <= 40;
-            if piece.area[1] - last > if title { 3.2 } else { 1.3 } * sheet.size {
+            if piece.area[1] - last > if title { 3.2 } else { 1.7 } * sheet.size {
                 return None;
             }
         }

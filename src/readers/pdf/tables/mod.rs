@@ -18,6 +18,8 @@ mod regions;
 mod rows;
 mod rules;
 mod sheet;
+#[cfg(test)]
+mod tests;
 
 pub use rules::Rules;
 
