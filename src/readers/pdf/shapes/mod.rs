@@ -175,7 +175,10 @@ pub fn verify(glyphs: &mut Glyphs) {
                 pair.verdict = Verdict::Renames(' ');
             }
             let doubted = |c| !layer.believed(c) && !agreement::beyond_doubt(c);
-            if pair.verdict != Verdict::Stands || !STEPS.contains(&shape.outline.len()) || !said.is_none_or(doubted) {
+            if pair.verdict != Verdict::Stands
+                || !STEPS.contains(&shape.outline.len())
+                || !said.is_none_or(doubted)
+            {
                 continue;
             }
             let (edges, rows) = cut.get_or_insert_with(|| {
