@@ -5,6 +5,8 @@
 //! Coordinates are points in the *reading frame*: the page turned so that its text runs from left
 //! to right, x to the right and y downwards from the upper left corner. [`Turn`] maps back.
 
+use super::tables::Rules;
+
 /// What the file's text layer says a glyph means.
 #[derive(Clone, Debug, PartialEq)]
 pub enum Meaning {
@@ -18,6 +20,8 @@ impl Meaning {
     /// Adds the text to a string; an unknown glyph becomes U+FFFD, so that it is seen to be missing.
     pub fn add_to(&self, out: &mut String) {
         match self {
+            // A hyphen that is drawn is there, however soft the file says it is.
+            Meaning::Char('\u{ad}') => out.push('-'),
             Meaning::Char(c) => out.push(*c),
             Meaning::Many(s) => out.push_str(s),
             Meaning::Unknown => out.push('\u{fffd}'),
@@ -72,6 +76,27 @@ impl Turn {
             Turn::ThreeQuarters => (y, height - x),
         }
     }
+
+    /// An area of the page in the reading frame.
+    pub fn area_to_reading(self, area: Area, page: (f32, f32)) -> Area {
+        span(
+            self.to_reading((area[0], area[1]), page),
+            self.to_reading((area[2], area[3]), page),
+        )
+    }
+
+    /// An area from the reading frame back to the page.
+    pub fn area_to_page(self, area: Area, page: (f32, f32)) -> Area {
+        span(
+            self.to_page((area[0], area[1]), page),
+            self.to_page((area[2], area[3]), page),
+        )
+    }
+}
+
+/// The area between two corners.
+pub fn span(a: (f32, f32), b: (f32, f32)) -> Area {
+    [a.0.min(b.0), a.1.min(b.1), a.0.max(b.0), a.1.max(b.1)]
 }
 
 /// One printed character.
@@ -94,16 +119,12 @@ pub struct Glyph {
     pub x1: f32,
     /// Height of the baseline.
     pub baseline: f32,
+    /// What is drawn of it. Where the outline isn't known, as [`Glyph::area`].
+    pub ink: Area,
     pub turn: Turn,
 }
 
-/// Left, top, right, bottom.
-pub type Area = [f32; 4];
-
-/// The smallest area that holds both.
-pub fn union(a: Area, b: Area) -> Area {
-    [a[0].min(b[0]), a[1].min(b[1]), a[2].max(b[2]), a[3].max(b[3])]
-}
+pub use crate::manuscript::{Area, union};
 
 impl Glyph {
     /// The space it takes on its line, from usual ascender to usual descender.
@@ -158,6 +179,8 @@ pub struct PageGlyphs {
     pub width: f32,
     pub height: f32,
     pub glyphs: Vec<Glyph>,
+    /// Lines and bars, with the page upright ([`Turn::None`]).
+    pub rules: Rules,
     /// The page shows at least one image.
     pub image: bool,
     /// Interpretation was given up before the end of the page.
@@ -185,18 +208,20 @@ impl Glyphs {
         let Some(main) = (0..self.fonts.len()).max_by_key(|f| self.fonts[*f].uses) else {
             return;
         };
+        // The letter that each shape is.
+        let mut letters: Vec<Option<char>> = vec![None; self.shapes.len()];
+        for glyph in self.pages.iter().flat_map(|p| &p.glyphs) {
+            if let (Some(shape), Meaning::Char(c)) = (glyph.shape, &glyph.meaning)
+                && c.is_ascii_alphabetic()
+            {
+                letters[shape as usize] = Some(*c);
+            }
+        }
         let mut density = std::collections::HashMap::new();
-        for page in &self.pages {
-            for glyph in &page.glyphs {
-                if let (Some(shape), Meaning::Char(c)) = (glyph.shape, &glyph.meaning)
-                    && c.is_ascii_alphabetic()
-                {
-                    let s = &self.shapes[shape as usize];
-                    let room = (s.bounds[2] - s.bounds[0]) * (s.bounds[3] - s.bounds[1]);
-                    if room > 0.0 {
-                        density.entry((glyph.font, *c)).or_insert(s.ink / room);
-                    }
-                }
+        for (s, letter) in self.shapes.iter().zip(letters) {
+            let room = (s.bounds[2] - s.bounds[0]) * (s.bounds[3] - s.bounds[1]);
+            if let (Some(c), true) = (letter, room > 0.0) {
+                density.entry((s.font, c)).or_insert(s.ink / room);
             }
         }
         for (index, font) in self.fonts.iter_mut().enumerate() {
@@ -220,6 +245,9 @@ mod tests {
             let page = (600.0, 800.0);
             let there = turn.to_reading((100.0, 50.0), page);
             assert_eq!(turn.to_page(there, page), (100.0, 50.0));
+            let area = [100.0, 50.0, 130.0, 60.0];
+            let there = turn.area_to_reading(area, page);
+            assert_eq!(turn.area_to_page(there, page), area);
         }
     }
 }
