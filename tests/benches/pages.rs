@@ -28,7 +28,10 @@ fn main() {
         println!("pdftotext is not installed: nothing to compare with");
         return;
     }
-    let share = std::env::var("PAGES").ok().and_then(|s| s.parse().ok()).unwrap_or(1);
+    let share = std::env::var("PAGES")
+        .ok()
+        .and_then(|s| s.parse().ok())
+        .unwrap_or(1);
     real(share);
     printed(share);
 }
@@ -153,7 +156,11 @@ fn real(share: usize) {
     summary("papers", &|m| m.paper);
     summary("two columns", &|m| m.two_columns);
     if let Some(slowest) = all.iter().max_by(|a, b| a.ratio().total_cmp(&b.ratio())) {
-        println!("slowest against pdftotext: {} ({:.2})", slowest.name, slowest.ratio());
+        println!(
+            "slowest against pdftotext: {} ({:.2})",
+            slowest.name,
+            slowest.ratio()
+        );
     }
 }
 
@@ -236,7 +243,10 @@ fn without_breaks(text: &str) -> String {
     let mut out = String::with_capacity(text.len());
     let mut i = 0;
     while i < characters.len() {
-        let letter = |at: Option<usize>| at.and_then(|a| characters.get(a)).is_some_and(|c| c.is_alphabetic());
+        let letter = |at: Option<usize>| {
+            at.and_then(|a| characters.get(a))
+                .is_some_and(|c| c.is_alphabetic())
+        };
         let broken = matches!(characters[i], '-' | '\u{2010}' | '\u{ad}')
             && characters.get(i + 1) == Some(&'\n')
             && letter(i.checked_sub(1))
@@ -310,7 +320,11 @@ fn recall<T: std::hash::Hash + Eq>(of: &[T], among: &[T]) -> f64 {
             hits += 1;
         }
     }
-    if of.is_empty() { 1.0 } else { f64::from(hits) / of.len() as f64 }
+    if of.is_empty() {
+        1.0
+    } else {
+        f64::from(hits) / of.len() as f64
+    }
 }
 
 fn time(mut command: Command) -> Duration {

@@ -89,6 +89,7 @@ mod tests {
             .enumerate()
             .map(|(i, (code, meaning))| Glyph {
                 meaning: meaning.clone(),
+                layer: None,
                 code: *code,
                 font: 0,
                 shape: None,
@@ -123,8 +124,16 @@ mod tests {
         put_right(&mut glyphs);
         assert_eq!(glyphs[1].meaning, Meaning::Many("fi".into()));
         // As likely a digit or a sign: `.?5`, `x?`.
-        for others in [[letter('.'), letter('5')], [letter('x'), letter('=')], [letter('1'), letter('a')]] {
-            let mut glyphs = row(&[others[0].clone(), unknown.clone(), others[1].clone()], 5.0, 10.0);
+        for others in [
+            [letter('.'), letter('5')],
+            [letter('x'), letter('=')],
+            [letter('1'), letter('a')],
+        ] {
+            let mut glyphs = row(
+                &[others[0].clone(), unknown.clone(), others[1].clone()],
+                5.0,
+                10.0,
+            );
             put_right(&mut glyphs);
             assert_eq!(glyphs[1].meaning, Meaning::Unknown, "{others:?}");
         }

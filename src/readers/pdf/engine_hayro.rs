@@ -116,6 +116,7 @@ pub fn glyphs(bytes: Vec<u8>, limits: Limits) -> Result<Glyphs, Refusal> {
         }
         taker.end_page();
     }
+    super::shapes::verify(&mut taker.out);
     taker.out.find_bold_fonts();
     Ok(taker.out)
 }
@@ -231,27 +232,25 @@ impl Taker {
         new
     }
 
-    /// Takes down what was drawn if it is a thin bar.
-    fn bar(&mut self, area: Rect) {
-        let (long, thin) = (area.width().max(area.height()), area.width().min(area.height()));
-        if thin < 2.0 && long > 1.0 && long.is_finite() {
-            self.page
-                .bars
-                .push([area.x0, area.y0, area.x1, area.y1].map(|v| v as f32));
-        }
-    }
-
-    fn take<'a>(&mut self, glyph: &Drawn<'a>, place: Affine, next: Option<Point>, paint: &Paint<'a>) {
+    fn take<'a>(
+        &mut self,
+        glyph: &Drawn<'a>,
+        place: Affine,
+        next: Option<Point>,
+        paint: &Paint<'a>,
+        shown: bool,
+    ) {
         let (advance, font, shape) = match glyph {
             Drawn::Outline(g) => {
                 let id = g.identifier();
                 let font = self.font(font_key(&id));
                 let shapes = &mut self.out.shapes;
                 let shape = *self.shapes.entry(id).or_insert_with(|| {
-                    shapes.push(shape(font, g.char_code(), &g.outline()));
+                    shapes.push(shape(font, g.char_code(), &g.outline(), g.advance_width()));
                     shapes.len() as u32 - 1
                 });
-                (g.advance_width(), font, Some(shape))
+                // The text behind a scanned page is not what the page shows.
+                (g.advance_width(), font, shown.then_some(shape))
             }
             Drawn::Type3(g) => (g.advance_width(), self.font(0), None),
         };
@@ -311,6 +310,7 @@ impl Taker {
         let meaning = self.meaning(glyph, shape);
         let mut glyph = Glyph {
             meaning,
+            layer: None,
             code: glyph.char_code(),
             font,
             shape,
@@ -376,7 +376,7 @@ fn font_key(id: &GlyphIdentifier) -> u128 {
     first.0.unwrap_or(1)
 }
 
-fn shape(font: u16, code: u32, path: &BezPath) -> Shape {
+fn shape(font: u16, code: u32, path: &BezPath, advance: Option<f32>) -> Shape {
     let p = |p: Point| [p.x as f32, p.y as f32];
     let outline = path
         .elements()
@@ -401,11 +401,12 @@ fn shape(font: u16, code: u32, path: &BezPath) -> Shape {
             bounds.x1 as f32,
             bounds.y1 as f32,
         ],
+        advance: advance.unwrap_or(bounds.x1 as f32),
     }
 }
 
 impl<'a> Device<'a> for Taker {
-    fn draw_glyph_run(&mut self, run: &GlyphRun<'_, 'a>, props: DrawProps<'a>, _: &DrawMode) {
+    fn draw_glyph_run(&mut self, run: &GlyphRun<'_, 'a>, props: DrawProps<'a>, mode: &DrawMode) {
         let glyphs = run.glyphs();
         self.count(1 + glyphs.len() as u64);
         for (i, glyph) in glyphs.iter().enumerate() {
@@ -413,21 +414,20 @@ impl<'a> Device<'a> for Taker {
             let next = glyphs
                 .get(i + 1)
                 .map(|n| props.transform * n.transform() * Point::ORIGIN);
-            self.take(glyph, place, next, &props.paint);
+            let shown = !matches!(mode, DrawMode::Invisible);
+            self.take(glyph, place, next, &props.paint, shown);
         }
     }
 
     fn draw_image(&mut self, image: Image<'a, '_>, props: ImageDrawProps<'a>) {
         self.count(1);
         let area = Rect::new(0.0, 0.0, f64::from(image.width()), f64::from(image.height()));
-        // Rules of old TeX files are images too.
-        self.bar(props.transform.transform_rect_bbox(area));
+        engine_paths::take_image(&mut self.page.rules, props.transform.transform_rect_bbox(area));
         self.page.image = true;
     }
 
     fn draw_path(&mut self, path: &BezPath, props: DrawProps<'a>, mode: &DrawMode) {
         self.count(1);
-        self.bar(props.transform.transform_rect_bbox(path.bounding_box()));
         engine_paths::take(&mut self.page.rules, path, &props, mode);
     }
 

@@ -36,6 +36,8 @@ impl Seams {
                 _ => rows.push(here),
             }
         }
+        // Lines of one chunk have no voice, but seams stand clear of them like of heads.
+        let alone: Vec<Vec<Chunk>> = rows.iter().filter(|c| c.len() == 1).cloned().collect();
         rows.retain(|c| c.len() >= 2);
         for row in &mut rows {
             row.sort_by(|a, b| a.left.total_cmp(&b.left));
@@ -43,7 +45,8 @@ impl Seams {
         let mut at = strips(&rows, m);
         // A wall inside a strip is the seam itself.
         at.retain(|s| !walls.iter().any(|w| *w >= s.0 - 1.0 && *w <= s.1 + 1.0));
-        let heads: Vec<Vec<Chunk>> = heads.iter().rev().map(|l| chunks(l, m.space, &walls)).collect();
+        let mut heads: Vec<Vec<Chunk>> = heads.iter().rev().map(|l| chunks(l, m.space, &walls)).collect();
+        heads.extend(alone);
         let mut at: Vec<f32> = at.iter().map(|s| clear_of(&heads, *s)).collect();
         at.extend(&walls);
         at.sort_by(f32::total_cmp);
@@ -106,10 +109,9 @@ fn clear_of(heads: &[Vec<Chunk>], strip: (f32, f32)) -> f32 {
             }
         }
         left.retain(|(a, b)| b - a > 0.8);
-        if left.is_empty() {
-            break;
+        if !left.is_empty() {
+            free = left;
         }
-        free = left;
     }
     let widest = free.iter().max_by(|a, b| (a.1 - a.0).total_cmp(&(b.1 - b.0)));
     widest.map_or((strip.0 + strip.1) / 2.0, |(a, b)| (a + b) / 2.0)

@@ -6,8 +6,9 @@ use super::super::lines::Line;
 use super::super::paragraphs::Block;
 use super::Table;
 use super::content::begins_note;
-use super::grid::Grid;
+use super::grid::{Grid, GridCell};
 use crate::manuscript::{BlockKind, Builder, CellShape, Description};
+use std::collections::HashMap;
 
 /// The tables of a document on their way into the manuscript.
 pub struct Tables<'a> {
@@ -53,7 +54,10 @@ impl<'a> Tables<'a> {
 fn continued(tables: &[Table]) -> Vec<Option<usize>> {
     let mut out: Vec<Option<usize>> = Vec::with_capacity(tables.len());
     for (index, table) in tables.iter().enumerate() {
-        let same_label = |t: &Table| table.label.is_some() && t.label == table.label;
+        let same_label = |t: &Table| {
+            let goes_on = table.continued || table.at_top && t.at_bottom;
+            goes_on && table.label.is_some() && t.label == table.label
+        };
         let earlier = tables[..index].iter().rposition(|t| {
             let same_heads = table.grid.header_rows > 0 && heads(&t.grid) == heads(&table.grid);
             let repeated = table.label.is_none()
@@ -92,7 +96,7 @@ fn write(b: &mut Builder, parts: &[(&Table, u32)]) {
         } else {
             *number
         };
-        text(b, BlockKind::Caption, &table.caption, from, table.page, about);
+        text(b, BlockKind::Caption, &table.caption, from, table, about);
     };
     if !first.below {
         captions(b, &parts[0], &mut about);
@@ -108,7 +112,7 @@ fn write(b: &mut Builder, parts: &[(&Table, u32)]) {
         } else {
             number + table.caption.len() as u32
         };
-        rows(b, table, skip, from);
+        rows(b, table, skip, from, k == 0);
     }
     b.close_table();
     for (k, part) in parts.iter().enumerate() {
@@ -129,7 +133,7 @@ fn write(b: &mut Builder, parts: &[(&Table, u32)]) {
                 BlockKind::TableNote,
                 lines,
                 from + at as u32,
-                table.page,
+                table,
                 &mut about,
             );
             at += n;
@@ -138,7 +142,7 @@ fn write(b: &mut Builder, parts: &[(&Table, u32)]) {
     b.describe(index, &about);
 }
 
-fn text(b: &mut Builder, kind: BlockKind, lines: &[Line], from: u32, page: u32, about: &mut Description) {
+fn text(b: &mut Builder, kind: BlockKind, lines: &[Line], from: u32, table: &Table, about: &mut Description) {
     if lines.is_empty() {
         return;
     }
@@ -148,7 +152,8 @@ fn text(b: &mut Builder, kind: BlockKind, lines: &[Line], from: u32, page: u32, 
         if i > 0 {
             b.line_break();
         }
-        b.page(page);
+        b.page(table.page);
+        b.page_size(table.page_size);
         b.line(from + i as u32);
         write_words(b, &line.words);
     }
@@ -158,8 +163,13 @@ fn text(b: &mut Builder, kind: BlockKind, lines: &[Line], from: u32, page: u32, 
     }
 }
 
-fn rows(b: &mut Builder, table: &Table, skip: usize, from: u32) {
+/// Writes the rows; a part that goes on has no heads of its own.
+fn rows(b: &mut Builder, table: &Table, skip: usize, from: u32, first: bool) {
     let grid = &table.grid;
+    let mut cells: HashMap<(usize, usize), &GridCell> = HashMap::new();
+    for cell in &grid.cells {
+        cells.entry((cell.row, cell.column)).or_insert(cell);
+    }
     // For each column, the first row below the cells that reach down into it.
     let mut free = vec![0usize; grid.columns];
     for row in skip..grid.rows {
@@ -170,11 +180,12 @@ fn rows(b: &mut Builder, table: &Table, skip: usize, from: u32) {
                 column += 1;
                 continue;
             }
-            let cell = grid.cells.iter().find(|c| c.row == row && c.column == column);
+            let cell = cells.get(&(row, column));
             b.page(table.page);
+            b.page_size(table.page_size);
             let Some(cell) = cell else {
                 b.cell(CellShape {
-                    header: row < grid.header_rows,
+                    header: first && row < grid.header_rows,
                     ..CellShape::default()
                 });
                 b.close();
@@ -184,7 +195,7 @@ fn rows(b: &mut Builder, table: &Table, skip: usize, from: u32) {
             b.cell(CellShape {
                 rowspan: cell.rowspan as u32,
                 colspan: cell.colspan as u32,
-                header: cell.header,
+                header: first && cell.header,
             });
             for (i, (line, words)) in cell.text.iter().enumerate() {
                 if i > 0 {

@@ -19,10 +19,6 @@ impl Chunk {
     pub fn middle(&self) -> f32 {
         (self.left + self.right) / 2.0
     }
-
-    pub fn width(&self) -> f32 {
-        self.right - self.left
-    }
 }
 
 /// The chunks of a line: cut where a gap is wider than `space`, and at the `walls` (rules that run
@@ -30,6 +26,9 @@ impl Chunk {
 pub fn chunks(line: &Line, space: f32, walls: &[f32]) -> Vec<Chunk> {
     let mut out: Vec<Chunk> = Vec::new();
     for (i, word) in line.words.iter().enumerate() {
+        // Code among other text has wider spaces.
+        let code = i > 0 && is_code(word, line.size) && is_code(&line.words[i - 1], line.size);
+        let space = if code { space.max(0.95 * line.size) } else { space };
         let walled = |left: f32| walls.iter().any(|w| *w > left - 1.0 && *w < word.area[0] + 1.0);
         match out.last_mut() {
             Some(last) if word.area[0] - last.right <= space && !walled(last.right) => {
@@ -71,8 +70,8 @@ pub fn is_value(text: &str) -> bool {
         digits += usize::from(c.is_ascii_digit());
         letters += usize::from(c.is_alphabetic());
     }
-    let starts_low = !text.chars().next().is_some_and(char::is_alphabetic) || letters <= 2;
-    digits > 0 && letters <= digits && starts_low
+    let named = text.chars().next().is_some_and(char::is_alphabetic);
+    digits > 0 && letters <= digits && !named
 }
 
 /// What stands in a cell that has no value.
@@ -134,17 +133,25 @@ pub fn begins_note(line: &Line) -> bool {
     raised && !line.words.iter().all(|w| is_value(&w.text())) || NOTE.is_match(&line.text())
 }
 
+/// Width of a word for each of its characters, in sizes.
+fn each(word: &Word, size: f32) -> (f32, usize) {
+    let count: usize = word.parts.iter().map(|(_, t)| t.chars().count()).sum();
+    ((word.area[2] - word.area[0]) / count.max(1) as f32 / size, count)
+}
+
+/// Set in one of the usual fonts whose characters are all equally wide.
+fn is_code(word: &Word, size: f32) -> bool {
+    let (each, _) = each(word, size);
+    (each - 0.6).abs() < 0.006 || (each - 0.525).abs() < 0.005
+}
+
 /// The widest gap that is still a space between words, for lines of this size: wider where all
 /// characters are equally wide.
 pub fn space_of<'a>(lines: impl Iterator<Item = &'a Line>, size: f32) -> f32 {
     let (mut same, mut all) = (0, 0);
     for word in lines.flat_map(|l| &l.words) {
-        let count: usize = word.parts.iter().map(|(_, t)| t.chars().count()).sum();
-        if count >= 3 {
-            let each = (word.area[2] - word.area[0]) / count as f32 / size;
-            same += usize::from(
-                (0.5..0.7).contains(&each) && ((each - 0.6).abs() < 0.012 || (each - 0.525).abs() < 0.006),
-            );
+        if each(word, size).1 >= 3 {
+            same += usize::from(is_code(word, size));
             all += 1;
         }
     }
@@ -175,7 +182,15 @@ mod tests {
         ] {
             assert!(is_value(value), "{value}");
         }
-        for label in ["North", "M", "Study 2", "Litres (n = 30)", "Age, years", ""] {
+        for label in [
+            "North",
+            "M",
+            "Study 2",
+            "Litres (n = 30)",
+            "Age, years",
+            "F(2, 115)",
+            "",
+        ] {
             assert!(!is_value(label), "{label}");
         }
     }

@@ -7,6 +7,9 @@ use super::columns::{Measure, Seams};
 use super::content::{self, Chunk, is_value, text_of};
 use super::{heads, rows};
 
+/// No table on a page has more columns.
+const MOST_COLUMNS: usize = 60;
+
 /// One cell: where it stands, how far it reaches, and its text line by line.
 #[derive(Clone, Debug)]
 pub struct GridCell {
@@ -85,14 +88,19 @@ impl<'a> Draft<'a> {
         let bare: Vec<&Line> = body.iter().filter(|l| !content::begins_note(l)).collect();
         let head_lines = &lines[..by_rule.unwrap_or(0)];
         let mut seams = Seams::find(&bare, head_lines, walls.clone(), measure);
-        if bare.len() <= 2 || seams.at.is_empty() {
-            let all: Vec<&Line> = lines.iter().collect();
+        // Heads speak where there are hardly any rows, or when they know of columns that are empty.
+        let last_head = by_rule.map_or(0, |h| h - 1);
+        let named = by_rule.map_or(0, |_| {
+            content::chunks(&lines[last_head], measure.space, &walls).len()
+        });
+        if bare.len() <= 2 || seams.at.is_empty() || named > seams.columns() {
+            let all: Vec<&Line> = lines[last_head..].iter().collect();
             let with_heads = Seams::find(&all, &[], walls, measure);
             if with_heads.at.len() >= seams.at.len() {
                 seams = with_heads;
             }
         }
-        if seams.at.is_empty() {
+        if seams.at.is_empty() || seams.at.len() >= MOST_COLUMNS {
             return None;
         }
         let mut draft = Draft {
@@ -126,7 +134,8 @@ impl<'a> Draft<'a> {
             let mut out: Vec<Placed> = Vec::new();
             for chunk in &whole {
                 let head = index < heads;
-                let parts = if cut && !(head && heads::spans(self, index, heads, chunk)) {
+                let (first, last) = self.seams.span(chunk.left, chunk.right, self.measure.size);
+                let parts = if cut && first != last && !(head && heads::spans(self, index, heads, chunk)) {
                     self.seams.cut(line, chunk, least)
                 } else {
                     vec![chunk.clone()]
@@ -266,12 +275,31 @@ impl<'a> Draft<'a> {
         if left.iter().all(|t| is_marker(t)) && left.len() >= 2 && !has_head(column) {
             return true;
         }
-        let opened = left.iter().filter(|t| open(t)).count();
-        if opened > 0 && opened * 2 >= left.len() {
+        // Brackets that open in one column and close in the next, line by line.
+        let alone = |line: &[Placed], c: usize| {
+            let found = line.iter().find(|p| p.first == c && p.last == c);
+            found.map(|p| self.text(p))
+        };
+        let shared = self.placed[self.heads..]
+            .iter()
+            .filter(|line| {
+                alone(line, column - 1).is_some_and(|t| open(&t))
+                    && alone(line, column).is_some_and(|t| t.contains([')', ']']) && !t.contains(['(', '[']))
+            })
+            .count();
+        if shared > 0 && shared * 2 >= left.len() {
             return true;
         }
         if has_head(column) && has_head(column - 1) {
             return false;
+        }
+        // Words under one head: spaces that happened to stand below one another.
+        let one_head = self.heads > 0
+            && self.placed[self.heads - 1]
+                .iter()
+                .any(|p| p.first < column && p.last >= column);
+        if one_head && !has_head(column) && here.iter().filter(|t| is_value(t)).count() * 3 < here.len() {
+            return true;
         }
         all(&here, &marks) && values && !has_head(column)
             || all(&here, &signs) && here.len() >= 2 && !has_head(column)
@@ -340,13 +368,14 @@ fn head_by_rule(lines: &[Line], full: &[f32]) -> Option<usize> {
             continue;
         }
         let band = &lines[heads..next];
-        let bare = band
-            .iter()
-            .all(|l| l.pieces >= 2 && !l.words.iter().any(|w| is_value(&w.text())));
-        let valued = lines[next..]
-            .iter()
-            .take(3)
-            .any(|l| l.words.iter().any(|w| is_value(&w.text())));
+        let holds_values = |l: &Line| {
+            let cells = content::chunks(l, 0.45 * l.size, &[]);
+            cells
+                .iter()
+                .any(|c| is_value(&text_of(&l.words[c.words.clone()])))
+        };
+        let bare = band.iter().all(|l| l.pieces >= 2 && !holds_values(l));
+        let valued = lines[next..].iter().take(3).any(holds_values);
         if band.len() > 2 || !bare || !valued {
             break;
         }

@@ -18,6 +18,8 @@ mod regions;
 mod rows;
 mod rules;
 mod sheet;
+#[cfg(test)]
+mod tests;
 
 pub use rules::Rules;
 
@@ -33,7 +35,8 @@ use sheet::Sheet;
 #[derive(Clone, Debug)]
 pub struct Table {
     pub page: u32,
-    /// The page is read turned; in the frame of this turn everything is measured.
+    /// Width and height of that page.
+    pub page_size: [f32; 2],
     pub label: Option<String>,
     pub caption: Vec<Line>,
     /// The caption stands below the cells.
@@ -245,6 +248,7 @@ impl<'s, 'a> Search<'s, 'a> {
         }
         self.tables.push(Table {
             page: sheet.page.number,
+            page_size: [sheet.page.width, sheet.page.height],
             label: start.map(|s| s.label.clone()),
             continued: start.is_some_and(|s| s.continued),
             below: caption.as_ref().is_some_and(|c| c.below),

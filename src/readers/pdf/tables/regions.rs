@@ -13,12 +13,12 @@ pub struct Region {
     pub area: Area,
     /// The long rules that made it suspicious, from top to bottom.
     pub rules: Vec<Area>,
-    /// The caption (index into [`Sheet::captions`]) that made it suspicious.
-    pub caption: Option<usize>,
 }
 
 /// Rules shorter than this many sizes frame no table.
 const SHORTEST: f32 = 5.0;
+/// A page with more long rules is a drawing.
+const MOST_RULES: usize = 600;
 /// Suspicions followed up on one page.
 const MOST: usize = 40;
 
@@ -31,6 +31,9 @@ pub fn ruled(sheet: &Sheet) -> Vec<Region> {
         .filter(|r| r[2] - r[0] >= SHORTEST * sheet.size)
         .copied()
         .collect();
+    if across.len() > MOST_RULES {
+        return Vec::new();
+    }
     let mut used = vec![false; across.len()];
     let mut out = Vec::new();
     for i in 0..across.len() {
@@ -55,7 +58,6 @@ pub fn ruled(sheet: &Sheet) -> Vec<Region> {
         let region = Region {
             area: [first[0], top, first[2], bottom],
             rules: stack,
-            caption: None,
         };
         if let Some(region) = stretched(sheet, region) {
             out.push(region);
@@ -177,7 +179,7 @@ fn stretched(sheet: &Sheet, mut region: Region) -> Option<Region> {
 /// Suspected tables below or above captions that no rule led to.
 pub fn captioned(sheet: &Sheet, taken: &[Area]) -> Vec<Region> {
     let mut out = Vec::new();
-    for (index, caption) in sheet.captions.iter().enumerate().take(MOST) {
+    for caption in sheet.captions.iter().take(MOST) {
         let column = sheet.column_of(&caption.area);
         if taken.iter().any(|t| overlap(t, &caption.area)) {
             continue;
@@ -199,7 +201,6 @@ pub fn captioned(sheet: &Sheet, taken: &[Area]) -> Vec<Region> {
             out.push(Region {
                 area: [l, top, r, bottom],
                 rules,
-                caption: Some(index),
             });
         }
     }

@@ -293,6 +293,9 @@ fn goes_on(
     if let Some(tight) = step.inside {
         return gap <= tight;
     }
+    if closes_bracket(draft, before, line) || is_rest(draft, before, line) {
+        return true;
+    }
     let shared = b.columns.iter().filter(|c| a.columns.contains(c)).count();
     if a.values > 0 && b.values > 0 {
         return false;
@@ -345,6 +348,30 @@ fn goes_on(
                 && (close || unfinished && full && breaks(draft, before, line, 9.0))
         }
     }
+}
+
+/// Whether a cell closes the bracket that the one above it leaves open: an interval on two lines.
+fn closes_bracket(draft: &Draft, before: usize, line: usize) -> bool {
+    let open = |t: &str| t.matches(['(', '[']).count() as i32 - t.matches([')', ']']).count() as i32;
+    draft.placed[line].iter().any(|b| {
+        let same = |p: &&Placed| p.first == b.first && p.last == b.last;
+        open(&draft.text(b)) < 0
+            && draft.placed[before]
+                .iter()
+                .find(same)
+                .is_some_and(|a| open(&draft.text(a)) > 0)
+    })
+}
+
+/// Whether a line holds nothing but the bracket of one cell that did not fit behind its number.
+fn is_rest(draft: &Draft, before: usize, line: usize) -> bool {
+    let [only] = draft.placed[line].as_slice() else {
+        return false;
+    };
+    only.first > 0
+        && draft.placed[before].len() >= 3
+        && draft.text(only).starts_with(['(', '['])
+        && breaks(draft, before, line, 0.0)
 }
 
 /// Whether the first word of what stands below another would not have fitted behind it, in a column at

@@ -344,6 +344,10 @@ pub fn overlap(a: &Area, b: &Area) -> bool {
 /// The columns that running text is set in: the edges that long lines share.
 fn columns(pieces: &[Piece]) -> Vec<[f32; 2]> {
     let long: Vec<&Piece> = pieces.iter().filter(|p| p.glyphs.len() >= 25).collect();
+    // No page of text has that many lines.
+    if long.len() > 2000 {
+        return Vec::new();
+    }
     let mut edges: Vec<(f32, Vec<f32>)> = Vec::new();
     for piece in &long {
         let [left, _, right, _] = piece.area;
