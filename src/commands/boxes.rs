@@ -4,7 +4,6 @@
 use super::inputs::Input;
 use super::{Judging, Refused, Status, grammar, run};
 use crate::judge::Document;
-use crate::readers::contained::{Limits, Pool};
 use crate::readers::guard::guarded;
 use crate::reports;
 use clap::Args;
@@ -34,10 +33,10 @@ impl Boxes {
     pub(super) fn run(self) -> Result<Status, Refused> {
         let options = self.judging.options()?;
         let grammar = grammar(&self.judging.grammar)?;
+        let readers = run::readers(1);
         let name = self.file.display();
         let input = Input::File(self.file.clone());
-        let pool = Pool::new(run::executable(), Limits::default(), 1);
-        let document = guarded(|| Ok(crate::examine(input.read(&pool)?, grammar, &options)))
+        let document = guarded(|| Ok(crate::examine(input.read(&readers)?, grammar, &options)))
             .map_err(|reason| Refused(format!("{name}: {reason}")))?;
         if document.manuscript.drawn_pages().is_empty() {
             return Err(Refused(format!(

@@ -54,7 +54,7 @@ pub fn all(work: Work) -> Result<Status, Refused> {
         .build()
         .map_err(|e| Refused(format!("threads cannot be started ({e}); try --jobs 1")))?;
     let shop = Arc::new(Shop {
-        readers: Pool::new(executable(), Limits::default(), threads.current_num_threads()),
+        readers: readers(threads.current_num_threads()),
         grammar: OnceLock::new(),
         work,
     });
@@ -79,6 +79,11 @@ pub fn all(work: Work) -> Result<Status, Refused> {
     std::mem::forget(threads);
     shop.readers.close();
     ended
+}
+
+/// A pool of at most so many workers, for the usual limits.
+pub fn readers(most: usize) -> Pool {
+    Pool::new(executable(), Limits::default(), most)
 }
 
 /// The running program, which is its own worker. If it can't be found, no worker will start, and

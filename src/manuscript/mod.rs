@@ -148,6 +148,33 @@ pub struct Table {
     pub columns: u32,
 }
 
+/// Text that was read otherwise than the file's text layer has it, because the page shows so.
+#[derive(Clone, Debug, PartialEq, Eq, serde::Serialize, serde::Deserialize)]
+pub struct Correction {
+    /// Byte range of what is shown, in [`Manuscript::text`].
+    pub range: Range<usize>,
+    /// What the text layer says there; empty if it says nothing.
+    pub layer: String,
+}
+
+/// What a text layer says, for people: in quotes, control characters by their number, or `nothing`.
+pub fn nothing_or(layer: &str) -> String {
+    if layer.trim().is_empty() {
+        return "nothing".into();
+    }
+    let mut shown = String::from("`");
+    for c in layer.chars() {
+        if c.is_control()
+            || matches!(c, '\u{ad}' | '\u{e000}'..='\u{f8ff}' | '\u{200b}'..='\u{200f}' | '\u{fff0}'..)
+        {
+            shown += &format!("U+{:04X}", c as u32);
+        } else {
+            shown.push(c);
+        }
+    }
+    shown + "`"
+}
+
 /// From this byte of the text on, characters stand on this page and line.
 #[derive(Clone, Copy, Debug, PartialEq, Serialize, Deserialize)]
 struct Mark {
@@ -168,6 +195,8 @@ pub struct Manuscript {
     pub tables: Vec<Table>,
     /// What the reader wants the person to know, e.g. `page 3 has no text`.
     pub remarks: Vec<String>,
+    /// Where the page shows something else than the file's text layer says, in the order of the text.
+    pub corrections: Vec<Correction>,
     marks: Vec<Mark>,
     ink: Ink,
     /// Number of characters before each multiple of [`STRIDE`] bytes.
@@ -250,6 +279,29 @@ impl Manuscript {
     /// The pages on which something of the text is drawn.
     pub fn drawn_pages(&self) -> Vec<u32> {
         self.ink.pages()
+    }
+
+    /// The corrections inside a byte range of the text.
+    pub fn corrections_in(&self, range: &Range<usize>) -> &[Correction] {
+        let from = self.corrections.partition_point(|c| c.range.end <= range.start);
+        let to = self.corrections.partition_point(|c| c.range.start < range.end);
+        &self.corrections[from..to.max(from)]
+    }
+
+    /// A byte range of the text as the file's text layer has it, if that is different.
+    pub fn layer_text(&self, range: &Range<usize>) -> Option<String> {
+        let corrections = self.corrections_in(range);
+        if corrections.is_empty() {
+            return None;
+        }
+        let (mut text, mut done) = (String::new(), range.start);
+        for c in corrections {
+            text.push_str(&self.text[done..c.range.start.max(done)]);
+            text.push_str(&c.layer);
+            done = c.range.end;
+        }
+        text.push_str(&self.text[done.min(range.end)..range.end]);
+        Some(text)
     }
 
     /// The section titles above a block, outermost first.

@@ -6,6 +6,7 @@ mod ci_centre;
 mod ci_order;
 mod d_from_t;
 mod eta2_from_f;
+pub mod granularity;
 mod laws;
 mod mean_granularity;
 mod mean_range;

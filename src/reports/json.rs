@@ -94,6 +94,9 @@ struct DocumentJson<'a> {
 struct StatementJson<'a> {
     id: usize,
     quote: &'a str,
+    /// The same stretch as the file's text layer has it, where the page shows something else.
+    #[serde(skip_serializing_if = "Option::is_none")]
+    layer: Option<String>,
     place: Place,
     quantities: Vec<QuantityJson<'a>>,
 }
@@ -118,6 +121,12 @@ struct QuantityJson<'a> {
     area: Option<Area>,
     #[serde(rename = "boxes", skip_serializing_if = "is_one_line")]
     areas: Vec<LineArea>,
+    /// `uncertain` where a character before the digits could not be read.
+    #[serde(skip_serializing_if = "Option::is_none")]
+    sign: Option<&'static str>,
+    /// What was read by context only.
+    #[serde(skip_serializing_if = "Option::is_none")]
+    context: Option<&'a str>,
 }
 
 fn statement<'a>(document: &'a Document, statement: &'a Statement) -> StatementJson<'a> {
@@ -126,6 +135,7 @@ fn statement<'a>(document: &'a Document, statement: &'a Statement) -> StatementJ
     StatementJson {
         id: statement.id,
         quote: &manuscript.text[statement.range.clone()],
+        layer: manuscript.layer_text(&statement.range),
         place: manuscript.place(block, statement.range.clone()),
         quantities: statement
             .quantities
@@ -149,6 +159,8 @@ fn quantity<'a>(document: &Document, quantity: &'a Quantity) -> QuantityJson<'a>
         page: areas.first().map(|a| a.page),
         area: areas.first().map(|a| a.area),
         areas,
+        sign: quantity.doubt.unsigned.map(|_| "uncertain"),
+        context: quantity.doubt.by_context.as_deref(),
     }
 }
 

@@ -222,6 +222,7 @@ impl Scan<'_> {
             interval: Comparator::Above.interval(&number, false),
             span,
             borrowed: None,
+            doubt: Default::default(),
         })
     }
 

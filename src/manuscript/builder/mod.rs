@@ -23,7 +23,8 @@ pub use tables::{CellShape, Description};
 
 use super::characters::{self, Read};
 use super::ink::{Area, Ink};
-use super::{Block, BlockKind, Format, Manuscript, Mark, Part, STRIDE, Section, Table};
+use super::{Block, BlockKind, Correction, Format, Manuscript, Mark, Part, STRIDE, Section, Table};
+use std::collections::HashMap;
 use tables::OpenTable;
 
 /// Collects a document block by block. See the module text for an example.
@@ -34,8 +35,10 @@ pub struct Builder {
     sections: Vec<Section>,
     tables: Vec<Table>,
     remarks: Vec<String>,
+    corrections: Vec<Correction>,
     marks: Vec<Mark>,
     ink: Ink,
+    page_sizes: HashMap<u32, [f32; 2]>,
     /// Where the characters of the next text are drawn, by their byte in it.
     drawn: Vec<(usize, Area)>,
     part: Part,
@@ -58,8 +61,10 @@ impl Builder {
             sections: Vec::new(),
             tables: Vec::new(),
             remarks: Vec::new(),
+            corrections: Vec::new(),
             marks: Vec::new(),
             ink: Ink::default(),
+            page_sizes: HashMap::new(),
             drawn: Vec::new(),
             part: Part::Body,
             section: None,
@@ -84,14 +89,15 @@ impl Builder {
     /// The following text stands on this page (from 1).
     pub fn page(&mut self, page: u32) {
         self.page = Some(page);
+        if let Some(size) = self.page_sizes.get(&page) {
+            self.ink.sheet(page, *size);
+        }
         self.mark();
     }
 
-    /// Width and height in points of the current page, for [`Builder::drawn`].
-    pub fn page_size(&mut self, size: [f32; 2]) {
-        if let Some(page) = self.page {
-            self.ink.sheet(page, size);
-        }
+    /// Width and height in points of a page, for [`Builder::drawn`]; known before the page is.
+    pub fn page_size(&mut self, page: u32, size: [f32; 2]) {
+        self.page_sizes.insert(page, size);
     }
 
     /// The characters from byte `at` of the next text on are drawn in this area of the page, whose size
@@ -266,6 +272,37 @@ impl Builder {
         self.text(&shifted);
     }
 
+    /// Text that the page shows where the file's text layer says `layer`, which is kept beside it
+    /// (empty if the layer says nothing). `write` writes what is shown.
+    pub fn corrected(&mut self, layer: &str, write: impl FnOnce(&mut Builder)) {
+        if self.open.is_none() {
+            self.open(BlockKind::Paragraph);
+        }
+        let start = self.text.len();
+        write(self);
+        if self.text.len() > start {
+            self.corrections.push(Correction {
+                range: start..self.text.len(),
+                layer: layer.to_string(),
+            });
+        }
+    }
+
+    /// What was corrected in the blocks closed so far: what is shown, what the layer says, and how
+    /// often, the most frequent first.
+    pub fn corrections(&self) -> Vec<(&str, &str, usize)> {
+        let mut kinds: Vec<(&str, &str, usize)> = Vec::new();
+        for c in &self.corrections {
+            let shown = &self.text[c.range.clone()];
+            match kinds.iter_mut().find(|k| k.0 == shown && k.1 == c.layer) {
+                Some(kind) => kind.2 += 1,
+                None => kinds.push((shown, &c.layer, 1)),
+            }
+        }
+        kinds.sort_by_key(|k| std::cmp::Reverse(k.2));
+        kinds
+    }
+
     /// The end of a printed line inside a block, where a word may be hyphenated.
     pub fn line_break(&mut self) {
         if let Some((_, start)) = self.open {
@@ -298,6 +335,7 @@ impl Builder {
         };
         if self.settle {
             let (settled, moved) = settle::settle(&self.text[start..]);
+            self.settle_corrections(start, &settled, &moved);
             self.text.truncate(start);
             self.text.push_str(&settled);
             for mark in self.marks.iter_mut().rev().take_while(|m| m.at >= start) {
@@ -346,6 +384,24 @@ impl Builder {
             _ => self.text.push_str("\n\n"),
         }
         self.mark();
+    }
+
+    /// Corrections follow the settled text of the block that begins at `start`; one whose character is
+    /// gone (the hyphen of a joined word) is dropped.
+    fn settle_corrections(&mut self, start: usize, settled: &str, moved: &settle::Moved) {
+        let first = self.corrections.partition_point(|c| c.range.start < start);
+        let mut kept = Vec::new();
+        for mut c in self.corrections.drain(first..) {
+            let shown = &self.text[c.range.clone()];
+            let range =
+                settle::carried(c.range.start - start, moved)..settle::carried(c.range.end - start, moved);
+            let now = settled.get(range.clone()).unwrap_or_default();
+            if now == shown || now == "-" && matches!(shown, "–" | "—") {
+                c.range = start + range.start..start + range.end;
+                kept.push(c);
+            }
+        }
+        self.corrections.extend(kept);
     }
 
     /// Marks beyond the end of the text (their block was empty) fall back to the end.
@@ -397,6 +453,7 @@ impl Builder {
             sections: self.sections,
             tables: self.tables,
             remarks: self.remarks,
+            corrections: self.corrections,
             marks: self.marks,
             ink: self.ink,
             char_index,
@@ -450,8 +507,8 @@ mod tests {
     fn areas_follow_the_text_through_forms_and_joined_lines() {
         let mut b = Builder::new(Format::Pdf);
         b.open(BlockKind::Paragraph);
+        b.page_size(3, [600.0, 800.0]);
         b.page(3);
-        b.page_size([600.0, 800.0]);
         b.line(1);
         let area = |n: usize| [10.0 * n as f32, 100.0, 10.0 * n as f32 + 8.0, 110.0];
         for (at, n) in [(0, 1), (1, 2), (2, 3)] {

@@ -1,7 +1,7 @@
 //! From blocks to the manuscript: parts, headings, and the text with its raised and lowered
 //! characters, page by page and line by line.
 
-use super::lines::{Shift, Word};
+use super::lines::{Ink, Shift, Word};
 use super::paragraphs::{Block, Body};
 use super::roles;
 use super::tables::Table;
@@ -19,6 +19,9 @@ pub struct Sheet {
 
 /// Fills the builder.
 pub fn compose(b: &mut Builder, blocks: &[Block], tables: &[Table], body: Body, sheets: &[Sheet]) {
+    for sheet in sheets {
+        b.page_size(sheet.number, [sheet.width, sheet.height]);
+    }
     let mut state = State::new(blocks, body);
     let mut tables = Tables::new(tables, blocks);
     for (index, block) in blocks.iter().enumerate() {
@@ -39,7 +42,7 @@ pub fn compose(b: &mut Builder, blocks: &[Block], tables: &[Table], body: Body, 
         let kind = depth.map_or_else(|| roles::kind(block, body, height), BlockKind::Heading);
         b.part(state.part(index, block, kind));
         b.open(kind);
-        write(b, block, sheets);
+        write(b, block);
         b.close();
     }
 }
@@ -168,15 +171,12 @@ impl State {
 }
 
 /// Writes the lines of a block, marking where each stands.
-fn write(b: &mut Builder, block: &Block, sheets: &[Sheet]) {
+fn write(b: &mut Builder, block: &Block) {
     for (i, (number, line)) in block.lines.iter().enumerate() {
         if i > 0 {
             b.line_break();
         }
         b.page(line.page);
-        if let Some(sheet) = sheets.iter().find(|s| s.number == line.page) {
-            b.page_size([sheet.width, sheet.height]);
-        }
         b.line(*number);
         write_words(b, &line.words);
     }
@@ -193,20 +193,73 @@ pub fn write_words(b: &mut Builder, words: &[Word]) {
 }
 
 fn write_word(b: &mut Builder, word: &Word) {
-    let mut inks = word.inks.iter();
-    // How much of the word is written, and how much of it is known to be drawn where.
-    let (mut done, mut drawn): (usize, usize) = (0, 0);
+    let mut pen = Pen {
+        inks: word.inks.iter(),
+        drawn: 0,
+    };
+    let mut from = 0;
     for (shift, text) in &word.parts {
-        while drawn < done + text.len() {
-            let Some(ink) = inks.next() else { break };
-            b.drawn(drawn.saturating_sub(done), ink.area);
-            drawn = ink.end as usize;
+        let to = from + text.len();
+        let inside = word
+            .corrected
+            .iter()
+            .filter(|c| (from..to).contains(&c.range.start));
+        // Raised and lowered parts are read as a whole, so they are corrected as a whole.
+        let (mut done, mut layer) = (from, String::new());
+        for c in inside {
+            let before = &text[done - from..c.range.start - from];
+            if *shift == Shift::None {
+                let shown = &text[c.range.start - from..c.range.end - from];
+                pen.write(b, done, before);
+                b.corrected(&c.layer, |b| pen.write(b, c.range.start, shown));
+            } else {
+                layer.push_str(before);
+                layer.push_str(&c.layer);
+            }
+            done = c.range.end;
         }
-        done += text.len();
-        match shift {
-            Shift::None => b.text(text),
-            Shift::Raised => b.superscript(text),
-            Shift::Lowered => b.subscript(text),
+        let rest = &text[done - from..];
+        if *shift == Shift::None {
+            pen.write(b, done, rest);
+        } else {
+            pen.draw(b, from, to);
+            layer.push_str(rest);
+            let write = |b: &mut Builder| match shift {
+                Shift::Lowered => b.subscript(text),
+                _ => b.superscript(text),
+            };
+            if done > from {
+                b.corrected(&layer, write);
+            } else {
+                write(b);
+            }
+        }
+        from = to;
+    }
+}
+
+/// Goes along a word and says where what is written is drawn.
+struct Pen<'a> {
+    inks: std::slice::Iter<'a, Ink>,
+    /// How much of the word is known to be drawn where.
+    drawn: usize,
+}
+
+impl Pen<'_> {
+    /// The next text to be written goes from one byte of the word to another.
+    fn draw(&mut self, b: &mut Builder, from: usize, to: usize) {
+        while self.drawn < to {
+            let Some(ink) = self.inks.next() else { break };
+            b.drawn(self.drawn.saturating_sub(from), ink.area);
+            self.drawn = ink.end as usize;
+        }
+    }
+
+    /// Writes text that begins at a byte of the word.
+    fn write(&mut self, b: &mut Builder, from: usize, text: &str) {
+        if !text.is_empty() {
+            self.draw(b, from, from + text.len());
+            b.text(text);
         }
     }
 }

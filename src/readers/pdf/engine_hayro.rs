@@ -4,6 +4,7 @@
 //! Every call of the engine is counted, and beyond [`Limits`] the page is given up by unwinding
 //! through the engine, which has no other way to be stopped.
 
+use super::afterwards;
 use super::engine_paths;
 use super::engine_type3::Bounds;
 use super::fractions;
@@ -21,7 +22,7 @@ use hayro_syntax::object::Dict;
 use hayro_syntax::object::dict::keys::{ACTUAL_TEXT, USER_UNIT};
 use hayro_syntax::page::Page;
 use hayro_syntax::{DecryptionError, LoadPdfError, Pdf};
-use std::collections::HashMap;
+use rustc_hash::FxHashMap;
 use std::hash::{Hash, Hasher};
 use std::panic::{AssertUnwindSafe, catch_unwind, resume_unwind};
 use std::time::{Duration, Instant};
@@ -115,6 +116,7 @@ pub fn glyphs(bytes: Vec<u8>, limits: Limits) -> Result<Glyphs, Refusal> {
         }
         taker.end_page();
     }
+    super::shapes::verify(&mut taker.out);
     taker.out.find_bold_fonts();
     Ok(taker.out)
 }
@@ -138,8 +140,10 @@ struct Taker {
     calls: u64,
     limits: Limits,
     end: Instant,
-    fonts: HashMap<u128, u16>,
-    shapes: HashMap<GlyphIdentifier, u32>,
+    fonts: FxHashMap<u128, u16>,
+    shapes: FxHashMap<GlyphIdentifier, u32>,
+    /// What each shape means when it is selected by this code; asking the engine takes longer.
+    meanings: Vec<(u32, Meaning)>,
     type3: Bounds,
     /// Glyphs of Type 3 fonts may be drawn to see what they cover.
     draw_type3: bool,
@@ -161,8 +165,9 @@ impl Taker {
             calls: 0,
             limits,
             end,
-            fonts: HashMap::new(),
-            shapes: HashMap::new(),
+            fonts: FxHashMap::default(),
+            shapes: FxHashMap::default(),
+            meanings: Vec::new(),
             type3: Bounds::default(),
             draw_type3: false,
             marked: Vec::new(),
@@ -183,8 +188,7 @@ impl Taker {
     }
 
     fn end_page(&mut self) {
-        true_sizes(&mut self.page.glyphs);
-        ligatures(&mut self.page.glyphs);
+        afterwards::put_right(&mut self.page.glyphs);
         fractions::lay_out(&mut self.page);
         self.out.pages.push(std::mem::take(&mut self.page));
     }
@@ -211,27 +215,42 @@ impl Taker {
         index
     }
 
-    /// Takes down what was drawn if it is a thin bar.
-    fn bar(&mut self, area: Rect) {
-        let (long, thin) = (area.width().max(area.height()), area.width().min(area.height()));
-        if thin < 2.0 && long > 1.0 && long.is_finite() {
-            self.page
-                .bars
-                .push([area.x0, area.y0, area.x1, area.y1].map(|v| v as f32));
+    fn meaning(&mut self, glyph: &Drawn<'_>, shape: Option<u32>) -> Meaning {
+        let Some(shape) = shape.map(|s| s as usize) else {
+            return meaning(glyph);
+        };
+        if let Some((code, known)) = self.meanings.get(shape)
+            && *code == glyph.char_code()
+        {
+            return known.clone();
         }
+        let new = meaning(glyph);
+        if shape >= self.meanings.len() {
+            self.meanings.resize(shape + 1, (u32::MAX, Meaning::Unknown));
+        }
+        self.meanings[shape] = (glyph.char_code(), new.clone());
+        new
     }
 
-    fn take<'a>(&mut self, glyph: &Drawn<'a>, place: Affine, next: Option<Point>, paint: &Paint<'a>) {
+    fn take<'a>(
+        &mut self,
+        glyph: &Drawn<'a>,
+        place: Affine,
+        next: Option<Point>,
+        paint: &Paint<'a>,
+        shown: bool,
+    ) {
         let (advance, font, shape) = match glyph {
             Drawn::Outline(g) => {
                 let id = g.identifier();
                 let font = self.font(font_key(&id));
                 let shapes = &mut self.out.shapes;
                 let shape = *self.shapes.entry(id).or_insert_with(|| {
-                    shapes.push(shape(font, g.char_code(), &g.outline()));
+                    shapes.push(shape(font, g.char_code(), &g.outline(), g.advance_width()));
                     shapes.len() as u32 - 1
                 });
-                (g.advance_width(), font, Some(shape))
+                // The text behind a scanned page is not what the page shows.
+                (g.advance_width(), font, shown.then_some(shape))
             }
             Drawn::Type3(g) => (g.advance_width(), self.font(0), None),
         };
@@ -288,8 +307,10 @@ impl Taker {
                 to(Point::new(bounds.x1, bounds.y1)),
             )
         });
+        let meaning = self.meaning(glyph, shape);
         let mut glyph = Glyph {
-            meaning: meaning(glyph),
+            meaning,
+            layer: None,
             code: glyph.char_code(),
             font,
             shape,
@@ -317,67 +338,11 @@ fn is_usual(bounds: Rect) -> bool {
         && [bounds.x0, bounds.y0, bounds.x1, bounds.y1].into_iter().all(near)
 }
 
-/// Bitmap fonts may count in any unit, so that their size says nothing. Where it does not go with
-/// the widths, the letters' average width tells: about half the size, as in most fonts.
-fn true_sizes(glyphs: &mut [Glyph]) {
-    let mut by_size: HashMap<u32, Vec<f32>> = HashMap::new();
-    for g in glyphs.iter().filter(|g| g.shape.is_none()) {
-        let widths = by_size.entry(g.size.to_bits()).or_default();
-        if matches!(g.meaning, Meaning::Char(c) if c.is_alphanumeric()) {
-            widths.push(g.x1 - g.x0);
-        }
-    }
-    let mut sizes: HashMap<u32, f32> = HashMap::new();
-    for (bits, mut widths) in by_size {
-        let size = f32::from_bits(bits);
-        widths.sort_by(f32::total_cmp);
-        let typical = widths.get(widths.len() / 2).copied().unwrap_or(0.5 * size);
-        if !(0.2..1.2).contains(&(typical / size)) {
-            sizes.insert(bits, 2.0 * typical);
-        }
-    }
-    for g in glyphs.iter_mut().filter(|g| g.shape.is_none()) {
-        if let Some(size) = sizes.get(&g.size.to_bits()) {
-            g.size = size.clamp(0.5, 2000.0);
-        }
-    }
-}
-
-/// TeX's bitmap fonts name nothing; their ligatures have these codes in its two usual encodings. As
-/// other files use the same codes for anything, the next character must go on with the word.
-fn ligatures(glyphs: &mut [Glyph]) {
-    for i in 0..glyphs.len().saturating_sub(1) {
-        let (g, next) = (&glyphs[i], &glyphs[i + 1]);
-        let text = match g.code {
-            0x0b | 0x1b => "ff",
-            0x0c | 0x1c => "fi",
-            0x0d | 0x1d => "fl",
-            0x0e | 0x1e => "ffi",
-            0x0f | 0x1f => "ffl",
-            _ => continue,
-        };
-        let touches = |a: &Glyph, b: &Glyph| {
-            a.baseline == b.baseline && a.turn == b.turn && (b.x0 - a.x1).abs() < 0.1 * a.size
-        };
-        let goes_on = touches(g, next) && matches!(next.meaning, Meaning::Char('a'..='z'));
-        let begins = i.checked_sub(1).map(|b| &glyphs[b]).is_none_or(|before| {
-            !touches(before, g)
-                || matches!(before.meaning, Meaning::Char(c) if !c.is_ascii_digit())
-                || matches!(before.meaning, Meaning::Many(_))
-        });
-        if g.shape.is_none() && g.meaning == Meaning::Unknown && goes_on && begins {
-            glyphs[i].meaning = Meaning::Many(text.into());
-        }
-    }
-}
-
 /// What the text layer says. Bitmap fonts and Type 1 fonts with home-made glyph names often say
 /// nothing, but then use the ASCII code.
 fn meaning(glyph: &Drawn<'_>) -> Meaning {
     let bitmap = matches!(glyph, Drawn::Type3(_));
     match glyph.as_unicode() {
-        // Whoever draws a soft hyphen shows a hyphen; some files name all their hyphens so.
-        Some(BfString::Char('\u{ad}')) => Meaning::Char('-'),
         Some(BfString::Char(c)) if c != '\0' && !(c.is_control() && bitmap) => Meaning::Char(c),
         Some(BfString::String(s)) if !s.is_empty() => Meaning::Many(s.into()),
         _ => {
@@ -411,7 +376,7 @@ fn font_key(id: &GlyphIdentifier) -> u128 {
     first.0.unwrap_or(1)
 }
 
-fn shape(font: u16, code: u32, path: &BezPath) -> Shape {
+fn shape(font: u16, code: u32, path: &BezPath, advance: Option<f32>) -> Shape {
     let p = |p: Point| [p.x as f32, p.y as f32];
     let outline = path
         .elements()
@@ -436,11 +401,12 @@ fn shape(font: u16, code: u32, path: &BezPath) -> Shape {
             bounds.x1 as f32,
             bounds.y1 as f32,
         ],
+        advance: advance.unwrap_or(bounds.x1 as f32),
     }
 }
 
 impl<'a> Device<'a> for Taker {
-    fn draw_glyph_run(&mut self, run: &GlyphRun<'_, 'a>, props: DrawProps<'a>, _: &DrawMode) {
+    fn draw_glyph_run(&mut self, run: &GlyphRun<'_, 'a>, props: DrawProps<'a>, mode: &DrawMode) {
         let glyphs = run.glyphs();
         self.count(1 + glyphs.len() as u64);
         for (i, glyph) in glyphs.iter().enumerate() {
@@ -448,21 +414,20 @@ impl<'a> Device<'a> for Taker {
             let next = glyphs
                 .get(i + 1)
                 .map(|n| props.transform * n.transform() * Point::ORIGIN);
-            self.take(glyph, place, next, &props.paint);
+            let shown = !matches!(mode, DrawMode::Invisible);
+            self.take(glyph, place, next, &props.paint, shown);
         }
     }
 
     fn draw_image(&mut self, image: Image<'a, '_>, props: ImageDrawProps<'a>) {
         self.count(1);
         let area = Rect::new(0.0, 0.0, f64::from(image.width()), f64::from(image.height()));
-        // Rules of old TeX files are images too.
-        self.bar(props.transform.transform_rect_bbox(area));
+        engine_paths::take_image(&mut self.page.rules, props.transform.transform_rect_bbox(area));
         self.page.image = true;
     }
 
     fn draw_path(&mut self, path: &BezPath, props: DrawProps<'a>, mode: &DrawMode) {
         self.count(1);
-        self.bar(props.transform.transform_rect_bbox(path.bounding_box()));
         engine_paths::take(&mut self.page.rules, path, &props, mode);
     }
 

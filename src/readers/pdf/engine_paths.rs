@@ -7,6 +7,8 @@ use hayro_interpret::{DrawMode, DrawProps, Paint};
 
 /// Paths with more steps than this are drawings.
 const MOST_STEPS: usize = 4000;
+/// Images thinner than this many points are rules.
+const THIN_IMAGE: f64 = 2.0;
 
 /// Takes down a path as it is painted.
 pub fn take(rules: &mut Rules, path: &BezPath, props: &DrawProps<'_>, mode: &DrawMode) {
@@ -26,6 +28,14 @@ pub fn take(rules: &mut Rules, path: &BezPath, props: &DrawProps<'_>, mode: &Dra
             stroke(rules, elements, props.transform, pen.line_width);
         }
         DrawMode::Invisible => {}
+    }
+}
+
+/// Takes down an image, if it is as thin as a rule: old TeX files draw rules so.
+pub fn take_image(rules: &mut Rules, place: Rect) {
+    let thin = place.width().min(place.height()) < THIN_IMAGE;
+    if thin && place.is_finite() && rules.takes_more() {
+        rules.bar(area(place));
     }
 }
 

@@ -1,7 +1,7 @@
 //! A *fraction* is printed over three lines: the numerator, the bar and the denominator. For
 //! reading it is laid out on the line it stands in, `24.1/3.32`; the ink of its glyphs stays where it is.
 
-use super::glyphs::{Area, Glyph, Meaning, PageGlyphs, Turn, union};
+use super::glyphs::{Area, Glyph, Meaning, PageGlyphs, Turn};
 
 /// Bars looked at on one page; a page of formulas has a few dozen.
 const MOST_BARS: usize = 400;
@@ -12,7 +12,8 @@ const REACH: f32 = 36.0;
 
 /// Lays out all fractions of a page.
 pub fn lay_out(page: &mut PageGlyphs) {
-    if page.bars.is_empty() || page.bars.len() > MOST_BARS {
+    let bars = page.rules.across.len() + page.rules.down.len();
+    if bars == 0 || bars > MOST_BARS {
         return;
     }
     let size = (page.width, page.height);
@@ -20,8 +21,7 @@ pub fn lay_out(page: &mut PageGlyphs) {
         if !page.glyphs.iter().any(|g| g.turn == turn) {
             continue;
         }
-        let all = page.bars.iter().map(|bar| turn.area_to_reading(*bar, size));
-        let mut bars = in_one(all.filter(|b| b[3] - b[1] < 2.0).collect());
+        let mut bars = page.rules.turned(turn, size).across;
         bars.retain(|b| (3.0..LONGEST_BAR).contains(&(b[2] - b[0])));
         // The shortest first, as fractions may stand in fractions.
         bars.sort_by(|a, b| (a[2] - a[0]).total_cmp(&(b[2] - b[0])));
@@ -49,21 +49,6 @@ fn near(order: &[usize], glyphs: &[Glyph], y: f32) -> Vec<usize> {
     let mut near = order[at(y - REACH)..at(y + REACH)].to_vec();
     near.sort_unstable();
     near
-}
-
-/// Bars that go on from one another, put together: some programs draw long ones bit by bit.
-fn in_one(mut bars: Vec<Area>) -> Vec<Area> {
-    bars.sort_by(|a, b| a[1].total_cmp(&b[1]).then(a[0].total_cmp(&b[0])));
-    let mut out: Vec<Area> = Vec::new();
-    for bar in bars {
-        match out.last_mut() {
-            Some(last) if (last[1] - bar[1]).abs() < 0.3 && bar[0] - last[2] < 0.6 => {
-                *last = union(*last, bar);
-            }
-            _ => out.push(bar),
-        }
-    }
-    out
 }
 
 /// One fraction; its parts are indexes of glyphs, in the order in which they are drawn.

@@ -28,6 +28,15 @@ impl Meaning {
         }
     }
 
+    /// The text that the file gives it; empty for an unknown glyph.
+    pub fn known_text(&self) -> String {
+        let mut text = String::new();
+        if *self != Meaning::Unknown {
+            self.add_to(&mut text);
+        }
+        text
+    }
+
     /// True for a glyph that only makes room.
     pub fn is_space(&self) -> bool {
         match self {
@@ -94,11 +103,13 @@ pub fn span(a: (f32, f32), b: (f32, f32)) -> Area {
 #[derive(Clone, Debug)]
 pub struct Glyph {
     pub meaning: Meaning,
+    /// What the text layer says, where the outline shows something else.
+    pub layer: Option<Box<Meaning>>,
     /// The code that selects it in its font.
     pub code: u32,
     /// Index into [`Glyphs::fonts`].
     pub font: u16,
-    /// Index into [`Glyphs::shapes`]; bitmap fonts have none.
+    /// Index into [`Glyphs::shapes`]; bitmap fonts have none, nor has text that is not shown.
     pub shape: Option<u32>,
     /// Font size in points, as shown.
     pub size: f32,
@@ -147,6 +158,8 @@ pub struct Shape {
     pub ink: f32,
     /// Left, lower, right, upper end of the ink.
     pub bounds: [f32; 4],
+    /// How far the pen moves on, in thousandths of the font size.
+    pub advance: f32,
 }
 
 /// A font as far as the pages show it.
@@ -166,8 +179,6 @@ pub struct PageGlyphs {
     pub width: f32,
     pub height: f32,
     pub glyphs: Vec<Glyph>,
-    /// Thin bars, with the page upright.
-    pub bars: Vec<Area>,
     /// Lines and bars, with the page upright ([`Turn::None`]).
     pub rules: Rules,
     /// The page shows at least one image.
@@ -197,18 +208,20 @@ impl Glyphs {
         let Some(main) = (0..self.fonts.len()).max_by_key(|f| self.fonts[*f].uses) else {
             return;
         };
+        // The letter that each shape is.
+        let mut letters: Vec<Option<char>> = vec![None; self.shapes.len()];
+        for glyph in self.pages.iter().flat_map(|p| &p.glyphs) {
+            if let (Some(shape), Meaning::Char(c)) = (glyph.shape, &glyph.meaning)
+                && c.is_ascii_alphabetic()
+            {
+                letters[shape as usize] = Some(*c);
+            }
+        }
         let mut density = std::collections::HashMap::new();
-        for page in &self.pages {
-            for glyph in &page.glyphs {
-                if let (Some(shape), Meaning::Char(c)) = (glyph.shape, &glyph.meaning)
-                    && c.is_ascii_alphabetic()
-                {
-                    let s = &self.shapes[shape as usize];
-                    let room = (s.bounds[2] - s.bounds[0]) * (s.bounds[3] - s.bounds[1]);
-                    if room > 0.0 {
-                        density.entry((glyph.font, *c)).or_insert(s.ink / room);
-                    }
-                }
+        for (s, letter) in self.shapes.iter().zip(letters) {
+            let room = (s.bounds[2] - s.bounds[0]) * (s.bounds[3] - s.bounds[1]);
+            if let (Some(c), true) = (letter, room > 0.0) {
+                density.entry((s.font, c)).or_insert(s.ink / room);
             }
         }
         for (index, font) in self.fonts.iter_mut().enumerate() {

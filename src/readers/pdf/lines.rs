@@ -23,6 +23,17 @@ pub struct Word {
     pub after_gap: bool,
     /// Set in a bold font.
     pub bold: bool,
+    /// Where the page shows something else than the text layer says, in the order of the text.
+    pub corrected: Vec<Corrected>,
+}
+
+/// A character of a word that the text layer has otherwise.
+#[derive(Clone, Debug, PartialEq)]
+pub struct Corrected {
+    /// Byte range in the word's text.
+    pub range: std::ops::Range<usize>,
+    /// What the text layer says; empty if it says nothing.
+    pub layer: String,
 }
 
 /// Where the characters from the end of the ink before up to this byte of the word's text are drawn.
@@ -233,6 +244,7 @@ fn piece_words(
                 area: g.area(),
                 after_gap: first && !words.is_empty(),
                 bold,
+                corrected: Vec::new(),
             });
         }
         fresh = false;
@@ -248,6 +260,8 @@ fn piece_words(
             word.ink_again(ink);
             continue;
         }
+        let length = |word: &Word| word.parts.iter().map(|(_, text)| text.len()).sum::<usize>();
+        let start = g.layer.as_ref().map_or(0, |_| length(word));
         match word.parts.last_mut() {
             Some((s, text)) if *s == shift => g.meaning.add_to(text),
             _ => {
@@ -257,6 +271,12 @@ fn piece_words(
             }
         }
         word.ink(ink);
+        if let Some(layer) = &g.layer {
+            word.corrected.push(Corrected {
+                range: start..length(word),
+                layer: layer.known_text(),
+            });
+        }
     }
 }
 

@@ -140,6 +140,7 @@ pub fn drop_line_numbers(page: &PageGlyphs, pieces: &mut Vec<Piece>) {
     let numbers: Vec<(usize, u32)> = pieces
         .iter()
         .enumerate()
+        .filter(|(_, p)| p.glyphs.len() <= 8)
         .filter_map(|(i, p)| {
             let text = p.plain_text(page);
             (text.len() <= 4)

@@ -8,6 +8,7 @@
 //! its own ([`contained`](super::contained)). What defeats the first engine is left to the second,
 //! [`fallback`].
 
+mod afterwards;
 mod columns;
 mod compose;
 mod engine_hayro;
@@ -26,6 +27,7 @@ mod replaced;
 mod roles;
 #[cfg(test)]
 mod sample;
+mod shapes;
 mod tables;
 #[cfg(test)]
 mod tests;
@@ -33,7 +35,7 @@ mod tests;
 mod tests_places;
 
 use super::{Failure, Unreadable};
-use crate::manuscript::{BlockKind, Builder, Format, Manuscript};
+use crate::manuscript::{BlockKind, Builder, Format, Manuscript, nothing_or};
 use compose::Sheet;
 use engine_hayro::{Limits, Refusal};
 use glyphs::{Glyphs, PageGlyphs, Turn};
@@ -167,6 +169,9 @@ fn manuscript(glyphs: &Glyphs, cut_off: bool) -> Result<Manuscript, Unreadable> 
     let mut b = Builder::new(Format::Pdf);
     remarks(&mut b, glyphs, cut_off);
     compose::compose(&mut b, &blocks, &tables, body, &sheets);
+    if let Some(remark) = corrected(&b) {
+        b.remark(remark);
+    }
     Ok(b.finish())
 }
 
@@ -215,6 +220,33 @@ fn remarks(b: &mut Builder, glyphs: &Glyphs, cut_off: bool) {
             "{pages} with characters whose meaning the file does not say; they are shown as \u{fffd}"
         ));
     }
+}
+
+/// How often the page shows something else than its text layer says.
+fn corrected(b: &Builder) -> Option<String> {
+    const MOST: usize = 6;
+    let kinds = b.corrections();
+    let all: usize = kinds.iter().map(|k| k.2).sum();
+    let named: Vec<String> = kinds
+        .iter()
+        .take(MOST)
+        .map(|(shown, layer, n)| format!("`{shown}` where the layer says {} ({n}×)", nothing_or(layer)))
+        .collect();
+    let more = match kinds.len().saturating_sub(MOST) {
+        0 => String::new(),
+        n => format!(" and {n} more"),
+    };
+    let places = if all == 1 {
+        "1 place"
+    } else {
+        &format!("{all} places")
+    };
+    (all > 0).then(|| {
+        format!(
+            "in {places} the page shows something else than the file's text layer says; what the page shows was read: {}{more}",
+            named.join(", ")
+        )
+    })
 }
 
 /// `page 3`, `pages 3, 5–7`.

@@ -6,6 +6,7 @@
 //! page; that order is right for stacked super- and subscripts, where geometry alone is not.
 
 use super::glyphs::{Area, Glyph, PageGlyphs, Turn, union};
+use rustc_hash::FxHashMap;
 
 /// Glyphs that belong together on a baseline.
 #[derive(Clone, Debug)]
@@ -188,23 +189,17 @@ fn follows(last: &Glyph, base: &Glyph, g: &Glyph) -> bool {
 /// Glyphs drawn twice, a little apart, to look bold.
 #[derive(Default)]
 struct Overprints {
-    at: std::collections::HashMap<(u32, i32, i32), [f32; 2]>,
+    at: FxHashMap<(u32, i32, i32), [f32; 2]>,
 }
 
 impl Overprints {
     fn again(&mut self, g: &Glyph) -> bool {
         let near = 0.12 * g.size;
         let cell = |v: f32| (v / (4.0 * near)).floor() as i32;
-        let key = |dx: i32, dy: i32| {
-            (
-                g.code.wrapping_mul(31).wrapping_add(g.font as u32),
-                cell(g.x0) + dx,
-                cell(g.baseline) + dy,
-            )
-        };
-        for dx in -1..=1 {
-            for dy in -1..=1 {
-                if let Some([x, y]) = self.at.get(&key(dx, dy))
+        let key = |x: i32, y: i32| (g.code.wrapping_mul(31).wrapping_add(g.font as u32), x, y);
+        for x in cell(g.x0 - near)..=cell(g.x0 + near) {
+            for y in cell(g.baseline - near)..=cell(g.baseline + near) {
+                if let Some([x, y]) = self.at.get(&key(x, y))
                     && (x - g.x0).abs() < near
                     && (y - g.baseline).abs() < near
                 {
@@ -212,7 +207,8 @@ impl Overprints {
                 }
             }
         }
-        self.at.insert(key(0, 0), [g.x0, g.baseline]);
+        self.at
+            .insert(key(cell(g.x0), cell(g.baseline)), [g.x0, g.baseline]);
         false
     }
 }

@@ -103,6 +103,7 @@ mod tests {
                     } else {
                         Meaning::Char(c)
                     },
+                    layer: None,
                     code: c as u32,
                     font: 0,
                     shape: None,
