@@ -153,7 +153,6 @@ fn text(b: &mut Builder, kind: BlockKind, lines: &[Line], from: u32, table: &Tab
             b.line_break();
         }
         b.page(table.page);
-        b.page_size(table.page_size);
         b.line(from + i as u32);
         write_words(b, &line.words);
     }
@@ -182,7 +181,6 @@ fn rows(b: &mut Builder, table: &Table, skip: usize, from: u32, first: bool) {
             }
             let cell = cells.get(&(row, column));
             b.page(table.page);
-            b.page_size(table.page_size);
             let Some(cell) = cell else {
                 b.cell(CellShape {
                     header: first && row < grid.header_rows,

@@ -35,8 +35,6 @@ use sheet::Sheet;
 #[derive(Clone, Debug)]
 pub struct Table {
     pub page: u32,
-    /// Width and height of that page.
-    pub page_size: [f32; 2],
     pub label: Option<String>,
     pub caption: Vec<Line>,
     /// The caption stands below the cells.
@@ -248,7 +246,6 @@ impl<'s, 'a> Search<'s, 'a> {
         }
         self.tables.push(Table {
             page: sheet.page.number,
-            page_size: [sheet.page.width, sheet.page.height],
             label: start.map(|s| s.label.clone()),
             continued: start.is_some_and(|s| s.continued),
             below: caption.as_ref().is_some_and(|c| c.below),
