@@ -1,7 +1,8 @@
-//! From a tie to a finding: which variant fits, and what it means if none does.
+//! From a tie to a finding: which variant fits, and what it means if none does. Repairs are the
+//! business of the [`network`](super::network).
 
 use super::finding::{Finding, Verdict};
-use super::{repairs, wording};
+use super::wording;
 use crate::manuscript::Manuscript;
 use crate::numbers::{Interval, Set};
 use crate::relations::{Case, Relation, Tie};
@@ -16,7 +17,7 @@ pub fn finding(
     statement: &Statement,
     manuscript: &Manuscript,
 ) -> Finding {
-    let parts: Vec<&Quantity> = tie.parts.iter().map(|i| &case.quantities[*i]).collect();
+    let parts: Vec<&Quantity> = tie.parts.iter().map(|i| case.quantity(*i)).collect();
     let values: Vec<Interval> = parts.iter().map(|q| q.interval).collect();
     let mut assumes: Vec<String> = parts.iter().filter_map(|q| q.borrowed.clone()).collect();
     let fits = |only_open: bool| {
@@ -42,10 +43,6 @@ pub fn finding(
             tie.variants.first(),
         )
     };
-    let found_repairs = match verdict {
-        Verdict::Conflicts | Verdict::Reverses => repairs::repairs(tie, &parts, &values),
-        _ => Vec::new(),
-    };
     let reason = tie.open.as_ref().or(match verdict {
         Verdict::Open => variant.and_then(|v| v.only_open.as_ref()),
         _ => None,
@@ -66,10 +63,17 @@ pub fn finding(
     assumes.retain(|a| seen.insert(a.clone()));
     let target = parts.first();
     let shown = shown_range(&expected, values.first().copied());
+    let mut statements = vec![statement.id];
+    for id in tie.parts.iter().map(|i| case.statement_of(*i)) {
+        if !statements.contains(&id) {
+            statements.push(id);
+        }
+    }
     Finding {
         relation: relation.name,
+        with: Vec::new(),
         verdict,
-        statements: vec![statement.id],
+        statements,
         place: manuscript.place(&manuscript.blocks[statement.block], statement.range.clone()),
         quote: manuscript.text[statement.range.clone()].to_string(),
         marks: parts
@@ -97,7 +101,8 @@ pub fn finding(
             case.alpha,
         ),
         assumes,
-        repairs: found_repairs,
+        // What would mend it is known when all ties of the sentence have been tried.
+        repairs: Vec::new(),
     }
 }
 

@@ -3,7 +3,6 @@
 
 use super::finding::Repair;
 use crate::numbers::{Comparator, Decimal, Interval, Set};
-use crate::relations::Tie;
 use crate::statements::Quantity;
 
 /// Levels that a small p is commonly said to lie below.
@@ -12,21 +11,15 @@ const BOUNDS: [f64; 5] = [0.05, 0.01, 0.001, 0.0001, 0.00001];
 /// More candidates than this are shown as a range.
 const MOST_SINGLE: i64 = 3;
 
-/// What would make the tie agree, the likeliest first.
-pub fn repairs(tie: &Tie, parts: &[&Quantity], values: &[Interval]) -> Vec<Repair> {
+/// What would make everything agree, the likeliest first: for each number that could be at fault,
+/// the values that it could have.
+pub fn of_culprits<'a>(culprits: impl Iterator<Item = (&'a Quantity, &'a Set)>) -> Vec<Repair> {
     let mut named = Vec::new();
     let mut plain = Vec::new();
-    let Some(variant) = tie.variants.first() else {
-        return Vec::new();
-    };
-    for (index, part) in parts.iter().enumerate() {
-        if part.borrowed.is_some() {
-            continue;
-        }
-        let possible = variant.law.solve(index, values);
-        if let Some(repair) = turned(part, &possible).or_else(|| slip(part, &possible)) {
+    for (part, possible) in culprits {
+        if let Some(repair) = turned(part, possible).or_else(|| slip(part, possible)) {
             named.push(repair);
-        } else if let Some(to) = printed(part, &possible) {
+        } else if let Some(to) = printed(part, possible) {
             plain.push(Repair {
                 symbol: part.symbol,
                 to,
