@@ -28,9 +28,11 @@ const RATIO: Interval = Interval {
 
 /// See the module documentation.
 pub fn ties(case: &Case) -> Vec<Tie> {
+    // The coefficient often stands in a bracket of its own.
+    let count = case.quantities.len() + case.linked.len();
     let all = |symbols: &[&str]| -> Vec<usize> {
-        (0..case.quantities.len())
-            .filter(|i| case.own(*i) && symbols.contains(&case.quantities[*i].symbol))
+        (0..count)
+            .filter(|i| case.own(*i) && symbols.contains(&case.quantity(*i).symbol))
             .collect()
     };
     let ([ratio], [coefficient]) = (
@@ -39,6 +41,10 @@ pub fn ties(case: &Case) -> Vec<Tie> {
     ) else {
         return Vec::new();
     };
+    // Each of the statements of a sentence sees all of them; the one with the ratio takes the case.
+    if *ratio >= case.quantities.len() {
+        return Vec::new();
+    }
     let opposite = "it fits if the ratio is that of the opposite category, e^−B";
     let variants = vec![
         Variant::new(&[], law(1.0)),
