@@ -20,12 +20,13 @@ use manuscript::Manuscript;
 use statements::Grammar;
 
 /// Everything between reading a file and showing what was found.
-pub fn examine(manuscript: Manuscript, grammar: &Grammar, options: &Options) -> Document {
+pub fn examine(mut manuscript: Manuscript, grammar: &Grammar, options: &Options) -> Document {
     let alpha = options
         .alpha
         .or_else(|| judge::stated_alpha(&manuscript, grammar))
         .unwrap_or(judge::USUAL_ALPHA);
     let statements = statements::find(&manuscript, grammar, alpha);
+    manuscript.remarks.extend(statements::by_context(&statements));
     let findings = judge::judge(&manuscript, &statements, grammar, options, alpha);
     Document {
         manuscript,

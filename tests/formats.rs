@@ -1,15 +1,18 @@
 //! The demo manuscript in every format gives the same statements and the same findings; only the
 //! places differ. Notes stand where each format puts them, so order is not compared.
 
-use std::path::{Path, PathBuf};
+use std::path::Path;
 use tieout::judge::{Document, Options, Verdict};
 use tieout::statements::Grammar;
 
 const FORMATS: [&str; 8] = ["md", "txt", "html", "xml", "docx", "odt", "tex", "pdf"];
 
 fn examine(extension: &str) -> Document {
-    let path = PathBuf::from("fixtures/demo/watering").with_extension(extension);
-    let manuscript = tieout::readers::read_file(&path).unwrap_or_else(|e| panic!("{}: {e}", path.display()));
+    examine_file(&Path::new("fixtures/demo/watering").with_extension(extension))
+}
+
+fn examine_file(path: &Path) -> Document {
+    let manuscript = tieout::readers::read_file(path).unwrap_or_else(|e| panic!("{}: {e}", path.display()));
     tieout::examine(manuscript, Grammar::built_in(), &Options::default())
 }
 
@@ -69,6 +72,58 @@ fn every_format_gives_the_same_statements_and_findings() {
             "findings of watering.{format}"
         );
     }
+}
+
+/// The manuscripts in `fixtures/demo/printed` came out of LaTeX, Typst, LibreOffice and Chromium in
+/// one and in two columns (`print.sh` beside them).
+#[test]
+fn printed_by_any_program_it_gives_the_same_statements_and_findings() {
+    let mut wrong = Vec::new();
+    for (name, source) in [
+        ("watering", "fixtures/demo/watering.md"),
+        ("diary", "fixtures/diary/diary.md"),
+    ] {
+        let source = examine_file(Path::new(source));
+        for program in ["latex", "typst", "libreoffice", "chromium"] {
+            for columns in [1, 2] {
+                let path = format!("fixtures/demo/printed/{name}-{program}-{columns}.pdf");
+                let mut printed = examine_file(Path::new(&path));
+                // The source marks its quotation; on paper it is an indented line like any other.
+                printed.statements.retain(|s| {
+                    let sentence = &printed.manuscript.text[s.sentence.clone()];
+                    !sentence.contains("A gardener said p = .5")
+                });
+                for (what, in_source, in_print) in [
+                    ("statements", statements(&source), statements(&printed)),
+                    ("findings", findings(&source), findings(&printed)),
+                ] {
+                    wrong.extend(differences(&path, what, &in_source, &in_print));
+                }
+            }
+        }
+    }
+    assert!(wrong.is_empty(), "{}", wrong.join("\n"));
+}
+
+fn differences(path: &str, what: &str, source: &[String], print: &[String]) -> Vec<String> {
+    let without = |all: &[String], others: &[String]| -> Vec<String> {
+        let mut left = others.to_vec();
+        let mut only = Vec::new();
+        for one in all {
+            match left.iter().position(|o| o == one) {
+                Some(at) => drop(left.swap_remove(at)),
+                None => only.push(one.clone()),
+            }
+        }
+        only
+    };
+    let missing = without(source, print)
+        .into_iter()
+        .map(|s| format!("{path}: {what} without {s}"));
+    let added = without(print, source)
+        .into_iter()
+        .map(|s| format!("{path}: {what} with {s}"));
+    missing.chain(added).collect()
 }
 
 #[test]

@@ -23,13 +23,12 @@ pub struct Check {
 impl Check {
     pub(super) fn run(self) -> Result<Status, Refused> {
         let options = self.judging.options()?;
-        let grammar = self.judging.grammar()?;
         let inputs: Vec<Input> = inputs::expand(&self.files);
         let report = self.showing.report(inputs.len() > 1, false);
         run::all(Work {
             inputs,
             options,
-            grammar,
+            grammars: self.judging.grammar,
             report,
             read_only: self.showing.format == Output::TextOnly,
             jobs: self.jobs.map_or(0, usize::from),

@@ -2,6 +2,7 @@
 //! Folders are looked through here and become the files in them.
 
 use crate::manuscript::Manuscript;
+use crate::readers::contained::Pool;
 use crate::readers::{self, LARGEST_FILE, Unreadable};
 use std::io::Read;
 use std::path::{Path, PathBuf};
@@ -38,10 +39,11 @@ impl Input {
         }
     }
 
-    pub fn read(&self) -> Result<Manuscript, Unreadable> {
+    /// Reads it, files of binary formats in a worker of the pool.
+    pub fn read(&self, pool: &Pool) -> Result<Manuscript, Unreadable> {
         match self {
-            Input::File(path) => readers::read_file(path),
-            Input::Piped => readers::read_bytes(&standard_input()?, Path::new("")),
+            Input::File(path) => pool.read_file(path),
+            Input::Piped => pool.read_bytes(standard_input()?, Path::new("")),
             Input::Typed(text) => typed(text),
             Input::PipedText => typed(&readers::decode::text(&standard_input()?)?),
             Input::Nothing(_, reason) => Err(reason.clone()),

@@ -1,14 +1,15 @@
 //! A *command* is one thing that tieout can be asked to do. This room turns what was typed into
 //! work for the other rooms and their results into output and an exit status.
 
+mod boxes;
 mod check;
 mod explain;
-mod guard;
 mod inputs;
 mod run;
 mod try_text;
 
 use crate::judge;
+use crate::readers::contained::worker;
 use crate::relations::REGISTRY;
 use crate::reports::{self, Report, Show};
 use crate::statements::Grammar;
@@ -46,9 +47,11 @@ enum Command {
     Try(try_text::Try),
     /// List the relations, or explain one: formula, assumptions, cautions, source
     Explain(explain::Explain),
-    /// The process of its own in which difficult PDFs are read; called by the reader, never by hand
-    #[command(name = "worker-pdf", hide = true)]
-    WorkerPdf,
+    #[command(hide = true)]
+    Boxes(boxes::Boxes),
+    /// The process of its own in which files of binary formats are read; never called by hand
+    #[command(name = worker::COMMAND, hide = true)]
+    Worker,
 }
 
 impl Cli {
@@ -58,7 +61,8 @@ impl Cli {
             Command::Check(check) => check.run(),
             Command::Try(try_text) => try_text.run(),
             Command::Explain(explain) => explain.run(),
-            Command::WorkerPdf => return crate::readers::pdf::worker::run(),
+            Command::Boxes(boxes) => boxes.run(),
+            Command::Worker => return worker::run(),
         };
         match done {
             Ok(status) => status.into(),
@@ -142,15 +146,16 @@ impl Judging {
             skip: known(&self.skip)?,
         })
     }
+}
 
-    fn grammar(&self) -> Result<&'static Grammar, Refused> {
-        if self.grammar.is_empty() {
-            return Ok(Grammar::built_in());
-        }
-        let grammar = Grammar::built_in_with(&self.grammar).map_err(Refused)?;
-        // One per run of the program, needed until its end by all threads.
-        Ok(Box::leak(Box::new(grammar)))
+/// The built-in grammar, with these files of further ways to write results.
+fn grammar(files: &[PathBuf]) -> Result<&'static Grammar, Refused> {
+    if files.is_empty() {
+        return Ok(Grammar::built_in());
     }
+    let grammar = Grammar::built_in_with(files).map_err(Refused)?;
+    // One per run of the program, needed until its end by all threads.
+    Ok(Box::leak(Box::new(grammar)))
 }
 
 fn level(text: &str) -> Result<f64, String> {

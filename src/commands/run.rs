@@ -1,16 +1,18 @@
 //! Works on many inputs at once and writes what comes out in the order of the inputs, each as
 //! soon as everything before it has been written.
 
-use super::guard::guarded;
 use super::inputs::Input;
-use super::{Refused, Status, complain};
+use super::{Refused, Status, complain, grammar};
 use crate::judge::{self, Counts};
 use crate::readers::Unreadable;
+use crate::readers::contained::{Limits, Pool};
+use crate::readers::guard::guarded;
 use crate::reports::{Entry, Report, Tally};
 use crate::statements::Grammar;
 use std::collections::BTreeMap;
 use std::io::Write;
-use std::sync::{Arc, mpsc};
+use std::path::{Path, PathBuf};
+use std::sync::{Arc, OnceLock, mpsc};
 
 /// Deeply nested documents need more than the usual two megabytes.
 const STACK: usize = 16 << 20;
@@ -19,7 +21,8 @@ const STACK: usize = 16 << 20;
 pub struct Work {
     pub inputs: Vec<Input>,
     pub options: judge::Options,
-    pub grammar: &'static Grammar,
+    /// Files of further ways to write results.
+    pub grammars: Vec<PathBuf>,
     pub report: Box<dyn Report>,
     /// Only the text as read is wanted; nothing is looked for in it.
     pub read_only: bool,
@@ -35,56 +38,88 @@ struct Done {
     trouble: Option<Unreadable>,
 }
 
+/// What the threads share.
+struct Shop {
+    work: Work,
+    readers: Pool,
+    /// Reading begins before the grammar is there; nothing, if it never will be.
+    grammar: OnceLock<Option<&'static Grammar>>,
+}
+
 /// Works on all inputs.
 pub fn all(work: Work) -> Result<Status, Refused> {
-    let pool = rayon::ThreadPoolBuilder::new()
+    let threads = rayon::ThreadPoolBuilder::new()
         .num_threads(work.jobs)
         .stack_size(STACK)
         .build()
         .map_err(|e| Refused(format!("threads cannot be started ({e}); try --jobs 1")))?;
-    let work = Arc::new(work);
+    let shop = Arc::new(Shop {
+        readers: readers(threads.current_num_threads()),
+        grammar: OnceLock::new(),
+        work,
+    });
     let (sender, receiver) = mpsc::channel();
-    for at in 0..work.inputs.len() {
-        let (work, sender) = (Arc::clone(&work), sender.clone());
-        pool.spawn_fifo(move || {
-            let done = work.on(&work.inputs[at]);
+    for at in 0..shop.work.inputs.len() {
+        let (shop, sender) = (Arc::clone(&shop), sender.clone());
+        threads.spawn_fifo(move || {
+            let done = shop.on(&shop.work.inputs[at]);
             // Nobody listens any more once the output has been closed.
             let _ = sender.send((at, done));
         });
     }
     drop(sender);
-    match put_in_order(&work, receiver) {
+    let grammar = grammar(&shop.work.grammars);
+    let _ = shop.grammar.set(grammar.as_ref().ok().copied());
+    let ended = grammar.and_then(|_| match put_in_order(&shop.work, receiver) {
         Ok(tally) => Ok(tally.into()),
-        Err((tally, e)) => {
-            // `tieout … | head` closes the pipe when it has seen enough. Work that is under way is
-            // not waited for: it ends with the process.
-            std::mem::forget(pool);
-            cannot_write(&e)?;
-            Ok(tally.into())
-        }
-    }
+        // `tieout … | head` closes the pipe when it has seen enough.
+        Err((tally, e)) => cannot_write(&e).map(|()| tally.into()),
+    });
+    // Work that is still under way is not waited for: it ends with the process.
+    std::mem::forget(threads);
+    shop.readers.close();
+    ended
 }
 
-impl Work {
+/// A pool of at most so many workers, for the usual limits.
+pub fn readers(most: usize) -> Pool {
+    Pool::new(executable(), Limits::default(), most)
+}
+
+/// The running program, which is its own worker. If it can't be found, no worker will start, and
+/// each file that needs one says so.
+pub(super) fn executable() -> PathBuf {
+    // On Linux this is the program itself even if its file has been replaced or removed meanwhile.
+    const ITSELF: &str = "/proc/self/exe";
+    if cfg!(target_os = "linux") && Path::new(ITSELF).exists() {
+        return ITSELF.into();
+    }
+    std::env::current_exe().unwrap_or_default()
+}
+
+impl Shop {
     fn on(&self, input: &Input) -> Done {
         let name = input.name();
         let done = guarded(|| {
-            let manuscript = input.read()?;
-            let document = if self.read_only {
-                judge::Document {
+            let manuscript = input.read(&self.readers)?;
+            let grammar = match self.grammar.wait() {
+                Some(grammar) if !self.work.read_only => Some(*grammar),
+                _ => None,
+            };
+            let document = match grammar {
+                Some(grammar) => crate::examine(manuscript, grammar, &self.work.options),
+                None => judge::Document {
                     manuscript,
                     statements: Vec::new(),
                     findings: Vec::new(),
-                }
-            } else {
-                crate::examine(manuscript, self.grammar, &self.options)
+                },
             };
             let counts = document.counts();
             let entry = Entry {
                 name: name.clone(),
                 outcome: Ok(document),
             };
-            Ok((self.report.entry(&entry), counts))
+            Ok((self.work.report.entry(&entry), counts))
         });
         match done {
             Ok((text, counts)) => Done {
@@ -98,7 +133,7 @@ impl Work {
                     outcome: Err(reason.clone()),
                 };
                 Done {
-                    text: self.report.entry(&entry),
+                    text: self.work.report.entry(&entry),
                     counts: None,
                     trouble: Some(reason),
                 }

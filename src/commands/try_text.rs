@@ -25,7 +25,7 @@ impl Try {
         run::all(Work {
             inputs: vec![input],
             options: self.judging.options()?,
-            grammar: self.judging.grammar()?,
+            grammars: self.judging.grammar,
             report: self.showing.report(false, true),
             read_only: self.showing.format == Output::TextOnly,
             jobs: 1,

@@ -5,7 +5,7 @@ use super::finding::{Finding, Verdict};
 use super::wording;
 use crate::manuscript::Manuscript;
 use crate::numbers::{Interval, Set};
-use crate::relations::{Case, Relation, Tie};
+use crate::relations::{Case, Relation, Tie, Variant};
 use crate::statements::{Quantity, Statement};
 use std::collections::HashSet;
 
@@ -18,11 +18,14 @@ pub fn finding(
     manuscript: &Manuscript,
 ) -> Finding {
     let parts: Vec<&Quantity> = tie.parts.iter().map(|i| case.quantity(*i)).collect();
-    let values: Vec<Interval> = parts.iter().map(|q| q.interval).collect();
+    let readings = readings(&parts);
+    // Where signs are uncertain, what is not about them is shown by the numbers as printed.
+    let values = &readings[0];
     let mut assumes: Vec<String> = parts.iter().filter_map(|q| q.borrowed.clone()).collect();
+    assumes.extend(parts.iter().flat_map(|q| q.doubts()));
     let fits = |only_open: bool| {
         let mut alike = tie.variants.iter().filter(|v| v.only_open.is_some() == only_open);
-        alike.find(|v| v.law.holds(&values))
+        alike.find(|v| readings.iter().any(|values| v.law.holds(values)))
     };
     // The variant that is shown: the first that fits, otherwise the first of all.
     let (verdict, variant) = if tie.open.is_some() {
@@ -32,8 +35,8 @@ pub fn finding(
     } else if let Some(variant) = fits(true) {
         (Verdict::Open, Some(variant))
     } else {
-        let borrowed = parts.iter().any(|q| q.borrowed.is_some());
-        let turns = !borrowed && reverses(tie, &parts, &values, case.alpha);
+        let sure = |q: &&Quantity| q.borrowed.is_none() && q.doubts().next().is_none();
+        let turns = parts.iter().all(sure) && reverses(tie, &parts, values, case.alpha);
         (
             if turns {
                 Verdict::Reverses
@@ -55,7 +58,10 @@ pub fn finding(
     };
     let expected: Set = match tie.open {
         Some(_) => Vec::new(),
-        None => shown_by.map(|v| v.law.solve(0, &values)).unwrap_or_default(),
+        None => {
+            let solved = |v: &Variant| merged(readings.iter().flat_map(|values| v.law.solve(0, values)));
+            shown_by.map(solved).unwrap_or_default()
+        }
     };
     assumes.extend(variant.iter().flat_map(|v| v.assumes.iter().cloned()));
     assumes.extend(tie.remarks.iter().cloned());
@@ -99,11 +105,42 @@ pub fn finding(
             reason.map(String::as_str),
             &assumes,
             case.alpha,
-        ),
+        ) + &wording::on_the_page(manuscript, statement, &parts),
         assumes,
         // What would mend it is known when all ties of the sentence have been tried.
         repairs: Vec::new(),
     }
+}
+
+/// Intervals in order, with those that touch made one.
+fn merged(intervals: impl Iterator<Item = Interval>) -> Set {
+    let mut all: Vec<Interval> = intervals.collect();
+    all.sort_by(|a, b| a.low.total_cmp(&b.low));
+    let mut out = Set::new();
+    for i in all {
+        match out.last_mut() {
+            Some(last) if i.low <= last.high => *last = last.hull(i),
+            _ => out.push(i),
+        }
+    }
+    out
+}
+
+/// Every way to read the parts: where signs are uncertain, with each of them.
+fn readings(parts: &[&Quantity]) -> Vec<Vec<Interval>> {
+    const MOST: usize = 64;
+    let mut all: Vec<Vec<Interval>> = vec![Vec::with_capacity(parts.len())];
+    for part in parts {
+        let mut ways = part.readings();
+        if all.len() * ways.len() > MOST {
+            ways = vec![part.interval];
+        }
+        all = all
+            .iter()
+            .flat_map(|values| ways.iter().map(|w| values.iter().copied().chain([*w]).collect()))
+            .collect();
+    }
+    all
 }
 
 /// The one interval of a set; for several, the edges next to what is printed.

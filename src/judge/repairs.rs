@@ -340,6 +340,7 @@ mod tests {
             interval: Comparator::Equal.interval(&number, symbol == "df"),
             span: 0..1,
             borrowed: None,
+            doubt: Default::default(),
         }
     }
 

@@ -1,8 +1,9 @@
 //! The one plain sentence of a finding.
 
 use super::finding::Verdict;
+use crate::manuscript::{Manuscript, nothing_or};
 use crate::numbers::Set;
-use crate::statements::{Quantity, in_print, list};
+use crate::statements::{Quantity, Statement, in_print, list};
 
 /// Says what was found, why, and on which condition.
 pub fn says(
@@ -19,6 +20,7 @@ pub fn says(
     };
     let printed = as_printed(target);
     let borrowed = parts.iter().any(|q| q.borrowed.is_some());
+    let by_context = parts.iter().any(|q| q.doubt.by_context.is_some());
     let given = others.iter().map(|q| as_printed(q)).collect::<Vec<_>>();
     let range = shown
         .map(|[low, high]| range(low, high, apart(expected), &target.printed))
@@ -42,6 +44,8 @@ pub fn says(
         Verdict::Conflicts | Verdict::Reverses => {
             let condition = if borrowed {
                 "If the borrowed number belongs here: "
+            } else if by_context {
+                "If the characters were read rightly: "
             } else {
                 ""
             };
@@ -75,6 +79,31 @@ pub fn says(
             capitalised(&format!("{condition}{body}{turn}"))
         }
     }
+}
+
+/// What the page shows where the file's text layer says something else, in a sentence with a space
+/// before it; empty where the two are one.
+pub fn on_the_page(manuscript: &Manuscript, statement: &Statement, parts: &[&Quantity]) -> String {
+    let ranges = std::iter::once(&statement.range).chain(parts.iter().map(|q| &q.span));
+    let mut pairs: Vec<(String, String)> = Vec::new();
+    for c in ranges.flat_map(|range| manuscript.corrections_in(range)) {
+        let pair = (
+            format!("`{}`", &manuscript.text[c.range.clone()]),
+            nothing_or(&c.layer),
+        );
+        if !pairs.contains(&pair) {
+            pairs.push(pair);
+        }
+    }
+    if pairs.is_empty() {
+        return String::new();
+    }
+    let (shown, layer): (Vec<String>, Vec<String>) = pairs.into_iter().unzip();
+    format!(
+        " The page shows {}; its text layer says {}.",
+        list(&shown),
+        list(&layer)
+    )
 }
 
 fn as_printed(q: &Quantity) -> String {

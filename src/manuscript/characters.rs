@@ -119,6 +119,17 @@ fn letterlike(c: char) -> Read {
     }
 }
 
+/// A character without its style, if it is still one (`𝟐` is `2`).
+pub(super) fn bare(c: char) -> char {
+    if c.is_ascii() {
+        return c;
+    }
+    match read(c) {
+        Read::As(bare) => bare,
+        _ => c,
+    }
+}
+
 /// The superscript form of a character, if it has one that stays readable.
 pub(super) fn superscript(c: char) -> Option<char> {
     Some(match c {

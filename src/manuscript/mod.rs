@@ -7,15 +7,20 @@
 
 mod builder;
 mod characters;
+mod ink;
 mod place;
 
 pub use builder::{Builder, CellShape, Description};
+pub use ink::{Area, LineArea, union};
 pub use place::Place;
+pub(crate) use place::is_one_line;
 
+use ink::Ink;
+use serde::{Deserialize, Serialize};
 use std::ops::Range;
 
 /// The file formats that can be read.
-#[derive(Clone, Copy, Debug, PartialEq, Eq, Hash, serde::Serialize)]
+#[derive(Clone, Copy, Debug, PartialEq, Eq, Hash, Serialize, Deserialize)]
 #[serde(rename_all = "lowercase")]
 pub enum Format {
     Text,
@@ -46,7 +51,7 @@ impl Format {
 
 /// Which part of the document a block belongs to. Results are looked for in [`Part::Abstract`]
 /// and [`Part::Body`] only: a p-value in a reference list is somebody else's.
-#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+#[derive(Clone, Copy, Debug, PartialEq, Eq, Serialize, Deserialize)]
 pub enum Part {
     /// Title page, authors, affiliations, keywords, dates.
     Front,
@@ -59,7 +64,7 @@ pub enum Part {
 }
 
 /// What a block is on the page.
-#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+#[derive(Clone, Copy, Debug, PartialEq, Eq, Serialize, Deserialize)]
 pub enum BlockKind {
     /// Level 1 is the highest heading below the title.
     Heading(u8),
@@ -78,7 +83,7 @@ pub enum BlockKind {
 }
 
 /// Where a cell block belongs.
-#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+#[derive(Clone, Copy, Debug, PartialEq, Eq, Serialize, Deserialize)]
 pub struct CellAt {
     /// Index into [`Manuscript::tables`].
     pub table: usize,
@@ -87,7 +92,7 @@ pub struct CellAt {
 }
 
 /// A run of text that belongs together. No statement ever crosses the border of a block.
-#[derive(Clone, Debug)]
+#[derive(Clone, Debug, PartialEq, Serialize, Deserialize)]
 pub struct Block {
     pub kind: BlockKind,
     pub part: Part,
@@ -110,14 +115,14 @@ impl Block {
 }
 
 /// A heading and its depth, in document order.
-#[derive(Clone, Debug)]
+#[derive(Clone, Debug, PartialEq, Serialize, Deserialize)]
 pub struct Section {
     pub title: String,
     pub level: u8,
 }
 
 /// One cell of a table grid.
-#[derive(Clone, Debug)]
+#[derive(Clone, Debug, PartialEq, Serialize, Deserialize)]
 pub struct Cell {
     /// Row and column of its upper left corner in the grid, from 0.
     pub row: u32,
@@ -131,7 +136,7 @@ pub struct Cell {
 }
 
 /// A table as a grid: merged cells stand once, with their spans.
-#[derive(Clone, Debug)]
+#[derive(Clone, Debug, PartialEq, Serialize, Deserialize)]
 pub struct Table {
     /// Its label as printed, e.g. `Table 2`.
     pub label: Option<String>,
@@ -143,16 +148,44 @@ pub struct Table {
     pub columns: u32,
 }
 
+/// Text that was read otherwise than the file's text layer has it, because the page shows so.
+#[derive(Clone, Debug, PartialEq, Eq, serde::Serialize, serde::Deserialize)]
+pub struct Correction {
+    /// Byte range of what is shown, in [`Manuscript::text`].
+    pub range: Range<usize>,
+    /// What the text layer says there; empty if it says nothing.
+    pub layer: String,
+}
+
+/// What a text layer says, for people: in quotes, control characters by their number, or `nothing`.
+pub fn nothing_or(layer: &str) -> String {
+    if layer.trim().is_empty() {
+        return "nothing".into();
+    }
+    let mut shown = String::from("`");
+    for c in layer.chars() {
+        if c.is_control()
+            || matches!(c, '\u{ad}' | '\u{e000}'..='\u{f8ff}' | '\u{200b}'..='\u{200f}' | '\u{fff0}'..)
+        {
+            shown += &format!("U+{:04X}", c as u32);
+        } else {
+            shown.push(c);
+        }
+    }
+    shown + "`"
+}
+
 /// From this byte of the text on, characters stand on this page and line.
-#[derive(Clone, Copy, Debug, PartialEq)]
+#[derive(Clone, Copy, Debug, PartialEq, Serialize, Deserialize)]
 struct Mark {
     at: usize,
     page: Option<u32>,
     line: Option<u32>,
 }
 
-/// One input document after reading.
-#[derive(Clone, Debug)]
+/// One input document after reading. It is read in a process of its own where the format is not to be
+/// trusted, and handed over whole: every type in it can be serialised.
+#[derive(Clone, Debug, PartialEq, Serialize, Deserialize)]
 pub struct Manuscript {
     pub format: Format,
     /// The text as read. Blocks are separated by blank lines, cells of a row by tabs.
@@ -162,7 +195,10 @@ pub struct Manuscript {
     pub tables: Vec<Table>,
     /// What the reader wants the person to know, e.g. `page 3 has no text`.
     pub remarks: Vec<String>,
+    /// Where the page shows something else than the file's text layer says, in the order of the text.
+    pub corrections: Vec<Correction>,
     marks: Vec<Mark>,
+    ink: Ink,
     /// Number of characters before each multiple of [`STRIDE`] bytes.
     char_index: Vec<usize>,
 }
@@ -186,10 +222,8 @@ impl Manuscript {
 
     /// The place of a byte range of the text, which must lie inside the block.
     pub fn place(&self, block: &Block, bytes: Range<usize>) -> Place {
-        let mark = match self.marks.partition_point(|m| m.at <= bytes.start) {
-            0 => None,
-            n => Some(self.marks[n - 1]),
-        };
+        let mark = self.mark(bytes.start);
+        let areas = self.areas(bytes.clone());
         let cell = block.cell.map(|at| {
             (
                 &self.tables[at.table],
@@ -213,8 +247,61 @@ impl Manuscript {
             column: cell.map(|(_, cell, _)| cell.column + 1),
             start: self.char_offset(bytes.start),
             end: self.char_offset(bytes.end),
-            area: None,
+            area: areas.first().map(|a| a.area),
+            areas,
         }
+    }
+
+    fn mark(&self, byte: usize) -> Option<Mark> {
+        let after = self.marks.partition_point(|m| m.at <= byte);
+        after.checked_sub(1).map(|at| self.marks[at])
+    }
+
+    /// What a byte range of the text covers on the pages: one area for each printed line, in the
+    /// order of the text. Empty for formats without pages.
+    pub fn areas(&self, bytes: Range<usize>) -> Vec<LineArea> {
+        if self.ink.is_empty() {
+            return Vec::new();
+        }
+        // Spaces are not drawn.
+        let text = &self.text[bytes.clone()];
+        let start = bytes.start + (text.len() - text.trim_start().len());
+        let end = bytes.start + text.trim_end().len();
+        self.ink
+            .areas(start..end.max(start), |at| self.mark(at).and_then(|m| m.line))
+    }
+
+    /// Width and height in points of a page on which something of the text is drawn.
+    pub fn page_size(&self, page: u32) -> Option<[f32; 2]> {
+        self.ink.page_size(page)
+    }
+
+    /// The pages on which something of the text is drawn.
+    pub fn drawn_pages(&self) -> Vec<u32> {
+        self.ink.pages()
+    }
+
+    /// The corrections inside a byte range of the text.
+    pub fn corrections_in(&self, range: &Range<usize>) -> &[Correction] {
+        let from = self.corrections.partition_point(|c| c.range.end <= range.start);
+        let to = self.corrections.partition_point(|c| c.range.start < range.end);
+        &self.corrections[from..to.max(from)]
+    }
+
+    /// A byte range of the text as the file's text layer has it, if that is different.
+    pub fn layer_text(&self, range: &Range<usize>) -> Option<String> {
+        let corrections = self.corrections_in(range);
+        if corrections.is_empty() {
+            return None;
+        }
+        let (mut text, mut done) = (String::new(), range.start);
+        for c in corrections {
+            text.push_str(&self.text[done..c.range.start.max(done)]);
+            text.push_str(&c.layer);
+            done = c.range.end;
+        }
+        text.push_str(&self.text[done.min(range.end)..range.end]);
+        Some(text)
     }
 
     /// The section titles above a block, outermost first.

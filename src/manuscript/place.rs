@@ -1,5 +1,7 @@
 //! A *place* says where something stands, in the terms a person uses to find it.
 
+use super::{Area, LineArea};
+
 /// Where a piece of the text stands. Serialised as it is shown in JSON.
 #[derive(Clone, Debug, Default, PartialEq, serde::Serialize)]
 pub struct Place {
@@ -19,9 +21,18 @@ pub struct Place {
     /// Range of characters (Unicode scalar values) in the text as read.
     pub start: usize,
     pub end: usize,
-    /// Left, top, right, bottom on the page, in points from its upper left corner.
+    /// What it covers of its page: left, top, right, bottom, in points from the upper left corner of
+    /// the page as shown. Where it goes over several lines, of the first one.
     #[serde(rename = "box")]
-    pub area: Option<[f32; 4]>,
+    pub area: Option<Area>,
+    /// What it covers on every line that it goes over; in JSON only where there are several.
+    #[serde(rename = "boxes", skip_serializing_if = "is_one_line")]
+    pub areas: Vec<LineArea>,
+}
+
+/// Whether nothing is to be said beyond the first line.
+pub fn is_one_line(areas: &[LineArea]) -> bool {
+    areas.len() < 2
 }
 
 impl std::fmt::Display for Place {

@@ -20,14 +20,10 @@ pub fn format(bytes: &[u8], path: &Path) -> Result<Format, Unreadable> {
             "is empty; check that it was saved or copied completely",
         ));
     }
-    if let Some(at) = memmem::find(&bytes[..bytes.len().min(1024)], b"%PDF-")
-        // Anywhere but at the very start it may be a text that mentions it.
-        && (at == 0 || memmem::find(bytes, b" obj").is_some())
-    {
-        return Ok(Format::Pdf);
-    }
-    if bytes.starts_with(b"PK\x03\x04") || bytes.starts_with(b"PK\x05\x06") {
-        return zipped(bytes);
+    match opaque(bytes) {
+        Some(Opaque::Pdf) => return Ok(Format::Pdf),
+        Some(Opaque::Zip) => return zipped(bytes),
+        None => {}
     }
     if let Some(reason) = known_binary(bytes) {
         return Err(Unreadable::new(reason));
@@ -40,6 +36,26 @@ pub fn format(bytes: &[u8], path: &Path) -> Result<Format, Unreadable> {
         ));
     }
     written(head, &extension(path))
+}
+
+/// Kinds of files that are not text: taking one apart is work for a
+/// [`contained`](super::contained) reader.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub enum Opaque {
+    Pdf,
+    /// Word and OpenDocument files among others.
+    Zip,
+}
+
+/// The kind of a file that is not text, by its first bytes.
+pub fn opaque(bytes: &[u8]) -> Option<Opaque> {
+    if let Some(at) = memmem::find(&bytes[..bytes.len().min(1024)], b"%PDF-")
+        // Anywhere but at the very start it may be a text that mentions it.
+        && (at == 0 || memmem::find(bytes, b" obj").is_some())
+    {
+        return Some(Opaque::Pdf);
+    }
+    (bytes.starts_with(b"PK\x03\x04") || bytes.starts_with(b"PK\x05\x06")).then_some(Opaque::Zip)
 }
 
 /// What to tell the person when the file's name says another format than its content.

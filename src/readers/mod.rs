@@ -1,10 +1,12 @@
 //! A *reader* knows how one format stores text, tables and positions, and fills a
 //! [`Builder`](crate::manuscript::Builder). It knows nothing of statistics.
 
+pub mod contained;
 pub mod decode;
 pub mod detect;
 pub mod docx;
 pub mod entities;
+pub mod guard;
 pub mod headings;
 pub mod html;
 pub mod jats;
@@ -22,7 +24,9 @@ mod tex_symbols;
 mod trial;
 
 use crate::manuscript::{Format, Manuscript};
+use serde::{Deserialize, Serialize};
 use std::fmt;
+use std::io::Read;
 use std::path::Path;
 
 /// The largest file that is read, in bytes.
@@ -47,20 +51,56 @@ impl fmt::Display for Unreadable {
 
 impl std::error::Error for Unreadable {}
 
-/// Reads the file at `path`.
+/// Which way a document is to be read.
+#[derive(Clone, Copy, Debug, PartialEq, Eq, Serialize, Deserialize)]
+pub enum Way {
+    Usual,
+    /// By other means, after the usual way has failed; only PDF has any.
+    Rescue,
+}
+
+/// Why one way has failed.
+#[derive(Clone, Debug, PartialEq, Eq)]
+pub enum Failure {
+    /// No way will lead to a manuscript.
+    Unreadable(Unreadable),
+    /// [`Way::Rescue`] may.
+    TryRescue,
+}
+
+impl From<Unreadable> for Failure {
+    fn from(reason: Unreadable) -> Failure {
+        Failure::Unreadable(reason)
+    }
+}
+
+/// Reads the file at `path` in this process; see [`read_bytes`].
 pub fn read_file(path: &Path) -> Result<Manuscript, Unreadable> {
-    let about = std::fs::metadata(path).map_err(|e| cannot_open(&e))?;
+    read_bytes(&load(path)?, path)
+}
+
+/// The bytes of the file at `path`, if it is not larger than [`LARGEST_FILE`].
+///
+/// # Errors
+/// Folders, large files and files that cannot be opened, each with one line for the person.
+pub fn load(path: &Path) -> Result<Vec<u8>, Unreadable> {
+    let file = std::fs::File::open(path).map_err(|e| cannot_open(&e))?;
+    let about = file.metadata().map_err(|e| cannot_open(&e))?;
     if about.is_dir() {
         return Err(Unreadable::new("is a folder; name the files in it"));
     }
-    if about.len() > LARGEST_FILE {
+    // Not believed, as devices claim to be empty.
+    let claimed = about.len().min(LARGEST_FILE);
+    let mut bytes = Vec::with_capacity(claimed as usize + 1);
+    let read = file.take(LARGEST_FILE + 1).read_to_end(&mut bytes);
+    read.map_err(|e| cannot_open(&e))?;
+    if bytes.len() as u64 > LARGEST_FILE {
         return Err(Unreadable::new(format!(
             "is larger than {} MB; split it or export the text",
             LARGEST_FILE >> 20
         )));
     }
-    let bytes = std::fs::read(path).map_err(|e| cannot_open(&e))?;
-    read_bytes(&bytes, path)
+    Ok(bytes)
 }
 
 fn cannot_open(error: &std::io::Error) -> Unreadable {
@@ -73,20 +113,39 @@ fn cannot_open(error: &std::io::Error) -> Unreadable {
 
 /// Reads a document already in memory; `path` gives its extension and, for LaTeX, the folder in
 /// which `\input` files are looked for.
+///
+/// Everything happens in this process. Documents from strangers are better read by a
+/// [`contained::Pool`], which comes to the same result: a damaged PDF can end the process.
 pub fn read_bytes(bytes: &[u8], path: &Path) -> Result<Manuscript, Unreadable> {
+    let usual = read_this_way(bytes, path, Way::Usual);
+    let result = match usual {
+        Err(Failure::TryRescue) => read_this_way(bytes, path, Way::Rescue),
+        other => other,
+    };
+    result.map_err(|failure| match failure {
+        Failure::Unreadable(reason) => reason,
+        Failure::TryRescue => pdf::hopeless(bytes),
+    })
+}
+
+/// Reads a document one way, in this process.
+pub fn read_this_way(bytes: &[u8], path: &Path, way: Way) -> Result<Manuscript, Failure> {
     let format = detect::format(bytes, path)?;
     let mut manuscript = match format {
-        Format::Docx => docx::read(bytes),
-        Format::Odt => odt::read(bytes),
-        Format::Pdf => pdf::read(bytes),
-        Format::Jats => jats::read(&decode::xml(bytes)?),
-        Format::Html => html::read(&decode::text(bytes)?),
-        Format::Latex => latex::read(&decode::text(bytes)?, path.parent()),
-        Format::Markdown => markdown::read(&decode::text(bytes)?),
-        Format::Text => plain::read(&decode::text(bytes)?),
-    }?;
+        Format::Docx => docx::read(bytes)?,
+        Format::Odt => odt::read(bytes)?,
+        Format::Pdf => match way {
+            Way::Usual => pdf::read(bytes)?,
+            Way::Rescue => pdf::rescue(bytes)?,
+        },
+        Format::Jats => jats::read(&decode::xml(bytes)?)?,
+        Format::Html => html::read(&decode::text(bytes)?)?,
+        Format::Latex => latex::read(&decode::text(bytes)?, path.parent())?,
+        Format::Markdown => markdown::read(&decode::text(bytes)?)?,
+        Format::Text => plain::read(&decode::text(bytes)?)?,
+    };
     if manuscript.text.is_empty() {
-        return Err(Unreadable::new("contains no text; is it the right file?"));
+        return Err(Unreadable::new("contains no text; is it the right file?").into());
     }
     manuscript.remarks.extend(detect::misnamed(format, path));
     Ok(manuscript)

@@ -12,6 +12,7 @@ mod d_from_t;
 mod difference_of_means;
 mod eta2_from_f;
 mod exp_b;
+pub mod granularity;
 mod groups;
 mod i2_from_q;
 mod laws;

@@ -354,6 +354,7 @@ proptest! {
                 interval: comparator.interval(&number, whole),
                 span: 0..0,
                 borrowed: None,
+                doubt: Default::default(),
             }
         }).collect();
         let reaches = [Reach::Sentence, Reach::Paragraph, Reach::Section, Reach::Document];

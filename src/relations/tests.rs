@@ -21,6 +21,7 @@ pub(super) fn quantity(symbol: &'static str, text: &str) -> Quantity {
         interval: comparator.interval(&number, whole),
         span: 0..0,
         borrowed: None,
+        doubt: Default::default(),
     }
 }
 

@@ -3,7 +3,7 @@
 
 use super::{Entry, Report, Show};
 use crate::judge::{Counts, Document, Finding, Repair, Verdict};
-use crate::manuscript::Place;
+use crate::manuscript::{Area, LineArea, Place, is_one_line};
 use crate::statements::{Quantity, Statement};
 use serde::Serialize;
 use serde::ser::{SerializeMap, Serializer};
@@ -94,6 +94,9 @@ struct DocumentJson<'a> {
 struct StatementJson<'a> {
     id: usize,
     quote: &'a str,
+    /// The same stretch as the file's text layer has it, where the page shows something else.
+    #[serde(skip_serializing_if = "Option::is_none")]
+    layer: Option<String>,
     place: Place,
     quantities: Vec<QuantityJson<'a>>,
 }
@@ -111,6 +114,19 @@ struct QuantityJson<'a> {
     end: usize,
     #[serde(skip_serializing_if = "Option::is_none")]
     borrowed: Option<&'a str>,
+    /// The page that the box is on.
+    #[serde(skip_serializing_if = "Option::is_none")]
+    page: Option<u32>,
+    #[serde(rename = "box", skip_serializing_if = "Option::is_none")]
+    area: Option<Area>,
+    #[serde(rename = "boxes", skip_serializing_if = "is_one_line")]
+    areas: Vec<LineArea>,
+    /// `uncertain` where a character before the digits could not be read.
+    #[serde(skip_serializing_if = "Option::is_none")]
+    sign: Option<&'static str>,
+    /// What was read by context only.
+    #[serde(skip_serializing_if = "Option::is_none")]
+    context: Option<&'a str>,
 }
 
 fn statement<'a>(document: &'a Document, statement: &'a Statement) -> StatementJson<'a> {
@@ -119,6 +135,7 @@ fn statement<'a>(document: &'a Document, statement: &'a Statement) -> StatementJ
     StatementJson {
         id: statement.id,
         quote: &manuscript.text[statement.range.clone()],
+        layer: manuscript.layer_text(&statement.range),
         place: manuscript.place(block, statement.range.clone()),
         quantities: statement
             .quantities
@@ -129,6 +146,7 @@ fn statement<'a>(document: &'a Document, statement: &'a Statement) -> StatementJ
 }
 
 fn quantity<'a>(document: &Document, quantity: &'a Quantity) -> QuantityJson<'a> {
+    let areas = document.manuscript.areas(quantity.span.clone());
     QuantityJson {
         symbol: quantity.symbol,
         printed: &quantity.printed,
@@ -138,6 +156,11 @@ fn quantity<'a>(document: &Document, quantity: &'a Quantity) -> QuantityJson<'a>
         start: document.manuscript.char_offset(quantity.span.start),
         end: document.manuscript.char_offset(quantity.span.end),
         borrowed: quantity.borrowed.as_deref(),
+        page: areas.first().map(|a| a.page),
+        area: areas.first().map(|a| a.area),
+        areas,
+        sign: quantity.doubt.unsigned.map(|_| "uncertain"),
+        context: quantity.doubt.by_context.as_deref(),
     }
 }
 

@@ -2,6 +2,7 @@
 //! of them knows how the findings were found. Reports make text and write nothing themselves, so
 //! that many files can be worked on at once and still come out in order.
 
+mod boxes;
 mod excerpt;
 mod json;
 #[cfg(test)]
@@ -13,6 +14,7 @@ mod words;
 use crate::judge::{Counts, Document, Finding, Verdict};
 use crate::readers::Unreadable;
 
+pub use boxes::page_svg;
 pub use json::{Json, NdJson};
 pub use text::Text;
 pub use text_only::TextOnly;

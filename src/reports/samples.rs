@@ -31,6 +31,7 @@ pub fn quantity(symbol: &'static str, comparator: &str, printed: &str, at: usize
         interval: comparator.interval(&number, whole),
         span: at..at + printed.len(),
         borrowed: None,
+        doubt: Default::default(),
     }
 }
 

@@ -65,7 +65,11 @@ impl Scan<'_> {
     /// The assignment that begins at token `at`, and the token behind it.
     pub(super) fn assignment(&self, at: usize) -> Option<(Item, usize)> {
         let head = self.head(at)?;
-        let link = self.link(&head)?;
+        let mut link = self.link(&head)?;
+        let test = matches!(head.symbol.class, Class::Statistic | Class::Effect);
+        if test && link.comparator == Comparator::Equal {
+            link.value_at = self.behind_fractions(link.value_at);
+        }
         if head.symbol.class == Class::P
             && let Some(behind) = self.not_significant(link.value_at)
         {
@@ -218,6 +222,7 @@ impl Scan<'_> {
             interval: Comparator::Above.interval(&number, false),
             span,
             borrowed: None,
+            doubt: Default::default(),
         })
     }
 

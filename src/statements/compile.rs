@@ -1,6 +1,7 @@
 //! *Compiling* a grammar: the files of `grammars/` and those that a person adds are parsed one after
 //! the other, and what they say is put into the tables of `grammar.rs`.
 
+use super::context::Impostor;
 use super::expressions::Expression;
 use super::forms::Form;
 use super::grammar::{Argument, Around, Bracket, Class, Grammar, IntervalNames, Symbol};
@@ -29,6 +30,7 @@ const BUILT_IN: &[(&str, &str)] = &[
     ("grammars/words.toml", include_str!("../../grammars/words.toml")),
     ("grammars/lists.toml", include_str!("../../grammars/lists.toml")),
     ("grammars/bait.toml", include_str!("../../grammars/bait.toml")),
+    ("grammars/glyphs.toml", include_str!("../../grammars/glyphs.toml")),
 ];
 
 #[derive(Deserialize, Default)]
@@ -46,6 +48,20 @@ struct File {
     thresholds: Vec<String>,
     plans: Vec<String>,
     medians: Vec<String>,
+    glyph: Vec<RawGlyph>,
+}
+
+#[derive(Deserialize)]
+#[serde(deny_unknown_fields)]
+struct RawGlyph {
+    read: String,
+    written: Vec<String>,
+    places: Vec<String>,
+    unless: Vec<String>,
+    #[serde(default)]
+    proof: Vec<String>,
+    least: usize,
+    or: Option<Comparator>,
 }
 
 #[derive(Deserialize)]
@@ -187,6 +203,7 @@ impl File {
             all.thresholds.extend(file.thresholds);
             all.plans.extend(file.plans);
             all.medians.extend(file.medians);
+            all.glyph.extend(file.glyph);
         }
         Ok(all)
     }
@@ -235,10 +252,40 @@ pub fn compile(more: &[(&str, &str)]) -> Result<Grammar, String> {
         thresholds: either(&all.thresholds, check)?,
         plans: either(&all.plans, check)?,
         medians: either(&all.medians, check)?,
+        impostors: impostors(&all.glyph, check)?,
         words,
         word_meanings,
         patterns: patterns(&all.pattern, &mut names, check)?,
     })
+}
+
+fn impostors(all: &[RawGlyph], check: bool) -> Result<Vec<Impostor>, String> {
+    let mut impostors = Vec::new();
+    for raw in all {
+        for written in &raw.written {
+            let escaped = regex::escape(written);
+            // Each alternative has a group of its own; a name may stand only once.
+            let filled = |all: &[String]| -> Vec<String> {
+                let one = |(i, e): (usize, &String)| {
+                    e.replace("{}", &escaped).replace("?P<x>", &format!("?P<x{i}>"))
+                };
+                all.iter().enumerate().map(one).collect()
+            };
+            impostors.push(Impostor {
+                read: raw.read.clone(),
+                written: written.clone(),
+                places: Expression::new(&filled(&raw.places), check)?,
+                unless: Expression::new(&filled(&raw.unless), check)?,
+                proof: match raw.proof.as_slice() {
+                    [] => None,
+                    proof => Some(Expression::new(&filled(proof), check)?),
+                },
+                least: raw.least,
+                or: raw.or,
+            });
+        }
+    }
+    Ok(impostors)
 }
 
 fn symbols(all: &[RawSymbol], names: &mut Names) -> Result<(Vec<Symbol>, Spellings), String> {

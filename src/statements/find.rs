@@ -1,5 +1,6 @@
 //! Finding all statements of a manuscript, block by block.
 
+use super::context::Context;
 use super::grammar::{Class, Grammar};
 use super::lists::List;
 use super::tokens::{self, Token};
@@ -9,17 +10,19 @@ use std::ops::Range;
 
 /// Finds the statements of the abstract and the body.
 pub fn find(manuscript: &Manuscript, grammar: &Grammar, alpha: f64) -> Vec<Statement> {
-    let text = manuscript.text.as_str();
+    let context = Context::of(&manuscript.text, grammar);
+    let text = context.text.as_ref();
     let commas = values::writes_decimal_commas(text);
     let medians = grammar.medians.is_match(text);
     let mut tokens: Vec<Token> = Vec::new();
     let mut statements = Vec::new();
     for (index, block) in manuscript.blocks.iter().enumerate() {
-        if !block.is_authors_own() || !may_hold_results(grammar, &text.as_bytes()[block.range.clone()]) {
+        let range = context.range(&block.range);
+        if !block.is_authors_own() || !may_hold_results(grammar, &text.as_bytes()[range.clone()]) {
             continue;
         }
         tokens.clear();
-        tokens::tokenize(text, block.range.start, block.range.end, &mut tokens);
+        tokens::tokenize(text, range.start, range.end, &mut tokens);
         let scan = Scan {
             text,
             tokens: &tokens,
@@ -30,8 +33,9 @@ pub fn find(manuscript: &Manuscript, grammar: &Grammar, alpha: f64) -> Vec<State
             cell: block.kind == BlockKind::Cell,
             words: Default::default(),
         };
-        scan.statements(index, &block.range, &mut statements);
+        scan.statements(index, &range, &mut statements);
     }
+    context.carry_back(&mut statements, grammar, &manuscript.text);
     for (i, statement) in statements.iter_mut().enumerate() {
         statement.id = i + 1;
     }

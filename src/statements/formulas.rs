@@ -4,11 +4,14 @@
 
 use super::Scan;
 use super::grammar::Class;
-use super::tokens::Kind;
+use super::tokens::{Kind, Token};
 use super::values::Value;
 
 /// Most tokens from the start of a run of numbers to its dots.
 const RUN: usize = 8;
+
+/// Most tokens of one side of a fraction.
+const BRACKET: usize = 12;
 
 impl Scan<'_> {
     /// The value, with `next` the token behind it and its percent sign, goes on as a formula.
@@ -65,6 +68,39 @@ impl Scan<'_> {
             "^" => true,
             _ => false,
         }
+    }
+
+    /// The token at which a value begins, behind the fractions that it was calculated from:
+    /// `F = MSbetween/MSwithin = 24.1/3.32 = 7.25`.
+    pub(super) fn behind_fractions(&self, mut at: usize) -> usize {
+        while let Some(next) = self.behind_fraction(at) {
+            at = next;
+        }
+        at
+    }
+
+    /// The token behind `24.1/3.32 =`.
+    fn behind_fraction(&self, at: usize) -> Option<usize> {
+        let slash = self.behind_term(at)?;
+        if self.mark(slash) != Some("/") {
+            return None;
+        }
+        let equal = self.behind_term(slash + 1)?;
+        (self.mark(equal) == Some("=")).then_some(equal + 1)
+    }
+
+    /// The token behind a number or word with what is run together with it, or behind a bracket.
+    fn behind_term(&self, at: usize) -> Option<usize> {
+        if self.mark(at) == Some("(") {
+            let inside = (at + 1..at + BRACKET).find(|i| matches!(self.mark(*i), Some("(" | ")")))?;
+            return (self.mark(inside) == Some(")")).then_some(inside + 1);
+        }
+        let starts = matches!(self.tokens.get(at)?.kind, Kind::Number | Kind::Word);
+        let goes_on = |i: usize| {
+            let part = |t: &Token| matches!(t.kind, Kind::Number | Kind::Word | Kind::Lowered | Kind::Raised);
+            self.tight(i) && self.tokens.get(i).is_some_and(part)
+        };
+        starts.then(|| (at + 1..).find(|i| !goes_on(*i)))?
     }
 
     /// The symbol at tokens `at..behind` is a factor behind a bracket (`(a + b)r`), or is taken from 1.

@@ -5,7 +5,7 @@ use super::grammar::Class;
 use super::names::has_label;
 use super::tokens::{Kind, on_the_line};
 use super::values::Value;
-use super::{Quantity, Scan};
+use super::{Doubt, Quantity, Scan};
 use crate::numbers::Comparator;
 use std::ops::Range;
 
@@ -103,14 +103,23 @@ impl Scan<'_> {
     /// The quantity of a symbol, from the number as read.
     pub(super) fn quantity(&self, symbol: &'static str, comparator: Comparator, value: &Value) -> Quantity {
         let whole = self.grammar.exact(symbol);
+        let interval = comparator.interval(&value.number, whole);
+        // A character that nobody could read stands right before the digits: it may be a minus.
+        let before = &self.text[..value.span.start];
+        let unreadable = before.strip_suffix(' ').unwrap_or(before).ends_with('\u{fffd}');
+        let unsigned = (unreadable && !whole && !value.number.negative).then_some(interval);
         Quantity {
             symbol,
             printed: on_the_line(&self.text[value.span.clone()]),
             comparator,
             number: value.number,
-            interval: comparator.interval(&value.number, whole),
+            interval: unsigned.map_or(interval, |i| i.hull(i.negate())),
             span: value.span.clone(),
             borrowed: None,
+            doubt: Doubt {
+                unsigned,
+                by_context: None,
+            },
         }
     }
 

@@ -7,6 +7,7 @@ mod assignment;
 mod bait;
 mod between;
 mod compile;
+mod context;
 mod doubts;
 mod expressions;
 mod find;
@@ -29,6 +30,7 @@ mod tokens;
 mod unnamed;
 mod values;
 
+pub use context::by_context;
 pub use find::find;
 pub use grammar::Grammar;
 pub use print::{in_print, list};
@@ -54,6 +56,40 @@ pub struct Quantity {
     /// Where the number was taken from, when it does not stand in the statement itself,
     /// e.g. `n = 28 taken from paragraph 3`.
     pub borrowed: Option<String>,
+    /// What is not sure about how it was read.
+    pub doubt: Doubt,
+}
+
+/// What is not sure about the reading of a number. A conflict that rests on it is weaker.
+#[derive(Clone, Debug, Default, PartialEq)]
+pub struct Doubt {
+    /// A character before the digits could not be read and may be a sign: this is the interval
+    /// without a sign, and the quantity's own covers both signs.
+    pub unsigned: Option<Interval>,
+    /// What was read by context only, e.g. `5` as `=`.
+    pub by_context: Option<String>,
+}
+
+impl Quantity {
+    /// The intervals that the number may stand for: one, or one for each sign where that is uncertain.
+    pub fn readings(&self) -> Vec<Interval> {
+        match self.doubt.unsigned {
+            Some(unsigned) if self.symbol != "p" => vec![unsigned, unsigned.negate()],
+            _ => vec![self.interval],
+        }
+    }
+
+    /// What is not sure, in words.
+    pub fn doubts(&self) -> impl Iterator<Item = String> + '_ {
+        let sign = self.doubt.unsigned.map(|_| {
+            format!(
+                "sign of {} {} uncertain: the character before it could not be read",
+                in_print(self.symbol),
+                self.printed
+            )
+        });
+        sign.into_iter().chain(self.doubt.by_context.clone())
+    }
 }
 
 /// Quantities reported together.

@@ -18,6 +18,10 @@ impl Scan<'_> {
     /// formats: `bIndirect = .04`, `zNBR = -1.60`, `pHet = 0.02`.
     pub(super) fn labelled(&self, at: usize) -> Option<Found<'_>> {
         let word = self.word(at).filter(|w| has_label(w))?;
+        // `MSbetween/MSwithin`
+        if at > 0 && self.mark(at - 1) == Some("/") && self.tight(at) {
+            return None;
+        }
         let letter = word.chars().next()?;
         let label = &word[letter.len_utf8()..];
         if label.len() < 3 || !label.bytes().all(|b| b.is_ascii_alphabetic()) {

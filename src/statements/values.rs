@@ -43,6 +43,8 @@ struct Digits<'t> {
 impl Scan<'_> {
     /// Reads the number at token `at`, signs included.
     pub fn value(&self, at: usize, company: Company) -> Option<Value> {
+        // Whatever stands there, it is no digit; the quantity takes it for a doubtful sign.
+        let at = at + usize::from(self.mark(at) == Some("\u{fffd}"));
         let first = self.tokens.get(at)?;
         if first.kind == Kind::Word && company == Company::Whole {
             return self.spelled_out(at);

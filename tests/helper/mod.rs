@@ -2,6 +2,9 @@
 
 #![allow(dead_code)] // Each test file uses its own part of this.
 
+#[cfg(target_os = "linux")]
+pub mod processes;
+
 use std::fs;
 use std::io::Write;
 use std::path::{Path, PathBuf};

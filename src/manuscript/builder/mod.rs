@@ -22,7 +22,9 @@ mod tables;
 pub use tables::{CellShape, Description};
 
 use super::characters::{self, Read};
-use super::{Block, BlockKind, Format, Manuscript, Mark, Part, STRIDE, Section, Table};
+use super::ink::{Area, Ink};
+use super::{Block, BlockKind, Correction, Format, Manuscript, Mark, Part, STRIDE, Section, Table};
+use std::collections::HashMap;
 use tables::OpenTable;
 
 /// Collects a document block by block. See the module text for an example.
@@ -33,7 +35,12 @@ pub struct Builder {
     sections: Vec<Section>,
     tables: Vec<Table>,
     remarks: Vec<String>,
+    corrections: Vec<Correction>,
     marks: Vec<Mark>,
+    ink: Ink,
+    page_sizes: HashMap<u32, [f32; 2]>,
+    /// Where the characters of the next text are drawn, by their byte in it.
+    drawn: Vec<(usize, Area)>,
     part: Part,
     section: Option<usize>,
     paragraph: u32,
@@ -54,7 +61,11 @@ impl Builder {
             sections: Vec::new(),
             tables: Vec::new(),
             remarks: Vec::new(),
+            corrections: Vec::new(),
             marks: Vec::new(),
+            ink: Ink::default(),
+            page_sizes: HashMap::new(),
+            drawn: Vec::new(),
             part: Part::Body,
             section: None,
             paragraph: 0,
@@ -78,7 +89,21 @@ impl Builder {
     /// The following text stands on this page (from 1).
     pub fn page(&mut self, page: u32) {
         self.page = Some(page);
+        if let Some(size) = self.page_sizes.get(&page) {
+            self.ink.sheet(page, *size);
+        }
         self.mark();
+    }
+
+    /// Width and height in points of a page, for [`Builder::drawn`]; known before the page is.
+    pub fn page_size(&mut self, page: u32, size: [f32; 2]) {
+        self.page_sizes.insert(page, size);
+    }
+
+    /// The characters from byte `at` of the next text on are drawn in this area of the page, whose size
+    /// must be known. Calls for one text go in its order.
+    pub fn drawn(&mut self, at: usize, area: Area) {
+        self.drawn.push((at, area));
     }
 
     /// The following text stands on this line (from 1).
@@ -165,10 +190,25 @@ impl Builder {
     pub fn text(&mut self, raw: &str) {
         if self.open.is_none() {
             if raw.trim().is_empty() {
+                self.drawn.clear();
                 return;
             }
             self.open(BlockKind::Paragraph);
         }
+        if self.drawn.is_empty() {
+            return self.add(raw);
+        }
+        let mut from = 0;
+        for (at, area) in std::mem::take(&mut self.drawn) {
+            let Some(before) = raw.get(from..at) else { continue };
+            self.add(before);
+            self.ink.add(self.text.len(), area);
+            from = at;
+        }
+        self.add(&raw[from..]);
+    }
+
+    fn add(&mut self, raw: &str) {
         let mut rest = raw;
         while !rest.is_empty() {
             // Most text is plain words with single spaces, which are taken over in one go.
@@ -200,33 +240,67 @@ impl Builder {
     /// Raised text. Digits, signs and single letters become superscript characters; anything with
     /// a character that has no superscript form (`***`, words) stays on the line.
     pub fn superscript(&mut self, raw: &str) {
-        self.shifted(raw, characters::superscript);
-    }
-
-    /// Lowered text. Digits become subscript characters, the rest stays on the line.
-    pub fn subscript(&mut self, raw: &str) {
-        if raw.chars().any(|c| c.is_ascii_digit()) {
-            let lowered: String = raw
-                .chars()
-                .map(|c| characters::subscript(c).unwrap_or(c))
-                .collect();
-            self.text(&lowered);
+        let bare = raw.trim();
+        let single_or_number = bare.chars().count() == 1 || bare.chars().all(|c| !c.is_alphabetic());
+        let keeps = |c: char| c == ',' || c.is_whitespace();
+        let form = |c: char| characters::superscript(characters::bare(c));
+        if single_or_number && bare.chars().all(|c| keeps(c) || form(c).is_some()) {
+            self.shifted(raw, |c| form(c).unwrap_or(c));
         } else {
             self.text(raw);
         }
     }
 
-    fn shifted(&mut self, raw: &str, form: fn(char) -> Option<char>) {
-        let bare = raw.trim();
-        let single_or_number = bare.chars().count() == 1 || bare.chars().all(|c| !c.is_alphabetic());
-        let shifted: Option<String> = bare
-            .chars()
-            .map(|c| if c == ',' || c == ' ' { Some(c) } else { form(c) })
-            .collect();
-        match shifted {
-            Some(shifted) if single_or_number => self.text(&shifted),
-            _ => self.text(raw),
+    /// Lowered text. Digits become subscript characters, the rest stays on the line.
+    pub fn subscript(&mut self, raw: &str) {
+        self.shifted(raw, |c| characters::subscript(characters::bare(c)).unwrap_or(c));
+    }
+
+    /// Adds the text with its characters in another form.
+    fn shifted(&mut self, raw: &str, form: impl Fn(char) -> char) {
+        let mut shifted = String::with_capacity(raw.len() * 2);
+        let mut drawn = self.drawn.iter_mut().peekable();
+        for (at, c) in raw.char_indices() {
+            while let Some(d) = drawn.next_if(|d| d.0 <= at) {
+                d.0 = shifted.len();
+            }
+            shifted.push(form(c));
         }
+        for d in drawn {
+            d.0 = shifted.len();
+        }
+        self.text(&shifted);
+    }
+
+    /// Text that the page shows where the file's text layer says `layer`, which is kept beside it
+    /// (empty if the layer says nothing). `write` writes what is shown.
+    pub fn corrected(&mut self, layer: &str, write: impl FnOnce(&mut Builder)) {
+        if self.open.is_none() {
+            self.open(BlockKind::Paragraph);
+        }
+        let start = self.text.len();
+        write(self);
+        if self.text.len() > start {
+            self.corrections.push(Correction {
+                range: start..self.text.len(),
+                layer: layer.to_string(),
+            });
+        }
+    }
+
+    /// What was corrected in the blocks closed so far: what is shown, what the layer says, and how
+    /// often, the most frequent first.
+    pub fn corrections(&self) -> Vec<(&str, &str, usize)> {
+        let mut kinds: Vec<(&str, &str, usize)> = Vec::new();
+        for c in &self.corrections {
+            let shown = &self.text[c.range.clone()];
+            match kinds.iter_mut().find(|k| k.0 == shown && k.1 == c.layer) {
+                Some(kind) => kind.2 += 1,
+                None => kinds.push((shown, &c.layer, 1)),
+            }
+        }
+        kinds.sort_by_key(|k| std::cmp::Reverse(k.2));
+        kinds
     }
 
     /// The end of a printed line inside a block, where a word may be hyphenated.
@@ -261,11 +335,14 @@ impl Builder {
         };
         if self.settle {
             let (settled, moved) = settle::settle(&self.text[start..]);
+            self.settle_corrections(start, &settled, &moved);
             self.text.truncate(start);
             self.text.push_str(&settled);
             for mark in self.marks.iter_mut().rev().take_while(|m| m.at >= start) {
                 mark.at = start + settle::carried(mark.at - start, &moved);
             }
+            self.ink
+                .carry(start, |at| start + settle::carried(at - start, &moved));
         }
         while self.text.len() > start && self.text.ends_with([' ', '\n']) {
             self.text.pop();
@@ -309,12 +386,31 @@ impl Builder {
         self.mark();
     }
 
+    /// Corrections follow the settled text of the block that begins at `start`; one whose character is
+    /// gone (the hyphen of a joined word) is dropped.
+    fn settle_corrections(&mut self, start: usize, settled: &str, moved: &settle::Moved) {
+        let first = self.corrections.partition_point(|c| c.range.start < start);
+        let mut kept = Vec::new();
+        for mut c in self.corrections.drain(first..) {
+            let shown = &self.text[c.range.clone()];
+            let range =
+                settle::carried(c.range.start - start, moved)..settle::carried(c.range.end - start, moved);
+            let now = settled.get(range.clone()).unwrap_or_default();
+            if now == shown || now == "-" && matches!(shown, "–" | "—") {
+                c.range = start + range.start..start + range.end;
+                kept.push(c);
+            }
+        }
+        self.corrections.extend(kept);
+    }
+
     /// Marks beyond the end of the text (their block was empty) fall back to the end.
     fn trim_marks(&mut self) {
         let end = self.text.len();
         while self.marks.last().is_some_and(|m| m.at > end) {
             self.marks.pop();
         }
+        self.ink.truncate(end);
         self.mark();
     }
 
@@ -357,7 +453,9 @@ impl Builder {
             sections: self.sections,
             tables: self.tables,
             remarks: self.remarks,
+            corrections: self.corrections,
             marks: self.marks,
+            ink: self.ink,
             char_index,
         }
     }
@@ -387,6 +485,7 @@ fn plain_words(text: &[u8], space: bool) -> usize {
 
 #[cfg(test)]
 mod tests {
+    use super::super::LineArea;
     use super::*;
 
     #[test]
@@ -402,6 +501,53 @@ mod tests {
         let at = m.text.find("p =").expect("the text holds it");
         assert_eq!(m.place(&m.blocks[0], at..at + 7).line, Some(8));
         assert_eq!(m.place(&m.blocks[0], 0..3).line, Some(7));
+    }
+
+    #[test]
+    fn areas_follow_the_text_through_forms_and_joined_lines() {
+        let mut b = Builder::new(Format::Pdf);
+        b.open(BlockKind::Paragraph);
+        b.page_size(3, [600.0, 800.0]);
+        b.page(3);
+        b.line(1);
+        let area = |n: usize| [10.0 * n as f32, 100.0, 10.0 * n as f32 + 8.0, 110.0];
+        for (at, n) in [(0, 1), (1, 2), (2, 3)] {
+            b.drawn(at, area(n));
+        }
+        b.text("xﬁ-");
+        b.line_break();
+        b.line(2);
+        b.drawn(0, area(4));
+        b.drawn(2, area(5));
+        b.text("ne");
+        b.drawn(0, area(6));
+        b.drawn(4, area(7));
+        b.drawn(5, area(8));
+        b.superscript("𝟐,3");
+        let m = b.finish();
+        assert_eq!(m.text, "xfine²,³\n");
+        let at = |part: &str| {
+            let from = m.text.find(part).expect("it is there");
+            m.areas(from..from + part.len())
+        };
+        let near = |a: LineArea, line, n: usize| {
+            let close = a.area.iter().zip(area(n)).all(|(a, b)| (a - b).abs() < 0.02);
+            assert!(close && a.page == 3 && a.line == Some(line), "{a:?} is not {n}");
+        };
+        near(at("fi")[0], 1, 2);
+        let word = at("fine");
+        assert_eq!(word.len(), 2);
+        // Without the hyphen that is gone.
+        near(word[0], 1, 2);
+        near(word[1], 2, 4);
+        near(at("²")[0], 2, 6);
+        near(at("³")[0], 2, 8);
+        assert_eq!(m.page_size(3), Some([600.0, 800.0]));
+        // A place that is known by nothing is no place.
+        let mut b = Builder::new(Format::Pdf);
+        b.drawn(7, area(1));
+        b.text("x");
+        assert!(b.finish().areas(0..1).is_empty());
     }
 
     #[test]

@@ -41,10 +41,24 @@ pub(super) fn settle(text: &str) -> (String, Moved) {
 
 /// Whether the text before a line end breaks off inside a word.
 fn joins(before: &str, after: &str) -> bool {
-    before
-        .strip_suffix('-')
-        .is_some_and(|word| word.ends_with(char::is_lowercase) && after.starts_with(char::is_lowercase))
+    let Some(word) = before.strip_suffix('-') else {
+        return false;
+    };
+    // No word is divided behind its first letter: `t-test`, `p-value`.
+    let mut last = word.chars().rev();
+    let inside = last.next().is_some_and(char::is_lowercase) && last.next().is_some_and(char::is_alphabetic);
+    let next = after
+        .split(|c: char| !c.is_alphabetic())
+        .next()
+        .unwrap_or_default();
+    inside && after.starts_with(char::is_lowercase) && !SECOND_HALVES.contains(&next)
 }
+
+/// Words that are the second half of a compound more often than the end of a divided word.
+const SECOND_HALVES: [&str; 12] = [
+    "hoc", "rank", "sample", "samples", "score", "scores", "sided", "square", "squared", "tailed", "test",
+    "way",
+];
 
 /// Where a byte of the old text stands in the settled one.
 pub(super) fn carried(at: usize, moved: &Moved) -> usize {
@@ -119,6 +133,10 @@ mod tests {
         assert_eq!(
             paragraph(&["post-", "Hoc and 0.66–", "1.21"]),
             "post-Hoc and 0.66–1.21"
+        );
+        assert_eq!(
+            paragraph(&["a one-", "tailed t-", "test, chi-", "square and post-", "hoc"]),
+            "a one-tailed t-test, chi-square and post-hoc"
         );
     }
 }

@@ -116,13 +116,16 @@ fn best_gutter(whole: &Region) -> Option<Gutter> {
         let inside = x > whole.left + NARROWEST * width && x < whole.right - NARROWEST * width;
         if same >= 3 && inside {
             candidates.push((same, x));
+            // Cells and list items stand a little inside their column.
+            let outer = edges[..i].iter().find(|e| x - **e < 0.8 * size);
+            candidates.extend(outer.map(|e| (same, *e)));
         }
         i += same;
     }
     candidates.sort_by_key(|c| std::cmp::Reverse(c.0));
     candidates
         .iter()
-        .take(6)
+        .take(8)
         .filter_map(|(_, x)| {
             let gutter = Gutter {
                 x: *x,
@@ -298,11 +301,39 @@ fn judge(pieces: &[Piece], gutter: Gutter, left: f32, right: f32) -> Verdict {
     if l >= 3 && r >= 3 && l_wide * 5 >= l * 2 && r_wide * 5 >= r * 2 {
         return Verdict::Columns;
     }
+    if rows_stand_apart(pieces, gutter) {
+        return Verdict::Columns;
+    }
     // Many short pieces side by side are a table.
     if rows >= 2 && all > 2 * rows && (l_wide + r_wide) * 4 < all {
         return Verdict::Rows;
     }
     Verdict::Either
+}
+
+/// The lines left and right of the gutter take no notice of each other, as cells of a row would.
+fn rows_stand_apart(pieces: &[Piece], gutter: Gutter) -> bool {
+    let rows = |side: Side| {
+        let mut all: Vec<(f32, f32)> = pieces
+            .iter()
+            .filter(|p| gutter.side(p) == side)
+            .map(|p| (p.baseline, p.size))
+            .collect();
+        all.sort_by(|a, b| a.0.total_cmp(&b.0));
+        all.dedup_by(|b, a| b.0 - a.0 < 0.4 * a.1);
+        all
+    };
+    let (left, right) = (rows(Side::Left), rows(Side::Right));
+    let (few, many) = if left.len() < right.len() {
+        (left, right)
+    } else {
+        (right, left)
+    };
+    let level = few
+        .iter()
+        .filter(|(y, size)| many.iter().any(|(other, _)| (y - other).abs() < 0.12 * size))
+        .count();
+    few.len() >= 4 && level * 2 <= few.len()
 }
 
 /// Strips none of which is clearly in columns may be so together.

@@ -1,9 +1,11 @@
 //! From blocks to the manuscript: parts, headings, and the text with its raised and lowered
 //! characters, page by page and line by line.
 
-use super::lines::{Shift, Word};
+use super::lines::{Ink, Shift, Word};
 use super::paragraphs::{Block, Body};
 use super::roles;
+use super::tables::Table;
+use super::tables::compose::Tables;
 use crate::manuscript::{BlockKind, Builder, Part};
 use crate::readers::headings::{self, Parts};
 
@@ -11,13 +13,23 @@ use crate::readers::headings::{self, Parts};
 #[derive(Clone, Copy, Debug)]
 pub struct Sheet {
     pub number: u32,
+    pub width: f32,
     pub height: f32,
 }
 
 /// Fills the builder.
-pub fn compose(b: &mut Builder, blocks: &[Block], body: Body, sheets: &[Sheet]) {
+pub fn compose(b: &mut Builder, blocks: &[Block], tables: &[Table], body: Body, sheets: &[Sheet]) {
+    for sheet in sheets {
+        b.page_size(sheet.number, [sheet.width, sheet.height]);
+    }
     let mut state = State::new(blocks, body);
+    let mut tables = Tables::new(tables, blocks);
     for (index, block) in blocks.iter().enumerate() {
+        if let Some(table) = block.first().table {
+            b.part(state.part(index, block, BlockKind::Caption));
+            tables.write(b, table);
+            continue;
+        }
         let height = sheets
             .iter()
             .find(|s| s.number == block.first().page)
@@ -148,7 +160,8 @@ impl State {
         let raised = roles::begins_raised(block);
         let entries_raised = *self.entries_raised.get_or_insert(raised);
         // Not numbered like the entries: a footnote to the text above the references on this page.
-        let note = kind == BlockKind::Footnote && raised && !entries_raised;
+        let leads_back = block.last().text().trim_end().ends_with('↩');
+        let note = kind == BlockKind::Footnote && (raised && !entries_raised || leads_back);
         if note || self.float_page.is_some() {
             Part::Body
         } else {
@@ -165,21 +178,88 @@ fn write(b: &mut Builder, block: &Block) {
         }
         b.page(line.page);
         b.line(*number);
-        for (w, word) in line.words.iter().enumerate() {
-            if w > 0 {
-                b.text(" ");
-            }
-            write_word(b, word);
+        write_words(b, &line.words);
+    }
+}
+
+/// Writes words with spaces between.
+pub fn write_words(b: &mut Builder, words: &[Word]) {
+    for (w, word) in words.iter().enumerate() {
+        if w > 0 {
+            b.text(" ");
         }
+        write_word(b, word);
     }
 }
 
 fn write_word(b: &mut Builder, word: &Word) {
+    let mut pen = Pen {
+        inks: word.inks.iter(),
+        drawn: 0,
+    };
+    let mut from = 0;
     for (shift, text) in &word.parts {
-        match shift {
-            Shift::None => b.text(text),
-            Shift::Raised => b.superscript(text),
-            Shift::Lowered => b.subscript(text),
+        let to = from + text.len();
+        let inside = word
+            .corrected
+            .iter()
+            .filter(|c| (from..to).contains(&c.range.start));
+        // Raised and lowered parts are read as a whole, so they are corrected as a whole.
+        let (mut done, mut layer) = (from, String::new());
+        for c in inside {
+            let before = &text[done - from..c.range.start - from];
+            if *shift == Shift::None {
+                let shown = &text[c.range.start - from..c.range.end - from];
+                pen.write(b, done, before);
+                b.corrected(&c.layer, |b| pen.write(b, c.range.start, shown));
+            } else {
+                layer.push_str(before);
+                layer.push_str(&c.layer);
+            }
+            done = c.range.end;
+        }
+        let rest = &text[done - from..];
+        if *shift == Shift::None {
+            pen.write(b, done, rest);
+        } else {
+            pen.draw(b, from, to);
+            layer.push_str(rest);
+            let write = |b: &mut Builder| match shift {
+                Shift::Lowered => b.subscript(text),
+                _ => b.superscript(text),
+            };
+            if done > from {
+                b.corrected(&layer, write);
+            } else {
+                write(b);
+            }
+        }
+        from = to;
+    }
+}
+
+/// Goes along a word and says where what is written is drawn.
+struct Pen<'a> {
+    inks: std::slice::Iter<'a, Ink>,
+    /// How much of the word is known to be drawn where.
+    drawn: usize,
+}
+
+impl Pen<'_> {
+    /// The next text to be written goes from one byte of the word to another.
+    fn draw(&mut self, b: &mut Builder, from: usize, to: usize) {
+        while self.drawn < to {
+            let Some(ink) = self.inks.next() else { break };
+            b.drawn(self.drawn.saturating_sub(from), ink.area);
+            self.drawn = ink.end as usize;
+        }
+    }
+
+    /// Writes text that begins at a byte of the word.
+    fn write(&mut self, b: &mut Builder, from: usize, text: &str) {
+        if !text.is_empty() {
+            self.draw(b, from, from + text.len());
+            b.text(text);
         }
     }
 }

@@ -5,6 +5,8 @@
 //! Coordinates are points in the *reading frame*: the page turned so that its text runs from left
 //! to right, x to the right and y downwards from the upper left corner. [`Turn`] maps back.
 
+use super::tables::Rules;
+
 /// What the file's text layer says a glyph means.
 #[derive(Clone, Debug, PartialEq)]
 pub enum Meaning {
@@ -18,10 +20,21 @@ impl Meaning {
     /// Adds the text to a string; an unknown glyph becomes U+FFFD, so that it is seen to be missing.
     pub fn add_to(&self, out: &mut String) {
         match self {
+            // A hyphen that is drawn is there, however soft the file says it is.
+            Meaning::Char('\u{ad}') => out.push('-'),
             Meaning::Char(c) => out.push(*c),
             Meaning::Many(s) => out.push_str(s),
             Meaning::Unknown => out.push('\u{fffd}'),
         }
+    }
+
+    /// The text that the file gives it; empty for an unknown glyph.
+    pub fn known_text(&self) -> String {
+        let mut text = String::new();
+        if *self != Meaning::Unknown {
+            self.add_to(&mut text);
+        }
+        text
     }
 
     /// True for a glyph that only makes room.
@@ -63,17 +76,40 @@ impl Turn {
             Turn::ThreeQuarters => (y, height - x),
         }
     }
+
+    /// An area of the page in the reading frame.
+    pub fn area_to_reading(self, area: Area, page: (f32, f32)) -> Area {
+        span(
+            self.to_reading((area[0], area[1]), page),
+            self.to_reading((area[2], area[3]), page),
+        )
+    }
+
+    /// An area from the reading frame back to the page.
+    pub fn area_to_page(self, area: Area, page: (f32, f32)) -> Area {
+        span(
+            self.to_page((area[0], area[1]), page),
+            self.to_page((area[2], area[3]), page),
+        )
+    }
+}
+
+/// The area between two corners.
+pub fn span(a: (f32, f32), b: (f32, f32)) -> Area {
+    [a.0.min(b.0), a.1.min(b.1), a.0.max(b.0), a.1.max(b.1)]
 }
 
 /// One printed character.
 #[derive(Clone, Debug)]
 pub struct Glyph {
     pub meaning: Meaning,
+    /// What the text layer says, where the outline shows something else.
+    pub layer: Option<Box<Meaning>>,
     /// The code that selects it in its font.
     pub code: u32,
     /// Index into [`Glyphs::fonts`].
     pub font: u16,
-    /// Index into [`Glyphs::shapes`]; bitmap fonts have none.
+    /// Index into [`Glyphs::shapes`]; bitmap fonts have none, nor has text that is not shown.
     pub shape: Option<u32>,
     /// Font size in points, as shown.
     pub size: f32,
@@ -83,16 +119,12 @@ pub struct Glyph {
     pub x1: f32,
     /// Height of the baseline.
     pub baseline: f32,
+    /// What is drawn of it. Where the outline isn't known, as [`Glyph::area`].
+    pub ink: Area,
     pub turn: Turn,
 }
 
-/// Left, top, right, bottom.
-pub type Area = [f32; 4];
-
-/// The smallest area that holds both.
-pub fn union(a: Area, b: Area) -> Area {
-    [a[0].min(b[0]), a[1].min(b[1]), a[2].max(b[2]), a[3].max(b[3])]
-}
+pub use crate::manuscript::{Area, union};
 
 impl Glyph {
     /// The space it takes on its line, from usual ascender to usual descender.
@@ -126,6 +158,8 @@ pub struct Shape {
     pub ink: f32,
     /// Left, lower, right, upper end of the ink.
     pub bounds: [f32; 4],
+    /// How far the pen moves on, in thousandths of the font size.
+    pub advance: f32,
 }
 
 /// A font as far as the pages show it.
@@ -145,6 +179,8 @@ pub struct PageGlyphs {
     pub width: f32,
     pub height: f32,
     pub glyphs: Vec<Glyph>,
+    /// Lines and bars, with the page upright ([`Turn::None`]).
+    pub rules: Rules,
     /// The page shows at least one image.
     pub image: bool,
     /// Interpretation was given up before the end of the page.
@@ -172,18 +208,20 @@ impl Glyphs {
         let Some(main) = (0..self.fonts.len()).max_by_key(|f| self.fonts[*f].uses) else {
             return;
         };
+        // The letter that each shape is.
+        let mut letters: Vec<Option<char>> = vec![None; self.shapes.len()];
+        for glyph in self.pages.iter().flat_map(|p| &p.glyphs) {
+            if let (Some(shape), Meaning::Char(c)) = (glyph.shape, &glyph.meaning)
+                && c.is_ascii_alphabetic()
+            {
+                letters[shape as usize] = Some(*c);
+            }
+        }
         let mut density = std::collections::HashMap::new();
-        for page in &self.pages {
-            for glyph in &page.glyphs {
-                if let (Some(shape), Meaning::Char(c)) = (glyph.shape, &glyph.meaning)
-                    && c.is_ascii_alphabetic()
-                {
-                    let s = &self.shapes[shape as usize];
-                    let room = (s.bounds[2] - s.bounds[0]) * (s.bounds[3] - s.bounds[1]);
-                    if room > 0.0 {
-                        density.entry((glyph.font, *c)).or_insert(s.ink / room);
-                    }
-                }
+        for (s, letter) in self.shapes.iter().zip(letters) {
+            let room = (s.bounds[2] - s.bounds[0]) * (s.bounds[3] - s.bounds[1]);
+            if let (Some(c), true) = (letter, room > 0.0) {
+                density.entry((s.font, c)).or_insert(s.ink / room);
             }
         }
         for (index, font) in self.fonts.iter_mut().enumerate() {
@@ -207,6 +245,9 @@ mod tests {
             let page = (600.0, 800.0);
             let there = turn.to_reading((100.0, 50.0), page);
             assert_eq!(turn.to_page(there, page), (100.0, 50.0));
+            let area = [100.0, 50.0, 130.0, 60.0];
+            let there = turn.area_to_reading(area, page);
+            assert_eq!(turn.area_to_page(there, page), area);
         }
     }
 }

@@ -1,12 +1,8 @@
 //! A *guard* lets an engine loose on a file that may be damaged on purpose: on a thread of its own
-//! with a large stack, with panics caught and their messages kept off the screen, and with a
-//! patience that ends.
+//! with a large stack, with panics caught and their messages kept off the screen.
 
 use std::cell::Cell;
-use std::panic::{AssertUnwindSafe, catch_unwind};
 use std::sync::Once;
-use std::sync::mpsc::{RecvTimeoutError, sync_channel};
-use std::time::Duration;
 
 /// Nested forms go fifty levels deep, and each level takes some kilobytes in a debug build.
 const STACK: usize = 256 << 20;
@@ -15,8 +11,6 @@ const STACK: usize = 256 << 20;
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
 pub enum Mishap {
     Panicked,
-    /// Still at work when patience ended. The thread is left behind: it can't be stopped from outside.
-    TooLong,
     /// The system gave no thread.
     NoThread,
 }
@@ -38,28 +32,18 @@ fn hush() {
     });
 }
 
-/// Runs the job and waits for it at most this long.
-pub fn run<T: Send + 'static>(
-    patience: Duration,
-    job: impl FnOnce() -> T + Send + 'static,
-) -> Result<T, Mishap> {
+/// Runs the job and waits for it.
+pub fn run<T: Send + 'static>(job: impl FnOnce() -> T + Send + 'static) -> Result<T, Mishap> {
     hush();
-    let (send, receive) = sync_channel(1);
-    std::thread::Builder::new()
+    let thread = std::thread::Builder::new()
         .name("pdf".into())
         .stack_size(STACK)
         .spawn(move || {
             QUIET.with(|q| q.set(true));
-            let result = catch_unwind(AssertUnwindSafe(job));
-            // Nobody listens any more when patience has ended.
-            let _ = send.send(result.map_err(|_| Mishap::Panicked));
+            job()
         })
         .map_err(|_| Mishap::NoThread)?;
-    match receive.recv_timeout(patience) {
-        Ok(result) => result,
-        Err(RecvTimeoutError::Timeout) => Err(Mishap::TooLong),
-        Err(RecvTimeoutError::Disconnected) => Err(Mishap::Panicked),
-    }
+    thread.join().map_err(|_| Mishap::Panicked)
 }
 
 #[cfg(test)]
@@ -67,17 +51,8 @@ mod tests {
     use super::*;
 
     #[test]
-    fn results_panics_and_endless_work_come_back() {
-        let long = Duration::from_secs(20);
-        assert_eq!(run(long, || 7), Ok(7));
-        assert_eq!(
-            run(long, || -> u8 { panic!("kept quiet") }),
-            Err(Mishap::Panicked)
-        );
-        let short = Duration::from_millis(20);
-        assert_eq!(
-            run(short, || std::thread::sleep(Duration::from_millis(400))),
-            Err(Mishap::TooLong)
-        );
+    fn results_and_panics_come_back() {
+        assert_eq!(run(|| 7), Ok(7));
+        assert_eq!(run(|| -> u8 { panic!("kept quiet") }), Err(Mishap::Panicked));
     }
 }

@@ -89,6 +89,10 @@ pub fn drop_running_lines(pages: &[&PageGlyphs], pieces: &mut [Vec<Piece>]) {
     }
     drop.sort_unstable();
     drop.dedup();
+    // Lines that are all there is are the text itself.
+    if drop.len() == pieces.iter().map(Vec::len).sum::<usize>() {
+        return;
+    }
     for (page, piece) in drop.into_iter().rev() {
         pieces[page].remove(piece);
     }
@@ -136,6 +140,7 @@ pub fn drop_line_numbers(page: &PageGlyphs, pieces: &mut Vec<Piece>) {
     let numbers: Vec<(usize, u32)> = pieces
         .iter()
         .enumerate()
+        .filter(|(_, p)| p.glyphs.len() <= 8)
         .filter_map(|(i, p)| {
             let text = p.plain_text(page);
             (text.len() <= 4)

@@ -4,13 +4,18 @@
 //! [`paragraphs`] put the text together; [`roles`] tells headings, captions and notes; [`compose`]
 //! fills the manuscript.
 //!
-//! Files are not trusted: the engine runs behind a [`guard`], the second engine ([`fallback`]) in a
-//! process of its own.
+//! Files are not trusted: both engines run behind a [`guard`], and the whole reader in a process of
+//! its own ([`contained`](super::contained)). What defeats the first engine is left to the second,
+//! [`fallback`].
 
+mod afterwards;
 mod columns;
 mod compose;
 mod engine_hayro;
+mod engine_paths;
+mod engine_type3;
 mod fallback;
+mod fractions;
 pub mod glyphs;
 mod guard;
 mod lines;
@@ -18,53 +23,51 @@ mod margins;
 mod nesting;
 mod paragraphs;
 mod pieces;
+mod replaced;
 mod roles;
 #[cfg(test)]
 mod sample;
+mod shapes;
+mod tables;
 #[cfg(test)]
 mod tests;
+#[cfg(test)]
+mod tests_places;
 
-pub use fallback::worker;
-
-use super::Unreadable;
-use crate::manuscript::{BlockKind, Builder, Format, Manuscript};
+use super::{Failure, Unreadable};
+use crate::manuscript::{BlockKind, Builder, Format, Manuscript, nothing_or};
 use compose::Sheet;
 use engine_hayro::{Limits, Refusal};
 use glyphs::{Glyphs, PageGlyphs, Turn};
 use paragraphs::{Body, Column, Standing};
-use std::time::Duration;
 
 /// Reads the document.
-pub fn read(bytes: &[u8]) -> Result<Manuscript, Unreadable> {
+///
+/// # Errors
+/// [`Failure::TryRescue`] if the engine can't open it or fails on it.
+pub fn read(bytes: &[u8]) -> Result<Manuscript, Failure> {
     read_within(bytes, Limits::default())
 }
 
-fn read_within(bytes: &[u8], limits: Limits) -> Result<Manuscript, Unreadable> {
+fn read_within(bytes: &[u8], limits: Limits) -> Result<Manuscript, Failure> {
     let owned = bytes.to_vec();
     let cut_off = is_cut_off(bytes);
-    // The engine looks at the clock itself; the guard's patience is for where it can't.
-    let patience = limits.time + Duration::from_secs(5);
-    let done = guard::run(patience, move || {
+    let done = guard::run(move || {
         let glyphs = engine_hayro::glyphs(owned, limits)?;
         Ok((!glyphs.pages.is_empty()).then(|| manuscript(&glyphs, cut_off)))
     });
-    match done {
-        Ok(Ok(Some(result))) => result,
-        Ok(Err(Refusal::Locked)) => Err(Unreadable::new(
-            "is encrypted; save a copy without a password and read that",
-        )),
-        Ok(Err(Refusal::UnknownCipher)) => Err(Unreadable::new(
-            "is encrypted in a way that is not known here; save an unprotected copy and read that",
-        )),
-        Err(guard::Mishap::TooLong) => Err(Unreadable::new(format!(
-            "takes more than {} seconds to interpret; print it to a new PDF and read that",
-            limits.time.as_secs()
-        ))),
-        Err(guard::Mishap::NoThread) => Err(Unreadable::new(
-            "cannot be read now: the system gives no thread; try again",
-        )),
-        Ok(Ok(None)) | Ok(Err(Refusal::Damaged)) | Err(guard::Mishap::Panicked) => second_try(bytes),
-    }
+    let reason = match done {
+        Ok(Ok(Some(result))) => return Ok(result?),
+        Ok(Err(Refusal::Locked)) => "is encrypted; save a copy without a password and read that",
+        Ok(Err(Refusal::UnknownCipher)) => {
+            "is encrypted in a way that is not known here; save an unprotected copy and read that"
+        }
+        Err(guard::Mishap::NoThread) => "cannot be read now: the system gives no thread; try again",
+        Ok(Ok(None)) | Ok(Err(Refusal::Damaged)) | Err(guard::Mishap::Panicked) => {
+            return Err(Failure::TryRescue);
+        }
+    };
+    Err(Unreadable::new(reason).into())
 }
 
 fn is_cut_off(bytes: &[u8]) -> bool {
@@ -72,20 +75,22 @@ fn is_cut_off(bytes: &[u8]) -> bool {
     memchr::memmem::find(tail, b"%%EOF").is_none() && memchr::memmem::find(tail, b"startxref").is_none()
 }
 
-fn second_try(bytes: &[u8]) -> Result<Manuscript, Unreadable> {
+/// Why a file can't be read in which no engine finds a page.
+pub fn hopeless(bytes: &[u8]) -> Unreadable {
     let head = &bytes[..bytes.len().min(1024)];
-    if memchr::memmem::find(head, b"%PDF-").is_none() {
-        return Err(Unreadable::new(
-            "is not a PDF although it is called one; check the file",
-        ));
-    }
-    let Some(pages) = fallback::pages(bytes) else {
-        return Err(Unreadable::new(if is_cut_off(bytes) {
-            "is cut off before its end and no page can be found; get the complete file"
-        } else {
-            "is damaged and no page can be found; get another copy or print it to a new PDF"
-        }));
-    };
+    Unreadable::new(if memchr::memmem::find(head, b"%PDF-").is_none() {
+        "is not a PDF although it is called one; check the file"
+    } else if is_cut_off(bytes) {
+        "is cut off before its end and no page can be found; get the complete file"
+    } else {
+        "is damaged and no page can be found; get another copy or print it to a new PDF"
+    })
+}
+
+/// Reads a document that [`read`] has failed on, as well as the second engine can: it finds text
+/// where the first finds none, but knows no columns or headings.
+pub fn rescue(bytes: &[u8]) -> Result<Manuscript, Unreadable> {
+    let pages = fallback::pages(bytes).ok_or_else(|| hopeless(bytes))?;
     let mut b = Builder::new(Format::Pdf);
     b.remark("the file is damaged; its text was recovered without columns and headings, so check what is found against the pages");
     for (index, page) in pages.iter().enumerate() {
@@ -106,13 +111,16 @@ fn second_try(bytes: &[u8]) -> Result<Manuscript, Unreadable> {
         b.close();
     }
     if b.is_blank() {
-        return Err(no_text());
+        return Err(no_text(&[]));
     }
     Ok(b.finish())
 }
 
-fn no_text() -> Unreadable {
-    Unreadable::new("has no text layer (page images only): run text recognition on it first")
+fn no_text(pages: &[u32]) -> Unreadable {
+    let pages = listed(pages).unwrap_or_else(|| "any page".to_string());
+    Unreadable::new(format!(
+        "has no text layer on {pages} (page images only): run text recognition on it first"
+    ))
 }
 
 fn manuscript(glyphs: &Glyphs, cut_off: bool) -> Result<Manuscript, Unreadable> {
@@ -129,15 +137,18 @@ fn manuscript(glyphs: &Glyphs, cut_off: bool) -> Result<Manuscript, Unreadable> 
             ));
         }
         return Err(if glyphs.pages.iter().any(|p| p.image) {
-            no_text()
+            no_text(&glyphs.pages.iter().map(|p| p.number).collect::<Vec<u32>>())
         } else {
             Unreadable::new("has no text on its pages; if they show any, run text recognition on it first")
         });
     }
-    let columns = read_columns(glyphs);
+    let (columns, tables) = read_columns(glyphs);
     let body = Body::of(&columns);
     let blocks = paragraphs::blocks(&columns, body);
     let blocks = paragraphs::join(blocks, body, |block| {
+        if block.first().table.is_some() {
+            return Standing::Float;
+        }
         if roles::heading(block, body).is_some() {
             return Standing::Heading;
         }
@@ -151,12 +162,16 @@ fn manuscript(glyphs: &Glyphs, cut_off: bool) -> Result<Manuscript, Unreadable> 
         .iter()
         .map(|p| Sheet {
             number: p.number,
+            width: p.width,
             height: p.height,
         })
         .collect();
     let mut b = Builder::new(Format::Pdf);
     remarks(&mut b, glyphs, cut_off);
-    compose::compose(&mut b, &blocks, body, &sheets);
+    compose::compose(&mut b, &blocks, &tables, body, &sheets);
+    if let Some(remark) = corrected(&b) {
+        b.remark(remark);
+    }
     Ok(b.finish())
 }
 
@@ -207,6 +222,33 @@ fn remarks(b: &mut Builder, glyphs: &Glyphs, cut_off: bool) {
     }
 }
 
+/// How often the page shows something else than its text layer says.
+fn corrected(b: &Builder) -> Option<String> {
+    const MOST: usize = 6;
+    let kinds = b.corrections();
+    let all: usize = kinds.iter().map(|k| k.2).sum();
+    let named: Vec<String> = kinds
+        .iter()
+        .take(MOST)
+        .map(|(shown, layer, n)| format!("`{shown}` where the layer says {} ({n}×)", nothing_or(layer)))
+        .collect();
+    let more = match kinds.len().saturating_sub(MOST) {
+        0 => String::new(),
+        n => format!(" and {n} more"),
+    };
+    let places = if all == 1 {
+        "1 place"
+    } else {
+        &format!("{all} places")
+    };
+    (all > 0).then(|| {
+        format!(
+            "in {places} the page shows something else than the file's text layer says; what the page shows was read: {}{more}",
+            named.join(", ")
+        )
+    })
+}
+
 /// `page 3`, `pages 3, 5–7`.
 fn listed(pages: &[u32]) -> Option<String> {
     let mut ranges: Vec<(u32, u32)> = Vec::new();
@@ -233,11 +275,12 @@ fn listed(pages: &[u32]) -> Option<String> {
     }
 }
 
-/// The columns of all pages in reading order.
-fn read_columns(glyphs: &Glyphs) -> Vec<Column> {
+/// The columns of all pages in reading order, and the tables that stand in them.
+fn read_columns(glyphs: &Glyphs) -> (Vec<Column>, Vec<tables::Table>) {
     let pages: Vec<&PageGlyphs> = glyphs.pages.iter().collect();
     let mut main: Vec<Vec<pieces::Piece>> = Vec::with_capacity(pages.len());
     let mut aside: Vec<Vec<Vec<pieces::Piece>>> = Vec::with_capacity(pages.len());
+    let mut all_turns: Vec<Vec<Turn>> = Vec::with_capacity(pages.len());
     for page in &pages {
         let turns = turns(page);
         let mut all = turns.iter().map(|t| pieces::pieces(page, *t));
@@ -245,8 +288,17 @@ fn read_columns(glyphs: &Glyphs) -> Vec<Column> {
         margins::drop_line_numbers(page, &mut first);
         main.push(first);
         aside.push(all.collect());
+        all_turns.push(turns);
     }
     margins::drop_running_lines(&pages, &mut main);
+    let size = pieces::usual_size(main.iter().flatten());
+    let mut tables = Vec::new();
+    for (p, page) in pages.iter().enumerate() {
+        let sides = std::iter::once(&mut main[p]).chain(&mut aside[p]);
+        for (pieces, turn) in sides.zip(&all_turns[p]) {
+            tables::take(page, glyphs, pieces, *turn, size, &mut tables);
+        }
+    }
     let mut out = Vec::new();
     for ((page, main), aside) in pages.iter().zip(main).zip(aside) {
         let mut number = 1;
@@ -275,7 +327,7 @@ fn read_columns(glyphs: &Glyphs) -> Vec<Column> {
             add(pieces, true);
         }
     }
-    out
+    (out, tables)
 }
 
 /// The directions of text on a page, the one of most glyphs first.

@@ -4,10 +4,10 @@
 
 use hayro_syntax::content::TypedIter;
 use hayro_syntax::content::ops::TypedInstruction;
-use hayro_syntax::object::dict::keys::{RESOURCES, SUBTYPE};
+use hayro_syntax::object::dict::keys::{CHAR_PROCS, RESOURCES, SUBTYPE, TYPE3};
 use hayro_syntax::object::{Dict, Name, ObjectIdentifier, Stream};
 use hayro_syntax::page::{Page, Resources};
-use std::collections::HashMap;
+use std::collections::{HashMap, HashSet};
 
 /// The engine goes no deeper.
 const DEPTH: usize = 50;
@@ -17,6 +17,10 @@ const DEPTH: usize = 50;
 pub struct Forms {
     /// The forms that a form draws, with repetition.
     draws: HashMap<ObjectIdentifier, Vec<(ObjectIdentifier, u64)>>,
+    /// The fonts whose glyphs were looked into.
+    fonts: HashSet<ObjectIdentifier>,
+    /// Some glyph of a font draws forms.
+    by_glyphs: bool,
 }
 
 impl Forms {
@@ -44,9 +48,37 @@ impl Forms {
         sum
     }
 
+    /// Whether any glyph on the pages seen so far draws forms, which are not counted: such glyphs are
+    /// better left undrawn.
+    pub fn drawn_by_glyphs(&self) -> bool {
+        self.by_glyphs
+    }
+
+    /// Looks for forms in the glyphs of fonts that are drawn by instructions.
+    fn look_into_fonts(&mut self, resources: &Resources<'_>) {
+        for name in resources.fonts.keys() {
+            let Some(font) = resources.fonts.get::<Dict<'_>>(&*name) else {
+                continue;
+            };
+            if font.get::<Name<'_>>(SUBTYPE).as_deref() != Some(TYPE3)
+                || font.obj_id().is_some_and(|id| !self.fonts.insert(id))
+            {
+                continue;
+            }
+            let Some(glyphs) = font.get::<Dict<'_>>(CHAR_PROCS) else {
+                continue;
+            };
+            self.by_glyphs |= glyphs.keys().any(|name| {
+                let content = glyphs.get::<Stream<'_>>(&*name).map(|s| s.decoded_data());
+                matches!(content, Some(Ok(content)) if may_draw_forms(&content))
+            });
+        }
+    }
+
     /// The forms that a content draws; looks into those not seen before.
     fn inside(&mut self, content: &[u8], resources: &Resources<'_>) -> Vec<(ObjectIdentifier, u64)> {
         let mut todo = Vec::new();
+        self.look_into_fonts(resources);
         let out = drawn(content, resources, &mut todo);
         // No recursion, as the depth is the file's choice.
         while let Some(form) = todo.pop() {
@@ -59,11 +91,27 @@ impl Forms {
                 continue;
             };
             let own = form.dict().get::<Dict<'_>>(RESOURCES).map(Resources::new);
+            if let Some(own) = &own {
+                self.look_into_fonts(own);
+            }
             let inner = drawn(&content, own.as_ref().unwrap_or(resources), &mut todo);
             self.draws.insert(id, inner);
         }
         out
     }
+}
+
+/// Whether the operator stands in the content, apart from its neighbours, as bitmaps may hold its two
+/// letters by chance.
+fn may_draw_forms(content: &[u8]) -> bool {
+    memchr::memmem::find_iter(content, b"Do").any(|at| {
+        let before = at.checked_sub(1).map(|b| content[b]);
+        let after = content.get(at + 2).copied();
+        [before, after]
+            .into_iter()
+            .flatten()
+            .all(|b| b.is_ascii_whitespace())
+    })
 }
 
 fn drawn<'a>(

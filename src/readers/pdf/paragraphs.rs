@@ -132,6 +132,8 @@ fn column_blocks(index: usize, column: &Column, body: Body, out: &mut Vec<Block>
         let row = is_row(lines, i);
         let seam = match out[from..].last() {
             None => Seam::Apart,
+            Some(block) if line.table.is_some() && block.first().table == line.table => Seam::None,
+            Some(block) if line.table.is_some() || block.first().table.is_some() => Seam::Apart,
             Some(block) if block.row || row => Seam::Apart,
             Some(block) => measure.seam(block, line, lines.get(i + 1)),
         };
@@ -275,6 +277,11 @@ impl Measure {
         } else {
             self.leading
         };
+        // Nothing begins behind a comma or an open bracket, whatever the next line looks like; it may
+        // stand lower for what is raised in it.
+        if ends_open(&text) && !line.bold && (0.0..1.8 * usual).contains(&step) {
+            return Seam::None;
+        }
         if step > (1.25 * usual).max(usual + 0.22 * size) || step < 0.0 {
             return Seam::Apart;
         }

@@ -6,6 +6,7 @@
 //! page; that order is right for stacked super- and subscripts, where geometry alone is not.
 
 use super::glyphs::{Area, Glyph, PageGlyphs, Turn, union};
+use rustc_hash::FxHashMap;
 
 /// Glyphs that belong together on a baseline.
 #[derive(Clone, Debug)]
@@ -16,9 +17,22 @@ pub struct Piece {
     pub baseline: f32,
     /// Size of most of its text.
     pub size: f32,
+    /// The table that it keeps the place of; it has no glyphs then.
+    pub table: Option<usize>,
 }
 
 impl Piece {
+    /// A line's room in the place of a table.
+    pub fn in_place_of(table: usize, area: Area) -> Piece {
+        Piece {
+            glyphs: Vec::new(),
+            area,
+            baseline: area[3],
+            size: area[3] - area[1],
+            table: Some(table),
+        }
+    }
+
     fn new(glyphs: Vec<u32>, page: &PageGlyphs) -> Option<Piece> {
         let ink: Vec<&Glyph> = glyphs
             .iter()
@@ -32,6 +46,7 @@ impl Piece {
             area,
             baseline,
             size,
+            table: None,
         })
     }
 
@@ -94,6 +109,16 @@ pub fn main_line(glyphs: &[&Glyph]) -> (f32, f32) {
     baselines.sort_by(f32::total_cmp);
     let baseline = baselines.get(baselines.len() / 2).copied().unwrap_or_default();
     (baseline, size)
+}
+
+/// The size that most glyphs are set in, to a quarter of a point.
+pub fn usual_size<'a>(pieces: impl Iterator<Item = &'a Piece>) -> f32 {
+    let mut sizes: std::collections::HashMap<u32, usize> = std::collections::HashMap::new();
+    for p in pieces {
+        *sizes.entry((4.0 * p.size).round() as u32).or_default() += p.glyphs.len();
+    }
+    let most = sizes.into_iter().max_by_key(|(size, n)| (*n, *size));
+    most.map_or(10.0, |(size, _)| size as f32 / 4.0)
 }
 
 /// The pieces of a page that are turned this way.
@@ -164,23 +189,17 @@ fn follows(last: &Glyph, base: &Glyph, g: &Glyph) -> bool {
 /// Glyphs drawn twice, a little apart, to look bold.
 #[derive(Default)]
 struct Overprints {
-    at: std::collections::HashMap<(u32, i32, i32), [f32; 2]>,
+    at: FxHashMap<(u32, i32, i32), [f32; 2]>,
 }
 
 impl Overprints {
     fn again(&mut self, g: &Glyph) -> bool {
         let near = 0.12 * g.size;
         let cell = |v: f32| (v / (4.0 * near)).floor() as i32;
-        let key = |dx: i32, dy: i32| {
-            (
-                g.code.wrapping_mul(31).wrapping_add(g.font as u32),
-                cell(g.x0) + dx,
-                cell(g.baseline) + dy,
-            )
-        };
-        for dx in -1..=1 {
-            for dy in -1..=1 {
-                if let Some([x, y]) = self.at.get(&key(dx, dy))
+        let key = |x: i32, y: i32| (g.code.wrapping_mul(31).wrapping_add(g.font as u32), x, y);
+        for x in cell(g.x0 - near)..=cell(g.x0 + near) {
+            for y in cell(g.baseline - near)..=cell(g.baseline + near) {
+                if let Some([x, y]) = self.at.get(&key(x, y))
                     && (x - g.x0).abs() < near
                     && (y - g.baseline).abs() < near
                 {
@@ -188,7 +207,8 @@ impl Overprints {
                 }
             }
         }
-        self.at.insert(key(0, 0), [g.x0, g.baseline]);
+        self.at
+            .insert(key(cell(g.x0), cell(g.baseline)), [g.x0, g.baseline]);
         false
     }
 }

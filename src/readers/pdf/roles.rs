@@ -16,10 +16,28 @@ static NUMBERING: LazyLock<Regex> = LazyLock::new(|| {
 });
 static CAPTION: LazyLock<Regex> = LazyLock::new(|| {
     pattern(
-        r"(?i)^(?:supplementa(?:ry|l)\s+|extended\s+data\s+|online\s+)?(figure|fig\.|fig|table|tab\.|abbildung|abb\.|tabelle|tableau|tabla|figura|tabela|scheme|box)\s*(?:[A-Z]{0,2}[.-]?\d{1,3}[a-z]?|[IVX]{1,5})\b",
+        r"(?i)^(?:supplementa(?:ry|l)\s+|extended\s+data\s+|online\s+|web\s+|appendix\s+)?(figure|fig\.|fig|e?table|tab\.|abbildung|abb\.|tabelle|tableau|tabla|figura|tabela|scheme|box)\s*(?:[A-Z]{0,2}[.-]?\d{1,3}(?:[.-]\d{1,2})?[a-z]?|[IVX]{1,5})\b",
     )
 });
 static NOTE: LazyLock<Regex> = LazyLock::new(|| pattern(r"^(?:Notes?\s*[.:]|NOTES?\s*[.:]|Anmerkung)"));
+
+/// The label of a caption.
+pub struct Label {
+    /// Bytes of the text that it takes, from its beginning.
+    pub range: std::ops::Range<usize>,
+    /// Of a table rather than of a figure.
+    pub table: bool,
+}
+
+/// The label that a text begins with: `Table 2`, `Fig. 3`.
+pub fn label(text: &str) -> Option<Label> {
+    let found = CAPTION.captures(text)?;
+    let word = found.get(1)?.as_str().to_lowercase();
+    Some(Label {
+        range: 0..found.get(0)?.end(),
+        table: word.trim_start_matches('e').starts_with("tab"),
+    })
+}
 
 /// Begins like the caption of a figure or table.
 pub fn is_caption(block: &Block, body: Body) -> bool {
@@ -62,6 +80,10 @@ pub fn kind(block: &Block, body: Body, page_height: f32) -> BlockKind {
     let text = block.text();
     if NOTE.is_match(&text) {
         return BlockKind::TableNote;
+    }
+    // Browsers print notes as a list at the end, each with an arrow that leads back to its mark.
+    if text.trim_end().ends_with('↩') {
+        return BlockKind::Footnote;
     }
     let first = block.first();
     let raised = begins_raised(block);
@@ -144,5 +166,12 @@ mod tests {
         assert!(CAPTION.is_match("Fig. 3. Water") && NOTE.is_match("Note. SD in brackets"));
         assert!(!CAPTION.is_match("Figures show") && !NOTE.is_match("Noted above"));
         assert!(NUMBERING.is_match("2.1 Participants"));
+        let found = |text: &str| label(text).map(|l| (text[l.range].to_string(), l.table));
+        assert_eq!(found("Table 2. Litres"), Some(("Table 2".into(), true)));
+        assert_eq!(found("TABLE IV"), Some(("TABLE IV".into(), true)));
+        assert_eq!(found("Tabelle A.1: Liter"), Some(("Tabelle A.1".into(), true)));
+        assert_eq!(found("Table 4.2 Cans"), Some(("Table 4.2".into(), true)));
+        assert_eq!(found("Fig. 3. Water"), Some(("Fig. 3".into(), false)));
+        assert_eq!(found("Tables show"), None);
     }
 }

@@ -3,6 +3,15 @@
 use super::sample::{At, at, bold, content, pdf, sized};
 use super::*;
 use crate::manuscript::Part;
+use std::time::Duration;
+
+/// Both ways, one after the other.
+fn read(bytes: &[u8]) -> Result<Manuscript, Unreadable> {
+    super::read(bytes).or_else(|failure| match failure {
+        Failure::TryRescue => rescue(bytes),
+        Failure::Unreadable(reason) => Err(reason),
+    })
+}
 
 fn read_pages(pages: &[Vec<At>]) -> Manuscript {
     let contents: Vec<String> = pages.iter().map(|p| content(p)).collect();
@@ -182,6 +191,13 @@ fn sections_captions_and_references_are_told_apart() {
 }
 
 #[test]
+fn pages_with_nothing_but_the_same_line_keep_it() {
+    let page = vec![at(50.0, 720.0, "Watered more often, p = .023.")];
+    let m = read_pages(&[page.clone(), page.clone(), page]);
+    assert_eq!(m.text.matches("p = .023").count(), 3, "{}", m.text);
+}
+
+#[test]
 fn line_numbers_of_manuscripts_are_set_aside() {
     let mut page = Vec::new();
     let numbers = ["21", "22", "23", "24", "25"];
@@ -236,7 +252,7 @@ fn pages_without_text_are_named() {
     let error = read(&pdf(std::slice::from_ref(&image), "")).expect_err("nothing to read");
     assert_eq!(
         error.0,
-        "has no text layer (page images only): run text recognition on it first"
+        "has no text layer on page 1 (page images only): run text recognition on it first"
     );
     let m = read(&pdf(&[content(&[at(50.0, 700.0, "Seen.")]), image], "")).expect("the sample is a PDF");
     assert_eq!(

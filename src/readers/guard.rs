@@ -1,7 +1,7 @@
 //! The guard catches a panic in the work on one input, so that a mistake in this program, or in a
 //! library that it uses, costs one line of output and not the run.
 
-use crate::readers::Unreadable;
+use super::Unreadable;
 use std::cell::{Cell, RefCell};
 use std::panic::{self, AssertUnwindSafe};
 use std::sync::Once;
