@@ -160,7 +160,7 @@ impl State {
         let raised = roles::begins_raised(block);
         let entries_raised = *self.entries_raised.get_or_insert(raised);
         // Not numbered like the entries: a footnote to the text above the references on this page.
-        let leads_back = block.last().text().trim_end().ends_with('↩');
+        let leads_back = roles::leads_back(&block.last().text());
         let note = kind == BlockKind::Footnote && (raised && !entries_raised || leads_back);
         if note || self.float_page.is_some() {
             Part::Body

@@ -11,6 +11,7 @@ pub fn replace(glyphs: &mut Vec<Glyph>, from: usize, text: &str) {
     let drawn: Vec<usize> = (from..glyphs.len())
         .filter(|i| !glyphs[*i].meaning.is_space())
         .collect();
+    let text: String = text.chars().filter(|c| !is_unseen(*c)).collect();
     let text = text.trim();
     if drawn.is_empty() || !believable(span, drawn.len(), text) {
         return;
@@ -48,6 +49,11 @@ pub fn replace(glyphs: &mut Vec<Glyph>, from: usize, text: &str) {
         shape: if drawn.len() == 1 { first.shape } else { None },
         ..whole
     });
+}
+
+/// Marks that only say how their neighbours are drawn: joiners, directions, variants.
+fn is_unseen(c: char) -> bool {
+    matches!(c, '\u{200b}'..='\u{200f}' | '\u{202a}'..='\u{202e}' | '\u{2060}'..='\u{2064}' | '\u{fe00}'..='\u{fe0f}' | '\u{feff}')
 }
 
 /// Whether the text can be what the glyphs show.
@@ -133,6 +139,7 @@ mod tests {
         // One for one, a ligature, and a formula drawn with glyphs that mean nothing.
         assert_eq!(replaced("a-", "\u{ad}").0, "a-");
         assert_eq!(replaced("n?", "ffi").0, "nffi");
+        assert_eq!(replaced("a↩", "↩\u{fe0e}").0, "a↩");
         assert_eq!(
             replaced("x????", "p = .03"),
             ("xp = .03".into(), [5.0, 93.0, 25.0, 100.0])

@@ -72,6 +72,12 @@ pub fn begins_raised(block: &Block) -> bool {
     first.is_some_and(|w| matches!(w.parts.first(), Some((super::lines::Shift::Raised, _))))
 }
 
+/// Browsers print notes as a list at the end, each with an arrow that leads back to its mark.
+pub fn leads_back(text: &str) -> bool {
+    text.trim_end_matches(|c: char| c.is_whitespace() || matches!(c, '\u{fe0e}' | '\u{fe0f}'))
+        .ends_with('↩')
+}
+
 /// The kind of a block that is no heading.
 pub fn kind(block: &Block, body: Body, page_height: f32) -> BlockKind {
     if is_caption(block, body) {
@@ -81,8 +87,7 @@ pub fn kind(block: &Block, body: Body, page_height: f32) -> BlockKind {
     if NOTE.is_match(&text) {
         return BlockKind::TableNote;
     }
-    // Browsers print notes as a list at the end, each with an arrow that leads back to its mark.
-    if text.trim_end().ends_with('↩') {
+    if leads_back(&text) {
         return BlockKind::Footnote;
     }
     let first = block.first();

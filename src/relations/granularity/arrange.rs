@@ -78,7 +78,7 @@ fn with_known(
     let choices = |window: Option<Window>| -> Vec<Option<Int>> {
         match window {
             None => vec![None],
-            Some(window) => window.meet(range).from_the_middle().map(Some).collect(),
+            Some(window) => window.meet(range).outwards().map(Some).collect(),
         }
     };
     for least in choices(known.minimum) {
@@ -193,7 +193,7 @@ fn share_out(
     let holding: Vec<usize> = (0..groups.len())
         .filter(|i| groups[*i].low <= value && value <= groups[*i].high)
         .collect();
-    for count in counts.from_the_middle() {
+    for count in counts.outwards() {
         let missing = count - already;
         let room: Int = holding.iter().map(|i| groups[*i].n).sum();
         if missing < 0 || missing > room {
@@ -243,7 +243,7 @@ fn portions(amount: Int, sizes: &[Int]) -> Vec<Vec<Int>> {
             more
         })
     };
-    first.from_the_middle().flat_map(with).collect()
+    first.outwards().flat_map(with).collect()
 }
 
 /// No total of `n` with this sum and spread lies outside: (n·x − sum)² is at most the spread times n − 1.

@@ -190,7 +190,7 @@ impl View {
         }
     }
 
-    fn from_the_other_end(self, most: Int) -> View {
+    fn seen_from_the_other_end(self, most: Int) -> View {
         View {
             origin: self.original(most),
             mirrored: !self.mirrored,
@@ -256,7 +256,7 @@ impl Search {
         }
         let other = wanted.mirrored();
         if other.sum < wanted.sum {
-            (wanted, view) = (other, view.from_the_other_end(wanted.most));
+            (wanted, view) = (other, view.seen_from_the_other_end(wanted.most));
         }
         if wanted.n == 2 {
             return Ok(pair(&wanted, view, found));

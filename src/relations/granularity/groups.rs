@@ -71,7 +71,7 @@ fn of_parity(window: Window, like: Int) -> impl Iterator<Item = Int> {
         low: 0,
         high: (window.high - low).div_euclid(2),
     };
-    steps.from_the_middle().map(move |i| low + 2 * i)
+    steps.outwards().map(move |i| low + 2 * i)
 }
 
 /// Whether the bounds on the sum and the squares of all groups leave room, gaps left aside.
@@ -209,7 +209,7 @@ pub(super) fn place(
     }
     search.steps(BOUNDING)?;
     let kept = found.len();
-    for own in own_sums(&first, &rest, sum, squares).from_the_middle() {
+    for own in own_sums(&first, &rest, sum, squares).outwards() {
         search.step()?;
         let left = sum - own;
         let window = first.squares(own).meet(Window {
@@ -286,7 +286,7 @@ fn place_around(
         return Ok(false);
     }
     let counts = where_at_most(counts, -squares.low, |below| -most_together(&all(below), sum));
-    for below in counts.from_the_middle() {
+    for below in counts.outwards() {
         search.step()?;
         if place(search, &all(below), sum, squares, found)? {
             return Ok(true);

@@ -250,7 +250,7 @@ impl<'a> Frame<'a> {
         {
             return Ok(None);
         }
-        for sum in sums.from_the_middle() {
+        for sum in sums.outwards() {
             search.step()?;
             // Σ(x − low)(high − x) is never negative, which limits the spread; less and less from the middle on.
             if let (Some(low), Some(high), Some(spread)) = (self.low, self.high, self.spread)

@@ -41,7 +41,7 @@ impl Window {
     }
 
     /// Every number, those in the middle first.
-    pub fn from_the_middle(self) -> impl Iterator<Item = Int> {
+    pub fn outwards(self) -> impl Iterator<Item = Int> {
         let middle = self.low + (self.high - self.low).max(0) / 2;
         let length = (self.high - self.low + 1).max(0);
         (0..length).map(move |i| {
@@ -180,8 +180,8 @@ mod tests {
         assert_eq!(totals("-0.13", 1000, Printing::CutOff), (-139, -130));
         assert_eq!(totals("0.00", 1000, Printing::CutOff), (-9, 9));
         assert_eq!(totals("12", 4, Printing::Rounded), (46, 50));
-        assert_eq!(Window::point(3).from_the_middle().collect::<Vec<_>>(), [3]);
-        let mut all: Vec<Int> = Window { low: -2, high: 3 }.from_the_middle().collect();
+        assert_eq!(Window::point(3).outwards().collect::<Vec<_>>(), [3]);
+        let mut all: Vec<Int> = Window { low: -2, high: 3 }.outwards().collect();
         assert_eq!(all.first(), Some(&0));
         all.sort_unstable();
         assert_eq!(all, [-2, -1, 0, 1, 2, 3]);

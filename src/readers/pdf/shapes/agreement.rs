@@ -138,7 +138,7 @@ pub fn contradicts(mark: Mark, said: Option<char>) -> bool {
 fn names(mark: Mark) -> &'static str {
     match mark {
         Mark::Hyphen | Mark::Minus | Mark::EnDash | Mark::EmDash => {
-            "-‐‑‒–—―−_¯ˉˍ‾⁃⁻₋﹘﹣－─━╌╴╶ㅡー一¬~ \u{304}\u{305}\u{331}\u{332}⎯⏤'|·⋅"
+            "-‐‑‒–—―−_¯ˉˍ‾⁃⁻₋﹘﹣－─━╌╴╶ㅡー一¬~\u{304}\u{305}\u{331}\u{332}⎯⏤'|·⋅"
         }
         Mark::Equal => "=═゠＝⹀˭꞊≡≑≐≒≓≔≕≖≗≘≙≚≛≜≝≞≟‗〓二ニ∥\u{333}\"",
         Mark::Less => "<‹〈⟨〈＜﹤⪡≺≪⋖⊰∠ᐸくㄑ˂⁌≮",

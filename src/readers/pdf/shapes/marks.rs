@@ -283,18 +283,16 @@ fn dagger(part: &Component) -> Option<Mark> {
         return (symmetric && share(first) < 0.42 && share(last) > 0.58).then_some(Mark::DoubleDagger);
     }
     let bar = (0.57..0.86).contains(&share((first + last) / 2)) && share(last - first) < 0.22;
-    bar.then_some(Mark::Dagger)
+    // The bar begins and ends at once, where the head of an arrow tapers.
+    let beyond = |i: usize| spans.get(i).is_none_or(|s| s.width() < 0.5 * widest);
+    (bar && beyond(last + 2) && beyond(first.saturating_sub(2))).then_some(Mark::Dagger)
 }
 
-/// `*`: five, six or eight even arms around the middle.
+/// `*`: five, six or eight even arms around the middle, smaller than a letter and above the line.
 fn star(part: &Component, edges: &Edges) -> Option<Mark> {
     const RAYS: usize = 60;
     let shape = part.width() / part.height();
-    if !(0.75..1.35).contains(&shape) || !(100.0..900.0).contains(&part.width()) {
-        return None;
-    }
-    // Higher than the letters' middle, or about the axis.
-    if part.bounds[1] < -80.0 {
+    if !(0.75..1.35).contains(&shape) || !(100.0..620.0).contains(&part.width()) || part.bounds[1] < 15.0 {
         return None;
     }
     let (mut x, mut y, mut ink) = (0.0, 0.0, 0.0);
@@ -316,18 +314,27 @@ fn star(part: &Component, edges: &Edges) -> Option<Mark> {
     });
     let longest = reach.iter().copied().fold(0.0, f32::max);
     // Where arms begin and end, going around.
-    let mut arms = 0;
+    let mut arms: Vec<(usize, usize)> = Vec::new();
     let mut inside = false;
     let start = (0..RAYS).find(|i| reach[*i] > 0.0 && reach[*i] < 0.55 * longest)?;
-    for i in (0..=RAYS).map(|i| (start + i) % RAYS) {
-        if reach[i] > 0.72 * longest && !inside {
+    for step in 0..RAYS {
+        let reach = reach[(start + step) % RAYS];
+        if reach > 0.72 * longest {
+            match arms.last_mut() {
+                Some(arm) if inside => arm.1 = step,
+                _ => arms.push((step, step)),
+            }
             inside = true;
-            arms += 1;
-        } else if reach[i] > 0.0 && reach[i] < 0.62 * longest {
+        } else if reach > 0.0 && reach < 0.62 * longest {
             inside = false;
         }
     }
-    matches!(arms, 5 | 6 | 8).then_some(Mark::Star)
+    let middles: Vec<f32> = arms.iter().map(|(from, to)| (from + to) as f32 / 2.0).collect();
+    let even = RAYS as f32 / arms.len() as f32;
+    let spaced = middles
+        .windows(2)
+        .all(|m| (m[1] - m[0] - even).abs() < 0.3 * even);
+    (matches!(arms.len(), 5 | 6 | 8) && spaced).then_some(Mark::Star)
 }
 
 /// `%`: two small holes, one up on the left, one down on the right.

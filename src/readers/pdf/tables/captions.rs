@@ -45,7 +45,7 @@ pub fn find(sheet: &Sheet, area: &Area, bottom: f32, used: &[usize], others: &[A
     let gap = sheet.captions[below].area[1] - bottom;
     let nearer = others
         .iter()
-        .any(|o| o[0] < area[2] && o[2] > area[0] && o[1] >= end - 2.0 && o[1] - end < gap.max(1.0) * 1.2);
+        .any(|o| o[0] < area[2] && o[2] > area[0] && o[1] >= end - 2.0 && o[1] - end < gap.max(1.0) * 0.8);
     (!nearer).then_some(found)
 }
 

@@ -96,7 +96,7 @@ fn write(b: &mut Builder, parts: &[(&Table, u32)]) {
         } else {
             *number
         };
-        text(b, BlockKind::Caption, &table.caption, from, table.page, about);
+        text(b, BlockKind::Caption, &table.caption, from, table, about);
     };
     if !first.below {
         captions(b, &parts[0], &mut about);
@@ -133,7 +133,7 @@ fn write(b: &mut Builder, parts: &[(&Table, u32)]) {
                 BlockKind::TableNote,
                 lines,
                 from + at as u32,
-                table.page,
+                table,
                 &mut about,
             );
             at += n;
@@ -142,7 +142,7 @@ fn write(b: &mut Builder, parts: &[(&Table, u32)]) {
     b.describe(index, &about);
 }
 
-fn text(b: &mut Builder, kind: BlockKind, lines: &[Line], from: u32, page: u32, about: &mut Description) {
+fn text(b: &mut Builder, kind: BlockKind, lines: &[Line], from: u32, table: &Table, about: &mut Description) {
     if lines.is_empty() {
         return;
     }
@@ -152,7 +152,7 @@ fn text(b: &mut Builder, kind: BlockKind, lines: &[Line], from: u32, page: u32, 
         if i > 0 {
             b.line_break();
         }
-        b.page(page);
+        b.page(table.page);
         b.line(from + i as u32);
         write_words(b, &line.words);
     }

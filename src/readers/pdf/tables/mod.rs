@@ -35,7 +35,6 @@ use sheet::Sheet;
 #[derive(Clone, Debug)]
 pub struct Table {
     pub page: u32,
-    /// The page is read turned; in the frame of this turn everything is measured.
     pub label: Option<String>,
     pub caption: Vec<Line>,
     /// The caption stands below the cells.
