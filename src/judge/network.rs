@@ -119,7 +119,7 @@ impl<'a> Network<'a> {
             let mut indexes = Vec::with_capacity(t.parts.len());
             for q in &t.parts {
                 let same = |k: &&Quantity| k.span == q.span && k.symbol == q.symbol;
-                let at = quantities.iter().position(|k| same(&k)).unwrap_or_else(|| {
+                let at = quantities.iter().position(same).unwrap_or_else(|| {
                     quantities.push(q);
                     uses.push(0);
                     quantities.len() - 1

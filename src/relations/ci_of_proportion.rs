@@ -56,7 +56,8 @@ pub fn ties(case: &Case) -> Vec<Tie> {
     };
     let mut ties = Vec::new();
     for (end, sign) in [(*low, -1.0), (*high, 1.0)] {
-        let methods: [(&str, fn(f64, f64, f64, f64) -> f64); 3] = [
+        type End = fn(f64, f64, f64, f64) -> f64;
+        let methods: [(&str, End); 3] = [
             ("Wilson's interval", wilson),
             ("Wald's interval", wald),
             ("Agresti and Coull's interval", agresti_coull),
