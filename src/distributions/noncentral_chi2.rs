@@ -31,7 +31,7 @@ pub fn chi2_noncentrality_lower(p: f64, x: f64, df: f64) -> Option<f64> {
 
 fn noncentrality(p: f64, x: f64, df: f64, by_upper: bool, ln_upper: f64, ln_lower: f64) -> Option<f64> {
     let df = legal_df(df)?;
-    if !(p > 0.0 && p < 1.0) || !(x >= 0.0 && x < f64::INFINITY) {
+    if !(p > 0.0 && p < 1.0 && (0.0..f64::INFINITY).contains(&x)) {
         return None;
     }
     if x == 0.0 {

@@ -32,7 +32,7 @@ pub fn f_noncentrality_lower(p: f64, f: f64, df1: f64, df2: f64) -> Option<f64> 
 fn noncentrality(p: f64, at: [f64; 3], by_upper: bool, ln_upper: f64, ln_lower: f64) -> Option<f64> {
     let [f, df1, df2] = at;
     let (df1, df2) = (legal_df(df1)?, legal_df(df2)?);
-    if !(p > 0.0 && p < 1.0) || !(f >= 0.0 && f < f64::INFINITY) {
+    if !(p > 0.0 && p < 1.0 && (0.0..f64::INFINITY).contains(&f)) {
         return None;
     }
     if f == 0.0 {

@@ -124,7 +124,8 @@ pub(super) fn fading_integral(slope: f64, curvature: f64, h: impl Fn(f64) -> f64
     let slope = slope.max(0.0);
     let mut end = 80.0 / (slope + (slope * slope + 80.0 * curvature).sqrt());
     // Where h is 41, between an end that is too near and one that is too far; each with ln h there.
-    let (mut near, mut far): (Option<(f64, f64)>, Option<(f64, f64)>) = (None, None);
+    type Point = Option<(f64, f64)>;
+    let (mut near, mut far): (Point, Point) = (None, None);
     for _ in 0..60 {
         let depth = h(end);
         if (38.0..=46.0).contains(&depth) {
@@ -142,7 +143,7 @@ pub(super) fn fading_integral(slope: f64, curvature: f64, h: impl Fn(f64) -> f64
                 let share = (LN_41 - at_near) / (at_far - at_near);
                 near + (far - near) * share.clamp(0.1, 0.9)
             }
-            _ => end * (41.0 / depth).sqrt().max(0.3).min(3.0),
+            _ => end * (41.0 / depth).sqrt().clamp(0.3, 3.0),
         };
     }
     let half = 0.5 * end;

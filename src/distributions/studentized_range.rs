@@ -113,9 +113,9 @@ fn range_tail(w: f64, k: f64, upper: bool) -> f64 {
         (-0.5 * z * z - HALF_LN_2PI).exp() * share
     };
     let mut step = 0.5;
-    let mut sum = at(middle) + outward(middle, step, &at) + outward(middle, -step, &at);
+    let mut sum = at(middle) + outward(middle, step, at) + outward(middle, -step, at);
     for _ in 0..12 {
-        let between = outward(middle - 0.5 * step, step, &at) + outward(middle + 0.5 * step, -step, &at);
+        let between = outward(middle - 0.5 * step, step, at) + outward(middle + 0.5 * step, -step, at);
         let settled = (between - sum).abs() <= SETTLED * sum;
         sum += between;
         step *= 0.5;

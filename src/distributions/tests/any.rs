@@ -39,7 +39,7 @@ impl Random {
     }
 
     fn df(&mut self) -> f64 {
-        if self.bits() % 50 == 0 {
+        if self.bits().is_multiple_of(50) {
             f64::INFINITY
         } else {
             self.positive()
@@ -207,7 +207,7 @@ fn counts(random: &mut Random) {
 fn noncentral(random: &mut Random) {
     let (x, df, df2) = (random.statistic(), random.df(), random.df());
     let lambda = random.positive().min(1e100);
-    let delta = if random.bits() % 2 == 0 {
+    let delta = if random.bits().is_multiple_of(2) {
         lambda.min(1e10)
     } else {
         -random.between(1e-3, 300.0)
@@ -278,7 +278,8 @@ fn ranges(random: &mut Random) {
 #[test]
 fn a_hundred_thousand_points() {
     // Points per call of each, and how often; together 100,000.
-    let parts: [(fn(&mut Random), usize, usize); 6] = [
+    type Part = (fn(&mut Random), usize, usize);
+    let parts: [Part; 6] = [
         (cheap, 14, 5_600),
         (quantiles, 7, 1_500),
         (counts, 6, 1_200),

@@ -77,6 +77,51 @@ fn two_columns_under_a_title_are_read_one_after_the_other() {
 }
 
 #[test]
+fn short_lines_beside_text_are_a_column_when_their_heights_do_not_go_with_it() {
+    let beside = [
+        "Cans of water",
+        "First plot 31",
+        "Second plot 27",
+        "Third plot 40",
+        "In all 98",
+        "Spades: 12",
+    ];
+    let mut page = column(50.0, 700.0, LEFT);
+    let right = beside
+        .iter()
+        .enumerate()
+        .map(|(i, text)| at(320.0, 695.0 - 17.0 * i as f32, text));
+    page.extend(right);
+    let m = read_pages(&[page]);
+    let left = m
+        .text
+        .find("they carried to their beds")
+        .expect("lines of one column are joined");
+    let first = m.text.find("Cans of water").expect("the other column is read");
+    assert!(
+        left < first && m.text.find("First plot 31").is_some_and(|p| p > first),
+        "{}",
+        m.text
+    );
+}
+
+#[test]
+fn no_line_begins_anew_behind_a_comma() {
+    // `52)` looks like the number of a list entry.
+    let m = read_pages(&[column(
+        50.0,
+        700.0,
+        &[
+            "The age of the gardener made no difference to them, F(1,",
+            "52) = 0.31, p = .580, and neither did the distance to tap",
+            "and butt, nor the size of the plot that was watered.",
+        ],
+    )]);
+    assert!(m.text.contains("F(1, 52) = 0.31, p = .580"), "{}", m.text);
+    assert_eq!(m.blocks.len(), 1);
+}
+
+#[test]
 fn raised_and_lowered_characters_keep_their_level() {
     let m = read_pages(&[vec![
         at(50.0, 700.0, "The groups differed, F"),
