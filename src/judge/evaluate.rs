@@ -1,7 +1,8 @@
-//! From a tie to a finding: which variant fits, and what it means if none does.
+//! From a tie to a finding: which variant fits, and what it means if none does. Repairs are the
+//! business of the [`network`](super::network).
 
 use super::finding::{Finding, Verdict};
-use super::{repairs, wording};
+use super::wording;
 use crate::manuscript::Manuscript;
 use crate::numbers::{Interval, Set};
 use crate::relations::{Case, Relation, Tie, Variant};
@@ -16,7 +17,7 @@ pub fn finding(
     statement: &Statement,
     manuscript: &Manuscript,
 ) -> Finding {
-    let parts: Vec<&Quantity> = tie.parts.iter().map(|i| &case.quantities[*i]).collect();
+    let parts: Vec<&Quantity> = tie.parts.iter().map(|i| case.quantity(*i)).collect();
     let readings = readings(&parts);
     // Where signs are uncertain, what is not about them is shown by the numbers as printed.
     let values = &readings[0];
@@ -45,10 +46,6 @@ pub fn finding(
             tie.variants.first(),
         )
     };
-    let found_repairs = match verdict {
-        Verdict::Conflicts | Verdict::Reverses => repairs::repairs(tie, &parts, values),
-        _ => Vec::new(),
-    };
     let reason = tie.open.as_ref().or(match verdict {
         Verdict::Open => variant.and_then(|v| v.only_open.as_ref()),
         _ => None,
@@ -72,10 +69,17 @@ pub fn finding(
     assumes.retain(|a| seen.insert(a.clone()));
     let target = parts.first();
     let shown = shown_range(&expected, values.first().copied());
+    let mut statements = vec![statement.id];
+    for id in tie.parts.iter().map(|i| case.statement_of(*i)) {
+        if !statements.contains(&id) {
+            statements.push(id);
+        }
+    }
     Finding {
         relation: relation.name,
+        with: Vec::new(),
         verdict,
-        statements: vec![statement.id],
+        statements,
         place: manuscript.place(&manuscript.blocks[statement.block], statement.range.clone()),
         quote: manuscript.text[statement.range.clone()].to_string(),
         marks: parts
@@ -103,7 +107,8 @@ pub fn finding(
             case.alpha,
         ) + &wording::on_the_page(manuscript, statement, &parts),
         assumes,
-        repairs: found_repairs,
+        // What would mend it is known when all ties of the sentence have been tried.
+        repairs: Vec::new(),
     }
 }
 

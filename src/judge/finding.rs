@@ -44,6 +44,8 @@ pub struct Repair {
 #[derive(Clone, Debug)]
 pub struct Finding {
     pub relation: &'static str,
+    /// Further relations that the same numbers fail, where one slip would explain all of it.
+    pub with: Vec<&'static str>,
     pub verdict: Verdict,
     /// Ids of the statements concerned.
     pub statements: Vec<usize>,

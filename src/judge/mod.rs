@@ -4,7 +4,9 @@
 mod borrowing;
 mod evaluate;
 mod finding;
+mod linking;
 mod mentions;
+mod network;
 mod repairs;
 mod wording;
 
@@ -12,9 +14,10 @@ pub use finding::{Counts, Document, Finding, Repair, Verdict};
 pub use mentions::stated_alpha;
 
 use crate::manuscript::Manuscript;
-use crate::relations::{Case, REGISTRY, Relation};
-use crate::statements::{Grammar, Statement};
+use crate::relations::{Case, Linked, Mention, REGISTRY, Relation};
+use crate::statements::{Grammar, Quantity, Statement};
 use mentions::Mentions;
+use network::Tried;
 
 /// The level of significance when neither the person nor the manuscript names one.
 pub const USUAL_ALPHA: f64 = 0.05;
@@ -58,23 +61,63 @@ pub fn judge(
     }
     let mentions = Mentions::collect(manuscript, grammar, statements);
     let mut findings = Vec::new();
-    for (index, statement) in statements.iter().enumerate() {
-        let quantities = borrowing::with_borrowed(statements, index, manuscript);
-        let near = mentions.around(statement, &quantities);
-        let case = Case {
-            quantities: &quantities,
-            mentions: &near,
-            alpha,
-            one_sided: options.one_sided,
-            among_results: among_results(statements, index, manuscript),
-        };
-        for relation in &relations {
-            for tie in (relation.ties)(&case) {
-                findings.push(evaluate::finding(relation, &tie, &case, statement, manuscript));
+    let mut first = 0;
+    while first < statements.len() {
+        let sentence = linking::sentence(statements, first);
+        first = sentence.end;
+        let seen: Vec<Seen> = sentence
+            .clone()
+            .map(|index| {
+                let quantities = borrowing::with_borrowed(statements, index, manuscript);
+                let mentions = mentions.around(&statements[index], &quantities);
+                Seen {
+                    linked: linking::linked(statements, &sentence, index),
+                    quantities,
+                    mentions,
+                }
+            })
+            .collect();
+        let mut tried = Vec::new();
+        for (index, seen) in sentence.clone().zip(&seen) {
+            let case = Case {
+                statement: statements[index].id,
+                quantities: &seen.quantities,
+                linked: &seen.linked,
+                mentions: &seen.mentions,
+                alpha,
+                one_sided: options.one_sided,
+                among_results: among_results(statements, index, manuscript),
+            };
+            for relation in &relations {
+                for tie in (relation.ties)(&case) {
+                    tried.push(Tried {
+                        finding: evaluate::finding(relation, &tie, &case, &statements[index], manuscript),
+                        parts: tie.parts.iter().map(|i| seen.quantity(*i)).collect(),
+                        tie,
+                    });
+                }
             }
         }
+        findings.extend(network::settle(tried));
     }
     findings
+}
+
+/// What a statement's case is made of.
+struct Seen {
+    quantities: Vec<Quantity>,
+    linked: Vec<Linked>,
+    mentions: Vec<Mention>,
+}
+
+impl Seen {
+    /// The quantity with this index, as in [`Case::quantity`], for as long as this lives.
+    fn quantity(&self, at: usize) -> &Quantity {
+        match at.checked_sub(self.quantities.len()) {
+            None => &self.quantities[at],
+            Some(behind) => &self.linked[behind].quantity,
+        }
+    }
 }
 
 /// Whether other results with a p stand in the same block, or the text is little else than this one.

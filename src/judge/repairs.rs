@@ -3,7 +3,6 @@
 
 use super::finding::Repair;
 use crate::numbers::{Comparator, Decimal, Interval, Set};
-use crate::relations::Tie;
 use crate::statements::Quantity;
 
 /// Levels that a small p is commonly said to lie below.
@@ -12,29 +11,35 @@ const BOUNDS: [f64; 5] = [0.05, 0.01, 0.001, 0.0001, 0.00001];
 /// More candidates than this are shown as a range.
 const MOST_SINGLE: i64 = 3;
 
-/// What would make the tie agree, the likeliest first.
-pub fn repairs(tie: &Tie, parts: &[&Quantity], values: &[Interval]) -> Vec<Repair> {
+/// Slips that are shown for one number.
+const MOST_SLIPS: usize = 2;
+
+/// What would make everything agree, the likeliest first: for each number that could be at fault,
+/// the values that it could have.
+pub fn of_culprits<'a>(culprits: impl Iterator<Item = (&'a Quantity, &'a Set)>) -> Vec<Repair> {
     let mut named = Vec::new();
+    let mut second = Vec::new();
     let mut plain = Vec::new();
-    let Some(variant) = tie.variants.first() else {
-        return Vec::new();
-    };
-    for (index, part) in parts.iter().enumerate() {
-        if part.borrowed.is_some() {
-            continue;
-        }
-        let possible = variant.law.solve(index, values);
-        if let Some(repair) = turned(part, &possible).or_else(|| slip(part, &possible)) {
-            named.push(repair);
-        } else if let Some(to) = printed(part, &possible) {
+    for (part, possible) in culprits {
+        let mut slips: Vec<Repair> = match turned(part, possible) {
+            Some(repair) => vec![repair],
+            None => slips(part, possible),
+        };
+        if slips.is_empty()
+            && let Some(to) = printed(part, possible)
+        {
             plain.push(Repair {
                 symbol: part.symbol,
                 to,
                 slip: None,
             });
+        } else if !slips.is_empty() {
+            named.push(slips.remove(0));
+            second.extend(slips);
         }
     }
     named.extend(plain);
+    named.extend(second);
     named
 }
 
@@ -69,8 +74,8 @@ fn turned(part: &Quantity, possible: &Set) -> Option<Repair> {
     })
 }
 
-/// A value that one named slip turns into what is printed.
-fn slip(part: &Quantity, possible: &Set) -> Option<Repair> {
+/// Values that one named slip turns into what is printed, each slip once.
+fn slips(part: &Quantity, possible: &Set) -> Vec<Repair> {
     let exact = part.interval.low == part.interval.high;
     let fits = |d: &Decimal| {
         let range = if exact {
@@ -87,8 +92,9 @@ fn slip(part: &Quantity, possible: &Set) -> Option<Repair> {
         to: d.print_like(&part.printed),
         slip: Some(slip),
     };
+    let mut found = Vec::new();
     if part.comparator != Comparator::Equal || possible.is_empty() {
-        return None;
+        return found;
     }
     // Cut off: some possible value begins with the printed digits.
     let unit = 10f64.powi(part.number.place);
@@ -102,7 +108,7 @@ fn slip(part: &Quantity, possible: &Set) -> Option<Repair> {
             part.number.place,
         );
         if fits(&up) {
-            return Some(repair(up, "cut off instead of rounded"));
+            found.push(repair(up, "cut off instead of rounded"));
         }
     }
     // `p = .001` for `p < .001`: all that is possible lies below a level that bounds are printed with.
@@ -110,11 +116,11 @@ fn slip(part: &Quantity, possible: &Set) -> Option<Repair> {
     let bound = BOUNDS.contains(&printed) && part.number.digits % 10 != 0;
     if part.symbol == "p" && bound && possible.iter().all(|i| i.high < printed) {
         let to = format!("< {}", part.printed);
-        return Some(Repair {
+        return vec![Repair {
             symbol: part.symbol,
             to,
             slip: Some("= printed for <"),
-        });
+        }];
     }
     if part.symbol == "p" {
         let doubled = Interval::new(part.interval.low * 2.0, part.interval.high * 2.0);
@@ -122,7 +128,7 @@ fn slip(part: &Quantity, possible: &Set) -> Option<Repair> {
             && let Some((low, _)) = Decimal::printings(both, part.number.place)
             && fits(&low)
         {
-            return Some(repair(low, "one-sided p printed as two-sided"));
+            found.push(repair(low, "one-sided p printed as two-sided"));
         }
     }
     if part.number.digits != 0 {
@@ -132,24 +138,40 @@ fn slip(part: &Quantity, possible: &Set) -> Option<Repair> {
             ..part.number
         };
         if fits(&turned) && !possible.iter().any(|i| i.low < 0.0 && i.high > 0.0) {
-            return Some(repair(turned, "sign lost or added"));
+            found.push(repair(turned, "sign lost or added"));
         }
     }
-    let mut fitting = candidates(&part.number).into_iter().filter(|(d, _)| fits(d));
-    let (first, slip) = fitting.next()?;
-    let mut same = vec![first];
-    // Points that are shifted by one place or two are not alike.
-    let alike = slip != "decimal point shifted";
-    for (d, _) in fitting.filter(|(_, s)| alike && *s == slip) {
-        if !same.contains(&d) {
-            same.push(d);
+    // Whole numbers stay whole, whatever happened to them.
+    let whole = is_count(part);
+    let fitting: Vec<(Decimal, &'static str)> = candidates(&part.number)
+        .into_iter()
+        .filter(|(d, _)| (!whole || d.is_whole()) && fits(d))
+        .collect();
+    for (first, slip) in &fitting {
+        if found.iter().any(|r| r.slip == Some(slip)) {
+            continue;
         }
+        // Points that are shifted by one place or two are not alike.
+        let alike = *slip != "decimal point shifted";
+        let mut same = vec![*first];
+        for (d, _) in fitting.iter().filter(|(_, s)| alike && s == slip) {
+            if !same.contains(d) {
+                same.push(*d);
+            }
+        }
+        found.push(Repair {
+            symbol: part.symbol,
+            to: listed(part, same),
+            slip: Some(slip),
+        });
     }
-    Some(Repair {
-        symbol: part.symbol,
-        to: listed(part, same),
-        slip: Some(slip),
-    })
+    found.truncate(MOST_SLIPS);
+    found
+}
+
+/// Whether the number counts something and is printed as a whole number.
+fn is_count(part: &Quantity) -> bool {
+    matches!(part.symbol, "df" | "df1" | "df2" | "n" | "N" | "count") && part.number.is_whole()
 }
 
 /// Several numbers that one slip could have been made from: all of a few, the ends of a run, or the first few.
@@ -231,10 +253,16 @@ fn candidates(printed: &Decimal) -> Vec<(Decimal, &'static str)> {
         shifted(&mut add);
         replaced(&mut add);
     }
+    // A digit too many or too few behind the point changes how many decimals there are; before it, or in a
+    // number of fixed decimals that the author cut to size, it does not.
+    let behind = printed.decimals() as usize;
     for i in 1..digits.len() {
         if digits[i] == digits[i - 1] {
             let mut d = digits.clone();
             d.remove(i);
+            if i + behind >= digits.len() && behind > 0 {
+                add(&d, printed.place + 1, "digit doubled");
+            }
             add(&d, printed.place.min(0), "digit doubled");
         }
     }
@@ -243,7 +271,11 @@ fn candidates(printed: &Decimal) -> Vec<(Decimal, &'static str)> {
             for digit in b'0'..=b'9' {
                 let mut d = digits.clone();
                 d.insert(i, digit);
-                add(&d, printed.place, "digit dropped");
+                if i + behind >= digits.len() && behind > 0 {
+                    add(&d, printed.place - 1, "digit dropped");
+                } else {
+                    add(&d, printed.place, "digit dropped");
+                }
             }
         }
     }
@@ -270,7 +302,7 @@ fn printed(part: &Quantity, possible: &Set) -> Option<String> {
             Decimal::round(near.high, part.number.place)?.print_like(&part.printed)
         ));
     }
-    let whole = matches!(part.symbol, "df" | "df1" | "df2" | "n" | "N" | "count") && part.number.is_whole();
+    let whole = is_count(part);
     let place = part.number.place;
     if whole && !near.has_whole() {
         return None;
@@ -313,7 +345,8 @@ mod tests {
     }
 
     fn named(symbol: &'static str, printed: &str, low: f64, high: f64) -> Option<(String, &'static str)> {
-        let repair = slip(&quantity(symbol, printed), &vec![Interval::new(low, high)])?;
+        let first = slips(&quantity(symbol, printed), &vec![Interval::new(low, high)]);
+        let repair = first.into_iter().next()?;
         Some((repair.to, repair.slip.unwrap_or_default()))
     }
 

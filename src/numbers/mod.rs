@@ -4,6 +4,7 @@
 mod comparator;
 mod decimal;
 mod interval;
+pub mod sets;
 
 pub use comparator::Comparator;
 pub use decimal::Decimal;

@@ -2,16 +2,25 @@
 //! stands in a file of its own, whose opening `//!` text is the documentation that
 //! `tieout explain` prints. This file holds what all of them share and the registry.
 
+mod adjusted_r2;
 mod ci_centre;
+mod ci_of_mean;
+mod ci_of_proportion;
 mod ci_order;
+mod d_from_groups;
 mod d_from_t;
+mod difference_of_means;
 mod eta2_from_f;
+mod exp_b;
 pub mod granularity;
+mod groups;
+mod i2_from_q;
 mod laws;
 mod mean_granularity;
 mod mean_range;
 mod p_from_chi2;
 mod p_from_ci;
+mod p_from_estimate;
 mod p_from_f;
 mod p_from_r;
 mod p_from_t;
@@ -22,8 +31,12 @@ mod percent_of_count;
 mod r_from_t;
 mod range;
 mod reading;
+mod rmsea;
+mod samples;
 mod scale;
+mod se_from_sd;
 mod search;
+mod t_from_groups;
 mod u_range;
 mod v_from_chi2;
 
@@ -61,6 +74,7 @@ pub const REGISTRY: &[Relation] = &[
     relation!("p-from-r", p_from_r),
     relation!("p-from-tau", p_from_tau),
     relation!("p-from-ci", p_from_ci),
+    relation!("p-from-estimate", p_from_estimate),
     relation!("u-range", u_range),
     relation!("range", range),
     relation!("ci-order", ci_order),
@@ -69,6 +83,16 @@ pub const REGISTRY: &[Relation] = &[
     relation!("d-from-t", d_from_t),
     relation!("r-from-t", r_from_t),
     relation!("v-from-chi2", v_from_chi2),
+    relation!("t-from-groups", t_from_groups),
+    relation!("d-from-groups", d_from_groups),
+    relation!("se-from-sd", se_from_sd),
+    relation!("ci-of-mean", ci_of_mean),
+    relation!("difference-of-means", difference_of_means),
+    relation!("ci-of-proportion", ci_of_proportion),
+    relation!("exp-b", exp_b),
+    relation!("adjusted-r2", adjusted_r2),
+    relation!("i2-from-q", i2_from_q),
+    relation!("rmsea", rmsea),
     relation!("mean-granularity", mean_granularity),
     relation!("mean-range", mean_range),
     relation!("percent-of-count", percent_of_count),
@@ -120,9 +144,24 @@ pub struct Mention {
     pub paragraph: u32,
 }
 
-/// What one relation gets to see: the quantities of one statement and the words around it.
+/// A quantity of another statement that is reported together with the one to be judged.
+#[derive(Clone, Debug)]
+pub struct Linked {
+    pub quantity: Quantity,
+    /// Id of the statement it stands in.
+    pub statement: usize,
+}
+
+/// What one relation gets to see: the quantities of one statement, those of the statements it is
+/// reported with, and the words around it.
 pub struct Case<'a> {
+    /// Id of the statement.
+    pub statement: usize,
+    /// Those of the statement itself, then what it borrows.
     pub quantities: &'a [Quantity],
+    /// Those of other statements in the same sentence, in the order of the text. Their indexes in
+    /// [`Tie::parts`] go on behind `quantities`.
+    pub linked: &'a [Linked],
     /// The nearest mention of each meaning.
     pub mentions: &'a [Mention],
     /// The level of significance.
@@ -135,6 +174,22 @@ pub struct Case<'a> {
 }
 
 impl Case<'_> {
+    /// The quantity with this index, here or in a linked statement.
+    pub fn quantity(&self, at: usize) -> &Quantity {
+        match at.checked_sub(self.quantities.len()) {
+            None => &self.quantities[at],
+            Some(behind) => &self.linked[behind].quantity,
+        }
+    }
+
+    /// Id of the statement that the quantity stands in.
+    pub fn statement_of(&self, at: usize) -> usize {
+        match at.checked_sub(self.quantities.len()) {
+            None => self.statement,
+            Some(behind) => self.linked[behind].statement,
+        }
+    }
+
     /// Indexes of all quantities with this symbol, in the order of the text.
     pub fn all(&self, symbol: &str) -> Vec<usize> {
         (0..self.quantities.len())
@@ -164,7 +219,7 @@ impl Case<'_> {
 /// One application of a relation: the quantities that it ties together and the legitimate forms
 /// of the law.
 pub struct Tie {
-    /// Indexes into [`Case::quantities`]; the first is the one whose expected range is shown.
+    /// Indexes as [`Case::quantity`] takes them; the first is the one whose expected range is shown.
     pub parts: Vec<usize>,
     /// Tried in order: the first that fits makes the tie agree; the first of all is the one whose
     /// range is shown when none fits.
@@ -248,6 +303,9 @@ where
 
 #[cfg(test)]
 mod tests;
+
+#[cfg(test)]
+mod group_tests;
 
 #[cfg(test)]
 mod more_tests;

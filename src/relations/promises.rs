@@ -250,7 +250,7 @@ proptest! {
         let u = (x * a * b).floor();
         let z = (u - a * b / 2.0) / (a * b * (a + b + 1.0) / 12.0).sqrt();
         let given = quantities(&format!("n {n1} n {n2} U {u} z {}", print(z, 2, way)));
-        let case = Case { quantities: &given, mentions: &[], alpha: 0.05, one_sided: false, among_results: true };
+        let case = Case { statement: 1, quantities: &given, linked: &[], mentions: &[], alpha: 0.05, one_sided: false, among_results: true };
         for tie in u_range::ties(&case) {
             let out = judge(&tie, &given);
             prop_assert!(matches!(out, Outcome::Agrees(_)), "{n1} {n2} {u} {z}: {out:?}");
@@ -271,7 +271,7 @@ proptest! {
         ];
         for (relation, text) in &texts {
             let given = quantities(text);
-            let case = Case { quantities: &given, mentions: &[], alpha: 0.05, one_sided: false, among_results: true };
+            let case = Case { statement: 1, quantities: &given, linked: &[], mentions: &[], alpha: 0.05, one_sided: false, among_results: true };
             let relation = REGISTRY.iter().find(|r| r.name == *relation).expect("it is in the registry");
             for tie in (relation.ties)(&case) {
                 let values: Vec<Interval> = tie.parts.iter().map(|i| given[*i].interval).collect();

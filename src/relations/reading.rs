@@ -59,7 +59,7 @@ impl Test {
 impl Case<'_> {
     /// Whether the quantity stands in the statement itself.
     pub(super) fn own(&self, at: usize) -> bool {
-        self.quantities[at].borrowed.is_none()
+        self.quantity(at).borrowed.is_none()
     }
 
     /// Whether the numbers of two quantities are printed alike.
@@ -260,7 +260,7 @@ impl Case<'_> {
     /// A tie whose variants say which of its numbers were taken from elsewhere.
     pub(super) fn tie(&self, parts: Vec<usize>, mut variants: Vec<Variant>) -> Tie {
         for part in &parts {
-            if let Some(source) = &self.quantities[*part].borrowed {
+            if let Some(source) = &self.quantity(*part).borrowed {
                 for variant in &mut variants {
                     variant.assumes.push(source.clone());
                 }

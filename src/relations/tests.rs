@@ -54,7 +54,9 @@ pub(super) fn mention(meaning: &'static str, words: &str, reach: Reach, numbers:
 /// A statement as the judge hands it to a relation.
 pub(super) fn case<'a>(quantities: &'a [Quantity], mentions: &'a [Mention]) -> Case<'a> {
     Case {
+        statement: 1,
         quantities,
+        linked: &[],
         mentions,
         alpha: 0.05,
         one_sided: false,

@@ -167,6 +167,8 @@ fn quantity<'a>(document: &Document, quantity: &'a Quantity) -> QuantityJson<'a>
 #[derive(Serialize)]
 struct FindingJson<'a> {
     relation: &'static str,
+    #[serde(skip_serializing_if = "<[_]>::is_empty")]
+    with: &'a [&'static str],
     verdict: Verdict,
     statements: &'a [usize],
     place: &'a Place,
@@ -183,6 +185,7 @@ struct FindingJson<'a> {
 fn finding(finding: &Finding) -> FindingJson<'_> {
     FindingJson {
         relation: finding.relation,
+        with: &finding.with,
         verdict: finding.verdict,
         statements: &finding.statements,
         place: &finding.place,

@@ -66,6 +66,7 @@ pub fn statement(
 pub fn finding(verdict: Verdict) -> Finding {
     Finding {
         relation: "p-from-t",
+        with: Vec::new(),
         verdict,
         statements: vec![1],
         place: Place::default(),

@@ -214,7 +214,11 @@ impl Text {
             finding.place.to_string()
         };
         let word = finding.verdict.word();
-        let lead = format!("{word:<9}  {}  ", finding.relation);
+        let mut relations = finding.relation.to_string();
+        for other in &finding.with {
+            relations.push_str(&format!(", {other}"));
+        }
+        let lead = format!("{word:<9}  {relations}  ");
         let mut lines = paragraph(&place, self.width.saturating_sub(columns(&lead)).max(20));
         if lines.is_empty() {
             lines.push(String::new());

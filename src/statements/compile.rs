@@ -1,7 +1,7 @@
 //! *Compiling* a grammar: the files of `grammars/` and those that a person adds are parsed one after
 //! the other, and what they say is put into the tables of `grammar.rs`.
 
-use super::context::Impostor;
+use super::context::{Glyph, Impostor};
 use super::expressions::Expression;
 use super::forms::Form;
 use super::grammar::{Argument, Around, Bracket, Class, Grammar, IntervalNames, Symbol};
@@ -252,40 +252,42 @@ pub fn compile(more: &[(&str, &str)]) -> Result<Grammar, String> {
         thresholds: either(&all.thresholds, check)?,
         plans: either(&all.plans, check)?,
         medians: either(&all.medians, check)?,
-        impostors: impostors(&all.glyph, check)?,
+        glyphs: all
+            .glyph
+            .iter()
+            .map(|raw| glyph(raw, check))
+            .collect::<Result<_, String>>()?,
         words,
         word_meanings,
         patterns: patterns(&all.pattern, &mut names, check)?,
     })
 }
 
-fn impostors(all: &[RawGlyph], check: bool) -> Result<Vec<Impostor>, String> {
-    let mut impostors = Vec::new();
-    for raw in all {
-        for written in &raw.written {
-            let escaped = regex::escape(written);
-            // Each alternative has a group of its own; a name may stand only once.
-            let filled = |all: &[String]| -> Vec<String> {
-                let one = |(i, e): (usize, &String)| {
-                    e.replace("{}", &escaped).replace("?P<x>", &format!("?P<x{i}>"))
-                };
-                all.iter().enumerate().map(one).collect()
-            };
-            impostors.push(Impostor {
-                read: raw.read.clone(),
-                written: written.clone(),
-                places: Expression::new(&filled(&raw.places), check)?,
-                unless: Expression::new(&filled(&raw.unless), check)?,
-                proof: match raw.proof.as_slice() {
-                    [] => None,
-                    proof => Some(Expression::new(&filled(proof), check)?),
-                },
-                least: raw.least,
-                or: raw.or,
-            });
-        }
-    }
-    Ok(impostors)
+fn glyph(raw: &RawGlyph, check: bool) -> Result<Glyph, String> {
+    let impostor = |written: &String| {
+        let escaped = regex::escape(written);
+        // Each alternative has a group of its own; a name may stand only once.
+        let filled = |all: &[String]| -> Vec<String> {
+            let one =
+                |(i, e): (usize, &String)| e.replace("{}", &escaped).replace("?P<x>", &format!("?P<x{i}>"));
+            all.iter().enumerate().map(one).collect()
+        };
+        Ok(Impostor {
+            written: written.clone(),
+            places: Expression::new(&filled(&raw.places), check)?,
+            proof: match raw.proof.as_slice() {
+                [] => None,
+                proof => Some(Expression::new(&filled(proof), check)?),
+            },
+        })
+    };
+    Ok(Glyph {
+        read: raw.read.clone(),
+        impostors: raw.written.iter().map(impostor).collect::<Result<_, String>>()?,
+        unless: Expression::new(&raw.unless, check)?,
+        least: raw.least,
+        or: raw.or,
+    })
 }
 
 fn symbols(all: &[RawSymbol], names: &mut Names) -> Result<(Vec<Symbol>, Spellings), String> {

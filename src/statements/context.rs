@@ -9,18 +9,24 @@ use crate::numbers::Comparator;
 use std::borrow::Cow;
 use std::ops::Range;
 
-/// One character and one of its impostors.
+/// One character that texts may have others for.
 #[derive(Debug)]
-pub(super) struct Impostor {
+pub(super) struct Glyph {
     pub read: String,
-    pub written: String,
-    pub places: Expression,
+    pub impostors: Vec<Impostor>,
     pub unless: Expression,
-    /// `None` where any place will do.
-    pub proof: Option<Expression>,
     pub least: usize,
     /// Another comparator that may be meant behind p.
     pub or: Option<Comparator>,
+}
+
+/// What may be written for it.
+#[derive(Debug)]
+pub(super) struct Impostor {
+    pub written: String,
+    pub places: Expression,
+    /// `None` where any place will do.
+    pub proof: Option<Expression>,
 }
 
 /// A place that is read anew.
@@ -29,6 +35,7 @@ struct Reading {
     /// Where it stands in the text and in the repaired copy.
     old: Range<usize>,
     new: Range<usize>,
+    /// Index of the [`Glyph`].
     rule: usize,
 }
 
@@ -46,44 +53,36 @@ impl<'t> Context<'t> {
             text: Cow::Borrowed(text),
             readings: Vec::new(),
         };
-        for (rule, impostor) in grammar.impostors.iter().enumerate() {
+        for (rule, glyph) in grammar.glyphs.iter().enumerate() {
             // One impostor for each character.
-            let known = |r: &Reading| grammar.impostors[r.rule].read == impostor.read;
+            let known = |r: &Reading| grammar.glyphs[r.rule].read == glyph.read;
             if context.readings.iter().any(known) {
                 continue;
             }
-            let places = context.places(impostor);
+            let places = context.places(glyph);
             if !places.is_empty() {
-                context.read_anew(&places, rule, &impostor.read);
+                context.read_anew(&places, rule, &glyph.read);
             }
         }
         context
     }
 
     /// Where the rule applies; nowhere without enough evidence.
-    fn places(&self, impostor: &Impostor) -> Vec<Range<usize>> {
+    fn places(&self, glyph: &Glyph) -> Vec<Range<usize>> {
         let text = self.text.as_ref();
-        if memchr::memmem::find(text.as_bytes(), impostor.written.as_bytes()).is_none()
-            || impostor.unless.is_match(text)
-        {
+        let stands = |i: &&Impostor| memchr::memmem::find(text.as_bytes(), i.written.as_bytes()).is_some();
+        let mut written = glyph.impostors.iter().filter(stands).peekable();
+        if written.peek().is_none() || glyph.unless.is_match(text) {
             return Vec::new();
         }
-        let mut places = Vec::new();
-        for captures in impostor.places.captures_all(text) {
-            // Alternatives have the group under names of their own.
-            let group = captures.iter().skip(1).flatten().next();
-            places.extend(group.map(|g| g.range()));
-        }
-        let least = if self.readings.is_empty() {
-            impostor.least
-        } else {
-            1
-        };
-        let proven = impostor.proof.as_ref().is_none_or(|p| p.is_match(text));
-        if places.len() < least || !proven {
-            places.clear();
-        }
-        places
+        let least = if self.readings.is_empty() { glyph.least } else { 1 };
+        // Alternatives have the group under names of their own.
+        let group = |c: regex::Captures| c.iter().skip(1).flatten().next().map(|g| g.range());
+        written
+            .filter(|i| i.proof.as_ref().is_none_or(|p| p.is_match(text)))
+            .map(|i| i.places.captures_all(text).filter_map(group).collect())
+            .find(|places: &Vec<Range<usize>>| places.len() >= least)
+            .unwrap_or_default()
     }
 
     /// Puts `read` in place of what stands at these places.
@@ -97,7 +96,7 @@ impl<'t> Context<'t> {
         let shift = |at: usize, by: isize| at.wrapping_add_signed(by);
         for place in places {
             while let Some(mut r) = before.next_if(|r| r.new.end <= place.start) {
-                to_old += (r.old.end as isize - r.new.end as isize) - to_old;
+                to_old = r.old.end as isize - r.new.end as isize;
                 r.new = shift(r.new.start, moved)..shift(r.new.end, moved);
                 readings.push(r);
             }
@@ -160,7 +159,7 @@ impl<'t> Context<'t> {
                 let own = |r: &&Reading| r.new.start >= from && r.new.end <= q.span.end;
                 let mut notes: Vec<String> = Vec::new();
                 for reading in self.readings.iter().filter(own) {
-                    let rule = &grammar.impostors[reading.rule];
+                    let rule = &grammar.glyphs[reading.rule];
                     let note = format!(
                         "`{}` read as `{}` by context",
                         &original[reading.old.clone()],

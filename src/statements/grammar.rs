@@ -3,7 +3,7 @@
 
 use super::Scan;
 use super::compile::compile;
-use super::context::Impostor;
+use super::context::Glyph;
 use super::expressions::Expression;
 use super::forms::Form;
 use super::lists::{Lists, WordList};
@@ -128,7 +128,7 @@ pub struct Grammar {
     pub(super) plans: Expression,
     pub(super) medians: Expression,
     /// Characters that texts have instead of others.
-    pub(super) impostors: Vec<Impostor>,
+    pub(super) glyphs: Vec<Glyph>,
     pub(super) words: AhoCorasick,
     pub(super) word_meanings: Vec<&'static str>,
     /// Expressions whose groups give numbers, by meaning.

@@ -7,6 +7,7 @@
 //! No miss: a p that no reading of the printed statistic allows is always a conflict.
 
 mod print;
+mod reports;
 mod studies;
 mod tails;
 mod texts;
@@ -307,4 +308,130 @@ fn intervals_ratios_ratings_and_shares_of_real_data_are_never_a_conflict() {
         "{agreed} of {CASES} statements with intervals, ratios, ratings and shares agree; none is a conflict"
     );
     assert!(agreed > CASES * 7 / 10, "{agreed}");
+}
+
+#[test]
+fn whole_results_of_real_data_are_never_a_conflict() {
+    let mut r = Random(11);
+    let mut judged = 0;
+    let mut case = 0;
+    while case < CASES {
+        let Some(report) = r.pick(&reports::KINDS)(&mut r) else {
+            continue;
+        };
+        case += 1;
+        let (text, _) = report.text();
+        let document = examine(&text);
+        for finding in &document.findings {
+            assert!(
+                finding.verdict < Verdict::Conflicts,
+                "case {case}: {text}\n{}: {}",
+                finding.relation,
+                finding.says
+            );
+        }
+        judged += usize::from(
+            document
+                .findings
+                .iter()
+                .filter(|f| f.verdict == Verdict::Agrees)
+                .count()
+                > 0,
+        );
+    }
+    println!("{judged} of {CASES} whole results were judged; none is a conflict");
+    assert!(judged > CASES * 9 / 10, "{judged}");
+}
+
+/// A slip is planted only where the printed numbers then exclude each other by the formulas of this test.
+#[test]
+fn one_planted_slip_is_found_and_named() {
+    const PLANTED: usize = 2_000;
+    let mut r = Random(12);
+    let (mut planted, mut found, mut named, mut mended) = (0, 0, 0, 0);
+    let mut missed: Vec<String> = Vec::new();
+    while planted < PLANTED {
+        let Some(report) = r.pick(&reports::KINDS)(&mut r) else {
+            continue;
+        };
+        let at = r.whole(0, report.numbers.len() - 1);
+        let Some((changed, slip)) = reports::slipped(&mut r, &report.numbers[at].text) else {
+            continue;
+        };
+        let truth = report.numbers[at].clone();
+        let mut wrong = report.clone();
+        wrong.numbers[at].text = changed;
+        if !wrong.is_impossible(at) {
+            continue;
+        }
+        planted += 1;
+        let (text, places) = wrong.text();
+        let document = examine(&text);
+        let conflicts: Vec<_> = document
+            .findings
+            .iter()
+            .filter(|f| f.verdict >= Verdict::Conflicts)
+            .collect();
+        if conflicts.is_empty() {
+            missed.push(format!(
+                "missed ({slip} in {}, was {}): {text}",
+                truth.symbol, truth.text
+            ));
+            continue;
+        }
+        found += 1;
+        let place = places[at];
+        let with: Vec<_> = conflicts
+            .iter()
+            .filter(|f| f.marks.iter().any(|m| m.start <= place && place < m.end))
+            .collect();
+        if with.is_empty() {
+            missed.push(format!(
+                "not named ({slip} in {}, was {}): {text}",
+                truth.symbol, truth.text
+            ));
+            continue;
+        }
+        named += 1;
+        let mends = with.iter().any(|f| {
+            f.repairs
+                .iter()
+                .take(3)
+                .any(|repair| offers(&repair.to, &truth.text))
+        });
+        mended += usize::from(mends);
+        if !mends {
+            missed.push(format!(
+                "not mended ({slip} in {}, was {}): {text}\n    {:?}",
+                truth.symbol, truth.text, with[0].repairs
+            ));
+        }
+    }
+    for line in missed.iter().take(40) {
+        println!("{line}");
+    }
+    let percent = |n: usize| 100.0 * n as f64 / planted as f64;
+    println!(
+        "{planted} slips planted: {:.2} % found, {:.2} % with the changed number in the set, {:.2} % with the true value among the first three repairs",
+        percent(found),
+        percent(named),
+        percent(mended)
+    );
+    assert!(percent(found) >= 99.9 && percent(named) >= 99.0 && percent(mended) >= 90.0);
+}
+
+/// Whether a repair shows the true number, at its own precision: alone, among several, or inside a range.
+fn offers(repair: &str, truth: &str) -> bool {
+    let wanted: f64 = truth.parse().expect("a number");
+    let shows = |text: &str| -> Option<(f64, f64)> {
+        let bare = text.trim_start_matches(['<', '>', ' ']);
+        let behind = bare.split_once('.').map_or(0, |(_, b)| b.len() as i32);
+        Some((bare.parse().ok()?, 0.5 * 10f64.powi(-behind) + 1e-9))
+    };
+    if let Some((low, high)) = repair.split_once(" to ") {
+        let ends = shows(low).zip(shows(high));
+        return ends.is_some_and(|((a, half), (b, _))| a - half <= wanted && wanted <= b + half);
+    }
+    let mut all = repair.split(" or ").filter_map(shows);
+    all.any(|(value, half)| (value - wanted).abs() <= half)
 }

@@ -22,6 +22,9 @@ use std::collections::HashMap;
 /// Steps of an outline that is looked at: fewer make no area, more make an ornament.
 const STEPS: std::ops::Range<usize> = 4..600;
 
+/// Distinct glyphs that are looked at; the largest handbook has a few thousand.
+const MOST: usize = 20_000;
+
 /// A font with this many distinct letters is a text font.
 const ALPHABET: u32 = 20;
 
@@ -164,7 +167,7 @@ pub fn verify(glyphs: &mut Glyphs) {
     let mut layers: Vec<FontLayer> = vec![FontLayer::default(); glyphs.fonts.len()];
     let mut pairs = Pairs::of(glyphs, &mut layers);
     let mut undecided: Vec<Undecided> = Vec::new();
-    for (index, (shape, own)) in glyphs.shapes.iter().zip(&mut pairs.0).enumerate() {
+    for (index, (shape, own)) in glyphs.shapes.iter().zip(&mut pairs.0).enumerate().take(MOST) {
         let layer = &mut layers[shape.font as usize];
         let mut cut: Option<(Edges, Vec<Row>)> = None;
         for (meaning, pair) in own.iter_mut().enumerate() {
